@@ -1,0 +1,1 @@
+"""What one does with many motors: read, store, search, show."""

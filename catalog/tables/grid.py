@@ -1,0 +1,48 @@
+"""A table as text cells with their places in the file: what every reader returns."""
+
+from collections.abc import Iterator
+from dataclasses import dataclass, field
+
+
+@dataclass(frozen=True, slots=True)
+class Span:
+    """A merged cell: the text stands in its top left corner, the other cells are empty.
+
+    Row and column are indices into ``Grid.rows`` (from 0); rows and columns are its size.
+    """
+
+    row: int
+    column: int
+    rows: int
+    columns: int
+
+
+@dataclass(slots=True)
+class Grid:
+    """One table, sheet or page: rows of text cells, all of one length.
+
+    ``rows`` holds the text as a person sees it in the file ("0.55 mNm" where a number format
+    adds the unit), '' for an empty cell. ``row_numbers`` and ``column_numbers`` give the place
+    of each row and column in the file, counted from 1, so that hidden or skipped ones leave
+    a gap. ``continuation`` yields further rows in chunks of a long table, directly below.
+    """
+
+    rows: list[list[str]]
+    row_numbers: list[int]
+    column_numbers: list[int]
+    sheet: str | None = None
+    page: int | None = None
+    spans: list[Span] = field(default_factory=list)
+    remarks: list[str] = field(default_factory=list)
+    continuation: Iterator[tuple[list[int], list[list[str]]]] | None = None
+
+
+@dataclass(slots=True)
+class TableFile:
+    """A file as read: its grids, its fingerprint, and what was passed over."""
+
+    name: str
+    sha256: str
+    format: str
+    grids: list[Grid]
+    skipped: list[str] = field(default_factory=list)

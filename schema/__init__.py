@@ -1,0 +1,1 @@
+"""What a motor figure is: units, numbers, vocabulary, conventions, relations, physics. Pure."""
