@@ -1,0 +1,92 @@
+"""A motor in SI, and what was found about its figures: the documents that leave the program."""
+
+from dataclasses import dataclass, field
+from typing import Literal
+
+import numpy as np
+from numpy.typing import NDArray
+from pydantic import BaseModel, ConfigDict
+
+from .batch import Batch, Floats
+
+CONSTANT_BASES = ("published", "derived", "reconciled")
+"""How a constant was come by; arrays hold the index."""
+
+CANONICAL: dict[str, str] = {
+    "torque_constant": "N·m/A",
+    "armature_resistance": "Ω",
+    "armature_inductance": "H",
+    "rotor_inertia": "kg·m²",
+    "no_load_current": "A",
+    "viscous_damping": "N·m·s/rad",
+    "motor_constant": "N·m/√W",
+}
+"""The constants every motor is reduced to, with their SI units (the DC motor, at 25 °C)."""
+
+
+@dataclass(slots=True)
+class ConstantColumn:
+    """One constant over N motors: value and 95 % interval in SI, at 25 °C.
+
+    basis holds indices into ``CONSTANT_BASES`` (−1 where there is no value); sources is a
+    palette of tuples of figure keys that the index array ``source`` points into.
+    """
+
+    value: Floats
+    low: Floats
+    high: Floats
+    basis: NDArray[np.int8]
+    sources: list[tuple[str, ...]]
+    source: NDArray[np.int32]
+
+
+class Amount(BaseModel):
+    """A value with its SI unit."""
+
+    model_config = ConfigDict(frozen=True)
+
+    value: float | None
+    unit: str
+
+
+class Cell(BaseModel):
+    """A place in the file: sheet or page where there is one, row and column from 1."""
+
+    model_config = ConfigDict(frozen=True)
+
+    sheet: str | None = None
+    page: int | None = None
+    row: int | None = None
+    column: int | None = None
+
+
+class Finding(BaseModel):
+    """One contradiction, or one thing worth knowing, among the published figures."""
+
+    model_config = ConfigDict(frozen=True)
+
+    part_number: str | None
+    scope: Literal["motor", "column"] = "motor"
+    part_numbers: tuple[str, ...] = ()
+    severity: Literal["error", "warning", "note"]
+    relation: str
+    figures: tuple[str, ...]
+    suspect: str | None = None
+    ratio: float | None = None
+    cause: str = "unexplained"
+    other_causes: tuple[str, ...] = ()
+    implied: Amount | None = None
+    cell: Cell | None = None
+    message: str
+
+
+@dataclass(slots=True)
+class Reconciled:
+    """A batch brought to constants: the batch (with conventions as inferred), its constants by
+    canonical key, and the findings; ``finding_motor`` gives each finding's entry index (the
+    first one for a whole column)."""
+
+    batch: Batch
+    constants: dict[str, ConstantColumn]
+    findings: list[Finding] = field(default_factory=list)
+    finding_motor: list[int] = field(default_factory=list)
