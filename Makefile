@@ -1,0 +1,39 @@
+# make demo   set up, import the samples, show the reading and the findings, run a search
+# make test   set up with the test tools, then lint, types and all tests
+# make bench  the benchmarks, as ratios against a baseline in the same run
+
+PYTHON ?= python3
+BIN = .venv/bin
+
+.PHONY: demo test lint types bench clean
+
+demo: .venv/installed
+	@PATH="$(CURDIR)/$(BIN):$$PATH" sh sample_entries/demo.sh
+
+test: lint types
+	$(BIN)/pytest -n auto
+
+lint: .venv/tools
+	$(BIN)/ruff check .
+	$(BIN)/ruff format --check .
+
+types: .venv/tools
+	$(BIN)/basedpyright
+
+bench: .venv/tools
+	$(BIN)/python -m tests.benchmarks
+
+.venv/installed: pyproject.toml
+	@$(PYTHON) -c 'import sys; sys.exit(sys.version_info < (3, 11))' \
+		|| { echo "motorfolio needs Python 3.11 or newer; name one with: make PYTHON=python3.12"; exit 1; }
+	test -x $(BIN)/python || $(PYTHON) -m venv .venv
+	$(BIN)/python -m pip install --quiet --upgrade pip
+	$(BIN)/python -m pip install --quiet --editable .
+	@touch $@
+
+.venv/tools: .venv/installed
+	$(BIN)/python -m pip install --quiet --group dev
+	@touch $@
+
+clean:
+	rm -rf .venv demo build dist *.egg-info
