@@ -164,7 +164,7 @@ def plant(
                 return None
             return single("torque_constant", 1 - m.I0 / m.IN)
         case "continuous-stall":
-            if "stall_current" not in sheet.keys or m.IN * 1.15 > 0.6 * m.U / m.Ra:
+            if "stall_current" not in sheet.keys or 0.6 * m.U / m.Ra < m.IN * 1.15:
                 return None
             keys = ["stall_current"] + (["stall_torque"] if "stall_torque" in sheet.keys else [])
             for key in keys:
