@@ -11,7 +11,8 @@ Every table NAME has its expectation in ``NAME.expect.json``, written by hand fr
 - ``motors``: part number -> ``figures`` {key: value in SI as published, ``printed``, and where the
   sheet states them ``low``, ``high``, ``qualifier``, ``convention``}, ``texts``, ``conditions``
   [{``when``: [words of which one must stand in the condition's name], ``figures``}],
-  ``points`` [[numbers in SI]], ``also`` (other names that would do); ``point_headings``: their headings,
+  ``points`` [[numbers in SI]], ``also`` (other names that would do),
+- ``point_headings``: headings of the points; ``other_numbers``: what else may stand in a point,
 - flags of a figure: ``optional`` (may be absent), ``or_unread`` (undecidable enough that listing
   it is as right as reading it), ``or_point`` (may stand among the points instead),
 - ``headings``: key -> heading as printed, to recognise it in the list of what is unread,
@@ -208,7 +209,7 @@ def _compare_motor(
         else:
             card.missing.append(f"{where} ({figure.get('printed')})")
     for key, text in expected.get("texts", {}).items():
-        found = figures.get(key) or motor.get(key)
+        found = figures.get(key) or motor.get(key) or motor.get("model", {}).get(key)
         found = found.get("value") if isinstance(found, dict) else found
         if found is None:
             card.missing.append(f"{part}: {key} ({text})")
@@ -228,7 +229,7 @@ def _compare_motor(
         else:
             card.missing.append(f"{part}: point {point}")
     if wanted.get("complete", True):
-        _find_inventions(part, expected, motor, card)
+        _find_inventions(part, expected, motor, wanted.get("other_numbers", []), card)
 
 
 def _compare_conditions(
@@ -259,14 +260,19 @@ def _compare_conditions(
 
 
 def _find_inventions(
-    part: str, expected: dict[str, Any], motor: dict[str, Any], card: Score
+    part: str,
+    expected: dict[str, Any],
+    motor: dict[str, Any],
+    others: list[float],
+    card: Score,
 ) -> None:
     blocks = [expected.get("figures", {})]
     blocks += [condition["figures"] for condition in expected.get("conditions", [])]
     for key in _numeric(motor.get("figures", {})):
         if key not in blocks[0]:
             card.wrong.append(f"{part}: {key} is not on the sheet")
-    allowed = [figure["value"] for block in blocks for figure in block.values()]
+    allowed = list(others)
+    allowed += [figure["value"] for block in blocks for figure in block.values()]
     allowed += [number for point in expected.get("points", []) for number in point]
     for condition in motor.get("conditions") or []:
         for key, figure in _numeric(condition["figures"]).items():
