@@ -1,4 +1,4 @@
-"""The mistakes that sheets make, each planted in a printed cell (names: the causes of a finding)."""
+"""The mistakes that sheets make, planted in a printed cell (names: the causes of a finding)."""
 
 import math
 from collections.abc import Callable

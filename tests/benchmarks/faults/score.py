@@ -25,7 +25,8 @@ RATIOS: dict[str, list[float]] = {
     "peak-vs-rms": [math.sqrt(2)],
     "line-vs-phase": [math.sqrt(3), 2, 1.5],
     "sinusoidal-current-convention": [
-        math.sqrt(1.5), math.sqrt(3) / 2, math.sqrt(3), 3 / math.pi, 1.5, 1.350, 1.170, 1.654, 2.121,
+        math.sqrt(1.5), math.sqrt(3) / 2, math.sqrt(3), 3 / math.pi, 1.5, 1.350, 1.170, 1.654,
+        2.121,
     ],
     "inertia-convention": [386.0886, 4],
     "horsepower-vs-watt": [745.7, 735.5],
