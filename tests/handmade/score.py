@@ -103,6 +103,7 @@ def source(file: str) -> Path:
 def run(name: str) -> tuple[int, str, str, BaseException | None]:
     """Imports a table as a user would: exit status, standard output, standard error, crash."""
     from click.testing import CliRunner
+
     from motorfolio.catalog.cli import main
 
     wanted = expectation(name)
