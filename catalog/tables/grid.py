@@ -3,6 +3,12 @@
 from collections.abc import Iterator
 from dataclasses import dataclass, field
 
+from ...schema.errors import MotorfolioError
+
+
+class TableError(MotorfolioError):
+    """A file that holds no table this program can read; one sentence says why."""
+
 
 @dataclass(frozen=True, slots=True)
 class Span:
@@ -24,7 +30,13 @@ class Grid:
     ``rows`` holds the text as a person sees it in the file ("0.55 mNm" where a number format
     adds the unit), '' for an empty cell. ``row_numbers`` and ``column_numbers`` give the place
     of each row and column in the file, counted from 1, so that hidden or skipped ones leave
-    a gap. ``continuation`` yields further rows in chunks of a long table, directly below.
+    a gap. ``continuation`` yields further rows in chunks of a long table, directly below;
+    such a row is longer than the grid only where the file's row is (cells without a heading).
+
+    ``decimal`` is '.' where number cells were written out from stored numbers (a workbook,
+    JSON): a point in such a text is a decimal point and there are no thousands marks, while
+    cells that were text keep what was typed. None: the cells alone must tell.
+    ``row_pages`` gives each row's page where a table runs over several pages.
     """
 
     rows: list[list[str]]
@@ -35,6 +47,8 @@ class Grid:
     spans: list[Span] = field(default_factory=list)
     remarks: list[str] = field(default_factory=list)
     continuation: Iterator[tuple[list[int], list[list[str]]]] | None = None
+    decimal: str | None = None
+    row_pages: list[int] | None = None
 
 
 @dataclass(slots=True)

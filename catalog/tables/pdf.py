@@ -1,0 +1,359 @@
+"""PDF pages by their text layer: runs of text with places, put into lines and columns."""
+
+import statistics
+from collections.abc import Iterator
+from dataclasses import dataclass
+from itertools import pairwise
+
+from .cells import clean, subscript, superscript
+from .columns import Interval, Piece, arrange, find_columns, fits, join_split_labels
+from .grid import Grid, Span, TableError
+from .source import Source
+
+_MOST_BYTES = 200_000_000
+_MOST_PAGES = 400
+_MOST_RUNS = 20_000
+_MOST_TOTAL = 300_000
+_WORD_GAP = 0.7  # of the type size: what is wider parts two cells
+_BROKEN = ("\ufffd", "\ufffe", "\uffff")
+
+
+@dataclass(slots=True)
+class _Run:
+    """A run of text in one style: left, bottom, right, top in points, page upright."""
+
+    x0: float
+    y0: float
+    x1: float
+    y1: float
+    text: str
+
+    @property
+    def height(self) -> float:
+        return self.y1 - self.y0
+
+
+@dataclass(slots=True)
+class _Line:
+    """The pieces on one baseline, top down by ``y``, and the type size."""
+
+    y: float
+    size: float
+    pieces: list[Piece]
+    number: int = 0
+
+
+@dataclass(slots=True)
+class _Block:
+    """Lines of one table with its columns; ``table`` is False for running text."""
+
+    page: int
+    lines: list[_Line]
+    columns: list[Interval]
+    table: bool
+
+
+def read_pdf(source: Source) -> tuple[list[Grid], list[str]]:
+    """(grids, pages passed over) of a PDF; only its text layer is read.
+
+    Each block of lines with the same columns is a grid. A table that goes on at the top of the
+    next page with the same columns and without its heading again is one grid, with the page of
+    every row in ``row_pages``.
+    """
+    import pypdfium2 as pdfium
+
+    data = source.read(_MOST_BYTES, "PDF")
+    try:
+        document = pdfium.PdfDocument(data)
+    except pdfium.PdfiumError as error:
+        if "assword" in str(error):
+            raise TableError(
+                f"{source.name}: is protected by a password; save it without one"
+            ) from None
+        raise TableError(
+            f"{source.name}: the PDF is damaged, perhaps cut short; download it again"
+        ) from None
+    try:
+        return _read(document, source.name)
+    except pdfium.PdfiumError as error:
+        raise TableError(f"{source.name}: the PDF is damaged ({error})") from None
+    finally:
+        document.close()
+
+
+def _read(document, name: str) -> tuple[list[Grid], list[str]]:
+    skipped: list[str] = []
+    blocks: list[_Block] = []
+    remarks: dict[int, list[str]] = {}
+    scanned = total = 0
+    pages = len(document)
+    for number in range(1, min(pages, _MOST_PAGES) + 1):
+        page = document[number - 1]
+        try:
+            runs, broken = _runs(page)
+            pictured = not runs and any(True for _ in page.get_objects(filter=(3,), max_depth=2))
+        finally:
+            page.close()
+        total += len(runs)
+        if total > _MOST_TOTAL:
+            skipped.append(f"pages from {number} on: too much text; split the file")
+            break
+        if not runs:
+            scanned += pictured
+            why = "a scanned picture without a text layer" if pictured else "no text"
+            skipped.append(f"page {number}: {why}")
+            continue
+        if broken:
+            remarks[number] = [
+                f"page {number}: {broken} signs have no known letter in the file's own fonts"
+            ]
+        blocks += _blocks(_lines(runs), number)
+    if pages > _MOST_PAGES:
+        skipped.append(f"pages {_MOST_PAGES + 1}–{pages}: only the first {_MOST_PAGES} are read")
+    if not blocks:
+        why = (
+            "is a scanned picture without a text layer; put it through text recognition first"
+            if scanned
+            else "has no text"
+        )
+        raise TableError(f"{name}: {why}")
+    grids = [_grid(group) for group in _continued(_with_prose(blocks))]
+    for grid in grids:
+        for page in dict.fromkeys(grid.row_pages or [grid.page]):
+            grid.remarks += remarks.get(page or 0, [])
+    return grids, skipped
+
+
+# --- runs and lines ---------------------------------------------------------------------------
+
+
+def _runs(page) -> tuple[list[_Run], int]:
+    """The runs of a page in upright coordinates, and how many signs are unknown."""
+    text_page = page.get_textpage()
+    try:
+        count = min(text_page.count_rects(), _MOST_RUNS)
+        boxes = [text_page.get_rect(i) for i in range(count)]
+        runs = []
+        broken = 0
+        seen: set[tuple[int, int, str]] = set()
+        turn = _turn(page)
+        for box in boxes:
+            raw = text_page.get_text_bounded(*box)
+            text = clean(raw.replace("\ufffe", "-")).replace("\n", " ")
+            broken += sum(raw.count(sign) for sign in _BROKEN[:1])
+            broken += sum("\ue000" <= sign <= "\uf8ff" for sign in raw)
+            if not text:
+                continue
+            x0, y0, x1, y1 = turn(*box)
+            key = (round(x0), round(y0), text)  # bold type is sometimes drawn twice
+            if key in seen or (len(text) > 2 and y1 - y0 > 2.5 * (x1 - x0)):
+                continue  # text that runs upward belongs to a drawing
+            seen.add(key)
+            runs.append(_Run(x0, y0, x1, y1, text))
+    finally:
+        text_page.close()
+    return runs, broken
+
+
+def _turn(page):
+    """How a page's coordinates become upright ones, by its rotation."""
+    rotation = page.get_rotation()
+    width, height = page.get_size()
+    if rotation == 90:
+        return lambda l, b, r, t: (b, height - r, t, height - l)  # noqa: E741
+    if rotation == 180:
+        return lambda l, b, r, t: (width - r, height - t, width - l, height - b)  # noqa: E741
+    if rotation == 270:
+        return lambda l, b, r, t: (width - t, l, width - b, r)  # noqa: E741
+    return lambda l, b, r, t: (l, b, r, t)  # noqa: E741
+
+
+def _lines(runs: list[_Run]) -> list[_Line]:
+    """Runs on one baseline, joined where only a word's space parts them.
+
+    A smaller run set higher or lower than the one it follows is a raised or lowered sign.
+    """
+    if not runs:
+        return []
+    usual = statistics.median(run.height for run in runs)
+    groups: list[list[_Run]] = []
+    middles: list[float] = []
+    for run in sorted(runs, key=lambda r: -(r.y0 + r.y1) / 2):
+        middle = (run.y0 + run.y1) / 2
+        at = None
+        for i in range(len(groups) - 1, max(-1, len(groups) - 4), -1):
+            if abs(middles[i] - middle) <= 0.45 * max(usual, run.height * 0.6):
+                at = i
+                break
+        if at is None:
+            groups.append([run])
+            middles.append(middle)
+        else:
+            groups[at].append(run)
+            # The fuller type gives the line; raised signs do not move it.
+            tallest = max(groups[at], key=lambda r: r.height)
+            middles[at] = (tallest.y0 + tallest.y1) / 2
+    lines = []
+    for group, middle in zip(groups, middles, strict=True):
+        group.sort(key=lambda r: r.x0)
+        size = statistics.median(run.height for run in group)
+        lines.append(_Line(middle, size, _pieces(group)))
+    lines.sort(key=lambda line: -line.y)
+    for number, line in enumerate(lines, 1):
+        line.number = number
+    return lines
+
+
+def _pieces(group: list[_Run]) -> list[Piece]:
+    pieces: list[Piece] = []
+    above: _Run | None = None
+    for run in group:
+        if above is not None and pieces:
+            piece = pieces[-1]
+            gap = run.x0 - piece.x1
+            size = max(above.height, run.height)
+            if gap < _WORD_GAP * size:
+                small = run.height < 0.8 * above.height or above.height < 0.8 * size
+                text = run.text
+                if small and run.height < above.height and gap < 0.25 * size:
+                    lift = (run.y0 + run.y1) / 2 - (above.y0 + above.y1) / 2
+                    text = superscript(text) if lift > 0 else subscript(text)
+                    piece.text += text
+                else:
+                    piece.text += (" " if gap > 0.12 * size else "") + text
+                    above = run
+                piece.x1 = max(piece.x1, run.x1)
+                continue
+        pieces.append(Piece(run.x0, run.x1, run.text))
+        above = run
+    return pieces
+
+
+# --- blocks -----------------------------------------------------------------------------------
+
+
+def _blocks(lines: list[_Line], page: int) -> list[_Block]:
+    """Lines parted where a wide gap, or other columns, begin another table."""
+    if not lines:
+        return []
+    pitches = [a.y - b.y for a, b in pairwise(lines)]
+    usual = statistics.median(pitches) if pitches else 0.0
+    groups: list[list[_Line]] = [[lines[0]]]
+    for line, pitch in zip(lines[1:], pitches, strict=True):
+        if pitch > max(1.8 * usual, 2.2 * line.size):
+            groups.append([])
+        groups[-1].append(line)
+    blocks: list[_Block] = []
+    for group in groups:
+        for part in _by_columns(group):
+            block = _block(page, part)
+            last = blocks[-1] if blocks else None
+            if last and last.table and block.table and _compatible(last, block):
+                blocks[-1] = _block(page, last.lines + block.lines)
+            else:
+                blocks.append(block)
+    return blocks
+
+
+def _block(page: int, lines: list[_Line]) -> _Block:
+    several = [line for line in lines if len(line.pieces) > 1]
+    columns = find_columns([line.pieces for line in lines])
+    table = len(several) >= 2 and len(several) >= 0.3 * len(lines)
+    return _Block(page, lines, columns, table)
+
+
+def _by_columns(lines: list[_Line]) -> Iterator[list[_Line]]:
+    """Part lines where the number of columns changes for good and the places do not agree."""
+    start = 0
+    for i in range(2, len(lines) - 1):
+        if i - start < 2:
+            continue
+        above = find_columns([line.pieces for line in lines[start:i]])
+        below = find_columns([line.pieces for line in lines[i : i + 6]])
+        if min(len(above), len(below)) < 2 or len(above) == len(below):
+            continue
+        both = find_columns([line.pieces for line in lines[start : i + 6]])
+        if len(both) < min(len(above), len(below)):
+            yield lines[start:i]
+            start = i
+    yield lines[start:]
+
+
+def _compatible(one: _Block, other: _Block) -> bool:
+    if fits(one.columns, other.columns):
+        return True
+    both = find_columns([line.pieces for line in one.lines + other.lines])
+    most = max(len(one.columns), len(other.columns))
+    return len(both) == most and min(len(one.columns), len(other.columns)) >= most - 1
+
+
+def _with_prose(blocks: list[_Block]) -> list[_Block]:
+    """Running text joins the table below it on its page (a title), else the one above (notes)."""
+    out: list[_Block] = []
+    waiting: list[_Line] = []
+    for i, block in enumerate(blocks):
+        if block.table:
+            block.lines = waiting + block.lines
+            waiting = []
+            out.append(block)
+            continue
+        follows = any(b.table and b.page == block.page for b in blocks[i + 1 :])
+        precedes = bool(out) and out[-1].page == block.page
+        if follows:
+            waiting += block.lines
+        elif precedes:
+            out[-1].lines = out[-1].lines + block.lines
+        else:
+            out.append(block)
+    return out
+
+
+def _continued(blocks: list[_Block]) -> list[list[_Block]]:
+    """Blocks in groups: a table and what of it stands on the pages after."""
+    groups: list[list[_Block]] = []
+    for block in blocks:
+        last = groups[-1][-1] if groups else None
+        if (
+            last is not None
+            and last.table
+            and block.table
+            and block.page == last.page + 1
+            and fits(last.columns, block.columns)
+            and not _repeats_heading(groups[-1][0], block)
+        ):
+            groups[-1].append(block)
+        else:
+            groups.append([block])
+    return groups
+
+
+def _repeats_heading(first: _Block, block: _Block) -> bool:
+    """Whether a block begins with its own heading, which makes it a table by itself."""
+    heads = [line.pieces[0].text for line in first.lines if len(line.pieces) > 1][:4]
+    own = [line.pieces[0].text for line in block.lines if len(line.pieces) > 1][:2]
+    return any(text in heads for text in own)
+
+
+def _grid(group: list[_Block]) -> Grid:
+    first = group[0]
+    lines = [line for block in group for line in block.lines]
+    pages = [block.page for block in group for _ in block.lines]
+    columns = find_columns([line.pieces for block in group for line in block.lines])
+    rows: list[list[str]] = []
+    spans: list[Span] = []
+    table = arrange([line.pieces for line in lines], columns)
+    rows, spans = table.rows, table.spans
+    places = list(range(len(rows)))
+    rows, places, spans = join_split_labels(rows, places, spans)
+    grid = Grid(
+        rows,
+        [lines[i].number for i in places],
+        list(range(1, len(rows[0]) + 1)),
+        page=first.page,
+        spans=spans,
+    )
+    if len(group) > 1:
+        grid.row_pages = [pages[i] for i in places]
+    if table.clashes:
+        grid.remarks.append(f"{table.clashes} cells hold text of two places side by side")
+    return grid

@@ -1,0 +1,237 @@
+"""Workbooks: which sheets are read, and the older binary kinds."""
+
+import datetime
+import io
+import struct
+from collections.abc import Callable, Iterable, Sequence
+from pathlib import PurePath
+
+from .archive import Archive
+from .cells import clean, column_name, even, some
+from .grid import Grid, Span, TableError
+from .numberformat import plain
+from .source import Source
+
+OLE_MAGIC = bytes.fromhex("D0CF11E0A1B11AE1")
+_MOST_OLE = 100_000_000
+_MOST_ZIP = 200_000_000
+_MOST_BOX = 4_000_000
+_BINARY_REMARK = (
+    "of this kind of workbook only stored values are read: units in number formats, hidden rows "
+    "and columns, and errors in formulas can't be seen; XLSX tells them"
+)
+
+
+def read_workbook(source: Source, sheet: str | None) -> tuple[str, list[Grid], list[str]]:
+    """(format, grids, sheets passed over) of an XLSX, XLSM, XLSB, ODS or XLS file."""
+    if source.survey.head.startswith(OLE_MAGIC):
+        return "xls", *_read_xls(source, sheet)
+    # In memory: a long sheet is still being read when this function has returned.
+    archive = Archive(io.BytesIO(source.read(_MOST_ZIP, "workbook")), source.name)
+    if "xl/workbook.bin" in archive:
+        archive.prove()
+        _check_xlsb(archive)
+        return "xlsb", *_read_calamine(source, sheet)
+    if "xl/workbook.xml" in archive:
+        return "xlsx", *_read_xlsx(archive, sheet)
+    if "content.xml" in archive and _is_spreadsheet(archive):
+        return "ods", *_read_ods(archive, sheet)
+    raise TableError(
+        f"{source.name}: is a zip archive but no workbook; unpack it and name the files in it"
+    )
+
+
+def _is_spreadsheet(archive: Archive) -> bool:
+    if "mimetype" not in archive:
+        return True
+    return b"spreadsheet" in archive.read("mimetype", 1000)
+
+
+def choose(
+    name: str, sheets: list[tuple[str, bool]], wanted: str | None
+) -> tuple[list[int], list[str]]:
+    """Which of the sheets (name, hidden) to read, and a line for each hidden one passed over.
+
+    A sheet that is asked for by name is read even when hidden.
+    """
+    if wanted is not None:
+        exact = [i for i, (title, _) in enumerate(sheets) if title == wanted]
+        folded = wanted.strip().casefold()
+        found = exact or [
+            i for i, (title, _) in enumerate(sheets) if title.strip().casefold() == folded
+        ]
+        if not found:
+            titles = some([f"“{title}”" for title, _ in sheets], 30) or "none"
+            raise TableError(f"{name}: has no sheet “{wanted}”; its sheets are {titles}")
+        return found[:1], []
+    shown = [i for i, (_, hidden) in enumerate(sheets) if not hidden]
+    return shown, [f"sheet “{title}”: is hidden" for title, hidden in sheets if hidden]
+
+
+def _collect(
+    name: str,
+    sheets: list[tuple[str, bool]],
+    wanted: str | None,
+    read: Callable[[int], Grid],
+) -> tuple[list[Grid], list[str]]:
+    chosen, skipped = choose(name, sheets, wanted)
+    grids: list[Grid] = []
+    for i in chosen:
+        grid = read(i)
+        if not grid.rows:
+            skipped.append(f"sheet “{sheets[i][0]}”: is empty")
+            continue
+        if sheets[i][1]:
+            grid.remarks.append("this sheet is hidden; it is read because it was asked for")
+        grids.append(grid)
+    if not grids:
+        raise TableError(f"{name}: has no sheet with visible cells ({'; '.join(skipped[:5])})")
+    return grids, skipped
+
+
+def _read_xlsx(archive: Archive, wanted: str | None) -> tuple[list[Grid], list[str]]:
+    from .xlsx import Workbook
+
+    book = Workbook(archive)
+    sheets = [(sheet.name, sheet.hidden) for sheet in book.sheets]
+    grids, skipped = _collect(archive.name, sheets, wanted, lambda i: book.grid(book.sheets[i]))
+    return grids, skipped + book.passed
+
+
+def _read_ods(archive: Archive, wanted: str | None) -> tuple[list[Grid], list[str]]:
+    from .ods import Document
+
+    document = Document(archive)
+    sheets = [(sheet.name, sheet.hidden) for sheet in document.sheets]
+    return _collect(archive.name, sheets, wanted, lambda i: document.grid(document.sheets[i]))
+
+
+def _read_xls(source: Source, wanted: str | None) -> tuple[list[Grid], list[str]]:
+    data = source.read(_MOST_OLE, "workbook of the old kind")
+    if "EncryptedPackage".encode("utf-16-le") in data:
+        raise TableError(f"{source.name}: is protected by a password; save it without one")
+    if not any(entry.encode("utf-16-le") in data for entry in ("Workbook", "Book")):
+        raise TableError(f"{source.name}: is an Office file of the old kind, but no workbook")
+    return _read_calamine(source, wanted)
+
+
+def _read_calamine(source: Source, wanted: str | None) -> tuple[list[Grid], list[str]]:
+    import python_calamine as calamine
+
+    data = source.read(_MOST_OLE, "workbook of this kind")
+    try:
+        book = calamine.load_workbook(io.BytesIO(data))
+        sheets = [
+            (meta.name, meta.visible != calamine.SheetVisibleEnum.Visible)
+            for meta in book.sheets_metadata
+            if meta.typ == calamine.SheetTypeEnum.WorkSheet
+        ]
+    except Exception as error:  # the library raises its own and, on damage, a panic's exception
+        raise _unreadable(source.name, error) from None
+
+    def read(i: int) -> Grid:
+        title = sheets[i][0]
+        try:
+            sheet = book.get_sheet_by_name(title)
+            if sheet.height * sheet.width > _MOST_BOX:
+                raise TableError(
+                    f"{source.name}: sheet “{title}” spreads over {sheet.height} rows by "
+                    f"{sheet.width} columns, too much for one table; cut the motors out of it"
+                )
+            values = sheet.to_python(skip_empty_area=False)
+            merged = sheet.merged_cell_ranges or []
+        except TableError:
+            raise
+        except Exception as error:
+            raise _unreadable(source.name, error) from None
+        return _of_values(values, merged, title)
+
+    return _collect(source.name, sheets, wanted, read)
+
+
+def _unreadable(name: str, error: Exception) -> TableError:
+    reason = str(error).split("\n")[0][:120]
+    if "password" in reason.lower() or "encrypt" in reason.lower():
+        return TableError(f"{name}: is protected by a password; save it without one")
+    return TableError(f"{name}: the workbook is damaged ({reason}); save it again as XLSX")
+
+
+def _of_values(
+    values: Iterable[Iterable[object]],
+    merged: Sequence[tuple[tuple[int, int], tuple[int, int]]],
+    title: str,
+) -> Grid:
+    dates: list[str] = []
+    rows = [
+        [_text(value, i, j, dates) for j, value in enumerate(row, 1)]
+        for i, row in enumerate(values, 1)
+    ]
+    spans = [
+        Span(top, left, bottom - top + 1, right - left + 1)
+        for (top, left), (bottom, right) in merged
+    ]
+    remarks = [_BINARY_REMARK]
+    if dates:
+        remarks.append(
+            f"dates in {some(dates)}: a spreadsheet may have made them of a figure such as 6-12; "
+            "they are no numbers"
+        )
+    grid = even(rows, sheet=title, spans=spans, remarks=remarks)
+    grid.decimal = "."
+    return grid
+
+
+def _text(value: object, row: int, column: int, dates: list[str]) -> str:
+    if isinstance(value, str):
+        return clean(value)
+    if isinstance(value, bool):
+        return str(value).upper()
+    if isinstance(value, int | float):
+        return plain(float(value))
+    dates.append(f"{column_name(column)}{row}")
+    if isinstance(value, datetime.time | datetime.timedelta):
+        return f"time {value}"
+    return f"date {value}".removesuffix(" 00:00:00")
+
+
+def _check_xlsb(archive: Archive) -> None:
+    """Refuse a sheet whose cells span so wide a box that the library would fill memory.
+
+    Records: MS-XLSB 2.1.4; BrtRowHdr is 0 and begins with the row, cells are 1 … 11 and begin
+    with the column.
+    """
+    for member in archive.members:
+        if not (PurePath(member).parent.name == "worksheets" and member.endswith(".bin")):
+            continue
+        data = archive.read(member)
+        at, row = 0, 0
+        top, bottom, left, right = 1 << 30, 0, 1 << 30, 0
+        while at < len(data):
+            kind, at = _packed(data, at, 2)
+            size, at = _packed(data, at, 4)
+            if kind == 0 and at + 4 <= len(data):
+                row = struct.unpack_from("<I", data, at)[0]
+            elif 1 <= kind <= 11 and at + 4 <= len(data):
+                column = struct.unpack_from("<I", data, at)[0]
+                top, bottom = min(top, row), max(bottom, row)
+                left, right = min(left, column), max(right, column)
+            at += size
+        if bottom >= top and (bottom + 1) * (right + 1) > _MOST_BOX:
+            raise TableError(
+                f"{archive.name}: a sheet spreads its cells down to {column_name(right + 1)}"
+                f"{bottom + 1}, too much for one table; cut the part with the motors out of it"
+            )
+
+
+def _packed(data: bytes, at: int, most: int) -> tuple[int, int]:
+    """A number of up to ``most`` bytes, seven bits each, lowest first."""
+    value = 0
+    for i in range(most):
+        if at >= len(data):
+            break
+        byte = data[at]
+        at += 1
+        value |= (byte & 0x7F) << (7 * i)
+        if byte < 128:
+            break
+    return value, at
