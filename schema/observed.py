@@ -87,8 +87,6 @@ def usable(key: str, column: FigureColumn) -> NDArray[np.bool_]:
     for i, qualifier in column.qualifiers.items():
         if qualifier in ("at most", "at least"):
             present[i] = False
-    if quantity(key).scatter_points:
-        present &= column.value < 1.0
     return present
 
 

@@ -1,0 +1,228 @@
+"""A finding in an engineer's words: the relation with the numbers put in, the cause, the rivals."""
+
+import math
+
+import numpy as np
+
+from .batch import Batch
+from .judge import Suspicion
+from .model import FIGURES
+from .motor import Amount, Cell, Finding
+from .observed import to_model
+from .relations import CONSTANT_FIGURES, RELATIONS, Relation, own_relation
+from .vocabulary import quantity
+
+SENTENCES = {
+    "power-of-ten": "a slipped decimal point or prefix",
+    "rpm-vs-rad-per-second": "rpm and rad/s taken for one another (9.549)",
+    "rev-per-second": "revolutions per second taken for rpm or rad/s (60 or 2π)",
+    "ounce-inch-vs-millinewton-metre": "ounce-inches and millinewton-metres taken for one another "
+    "(7.0616)",
+    "pound-inch-vs-newton-metre": "pound-inches and newton-metres taken for one another (0.11298)",
+    "kilogram-force-vs-newton": "kilogram-force and newton taken for one another (9.80665)",
+    "peak-vs-rms": "a peak value where an rms value is meant, or the reverse (√2)",
+    "line-vs-phase": "a phase value where a line-to-line value is meant, or the reverse",
+    "sinusoidal-current-convention": "another convention of current or back-EMF than the stated "
+    "one (dc, peak or rms amperes of a sinusoidal motor)",
+    "hot-vs-cold": "a value at operating temperature among values at the reference temperature, "
+    "or the reverse",
+    "digits-transposed": "two transposed digits",
+    "figures-swapped": "two cells exchanged",
+    "neighbouring-column": "the value of the next winding",
+    "inertia-convention": "another convention of inertia (oz·in² for oz·in·s², GD² for J)",
+    "horsepower-vs-watt": "horsepower and watt taken for one another",
+    "poles-vs-pole-pairs": "poles and pole pairs, or electrical and mechanical speed, taken for "
+    "one another (2)",
+    "peak-to-peak": "a peak-to-peak value (2)",
+    "input-vs-output-power": "electrical input taken for mechanical output",
+    "gear-output-side": "a figure of a gearbox's output side",
+    "friction-ignored": "a torque constant printed as torque over current, friction left out",
+    "continuous-stall": "the continuous figure at standstill, not U/Ra",
+    "unexplained": "none of the usual mistakes fits",
+}
+"""What each cause is, in a few words."""
+
+PLACES = {"row": "row", "column": "column"}
+
+
+def number(value: float, digits: int = 3) -> str:
+    """A value to so many significant digits, without an exponent where that is readable."""
+    if not math.isfinite(value) or value == 0.0:
+        return f"{value:g}"
+    size = math.floor(math.log10(abs(value)))
+    if -4 < size < 6:
+        return f"{round(value, digits - 1 - size):.{max(0, digits - 1 - size)}f}"
+    return f"{value:.{digits - 1}e}"
+
+
+def name(figure: str) -> str:
+    """A figure's name in words."""
+    return figure.replace("_", " ").replace("back emf", "back-EMF")
+
+
+class Narrator:
+    """Writes the findings of one batch."""
+
+    def __init__(self, batch: Batch) -> None:
+        self.batch = batch
+        self._to_model: dict[str, np.ndarray] = {}
+
+    def cell(self, motor: int, figure: str) -> Cell | None:
+        """The place of a figure in the file."""
+        column = self.batch.figures.get(figure)
+        if column is None:
+            return None
+        row, col = int(column.row[motor]), int(column.column[motor])
+        source = self.batch.source
+        return Cell(sheet=source.sheet, page=source.page, row=row or None, column=col or None)
+
+    def unit(self, figure: str, motor: int) -> tuple[str, float, float]:
+        """Unit of a figure's heading, with factor and offset to SI."""
+        column = self.batch.figures[figure]
+        i = int(column.heading[motor])
+        if i < len(self.batch.headings) and self.batch.headings[i].unit:
+            heading = self.batch.headings[i]
+            return heading.unit, heading.factor, heading.offset
+        return quantity(figure).unit, 1.0, 0.0
+
+    def amount(self, figure: str, motor: int, value_si: float) -> str:
+        """A value in the unit the figure is printed in."""
+        unit, factor, offset = self.unit(figure, motor)
+        text = number((value_si - offset) / factor)
+        return text if unit in ("", "1") else f"{text} {unit}"
+
+    def printed(self, figure: str, motor: int) -> str:
+        """A figure as printed, with its unit."""
+        column = self.batch.figures[figure]
+        text = (column.text[motor] or "").strip()
+        if not text:
+            return self.amount(figure, motor, float(column.value[motor]))
+        unit = self.unit(figure, motor)[0]
+        return text if unit in ("", "1") or unit in text else f"{text} {unit}"
+
+    def place(self, motor: int, figure: str) -> str:
+        """ " (row 7, column 5)", or nothing where unknown."""
+        cell = self.cell(motor, figure)
+        if cell is None or (cell.row is None and cell.column is None):
+            return ""
+        parts = [f"{word} {getattr(cell, key)}" for key, word in PLACES.items()
+                 if getattr(cell, key) is not None]  # fmt: skip
+        return f" ({', '.join(parts)})"
+
+    def dc_factor(self, figure: str, motor: int) -> float:
+        """Value of the DC motor at the reference temperature over the published one."""
+        if figure not in self._to_model:
+            column = self.batch.figures[figure]
+            self._to_model[figure] = np.exp(to_model(figure, column, self.batch))
+        return float(self._to_model[figure][motor])
+
+    def dc(self, figure: str, motor: int) -> float:
+        """A published figure as that of the DC motor, SI; NaN where not given."""
+        column = self.batch.figures.get(figure)
+        if column is None or not np.isfinite(column.value[motor]):
+            return math.nan
+        return float(column.value[motor]) * self.dc_factor(figure, motor)
+
+    def relation_of(self, motor: int, figure: str, doubted: frozenset[str]) -> tuple[
+        Relation | None, dict[str, str]
+    ]:  # fmt: skip
+        """The first relation that ties the figure to published ones, and who stands for K, R."""
+        for relation in RELATIONS:
+            roles: dict[str, str] = {}
+            for role in relation.others:
+                options = {"K": CONSTANT_FIGURES, "R": ("terminal_resistance",)}.get(role, (role,))
+                given = [k for k in options if math.isfinite(self.dc(k, motor))]
+                better = [k for k in given if k == figure] or [k for k in given if k not in doubted]
+                if better:
+                    roles[role] = better[0]
+            if len(roles) < len(relation.others):
+                continue
+            used = {relation.left, *roles.values()}
+            if figure not in used or (used - {figure}) & doubted:
+                continue
+            if math.isfinite(self.dc(relation.left, motor)):
+                return relation, roles
+        return None, {}
+
+    def equation(self, motor: int, relation: Relation, roles: dict[str, str]) -> tuple[str, float]:
+        """The relation with the printed numbers put in, and its left over its right side."""
+        values = {role: np.asarray(self.dc(key, motor)) for role, key in roles.items()}
+        for role, key in roles.items():
+            if role == "K" and key == "speed_constant":
+                values[role] = 1.0 / values[role]
+        right = float(relation.right(values))
+        left = relation.left
+        shown = {role: self.printed(key, motor) for role, key in roles.items()}
+        if roles.get("K") == "speed_constant":
+            shown["K"] = f"1/({shown['K']})"
+        text = (
+            f"{relation.formula}: {relation.template.format(**shown)} gives "
+            f"{self.amount(left, motor, right / self.dc_factor(left, motor))}, printed is "
+            f"{self.printed(left, motor)}"
+        )
+        with np.errstate(divide="ignore", invalid="ignore"):
+            ratio = self.dc(left, motor) / right if right > 0 else math.nan
+        return text, ratio
+
+    def finding(self, suspicion: Suspicion, severity: str, doubted: frozenset[str]) -> Finding:
+        """The finding of one suspicion; doubted are the motor's other suspects."""
+        motor, figure = suspicion.motor, FIGURES[suspicion.figure]
+        rivals = tuple(FIGURES[f] for f in suspicion.rivals)
+        partner = () if suspicion.partner is None else (FIGURES[suspicion.partner],)
+        # the others of the relation that shows the contradiction
+        rest = doubted - {figure, *rivals}
+        relation, roles = self.relation_of(motor, figure, frozenset(rest | {*partner}))
+        ratio = math.exp(suspicion.log_ratio)
+        column = self.batch.figures[figure]
+        implied = float(column.value[motor]) / ratio
+        cause, *others = suspicion.causes
+        others = [o for o in others if o != "unexplained"]
+        times = f"{number(ratio)} times" if ratio >= 1 else f"1/{number(1 / ratio)} of"
+        amount = self.amount(figure, motor, implied)
+        text = (
+            f"{name(figure).capitalize()} {self.printed(figure, motor)}{self.place(motor, figure)}"
+        )
+        if partner:
+            text += (
+                f" and {name(partner[0])} {self.printed(partner[0], motor)}"
+                f"{self.place(motor, partner[0])} seem to be exchanged: with the two numbers in "
+                f"each other's place all figures agree; {name(figure)} would be {amount}."
+            )
+        else:
+            text += f" is {times} what the other figures imply ({amount})"
+        names: tuple[str, ...] = (figure,)
+        if relation is not None:
+            equation, _ = self.equation(motor, relation, roles)
+            text = f"{text.rstrip('.')}{'.' if partner else ':'} {equation}."
+            names = (figure, *(k for k in (relation.left, *roles.values()) if k != figure))
+        elif not partner:
+            text += "."
+        names = tuple(dict.fromkeys((figure, *partner, *rivals, *names)))
+        if rivals:
+            listed = ", ".join(name(r) for r in (figure, *rivals))
+            text += f" Nothing else on the sheet tells which is wrong: {listed}."
+            names = (figure, *rivals)
+        text += f" {self.because(cause, others)}"
+        return Finding(
+            part_number=self.batch.part_number[motor],
+            severity=severity,  # type: ignore[arg-type]
+            relation=relation.name if relation else own_relation(figure),
+            figures=names,
+            suspect=None if rivals else figure,
+            ratio=ratio,
+            cause=cause,
+            other_causes=tuple(others),
+            implied=Amount(value=implied, unit=quantity(figure).unit),
+            cell=self.cell(motor, figure),
+            message=text,
+        )
+
+    def because(self, cause: str, others: list[str]) -> str:
+        """The cause in a sentence, with the likeliest others."""
+        if cause == "unexplained":
+            text = "None of the usual mistakes explains the ratio"
+        else:
+            text = f"Likely {SENTENCES[cause]}"
+        if others:
+            text += "; also possible: " + ", ".join(SENTENCES[o] for o in others[:3])
+        return text + "."
