@@ -35,11 +35,12 @@ class Supply:
 
 @dataclass(frozen=True)
 class Drive:
-    """Current limits in A; `convention` "dc" (armature amperes), "peak" or "rms" of a phase."""
+    """Current limits in A; conventions "dc" (armature amperes), "peak" or "rms" of a phase."""
 
     peak_current: float | None = None
     continuous_current: float | None = None
     convention: str = "dc"
+    continuous_convention: str | None = None  # where it is another than that of the peak
 
 
 @dataclass(frozen=True)

@@ -202,7 +202,9 @@ def _judge_chunk(
     continuous = unknown
     if drive.continuous_current is not None:
         continuous = rms / armature_amperes(
-            drive.continuous_current, drive.convention, m.commutation
+            drive.continuous_current,
+            drive.continuous_convention or drive.convention,
+            m.commutation,
         )
     voltage_use = unknown
     if available is not None:
