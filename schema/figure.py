@@ -1,4 +1,4 @@
-"""A printed number → its value, the interval its digits stand for, and all that was printed with it.
+"""A printed number → its value, the interval of its digits, and all that was printed with it.
 
 Nothing here knows units: what follows a number is handed on as text, and whoever takes the value
 must read that text too. A cell that can be read in two ways is refused with both ways named.
@@ -92,7 +92,8 @@ _MISSING = re.compile(
 _QUALIFIERS = {
     "at most": "≤|<=|<|maximum|maximal|maxi|max|máx|massimo|bis zu|up to|jusqu'à|最大",
     "at least": "≥|>=|>|minimum|minimal|mini|min|mín|mindestens|at least|最小",
-    "about": "~|≈|≒|circa|ca|approximately|approx|about|aprox|environ|env|etwa|ref|約|约|参考値|参考值|参考",
+    "about": "~|≈|≒|circa|ca|approximately|approx|about|aprox|environ|env|etwa|ref"
+    "|約|约|参考値|参考值|参考",
     "typical": "typical|typisch|typique|typ|標準|典型值|典型",
 }
 _PREFIX = [
@@ -113,15 +114,17 @@ _CJK_SUFFIX = re.compile(r"\s*(?P<most>以下|未満|以内)$|\s*(?P<least>以�
 _NUMBER = re.compile(r"(?P<sign>[+-]?)(?P<digits>" + DIGITS + ")" + EXPONENT.format("") + "?")
 _PLUS_MINUS = re.compile(r"(?P<open>[(\[])?\s*(?:±|\+/-|\+-)\s*")
 _UNEQUAL = re.compile(
-    r"(?P<open>[(\[])?\s*\+\s*(?P<up>[\d.,]+)\s*(?P<p1>%?)\s*[/ ,]?\s*-\s*(?P<down>[\d.,]+)\s*(?P<p2>%?)"
-    r"\s*(?(open)[)\]])"
+    r"(?P<open>[(\[])?\s*\+\s*(?P<up>[\d.,]+)\s*(?P<p1>%?)\s*[/ ,]?"
+    r"\s*-\s*(?P<down>[\d.,]+)\s*(?P<p2>%?)\s*(?(open)[)\]])"
 )
-_RANGE = re.compile(r"\s*(?:\.{2,3}|~|÷)\s*|\s+(?:to|bis|à|a|al|do)\s+|\s+-\s+|-(?=[\d.,])|至|から")
+_RANGE = re.compile(
+    r"\s*(?:\.{2,3}|~|÷)\s*|\s+(?:to|bis|à|a|al|do)\s+|\s+-\s+|(?<!\s)-(?=[\d.,])|至|から"
+)
 _BRACKET = re.compile(r"\s*(?:\((?P<a>[^()]*)\)|\[(?P<b>[^\[\]]*)\]|\{(?P<c>[^{}]*)\})\s*")
 # Digits that belong to a unit: powers, "V/1000 rpm", "10^-4 kgm2", "1/min".
 _UNIT_DIGITS = re.compile(
-    r"(?<=[/(×x* ])1[., ']?000(?!\d)|(?:(?<=[/(×x* ])|^)10\^?[+-]?\d\b|(?<=[^\W\d_°)])\^?-?[1234](?!\d)"
-    r"|\^[({]?[+-]?[\d./]+[)}]?|(?:(?<=[/(\s*·])|^)1(?=/)|0-p"
+    r"(?<=[/(×x* ])1[., ']?000(?!\d)|(?:(?<=[/(×x* ])|^)10\^?[+-]?\d\b"
+    r"|(?<=[^\W\d_°)])\^?-?[1234](?!\d)|\^[({]?[+-]?[\d./]+[)}]?|(?:(?<=[/(\s*·])|^)1(?=/)|0-p"
 )
 _SURE_MARK = re.compile(
     r"(?:\^\(?(?:\d{1,2}|[a-z])\)|(?<=\s)(?:\d{1,2}|[a-z])\)|[*†‡§#]+\)?)[,;]?$"
@@ -157,18 +160,19 @@ def read_column(
     value, low, high = ([math.nan] * n for _ in range(3))
     column = ColumnFigures(np.empty(0), np.empty(0), np.empty(0))
     decimal = style.decimal
+    sign = decimal or "."
     for i, text in enumerate(texts):
         if not text:
             continue
         if text.isascii():
-            whole, dot, fraction = text.partition(".")
+            whole, dot, fraction = text.partition(sign)
             if not dot:
                 if text.isdigit() and (text[0] != "0" or len(text) == 1):
                     value[i] = number = float(text)
                     half = 0.5 if len(text) < 4 or text[-1] != "0" else _half_digit(text)
                     low[i], high[i] = number - half, number + half
                     continue
-            elif decimal == "." and fraction.isdigit() and whole.isdigit():
+            elif decimal and fraction.isdigit() and whole.isdigit():
                 places = len(fraction)
                 if places < 16 and (whole[0] != "0" or len(whole) == 1):
                     if places == 3 and len(whole) < 4 and whole != "0":
@@ -176,7 +180,7 @@ def read_column(
                             column.failures[i] = _undecided(text, readings(text))
                             continue
                         column.doubtful.append(i)
-                    value[i] = number = float(text)
+                    value[i] = number = float(f"{whole}.{fraction}")
                     half = _HALF[places]
                     low[i], high[i] = number - half, number + half
                     continue
@@ -220,7 +224,7 @@ def _undecided(text: str, found: dict[str | None, str], exponent: int = 0) -> Fi
 
 
 def _without_marks(rest: str, note_marks: frozenset[str]) -> tuple[str, list[str]]:
-    """Footnote marks off the ends of a cell, the unmistakable ones and those that the notes name."""
+    """Footnote marks off the ends of a cell: the unmistakable ones, and those the notes name."""
     marks: list[str] = []
     cores = {re.sub(r"[()\[\]^\s]", "", plain(mark)) for mark in note_marks} - {""}
     leading = re.match(r"[*†‡§#]+\s*(?=[\d+.,-])", rest)
@@ -309,7 +313,7 @@ class _Reader:
             elif raised.group("bracket") or core in named:
                 marks = (raised.group(),)
             else:
-                guesses = [v for v in self._values(digits)]
+                guesses = self._values(digits)
                 if core.isdigit() and digits == "10":
                     guesses.append(10.0 ** int(core))
                 raise self.fail("a raised sign that no note explains", guesses)
@@ -378,6 +382,8 @@ class _Reader:
     def _unit(self, figure: Figure, tail: str) -> str:
         """The unit text behind a number; refuses further numbers, which it would hide."""
         unit = tail.strip().rstrip(",;")
+        if unit == ":1":  # a gear ratio
+            return unit
         if re.search(r"\d", _UNIT_DIGITS.sub("", unit)) or re.match(r"[/.,:'+-]\s*\d", unit):
             numbers = [v for d in re.findall(DIGITS, plain(self.text)) for v in self._values(d)]
             raise self.fail("more than one number", list(dict.fromkeys(numbers)))
@@ -451,8 +457,6 @@ class _Reader:
             other = None
             if figure.other is not None and upper.other is not None:
                 other = (figure.other + upper.other) / 2
-            elif figure.other is not None or upper.other is not None:
-                raise self.fail("a range of which only one end is sure", [low, high])
             middle = (low + high) / 2
             return Figure(self.text, middle, low, high, "range", unit, other=other)
         return None

@@ -69,7 +69,7 @@ def readings(digits: str, has_exponent: bool = False) -> dict[str | None, str]:
     whole, _, fraction = digits.partition(sign)
     if len(whole) > 1 and whole[0] == "0":
         return {}
-    found = {sign: f"{whole or '0'}.{fraction}"}
+    found: dict[str | None, str] = {sign: f"{whole or '0'}.{fraction}"}
     if groups and not has_exponent:
         found[other] = whole + fraction
     return found
@@ -99,9 +99,12 @@ def number_style(texts: Iterable[str]) -> NumberStyle:
 
 
 def _signs_shown(text: str) -> set[str]:
-    whole, _, fraction = text.partition(".")
+    sign = "." if "." in text else ","
+    whole, _, fraction = text.partition(sign)
     if fraction.isdigit() and whole.isdigit() and text.isascii():  # most cells of most tables
-        return {"."} if len(fraction) != 3 or len(whole) > 3 or whole == "0" else set()
+        if len(whole) > 1 and whole[0] == "0":
+            return set()
+        return {sign} if len(fraction) != 3 or len(whole) > 3 or whole == "0" else set()
     shown: set[str] = set()
     for token in _TOKEN.finditer(plain(text)):
         found = readings(

@@ -31,7 +31,7 @@ _SIGNS = str.maketrans(
 
 @lru_cache(maxsize=16384)
 def plain(text: str) -> str:
-    """`text` with one sign for each meaning: "min⁻¹" → "min^-1", "−5 µH" → "-5 μH", "１２Ｖ" → "12V".
+    """`text` with one sign for each meaning: "min⁻¹" → "min^-1", "−5 µH" → "-5 μH".
 
     Invisible characters go; every kind of blank but the line break becomes a space, and none is
     left at the ends. Letters keep their case.

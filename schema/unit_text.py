@@ -6,6 +6,7 @@ behind a slash goes together up to the next slash ("rpm/mN·m"); "r/min" and "1/
 """
 
 import re
+from collections.abc import Iterator
 from dataclasses import dataclass
 from fractions import Fraction
 from functools import lru_cache
@@ -15,10 +16,11 @@ from .unit_table import Product, table
 
 
 class NotAUnitError(ValueError):
-    """The text has a part that is no unit; ``part`` is that part."""
+    """The text has a part that is no unit; ``part`` is that part, ``guesses`` what may be meant."""
 
-    def __init__(self, part: str, reason: str = "") -> None:
+    def __init__(self, part: str, reason: str = "", guesses: tuple[str, ...] = ()) -> None:
         self.part = part
+        self.guesses = guesses
         self.reason = reason or f'"{part}" is no unit known here'
         super().__init__(self.reason)
 
@@ -33,16 +35,30 @@ _MARKS: list[tuple[str, re.Pattern[str]]] = [
         ("peak-to-peak", _BEFORE + r"(?:peak|pk|p)\s*(?:-|to|-to-|/)\s*(?:peak|pk|p)" + _AFTER),
         ("peak-to-peak", r"(?<=[AV])_?pp" + _AFTER),
         ("peak", _BEFORE + r"(?:0\s*-\s*)(?:peak|pk|p)" + _AFTER),
-        ("peak", _BEFORE + r"(?:peak|pk|crest|crête|Spitze|Scheitel|pico|picco|amplitude)" + _AFTER),
+        (
+            "peak",
+            _BEFORE + r"(?:peak|pk|crest|crête|Spitze|Scheitel|pico|picco|amplitude)" + _AFTER,
+        ),
         ("peak", r"(?<=[AV])_?p" + _AFTER + "|峰值|ピーク"),
         ("rms", _BEFORE + r"(?:r\.?m\.?s\.?|eff(?:ective|ektiv|icaces?)?\.?)" + _AFTER),
         ("rms", r"(?<=[AV])_?ef" + _AFTER + "|有效值|実効値"),
         ("lines", _BEFORE + rf"(?:{_LINE}\s*(?:-|to|-to-|/)\s*{_LINE}|LL)" + _AFTER),
         ("lines", _BEFORE + r"lines?" + _AFTER + "|線間|线间|相間|相间"),
         ("phase", _BEFORE + r"(?:L-?N|ph-n)" + _AFTER),
-        ("phase", r"\s*(?:/|\bper\s)?\s*" + _BEFORE + r"(?:ph(?:ase)?\.?|fase|Strang)" + _AFTER + "|/相"),
+        (
+            "phase",
+            r"\s*(?:/|\bper\s)?\s*" + _BEFORE + r"(?:ph(?:ase)?\.?|fase|Strang)" + _AFTER + "|/相",
+        ),
         ("dc", _BEFORE + r"d\.?c\.?" + _AFTER + r"|(?<=[AV])\s?c\.?c\.?" + _AFTER + "|⎓|直流"),
-        ("ac", _BEFORE + r"a\.?c\.?" + _AFTER + r"|(?<=[AV])\s?c\.?a\.?" + _AFTER + "|(?<=[AV])\\s?~|交流"),
+        (
+            "ac",
+            _BEFORE
+            + r"a\.?c\.?"
+            + _AFTER
+            + r"|(?<=[AV])\s?c\.?a\.?"
+            + _AFTER
+            + "|(?<=[AV])\\s?~|交流",
+        ),
     ]
 ]
 
@@ -73,7 +89,9 @@ _BARE = [
         (r"(?<=[^\W\d_])x(?=\s*10)", "×"),
         (r"(?i)\br\.?p\.?m\.?(?![^\W\d_])", "rpm"),
         (r"(?i)(?<![^\W\d_])per(?![^\W\d_])", "/"),
-        (r"k(?=(?:min)\^?-1)", "1000 "),
+        (r"k(?=min\^?-1)", "1000 "),
+        (r"(?<![\d.,^])1\s*/\s*(?=min(?![^\W\d_]))|^/\s*(?=min)", " per "),
+        (r" per (min)", r" \1^-1"),
         (r"(?i)sqrt\s*(?=[(^\W\d_])|sqrt\s+|sqrt(?=[wW])", "√"),
         (r"\*\*", "^"),
         (r"(?<=[^\W\d_])\.(?=[^\W\d_])", "·"),
@@ -86,20 +104,22 @@ _OUTER = re.compile(r"\((?P<a>[^()]*)\)|\[(?P<b>[^\[\]]*)\]|\{(?P<c>[^{}]*)\}")
 @lru_cache(maxsize=4096)
 def bare(text: str) -> str:
     """A unit text in plain signs, without the brackets around all of it."""
-    text = plain(text.replace("½", "^0.5")).replace("\n", " ").strip()
+    text = plain(text.replace("⁻½", "^-0.5").replace("½", "^0.5")).replace("\n", " ").strip()
     while (outer := _OUTER.fullmatch(text)) is not None:
         text = next(g for g in outer.groups() if g is not None).strip()
     return re.sub(r"^in\s+(?=[\d×])", "", text)
 
 
 _TOKEN = re.compile(
-    r"\s*(?:(?P<ten>(?:1[eE]|10\^?(?=[+-])|10\^)(?P<power>\(?[+-]?\d+\)?))(?!\d)"
+    r"\s*(?:(?P<ten>(?:10?[eE]|10\^?(?=[+-])|10\^)(?P<power>\(?[+-]?\d+\)?))(?!\d)"
     r"|(?P<number>1[., ']000(?!\d)|\d+)"
     r"|(?P<word>°[CF]?(?![^\W\d_])|°|[^\W\d_]+|[%‰\"'])"
     r"|(?P<sign>[×·*/()\[\]{}√-]))"
 )
+_EXPONENT = r"[+-]?(?:\d+/\d+|\d+(?:[.,]\d+)?|\.\d+)"
 _POWER = re.compile(
-    r"\^[({]?(?P<raised>[+-]?(?:\d+(?:[.,]\d+)?|\.\d+|\d+/\d+))[)}]?|(?P<low>-?[1-4])(?!\d)|(?P<half>0[.,]5)"
+    rf"\^(?P<raised>{_EXPONENT})|\^[({{](?P<inner>{_EXPONENT})[)}}]"
+    r"|(?P<low>-?[1-4])(?!\d)|(?P<half>0[.,]5)"
 )
 
 
@@ -108,8 +128,8 @@ class _Parser:
     text: str
     grouped: bool  # "r/min" and "rad/s" are one unit where they stand behind a slash
     fold: bool  # read words without regard to upper and lower case
+    milli: bool  # read the prefix M as milli
     at: int = 0
-    mega: bool = False
 
     def peek(self) -> re.Match[str] | None:
         return _TOKEN.match(self.text, self.at)
@@ -181,14 +201,16 @@ class _Parser:
             if self.sign() not in (")", "]", "}"):
                 raise NotAUnitError(self.text, f'a bracket in "{self.text}" is not closed')
             self.take()
-            power = self.power(whole=True)
+            power = self.power()
             return [Product().times(p, power) for p in inner]
         if token.group("number") or token.group("ten"):
             result = [self.number()]
             rate = token.group("number") in ("1", "1000") or bool(token.group("ten"))
         elif token.group("word"):
             result = self.word(self.take().group("word"))
-            rate = any(p.power_of("turn") or p.power_of("radian") or p.power_of("degree") for p in result)
+            rate = any(
+                p.power_of("turn") or p.power_of("radian") or p.power_of("degree") for p in result
+            )
         else:
             raise NotAUnitError(self.text)
         if rate and below and self.grouped and self.sign() == "/":
@@ -206,23 +228,34 @@ class _Parser:
     def number(self) -> Product:
         token = self.take()
         if token.group("ten"):
-            return Product((), Fraction(int(token.group("power").strip("()"))))
+            power = int(token.group("power").strip("()"))
+            if token.group("ten")[:3].lower() == "10e":
+                reason = f'"{token.group().strip()}" may be 10^{power} or 10^{power + 1}'
+                guesses = tuple(
+                    f"10^{p} {self.text[self.at :].strip()}" for p in (power, power + 1)
+                )
+                raise NotAUnitError(self.text, reason, guesses)
+            return Product((), Fraction(power))
         digits = re.sub(r"\D", "", token.group("number"))
         if not re.fullmatch("10*", digits):
             reason = f'the number {digits} in "{self.text}" is no power of ten'
+            guesses: tuple[str, ...] = ()
             if re.fullmatch(r"10\d", digits):
-                reason += ": a superscript or its sign may be lost"
-            raise NotAUnitError(self.text, reason)
+                reason += ": a superscript and its sign may be lost"
+                rest = self.text[self.at :].strip()
+                guesses = (f"10^{digits[2]} {rest}", f"10^-{digits[2]} {rest}")
+            raise NotAUnitError(self.text, reason, guesses)
         return Product((), Fraction(len(digits) - 1))
 
-    def power(self, whole: bool = False) -> Fraction:
+    def power(self) -> Fraction:
         found = _POWER.match(self.text, self.at)
         if not found:
             return Fraction(1)
         self.at = found.end()
         if found.group("half"):
             return Fraction(1, 2)
-        return Fraction((found.group("raised") or found.group("low")).replace(",", "."))
+        digits = found.group("raised") or found.group("inner") or found.group("low")
+        return Fraction(digits.replace(",", "."))
 
     def word(self, word: str) -> list[Product]:
         meanings = self.meanings(word)
@@ -237,14 +270,14 @@ class _Parser:
         t = table()
         spellings = [word]
         if self.fold:
-            # Upper-case M may be milli or mega in an export; any other M is what it says.
+            # An upper-case M may be milli or mega in an export, a lower-case m is never mega.
             spellings = [
-                s
-                for s in t.folded.get(word.lower(), [])
-                if not (s[0] == "M" and word[0] == "m")
+                s for s in t.folded.get(word.lower(), []) if word[0] == "M" or s not in t.mega
             ]
         found = []
         for spelling in spellings:
+            if self.milli and spelling in t.mega:
+                spelling = "m" + spelling[1:]
             if spelling in t.words:
                 found.append((Product(), t.words[spelling]))
             elif spelling in t.compounds:
@@ -260,15 +293,45 @@ class _Parser:
 
 
 @lru_cache(maxsize=4096)
-def read_products(text: str, grouped: bool = True, fold: bool = False) -> tuple[Product, ...]:
+def read_products(
+    text: str, grouped: bool = True, fold: bool = False, milli: bool = False
+) -> tuple[Product, ...]:
     """The products of units that a text without convention words can be.
 
-    One, unless `fold` lets upper and lower case run together ("MNM": mN·m or MN·m).
-    Raises NotAUnitError.
+    One, unless `fold` lets upper and lower case run together ("MNM": mN·m or MN·m; with `milli`
+    only the former). Raises NotAUnitError.
     """
     text = bare(text)
     for pattern, by in _BARE:
         text = pattern.sub(by, text)
     if not text.strip():
         raise NotAUnitError(text, "no unit is given")
-    return tuple(dict.fromkeys(_Parser(text.strip(), grouped, fold).all()))
+    return tuple(dict.fromkeys(_Parser(text.strip(), grouped, fold, milli).all()))
+
+
+_FORCE_OF = {
+    "kilogram": ("kilogram_force", "kgf"),
+    "pound": ("pound_force", "lbf"),
+    "ounce": ("ounce_force", "ozf"),
+}
+
+
+def variants(product: Product) -> Iterator[tuple[Product, str]]:
+    """The product as written, then what the trade may mean by it, each with its remark.
+
+    A weight may be a force ("oz-in") or the reverse ("kgf·m²"), and a minute without an angle
+    a revolution's ("min⁻¹", "mV·min"). Which of them is meant the dimension tells.
+    """
+    yield product, ""
+    weights = [(product, "")]
+    for mass, (force, name) in _FORCE_OF.items():
+        if product.power_of(mass):
+            weights.append(
+                (product.replaced(mass, force), f"the weight is taken as a force, {name}")
+            )
+        if product.power_of(force):
+            weights.append((product.replaced(force, mass), f"the force {name} is taken as a mass"))
+    yield from weights[1:]
+    if product.power_of("minute"):
+        for weight, remark in weights:
+            yield weight.replaced("minute", "rpm", -1), remark

@@ -2,21 +2,23 @@
 
 Which quantity is expected decides what a text means: "oz-in" is a torque, "oz-in²" an inertia of
 mass, "oz-in-s²" an inertia of force; "min⁻¹" is a speed, and "s⁻¹" is refused as one, since it
-may be rad/s or rev/s. What is taken for something else than its plain meaning says so in ``remark``.
+may be rad/s or rev/s. What is taken for something else than it says is told in ``remark``.
 """
 
 import difflib
 import re
-from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+from fractions import Fraction
 from functools import lru_cache
 from typing import NamedTuple
 
 from .errors import MotorfolioError
 from .figure import POINT, read_figure
 from .signs import plain
-from .unit_table import Product, evaluate, table
-from .unit_text import NotAUnitError, bare, read_products, split_marks
+from .unit_factors import evaluate
+from .unit_table import Product, table
+from .unit_text import NotAUnitError, bare, read_products, split_marks, variants
 
 GD2_TO_INERTIA = 0.25
 """A flywheel effect GD² (weight times diameter squared) is four times the inertia: J = GD²/4."""
@@ -63,15 +65,7 @@ class Converted(NamedTuple):
 
 
 # Where a million is absurd for a motor, an upper-case M is a thousandth.
-_NEVER_MEGA = {"A", "H", "N·m", "N·m/A", "V·s/rad", "N·m/√W", "rad/(s·N·m)", "s", "m"}
-_FORCE_OF = {
-    "kilogram": "kilogram_force",
-    "pound": "pound_force",
-    "ounce": "ounce_force",
-}
-_TRADE_NAME = {"kilogram": "kgf", "pound": "lbf", "ounce": "ozf"}
-_RAD_NOT_WRITTEN = {"V·s/rad", "N·m·s/rad"}
-_CASE_REMARK = "read without regard to upper and lower case"
+_NEVER_MEGA = {"V", "A", "H", "N·m", "N·m/A", "V·s/rad", "N·m/√W", "rad/(s·N·m)", "s", "m"}
 
 
 def read_unit(text: str, accepts: tuple[str, ...]) -> Unit:
@@ -87,36 +81,28 @@ def read_unit(text: str, accepts: tuple[str, ...]) -> Unit:
 
 @lru_cache(maxsize=8192)
 def _read(text: str, accepts: tuple[str, ...]) -> Unit | UnitError:
-    for si in accepts:
-        if si != "currency" and si not in table().targets and si not in _currency_codes():
-            raise ValueError(f"{si!r} is not under [targets] in units.txt")
+    known = {"currency", *table().targets, *table().currencies.values()}
+    if strange := set(accepts) - known:
+        raise ValueError(f"{sorted(strange)} is not under [targets] in units.txt")
     if not text.strip():
         if "1" in accepts:
             return Unit(text, "1", 1.0, 0.0, "1")
         return UnitError(text, f"no unit is given; {_or(accepts)} would do")
-    money = _currency(text, accepts)
-    if money is not None:
+    if (money := _currency(text, accepts)) is not None:
         return money
     clean, marks = split_marks(bare(text))
-    for spelling, (meanings, asked) in table().unsure.items():
-        if asked and asked[0] in accepts and bare(spelling) in (bare(text), clean):
-            return UnitError(text, "it can be read in more than one way", meanings)
-    named = _whole_text(text, clean, marks, accepts)
-    if named is not None:
+    if (named := _whole_text(text, clean, marks, accepts)) is not None:
         return named
-    fitting, strange = _fitting(text, clean, marks, accepts)
-    if fitting:
-        return fitting[0] if len(fitting) == 1 else _ambiguous(text, fitting)
-    return _refusal(text, clean, accepts, strange)
+    units, strange_part = _fitting(text, clean, marks, accepts)
+    if len(units) > 1:
+        guesses = [f"{unit.factor:g} {unit.si}" for unit in units]
+        return UnitError(text, "upper and lower case are lost, and with them the meaning", guesses)
+    return units[0] if units else _refusal(text, clean, accepts, strange_part)
 
 
-def _currency_codes() -> set[str]:
-    return set(table().currencies.values())
-
-
-def _currency(text: str, accepts: tuple[str, ...]) -> Unit | UnitError | None:
-    word = re.sub(r"\s*(?:/|per\s)\s*(?:pc|pcs|piece|unit|each|Stk|Stück|St)\.?$", "", bare(text))
-    code = table().currencies.get(word) or table().currencies.get(text.strip())
+def _currency(text: str, accepts: tuple[str, ...]) -> Unit | None:
+    word = re.sub(r"\s*(?:/|per\s)\s*(?:pcs?|piece|unit|each|Stk|Stück|St)\.?$", "", text.strip())
+    code = table().currencies.get(word)
     if code is None or not ("currency" in accepts or code in accepts):
         return None
     remark = "$ taken as US dollars" if word == "$" else ""
@@ -125,116 +111,130 @@ def _currency(text: str, accepts: tuple[str, ...]) -> Unit | UnitError | None:
 
 def _whole_text(
     text: str, clean: str, marks: frozenset[str], accepts: tuple[str, ...]
-) -> Unit | None:
+) -> Unit | UnitError | None:
     """A text that the table names as a whole, for the quantity that is expected."""
-    spaced = re.sub(r"[-* ]", "·", clean).replace("^", "")
-    for spelling, entries in table().texts.items():
-        known = bare(spelling)
-        if known != clean and re.sub(r"[-* ]", "·", known).replace("^", "").lower() != spaced.lower():
-            continue
-        if known.lower() == known.upper() or known == clean or len(known) > 5:
-            for meaning, wanted, remark in entries:
-                if accepts_some := [si for si in accepts if not wanted or si in wanted]:
-                    unit = _read(meaning, tuple(accepts_some)) if meaning != "1" else None
-                    if isinstance(unit, Unit):
-                        return Unit(
-                            text, unit.si, unit.factor, unit.offset, unit.dimension,
-                            unit.marks | marks, remark,
-                        )  # fmt: skip
-                    if meaning == "1":
-                        return Unit(text, "1", 1.0, 0.0, "1")
+    spellings = dict.fromkeys(
+        form.replace("^", "") for t in (bare(text), clean) for form in (t, re.sub("[*· ]", "-", t))
+    )
+    for si in accepts:
+        for spelling in (bare(text), *spellings):
+            if (spelling, si) in table().unsure:
+                meanings = table().unsure[spelling, si]
+                return UnitError(text, "it does not say which unit it is", meanings)
+            if (spelling, si) in table().texts:
+                meaning, remark = table().texts[spelling, si]
+                if meaning == "1":
+                    return Unit(text, "1", 1.0, 0.0, "1")
+                unit = read_unit(meaning, (si,))
+                return replace(unit, text=text, marks=unit.marks | marks, remark=remark)
     return None
-
-
-def variants(product: Product) -> Iterator[tuple[Product, str]]:
-    """The product as written, then what the trade may mean by it, each with its remark."""
-    yield product, ""
-    weights = [(product, "")]
-    for mass, force in _FORCE_OF.items():
-        if product.power_of(mass):
-            name = _TRADE_NAME[mass]
-            weights.append((product.replaced(mass, force), f"the weight is taken as a force, {name}"))
-        if product.power_of(force):
-            name = _TRADE_NAME[mass]
-            weights.append((product.replaced(force, mass), f"the force {name} is taken as a mass"))
-    yield from weights[1:]
-    if product.power_of("minute"):
-        for weight, remark in weights:
-            yield weight.replaced("minute", "rpm", -1), remark
 
 
 def _fitting(
     text: str, clean: str, marks: frozenset[str], accepts: tuple[str, ...]
 ) -> tuple[list[Unit], NotAUnitError | None]:
-    """The first way of reading that gives a unit of the quantity; several units if it is unsure."""
+    """The first way of reading that gives a unit of the quantity; several units if it is unsure.
+
+    Words are taken as written before their case is given up, and "r/min", "rad/s" as one unit
+    before they are taken apart.
+    """
     strange = None
+    milli = all(si in _NEVER_MEGA for si in accepts)
     for fold in (False, True):
         for grouped in (True, False):
             try:
-                products = read_products(clean, grouped, fold)
+                products = read_products(clean, grouped, fold, milli)
             except NotAUnitError as error:
                 strange = strange or error
                 continue
-            units = [u for p in products for u in _units_of(text, p, marks, accepts, fold)[:1]]
+            remarks = ["read without regard to upper and lower case"] if fold else []
+            if milli and products != read_products(clean, grouped, fold):
+                remarks.append("M read as milli, as mega is out of the question")
+            found = [_first_target(text, p, accepts, marks, remarks) for p in products]
+            units = {unit.factor: unit for unit in found if unit is not None}
             if units:
-                return list({u.factor: u for u in units}.values()), None
+                return list(units.values()), None
     return [], strange
 
 
-def _units_of(
-    text: str, product: Product, marks: frozenset[str], accepts: tuple[str, ...], folded: bool
-) -> list[Unit]:
-    found = []
+def _first_target(
+    text: str,
+    product: Product,
+    accepts: Sequence[str],
+    marks: frozenset[str],
+    remarks: list[str],
+) -> Unit | None:
+    """The product, or what the trade means by it, as a unit of the first SI unit that it fits."""
     for variant, remark in variants(product):
         for si in accepts:
-            if si == "currency" or si in _currency_codes():
-                continue
-            unit = _as_target(text, variant, si, marks, [remark] if remark else [])
-            if unit is not None:
-                found.append(unit)
-    return found
+            if si in table().targets:
+                said = [remark, *remarks] if remark else remarks
+                unit = _as_target(text, variant, si, marks, said)
+                if unit is not None:
+                    return unit
+    return None
 
 
 def _as_target(
     text: str, product: Product, si: str, marks: frozenset[str], remarks: list[str]
 ) -> Unit | None:
     """The product as a unit of `si`, or None where it is none."""
-    (target,) = read_products(si)
-    names = {name for name, _ in product.powers}
-    if (si == "Hz" and "minute" in names) or (si == "N·m" and names & {"joule", "watt"}):
+    if not _same_kind(product, si):
         return None
+    (target,) = read_products(si)
     factor, dimension = evaluate(product)
     wanted = evaluate(target)[1]
     if dimension != wanted:
-        per_radian = product.times(Product((("radian", -1),)))  # type: ignore[arg-type]
-        if si in _RAD_NOT_WRITTEN and "hertz" not in names and evaluate(per_radian)[1] == wanted:
-            return Unit(
-                text, si, factor, 0.0, wanted, marks,
-                "; ".join([*remarks, "taken per radian, which is not written"]),
-            )  # fmt: skip
-        return None
+        if not _radian_not_written(product, si, wanted):
+            return None
+        remarks = [*remarks, "taken per radian, which is not written"]
     offset = 0.0
-    if si == "°C":
-        if "kelvin" in names and not names & {"celsius", "fahrenheit"}:
-            offset = -273.15
-            remarks = [*remarks, "an absolute temperature in kelvin"]
-        elif "fahrenheit" in names:
-            offset = -160 / 9
-    if product.tens >= 6 and si in _NEVER_MEGA and re.search(r"M", text):
-        factor, remarks = factor / 1e9, [*remarks, "M taken as milli: mega is out of the question"]
-    if si == "kg·m²" and re.search(r"10\^?\d|[×x]\s*10+(?!\d|\^?[-+])", bare(text)):
-        remarks = [*remarks, "a power of ten above 1: some sheets mean that the figure was multiplied"]
-    if si == "V·s/rad" and re.fullmatch(r"V/\(?(?:min\^?-1|rpm|1/min|r/min)\)?", bare(text)):
-        remarks = [*remarks, "as written; some sheets mean V per 1000 rpm"]
+    if si == "°C" and product.power_of("fahrenheit"):
+        offset = -160 / 9
+    elif si == "°C" and product.power_of("kelvin"):
+        offset = -273.15
+        remarks = [*remarks, "an absolute temperature in kelvin"]
+    signs = bare(text)
+    if si == "kg·m²" and re.search(r"10\^\d|(?:^|[×x]\s*)10+(?![\d^-])", signs):
+        remarks = [*remarks, "the power of ten may also say that the figure was multiplied by it"]
+    if si == "V·s/rad" and re.fullmatch(r"V/\(?(?:min\^?-1|rpm|1/min|[rU]/min)\)?", signs):
+        remarks = [*remarks, "as written; V per 1000 rpm may be meant"]
     return Unit(text, si, factor, offset, wanted, marks, "; ".join(remarks))
 
 
-def _ambiguous(text: str, units: list[Unit]) -> UnitError:
-    return UnitError(
-        text,
-        "upper and lower case are lost, so it can be read in more than one way",
-        [f"{unit.factor:g} {unit.si}" for unit in units],
-    )
+def _same_kind(product: Product, si: str) -> bool:
+    """Whether a unit of one dimension with `si` is also one of its kind.
+
+    Weber is V·s is N·m/A, and a joule a newton metre: the dimension alone lets "mV·min" pass for
+    a torque constant, 6.28 times wrong.
+    """
+    names = {name for name, _ in product.powers}
+    match si:
+        case "N·m":
+            return not names & {"joule", "watt"}
+        case "J":
+            return bool(names & {"joule", "watt"})
+        case "N·m/A":
+            return "volt" not in names
+        case "Hz":
+            return "minute" not in names
+        case "°C" | "K":
+            return names in ({"celsius"}, {"fahrenheit"}, {"kelvin"})
+        case _:
+            return True
+
+
+def _radian_not_written(product: Product, si: str, wanted: str) -> bool:
+    """ "V·s" for V·s/rad and "N·m·s" for N·m·s/rad: only with seconds, which no turn counts in."""
+    names = {name for name, _ in product.powers}
+    if product.power_of("second") != 1 or names & {"minute", "hertz", "hour"}:
+        return False
+    if (si == "V·s/rad" and "volt" not in names) or si not in ("V·s/rad", "N·m·s/rad"):
+        return False
+    return evaluate(product.times(_RADIAN, -1))[1] == wanted
+
+
+_RADIAN = Product((("radian", Fraction(1)),))
 
 
 def _or(accepts: Sequence[str]) -> str:
@@ -247,23 +247,23 @@ def _refusal(
     """Why the text can't be a unit of this quantity, and what may have been meant."""
     try:
         products = read_products(clean)
-    except NotAUnitError:
-        reason = str(strange)
-        part = strange.part if strange else ""
+    except NotAUnitError as error:
+        strange = strange or error
         words = [*table().words, *table().compounds]
-        near = difflib.get_close_matches(part, words, n=3, cutoff=0.6) if len(part) > 1 else []
-        return UnitError(text, reason, [clean.replace(part, word) for word in near])
-    for product in products:
-        for si in accepts:
-            if "rad" not in si or product.power_of("radian"):
-                continue
-            (target,) = read_products(si)
-            with_angle = product.times(target, 0).times(
-                Product(tuple((n, e) for n, e in target.powers if n == "radian"))
-            )
-            if evaluate(with_angle)[1] == evaluate(target)[1]:
-                turns = si.replace("rad", "rev")
-                return UnitError(text, "it does not say whether radians or turns", [si, turns])
+        near = difflib.get_close_matches(strange.part, words, n=3, cutoff=0.6)
+        if len(strange.part) < 2 or (strange.part == clean and " " in clean):
+            near = []
+        guesses = strange.guesses or tuple(clean.replace(strange.part, word) for word in near)
+        return UnitError(text, str(strange), guesses)
+    for si in accepts:
+        (target,) = read_products(si) if si in table().targets else (Product(),)
+        angle = target.power_of("radian")
+        if angle and any(
+            not p.power_of("radian") and evaluate(p.times(_RADIAN, angle))[1] == evaluate(target)[1]
+            for p in products
+        ):
+            guesses = (si, si.replace("rad", "rev"))
+            return UnitError(text, "it does not say whether it counts radians or turns", guesses)
     other = unit_of(text)
     what = f"it is a unit of {other.si}" if other else "it is a unit of another quantity"
     return UnitError(text, f"{what}; {_or(accepts)} would do")
@@ -273,51 +273,43 @@ def _refusal(
 def unit_of(text: str) -> Unit | None:
     """The unit without an expected quantity; None if it is not understood or could be several.
 
-    Used to decide what a column may be. Nothing is repaired here ("W" is a watt), and words are
-    read without regard to case only if they have more than one letter.
+    Used to decide what a column may be. Nothing is repaired here ("W" is a watt), and the case of
+    a single letter always counts.
     """
     if not text.strip():
         return None
-    money = _currency(text, ("currency",))
-    if isinstance(money, Unit):
+    if (money := _currency(text, ("currency",))) is not None:
         return money
     clean, marks = split_marks(bare(text))
-    for spelling, entries in table().texts.items():
-        for meaning, wanted, _ in entries:
-            if not wanted and bare(spelling) == clean:
-                return unit_of(meaning)
-    ways = [(True, False), (False, False)]
-    if len(clean) > 1:
-        ways += [(True, True), (False, True)]
+    if clean in _RATES_ONLY:
+        return None
+    ways = [(g, f) for f in (False, True) for g in (True, False) if not f or len(clean) > 1]
     for grouped, fold in ways:
         try:
             products = read_products(clean, grouped, fold)
         except NotAUnitError:
             continue
-        found: dict[str, Unit] = {}
-        for product in products:
-            for variant, remark in variants(product):
-                units = [
-                    unit
-                    for si in _targets_of(variant)
-                    if (unit := _as_target(text, variant, si, marks, [remark] if remark else []))
-                ]
-                if units:
-                    for unit in units[:1]:
-                        found.setdefault(f"{unit.dimension} {unit.factor}", unit)
-                    break
+        found = {_kind(text, product, marks) for product in products} - {None}
         if found:
-            return next(iter(found.values())) if len(found) == 1 else None
-    return None
+            (si, *others) = found
+            unit = _read(text, (si,)) if si and not others else None
+            return unit if isinstance(unit, Unit) else None
+    named = [si for spelling, si in table().texts if spelling == clean and len(clean) > 2]
+    unit = _read(text, (named[0],)) if len(named) == 1 else None
+    return unit if isinstance(unit, Unit) else None
 
 
-def _targets_of(product: Product) -> list[str]:
+# Letters that mean a revolution only in "r/min" and its like.
+_RATES_ONLY = {"r", "U", "tr", "об", "转", "轉"}
+
+
+def _kind(text: str, product: Product, marks: frozenset[str]) -> str | None:
+    """The SI unit that a product is a unit of."""
     names = {name for name, _ in product.powers}
-    if names == {"kelvin"}:
-        return ["K"]
-    if names in ({"celsius"}, {"fahrenheit"}):
-        return ["°C"]
-    return table().targets
+    targets = ["°C"] if names & {"celsius", "fahrenheit"} and len(names) == 1 else table().targets
+    targets = [si for si in targets if si != "°C" or len(targets) == 1]
+    unit = _first_target(text, product, targets, marks, [])
+    return unit.si if unit else None
 
 
 def is_unit_like(text: str) -> bool:
@@ -327,10 +319,13 @@ def is_unit_like(text: str) -> bool:
         return False
     if unit_of(text) is not None:
         return True
-    try:
-        read_products(split_marks(bare(text))[0])
-    except NotAUnitError:
+    clean = split_marks(bare(text))[0]
+    if clean in _RATES_ONLY:
         return False
+    try:
+        read_products(clean)
+    except NotAUnitError:
+        return any(spelling in (clean, bare(text)) for spelling, _ in table().texts)
     return True
 
 
@@ -357,14 +352,13 @@ def convert(text: str, target: str) -> Converted:
     if wanted is None:
         raise UnitError(target, "not understood as a unit to convert to")
     accepts = ("N·m/A", "V·s/rad") if wanted.si in ("N·m/A", "V·s/rad") else (wanted.si,)
-    into = read_unit(target, accepts)
     value, unit = _number_and_unit(text)
-    if not unit and accepts != ("1",):
+    if not unit and wanted.si != "1":
         raise UnitError(text, f"a number without a unit; {_or(accepts)} would do")
     source = read_unit(unit, accepts)
     si = value * source.factor + source.offset
-    remark = "; ".join(r for r in (source.remark, into.remark) if r)
-    return Converted((si - into.offset) / into.factor, target, remark)
+    remark = "; ".join(r for r in (source.remark, wanted.remark) if r)
+    return Converted((si - wanted.offset) / wanted.factor, target, remark)
 
 
 def _number_and_unit(text: str) -> tuple[float, str]:
