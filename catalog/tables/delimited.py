@@ -15,6 +15,7 @@ from .source import Source
 DELIMITERS = ",;\t|"
 _NAMES = {",": "comma", ";": "semicolon", "\t": "tab", "|": "bar"}
 _SNIFFED_ROWS = 300
+_BATCH_ROWS = 500  # so few that the cells stay in the processor's cache while they are stripped
 _LONGEST_LINE = 2 << 20
 _LONGEST_QUOTE = 200
 _NUMBER = re.compile(r"[+\-−]?[\d][\d.,'’ ]*(?:[eE][+-]?\d+)?\s*%?$")
@@ -165,20 +166,22 @@ def _records(
         number, size, held = 0, HEAD_ROWS, []
         while True:
             before = reader.line_num
+            rows = held
+            first = number + 1 - len(held)
             try:
-                raw = list(islice(reader, size))
+                while len(rows) < size and (some := list(islice(reader, _BATCH_ROWS))):
+                    rows += [list(map(str.strip, row)) for row in some]
             except csv.Error as error:
                 raise TableError(
                     f"{source.name}: line {reader.line_num} can't be read ({error}); "
                     "perhaps a quotation mark is not closed"
                 ) from None
-            if not raw:
+            new = first + len(rows) - 1 - number
+            if not new:
                 return
-            rows = held + [list(map(str.strip, row)) for row in raw]
-            first = number + 1 - len(held)
-            number += len(raw)
-            if reader.line_num - before > len(raw):
-                _check_quotes(source, rows, first)
+            number += new
+            if reader.line_num - before > new:
+                _unify_line_breaks(source, rows, first)
             if survey.has_inert:
                 rows = [[_live(cell) for cell in row] for row in rows]
             numbers = list(range(first, first + len(rows)))
@@ -193,13 +196,17 @@ def _records(
             size = CHUNK_ROWS
 
 
-def _check_quotes(source: Source, rows: list[list[str]], first: int) -> None:
+def _unify_line_breaks(source: Source, rows: list[list[str]], first: int) -> None:
+    """Cells of several lines: every break becomes '\\n', an endless cell an error."""
     for i, row in enumerate(rows):
-        if any(cell.count("\n") > _LONGEST_QUOTE for cell in row):
-            raise TableError(
-                f"{source.name}: row {first + i}: a quotation mark is opened and not closed "
-                f"within {_LONGEST_QUOTE} lines"
-            )
+        for j, cell in enumerate(row):
+            if "\r" in cell:
+                cell = row[j] = cell.replace("\r\n", "\n").replace("\r", "\n")
+            if cell.count("\n") > _LONGEST_QUOTE:
+                raise TableError(
+                    f"{source.name}: row {first + i}: a quotation mark is opened and not closed "
+                    f"within {_LONGEST_QUOTE} lines"
+                )
 
 
 def _live(cell: str) -> str:

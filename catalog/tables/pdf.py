@@ -41,6 +41,7 @@ class _Line:
     size: float
     pieces: list[Piece]
     number: int = 0
+    prose: bool = False
 
 
 @dataclass(slots=True)
@@ -292,6 +293,8 @@ def _with_prose(blocks: list[_Block]) -> list[_Block]:
     out: list[_Block] = []
     waiting: list[_Line] = []
     for i, block in enumerate(blocks):
+        for line in block.lines:
+            line.prose = not block.table
         if block.table:
             block.lines = waiting + block.lines
             waiting = []
@@ -338,11 +341,23 @@ def _grid(group: list[_Block]) -> Grid:
     first = group[0]
     lines = [line for block in group for line in block.lines]
     pages = [block.page for block in group for _ in block.lines]
-    columns = find_columns([line.pieces for block in group for line in block.lines])
-    rows: list[list[str]] = []
-    spans: list[Span] = []
-    table = arrange([line.pieces for line in lines], columns)
-    rows, spans = table.rows, table.spans
+    tabular = [line for line in lines if not line.prose] or lines
+    table = arrange(
+        [line.pieces for line in tabular], find_columns([line.pieces for line in tabular])
+    )
+    rows = table.rows
+    spans = table.spans
+    if len(tabular) < len(lines):
+        width = len(rows[0])
+        at = [i for i, line in enumerate(lines) if not line.prose]
+        spans = [Span(at[s.row], s.column, s.rows, s.columns) for s in spans]
+        filled = iter(rows)
+        rows = [
+            ["  ".join(piece.text for piece in line.pieces)] + [""] * (width - 1)
+            if line.prose
+            else next(filled)
+            for line in lines
+        ]
     places = list(range(len(rows)))
     rows, places, spans = join_split_labels(rows, places, spans)
     grid = Grid(

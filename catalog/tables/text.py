@@ -12,7 +12,11 @@ _LABEL = r"[^\s:=;|]{1,40}(?:[ \xa0][^\s:=;|]{1,40}){0,9}"
 # A colon between digits is a ratio or a time, one before // a web address.
 _SIGN = r"[ \xa0]*(?:：|=|:(?!//)(?!(?<=\d:)\d))[ \xa0]*"
 _PAIR = re.compile(rf"\s*(?:[•·▪◦*\-–][ \xa0]+)?(?P<label>{_LABEL}){_SIGN}(?P<value>.*)$", re.S)
-_SPLIT = re.compile(rf"[;；|•▪、\n]|[,，·](?=[ \xa0]*{_LABEL}{_SIGN}\S)")
+_HARD = re.compile(
+    rf"[;；|•▪、\n]|(?:(?<=!)|(?<=[^\W\d]{{5}}[.?]))[ \xa0]+(?=[A-ZÀ-Þ]{_LABEL}{_SIGN}\S)"
+)
+_COMMA = re.compile(r"[,，·][ \xa0]+(?=[^\W\d])")
+_SIGN_IN = re.compile(_SIGN)
 _WIDE = re.compile(r"[ \xa0\u2000-\u200a\u3000]{2,}|\t+|[ ]*│[ ]*")
 _NOTE = re.compile(r"\s*(?:[*†‡¹²³⁴⁵]|\(?\d{1,2}\)|note|anm)", re.IGNORECASE)
 _FIGURE = re.compile(
@@ -41,7 +45,29 @@ def _starts_pair(line: str) -> bool:
 
 
 def _pairs_of(line: str) -> list[str]:
-    return [part for part in _SPLIT.split(line) if _PAIR.match(part)]
+    return [part for part in _parts(line) if _PAIR.match(part)]
+
+
+def _parts(line: str) -> list[str]:
+    """A line divided at its separators; a comma is one only behind a pair, before a letter.
+
+    "36 V, Rated speed: 5,420 rpm" has two parts, "Idle current, I0: 61 mA" has one.
+    """
+    out: list[str] = []
+    for part in _HARD.split(line):
+        pieces = _COMMA.split(part)
+        if sum(_SIGN_IN.search(piece) is not None for piece in pieces) < 2:
+            out.append(part)
+            continue
+        whole = ""
+        for piece in pieces:
+            whole = f"{whole}, {piece}" if whole else piece
+            if _SIGN_IN.search(whole) or out:
+                out.append(whole)
+                whole = ""
+        if whole:
+            out.append(whole)
+    return out
 
 
 def read_text(text: str) -> list[Grid]:
@@ -61,10 +87,10 @@ def _read_pairs(lines: list[str]) -> list[Grid]:
         rows: list[list[str]] = []
         numbers: list[int] = []
         for number, logical in _logical_lines(paragraph, start):
-            for part in _SPLIT.split(logical):
+            for part in _parts(logical):
                 match = _PAIR.match(part)
                 if match and any(sign.isalpha() for sign in match["label"]):
-                    rows.append([clean(match["label"]), clean(match["value"])])
+                    rows.append([clean(match["label"]), clean(match["value"]).rstrip(",;，")])
                 elif part.strip():
                     rows.append([clean(part), ""])
                 else:
