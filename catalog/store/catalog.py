@@ -1,0 +1,248 @@
+"""The catalog as an object: open it, ask it for motors, findings and columns, change it."""
+
+import sqlite3
+from collections.abc import Iterator, Sequence
+from contextlib import contextmanager
+from datetime import UTC, datetime
+from pathlib import Path
+from types import TracebackType
+from typing import TYPE_CHECKING, Self
+
+from . import load
+from .database import VERSION, CatalogError, connect, in_words, layout_version
+from .load import Known
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping
+
+    from ...schema.batch import Batch, Floats
+    from ..documents import Document
+    from .corrections import Correction
+    from .revisions import Import, Undone
+
+
+def now() -> str:
+    """The time of a change, UTC, to the second."""
+    return datetime.now(UTC).strftime("%Y-%m-%dT%H:%M:%SZ")
+
+
+class Catalog:
+    """A file of motors.
+
+    >>> with Catalog.open("motorfolio.sqlite") as catalog:  # doctest: +SKIP
+    ...     catalog.motor("EX-24-100")["constants"]["torque_constant"]
+
+    Every method raises CatalogError, one sentence, when the file can't be used.
+    """
+
+    def __init__(self, path: Path, connection: sqlite3.Connection) -> None:
+        self.path = path
+        self.connection = connection
+
+    @classmethod
+    def open(cls, path: str | Path, *, create: bool = False, write: bool = False) -> Self:
+        """The catalog in that file. Without ``write`` nothing can be changed.
+
+        create: make it if there is none. An earlier layout is upgraded on the way.
+        """
+        path = Path(path)
+        connection = connect(path, create=create, write=write or create)
+        try:
+            catalog = cls(path, connection)
+            if not create:
+                catalog._upgrade()
+        except BaseException:
+            connection.close()
+            raise
+        return catalog
+
+    def _upgrade(self) -> None:
+        with in_words(self.path):
+            if layout_version(self.connection) == VERSION:
+                return
+            writer = Catalog(self.path, connect(self.path, write=True))
+            with writer, writer.changing():
+                pass  # beginning brings the tables up to date
+
+    def close(self) -> None:
+        """Close the file; what was not committed is lost."""
+        self.connection.close()
+
+    def __enter__(self) -> Self:
+        return self
+
+    def __exit__(
+        self,
+        kind: type[BaseException] | None,
+        error: BaseException | None,
+        trace: TracebackType | None,
+    ) -> None:
+        self.close()
+
+    @contextmanager
+    def changing(self) -> Iterator[sqlite3.Connection]:
+        """A transaction: all of the block is stored, or nothing."""
+        self.begin()
+        try:
+            with in_words(self.path):
+                yield self.connection
+        except BaseException:
+            self.rollback()
+            raise
+        self.commit()
+
+    def begin(self) -> None:
+        """Begin a transaction as the one writer; makes or upgrades the tables if need be."""
+        from .layout import bring_up_to_date
+
+        with in_words(self.path):
+            self.connection.execute("BEGIN IMMEDIATE")
+            try:
+                bring_up_to_date(self.connection)
+            except BaseException:
+                self.rollback()
+                raise
+
+    def commit(self) -> None:
+        """Store all that was changed since ``begin``; if that fails, nothing."""
+        try:
+            with in_words(self.path):
+                self.connection.execute("COMMIT")
+        except BaseException:
+            self.rollback()
+            raise
+
+    def rollback(self) -> None:
+        """Undo all that was changed since ``begin``."""
+        if self.connection.in_transaction:
+            self.connection.execute("ROLLBACK")
+
+    # ---- asking
+
+    def __len__(self) -> int:
+        with in_words(self.path):
+            return self.connection.execute(
+                "SELECT count(*) FROM motor WHERE replaced_by IS NULL"
+            ).fetchone()[0]
+
+    def find(self, part: str) -> Known:
+        """The motor of that part number (or MAKER/PART)."""
+        with in_words(self.path):
+            return load.find(self.connection, part)
+
+    def motor(self, part: str) -> "Document":
+        """A motor's document: figures as published, constants, findings, provenance."""
+        with in_words(self.path):
+            known = load.find(self.connection, part)
+            return next(load.motors(self.connection, [known.id]))
+
+    def motors(self, parts: Sequence[str] | None = None) -> Iterator["Document"]:
+        """The documents of these motors, or of all, in the order in which they were read."""
+        with in_words(self.path):
+            if parts is None:
+                ids = load.current_ids(self.connection)
+            else:
+                ids = [load.find(self.connection, part).id for part in parts]
+            yield from load.motors(self.connection, ids)
+
+    def findings(self, parts: Sequence[str] | None = None) -> list["Document"]:
+        """The findings of these motors, or of all; errors first."""
+        with in_words(self.path):
+            ids = None
+            if parts is not None:
+                ids = [load.find(self.connection, part).id for part in parts]
+            numbers = load.finding_ids(self.connection, ids)
+            found = dict(load.findings(self.connection, numbers))
+            return [found[number] for number in numbers]
+
+    def columns(self, names: Sequence[str]) -> "Mapping[str, Floats]":
+        """Arrays over all motors, see columns.py for the names; "id" is always among them."""
+        from . import columns
+
+        with in_words(self.path):
+            return columns.load(self.connection, names)
+
+    def batch(self, source: int) -> "Batch":
+        """The table a source was read from, as it was published."""
+        from .rebuild import batch_of_source
+
+        with in_words(self.path):
+            return batch_of_source(self.connection, source)[0]
+
+    def corrections(self, *, revoked: bool = False) -> list["Correction"]:
+        """The corrections that stand, or all that were ever made."""
+        from . import corrections
+
+        with in_words(self.path):
+            return corrections.stored(self.connection, revoked=revoked)
+
+    def kept_readings(self) -> list[tuple[str, str, str]]:
+        """Readings kept for a maker's headings: (maker, heading, reading as --set takes it)."""
+        with in_words(self.path):
+            return self.connection.execute(
+                "SELECT maker, heading, reading FROM kept_readings ORDER BY maker, heading"
+            ).fetchall()
+
+    def imports(self) -> list["Import"]:
+        """What was imported, oldest first."""
+        from . import revisions
+
+        with in_words(self.path):
+            return revisions.imports(self.connection)
+
+    def revisions(self, part: str) -> list["Document"]:
+        """The motor's documents, oldest first; the last is current."""
+        from . import revisions
+
+        with in_words(self.path):
+            known = load.find(self.connection, part)
+            return list(
+                load.motors(self.connection, revisions.revision_ids(self.connection, known))
+            )
+
+    # ---- changing
+
+    def undo(self, import_id: int | None = None) -> "Undone":
+        """Take the last import back, or that one."""
+        from . import columns, revisions
+
+        with self.changing() as connection:
+            known = [row[0] for row in connection.execute("SELECT id FROM imports ORDER BY id")]
+            if not known:
+                raise CatalogError(f"Nothing has been imported into {self.path}.")
+            if import_id is not None and import_id not in known:
+                raise CatalogError(f"{self.path} has no import {import_id}; see motorfolio revisions.")
+            done = revisions.undo(connection, known[-1] if import_id is None else import_id)
+            columns.rebuild(connection, sorted(done.sources))
+        return done
+
+    def remove(self, parts: Sequence[str]) -> list[Known]:
+        """Take motors out; undo brings them back."""
+        from . import columns, revisions
+
+        with self.changing() as connection:
+            motors = [load.find(connection, part) for part in parts]
+            columns.rebuild(connection, sorted(revisions.remove(connection, motors, now())))
+        return motors
+
+    def keep_reading(self, maker: str, heading: str, reading: str) -> None:
+        """Use this reading for the heading in further files of the maker."""
+        with self.changing() as connection:
+            connection.execute(
+                "INSERT INTO kept_readings VALUES (?,?,?,?) ON CONFLICT DO UPDATE SET "
+                "reading = excluded.reading, at = excluded.at",
+                (maker, heading, reading, now()),
+            )
+
+    def forget_reading(self, maker: str, heading: str) -> None:
+        """No longer use the kept reading; CatalogError if there is none."""
+        with self.changing() as connection:
+            gone = connection.execute(
+                "DELETE FROM kept_readings WHERE maker = ? AND heading = ?", (maker, heading)
+            ).rowcount
+            if not gone:
+                raise CatalogError(
+                    f'No reading of "{heading}" is kept for {maker or "no maker"}; '
+                    "see motorfolio readings."
+                )
+

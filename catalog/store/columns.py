@@ -1,0 +1,177 @@
+"""Columns of all motors as numpy arrays, for the search: from cached arrays, else from the rows.
+
+The rows are the truth. For every source (one table, or one chunk of a long one) the columns that
+searching needs are also kept as arrays of float64 in `column_cache`, written in the same
+transaction. A source whose rows someone edited by hand has lost its cache (triggers see to it)
+and is read from the rows. A column that is all gaps isn't kept.
+"""
+
+import sqlite3
+from collections.abc import Iterable, Sequence
+
+import numpy as np
+from numpy.typing import NDArray
+
+from ...schema.batch import MAGNETS
+from ...schema.convention import Commutation, Convention, to_dc
+from ...schema.motor import CANONICAL
+from ...schema.vocabulary import quantities
+
+Floats = NDArray[np.float64]
+
+ARMATURE = "armature_"
+"""Prefix of a published current brought to armature amperes: armature_peak_current."""
+
+AMBIENT_WIDTH = 2.0
+"""A wider printed interval of the ambient, K, is a permissible range, not a rating ambient."""
+
+CACHED: tuple[str, ...] = (
+    *CANONICAL,
+    *(f"{key}_{end}" for key in ("torque_constant", "armature_resistance") for end in ("low", "high")),
+    "commutation",
+    "magnet_coefficient",
+    "nominal_voltage",
+    "friction_torque",
+    "pole_pairs",
+    "thermal_resistance_winding_housing",
+    "thermal_resistance_housing_ambient",
+    "thermal_resistance",
+    "thermal_time_constant_winding",
+    "thermal_time_constant_housing",
+    "maximum_winding_temperature",
+    "rated_temperature_rise",
+    "rating_ambient",
+    "nominal_speed",
+    "armature_nominal_current",
+    "armature_continuous_stall_current",
+    "armature_peak_current",
+    "peak_torque",
+    "maximum_speed",
+    "mass",
+    "diameter",
+    "price",
+)  # fmt: skip
+
+# another set of cached columns, or another meaning of one, needs another name here
+_MARK = "id.1"
+
+
+def load(connection: sqlite3.Connection, names: Sequence[str]) -> dict[str, Floats]:
+    """Arrays over all current motors in order of id, NaN where not known; "id" always among them.
+
+    names: constants of the motor (``torque_constant``, with ``_low`` and ``_high``), published
+    figures in SI (``mass``; ``published_torque_constant`` where a constant has the name), currents
+    in armature amperes (``armature_peak_current``), ``commutation`` (its code),
+    ``magnet_coefficient`` (1/K), ``rating_ambient`` (°C). Raises KeyError for another name.
+    """
+    for name in names:
+        _expression(name)
+    sources = [
+        row[0]
+        for row in connection.execute(
+            "SELECT DISTINCT source FROM motor INDEXED BY motor_of_source ORDER BY source"
+        )
+    ]
+    wanted = [name for name in dict.fromkeys(names) if name != "id"]
+    cached = [name for name in wanted if name in CACHED]
+    held: dict[tuple[int, str], bytes] = {}
+    marks = ",".join("?" * (len(cached) + 1))
+    for source, name, data in connection.execute(
+        f"SELECT source, name, data FROM column_cache WHERE name IN ({marks})", [_MARK, *cached]
+    ):
+        held[(source, name)] = data
+    parts: dict[str, list[Floats]] = {name: [] for name in ("id", *wanted)}
+    for source in sources:
+        mark = held.get((source, _MARK))
+        missing = wanted if mark is None else [name for name in wanted if name not in CACHED]
+        if mark is not None:
+            ids = np.frombuffer(mark)
+            parts["id"].append(ids)
+            for name in cached:
+                data = held.get((source, name))
+                parts[name].append(np.full(len(ids), np.nan) if data is None else np.frombuffer(data))
+        if missing:
+            columns = select(connection, source, missing)
+            for name in missing if mark is not None else ["id", *missing]:
+                parts[name].append(columns[name])
+        elif mark is None:
+            parts["id"].append(select(connection, source, [])["id"])
+    return {name: np.concatenate(found) if found else np.empty(0) for name, found in parts.items()}
+
+
+def rebuild(connection: sqlite3.Connection, sources: Iterable[int]) -> None:
+    """Write the cached columns of these sources anew, from their rows."""
+    for source in sources:
+        connection.execute("DELETE FROM column_cache WHERE source = ?", (source,))
+        columns = select(connection, source, CACHED)
+        ids = columns.pop("id")
+        rows = [(source, _MARK, ids.tobytes())]
+        rows += [
+            (source, name, column.tobytes())
+            for name, column in columns.items()
+            if not np.isnan(column).all()
+        ]
+        connection.executemany("INSERT INTO column_cache VALUES (?,?,?)", rows)
+
+
+def select(connection: sqlite3.Connection, source: int, names: Sequence[str]) -> dict[str, Floats]:
+    """The same columns from the rows of one source."""
+    expressions = ", ".join(["m.id", "m.pattern", "m.kind", *map(_expression, names)])
+    rows = connection.execute(
+        f"SELECT {expressions} FROM motor m JOIN kinds k ON k.id = m.kind "
+        "JOIN constants c ON c.id = m.id JOIN figure_value v ON v.id = m.id "
+        "WHERE m.source = ? AND m.replaced_by IS NULL ORDER BY m.id",
+        (source,),
+    ).fetchall()
+    table = np.array(rows, dtype=np.float64).reshape(len(rows), len(names) + 3)
+    columns = {name: np.ascontiguousarray(table[:, i + 3]) for i, name in enumerate(names)}
+    for name in names:
+        if name.startswith(ARMATURE) and name not in CANONICAL and "_current" in name:
+            columns[name] *= _armature_factors(connection, name, table[:, 1], table[:, 2])
+    return {"id": np.ascontiguousarray(table[:, 0]), **columns}
+
+
+def _armature_factors(
+    connection: sqlite3.Connection, name: str, patterns: Floats, kinds: Floats
+) -> Floats:
+    key = name.removeprefix(ARMATURE)
+    factors = np.ones(len(patterns))
+    pairs = np.stack([patterns, kinds], axis=1)
+    unique, which = np.unique(pairs, axis=0, return_inverse=True)
+    for number, (pattern, kind) in enumerate(unique.astype(int).tolist()):
+        row = connection.execute(
+            'SELECT d."current", k.commutation FROM kinds k LEFT JOIN patterns p ON p.pattern = ? '
+            "AND p.quantity = ? LEFT JOIN conventions d ON d.id = p.convention WHERE k.id = ?",
+            (pattern, key, kind),
+        ).fetchone()
+        factor = to_dc(key, Convention(current=row[0]), Commutation[row[1].upper()])
+        factors[which.ravel() == number] = factor
+    return factors
+
+
+def _expression(name: str) -> str:
+    """SQL for a column over motor m, kind k, constants c and figures v."""
+    match name:
+        case "id":
+            return "m.id"
+        case "commutation":
+            cases = " ".join(f"WHEN '{c.word}' THEN {int(c)}" for c in Commutation)
+            return f"CASE k.commutation {cases} END"
+        case "magnet_coefficient":
+            cases = " ".join(f"WHEN '{magnet}' THEN {beta}" for magnet, beta in MAGNETS.items())
+            return f"CASE k.magnet {cases} END"
+        case "rating_ambient":
+            return (
+                "iif(EXISTS (SELECT 1 FROM figure_intervals i WHERE i.motor = m.id AND "
+                "i.quantity = 'ambient_temperature' AND (i.low IS NULL OR i.high IS NULL OR "
+                f"i.high - i.low > {AMBIENT_WIDTH})), NULL, v.ambient_temperature)"
+            )
+        case "pole_pairs":
+            return "coalesce(v.pole_pairs, v.poles / 2)"
+    for end in ("_low", "_high", ""):
+        if name.endswith(end) and name.removesuffix(end) in CANONICAL:
+            return f'c."{name}"'
+    key = name.removeprefix("published_").removeprefix(ARMATURE)
+    if key in quantities() and not quantities()[key].text:
+        return f'v."{key}"'
+    raise KeyError(name)

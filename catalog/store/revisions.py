@@ -1,0 +1,146 @@
+"""Imports as they were made, earlier revisions of a motor, and taking an import back."""
+
+import sqlite3
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+from typing import Any
+
+from .load import Known
+
+
+@dataclass(frozen=True, slots=True)
+class Import:
+    """One call that stored something; ``motors`` counts what it read, ``replaced`` what it ended."""
+
+    id: int
+    at: str
+    files: tuple[str, ...]
+    motors: int
+    replaced: int
+
+
+@dataclass(slots=True)
+class Undone:
+    """What taking an import back did, and the sources whose cached columns must be made anew."""
+
+    removed: int = 0
+    restored: int = 0
+    sources: set[int] = field(default_factory=set)
+
+
+def imports(connection: sqlite3.Connection) -> list[Import]:
+    """All imports, oldest first; one without files is a removal of motors."""
+    found = []
+    for number, at, motors in connection.execute("SELECT id, at, motors FROM imports ORDER BY id"):
+        files = tuple(
+            row[0]
+            for row in connection.execute(
+                'SELECT file FROM files WHERE "import" = ? ORDER BY id', (number,)
+            )
+        )
+        replaced = connection.execute(
+            "SELECT count(*) FROM motor WHERE replaced_by = ?", (number,)
+        ).fetchone()[0]
+        found.append(Import(number, at, files, motors, replaced))
+    return found
+
+
+def revision_ids(connection: sqlite3.Connection, known: Known) -> list[int]:
+    """The motor's rows, oldest first; the last one is current."""
+    return [
+        row[0]
+        for row in connection.execute(
+            "SELECT id FROM motor WHERE part_number = ? AND maker = ? ORDER BY id",
+            (known.part_number, known.maker),
+        )
+    ]
+
+
+def changed_motors(
+    connection: sqlite3.Connection, import_id: int
+) -> list[tuple[int | None, int | None]]:
+    """What an import did: (earlier row, new row) a motor, None where there is none."""
+    rows = connection.execute(
+        "SELECT (SELECT old.id FROM motor old WHERE old.replaced_by = ?1 "
+        "AND old.part_number = m.part_number AND old.maker = m.maker ORDER BY old.id DESC LIMIT 1), "
+        "m.id FROM motor m JOIN sources s ON s.id = m.source JOIN files f ON f.id = s.file "
+        'WHERE f."import" = ?1 ORDER BY m.id',
+        (import_id,),
+    ).fetchall()
+    seen = {old for old, _ in rows}
+    gone = connection.execute(
+        "SELECT id FROM motor WHERE replaced_by = ? ORDER BY id", (import_id,)
+    ).fetchall()
+    return [*rows, *((old, None) for (old,) in gone if old not in seen)]
+
+
+def undo(connection: sqlite3.Connection, import_id: int) -> Undone:
+    """Take an import out as if it had not been: its motors go, those it replaced come back."""
+    done = Undone()
+    own = connection.execute(
+        "SELECT s.id, s.first_motor, s.motors FROM sources s JOIN files f ON f.id = s.file "
+        'WHERE f."import" = ?',
+        (import_id,),
+    ).fetchall()
+    for source, first, n in own:
+        done.removed += _delete_source(connection, source, first, n)
+    connection.execute(
+        'DELETE FROM unread WHERE file IN (SELECT id FROM files WHERE "import" = ?)', (import_id,)
+    )
+    connection.execute('DELETE FROM files WHERE "import" = ?', (import_id,))
+    # a motor that came back is ended by whatever followed it, if something did
+    back = connection.execute(
+        "SELECT id, source, part_number, maker FROM motor WHERE replaced_by = ?", (import_id,)
+    ).fetchall()
+    for motor, source, part_number, maker in back:
+        row = connection.execute(
+            'SELECT f."import" FROM motor m JOIN sources s ON s.id = m.source '
+            "JOIN files f ON f.id = s.file WHERE m.part_number = ? AND m.maker = ? AND m.id > ? "
+            "ORDER BY m.id LIMIT 1",
+            (part_number, maker, motor),
+        ).fetchone()
+        connection.execute(
+            "UPDATE motor SET replaced_by = ? WHERE id = ?", (row[0] if row else None, motor)
+        )
+        done.sources.add(source)
+        done.restored += row is None
+    connection.execute("DELETE FROM imports WHERE id = ?", (import_id,))
+    return done
+
+
+def _delete_source(connection: sqlite3.Connection, source: int, first: int, n: int) -> int:
+    span: Sequence[Any] = (first, first + n - 1)
+    for table in (
+        "figure_text", "figure_value", "figure_digit", "constants",
+    ):  # fmt: skip
+        connection.execute(f"DELETE FROM {table} WHERE id BETWEEN ? AND ?", span)
+    for table in (
+        "figure_intervals", "figure_places", "figure_qualifiers", "further_figures", "points", "finding_motors",
+        "applied_corrections",
+    ):  # fmt: skip
+        connection.execute(f"DELETE FROM {table} WHERE motor BETWEEN ? AND ?", span)
+    connection.execute("DELETE FROM findings WHERE source = ?", (source,))
+    connection.execute(
+        "DELETE FROM patterns WHERE pattern IN (SELECT pattern FROM motor WHERE source = ?)",
+        (source,),
+    )
+    removed = connection.execute("DELETE FROM motor WHERE source = ?", (source,)).rowcount
+    for table, column in (("headings", "source"), ("column_cache", "source"), ("sources", "id")):
+        connection.execute(f"DELETE FROM {table} WHERE {column} = ?", (source,))
+    return removed
+
+
+def remove(connection: sqlite3.Connection, motors: Sequence[Known], at: str) -> set[int]:
+    """Take motors out of the catalog; their rows stay as earlier revisions, and undo brings them
+    back. Returns the sources whose cached columns must be made anew."""
+    cursor = connection.execute(
+        "INSERT INTO imports(at, files, motors) VALUES (?, 0, 0)", (at,)
+    )
+    sources = set()
+    for known in motors:
+        connection.execute(
+            "UPDATE motor SET replaced_by = ? WHERE id = ?", (cursor.lastrowid, known.id)
+        )
+        row = connection.execute("SELECT source FROM motor WHERE id = ?", (known.id,)).fetchone()
+        sources.add(row[0])
+    return sources

@@ -1,0 +1,399 @@
+"""Writing a reconciled table into the catalog: rows by ``executemany``, columns made by numpy.
+
+Everything here runs inside the caller's transaction.
+"""
+
+import json
+import sqlite3
+from collections.abc import Iterable, Iterator, Sequence
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from ...schema.batch import MODEL_BASES, Batch, FigureColumn, Heading, Ints
+from ...schema.convention import Commutation, Convention
+from ...schema.motor import CONSTANT_BASES, Finding, Reconciled
+from .intervals import encode
+from .layout import figure_keys, text_keys
+from .patterns import Pattern, places_of, usual_places
+
+
+@dataclass(frozen=True, slots=True)
+class AppliedCorrection:
+    """A figure of entry ``entry`` that stands corrected in a batch, and what was published."""
+
+    entry: int
+    quantity: str
+    correction: int
+    text: str | None
+    value: float
+    low: float
+    high: float
+
+
+@dataclass(slots=True)
+class Stored:
+    """What one table did to the catalog."""
+
+    motors: int = 0
+    new: int = 0
+    touched_sources: set[int] = field(default_factory=set)
+
+
+class Writer:
+    """Writes the tables of one import; holds the small palettes that rows point into."""
+
+    def __init__(self, connection: sqlite3.Connection, import_id: int) -> None:
+        self.connection = connection
+        self.import_id = import_id
+        self._conventions: dict[Convention, int] = {}
+        self._kinds: dict[tuple, int] = {}
+        self._derivations: dict[tuple[str, str], int] = {}
+        for row in connection.execute("SELECT * FROM conventions"):
+            self._conventions[Convention(*row[1:])] = row[0]
+        for row in connection.execute("SELECT * FROM kinds"):
+            self._kinds[tuple(row[1:])] = row[0]
+        for number, basis, figures in connection.execute("SELECT * FROM derivations"):
+            self._derivations[(basis, figures)] = number
+
+    def add_file(
+        self, *, file: str, sha256: str, format: str, layout: str, options: str, remarks: Sequence[str]
+    ) -> int:
+        """One row for a file of this import; the number other rows point to."""
+        cursor = self.connection.execute(
+            'INSERT INTO files("import", file, sha256, format, layout, options, remarks) '
+            "VALUES (?,?,?,?,?,?,?)",
+            (self.import_id, file, sha256, format, layout, options, _lines(remarks)),
+        )
+        return _row_id(cursor)
+
+    def add_table(
+        self,
+        file_id: int,
+        chunk: int,
+        published: Batch,
+        reconciled: Reconciled,
+        applied: Sequence[AppliedCorrection] = (),
+    ) -> Stored:
+        """Store N motors of one table.
+
+        ``published`` is the batch as it was read (its conventions are kept beside the inferred
+        ones); ``reconciled`` holds the same entries with corrections applied. A motor that the
+        catalog has is replaced, its earlier rows are kept.
+        """
+        batch = reconciled.batch
+        n = len(batch)
+        first = self._next("motor")
+        source_id = self._add_source(file_id, chunk, batch, first)
+        heading_base = self._add_headings(source_id, batch.headings)
+        row, column = usual_places(batch)
+        pattern_of, patterns = places_of(published, batch, row, column)
+        pattern_base = self._next("patterns", "pattern")
+        self._add_patterns(patterns, pattern_base, heading_base)
+
+        identity = list(zip(batch.part_number, batch.maker, strict=True))
+        touched = self._replace(identity)
+        ids = range(first, first + n)
+        self.connection.executemany(
+            "INSERT INTO motor(id, maker, part_number, series, source, pattern, kind, "
+            '"row", "column") VALUES (?,?,?,?,?,?,?,?,?)',
+            zip(
+                ids, batch.maker, batch.part_number, batch.series, [source_id] * n,
+                (pattern_of + pattern_base).tolist(), self._kind_ids(batch),
+                _places(row), _places(column), strict=True,
+            ),
+        )  # fmt: skip
+        self._add_figures(first, batch, applied)
+        self._add_exceptions(first, batch, row, column, pattern_of, patterns)
+        self._add_further(first, batch, heading_base)
+        self._add_constants(first, reconciled)
+        self.add_findings(source_id, first, reconciled)
+        replaced = sum(touched.values())
+        return Stored(n, n - replaced, set(touched) | {source_id})
+
+    # ---- who and where
+
+    def _next(self, table: str, column: str = "id") -> int:
+        return self.connection.execute(f"SELECT ifnull(max({column}), 0) + 1 FROM {table}").fetchone()[0]
+
+    def _add_source(self, file_id: int, chunk: int, batch: Batch, first: int) -> int:
+        source = batch.source
+        cursor = self.connection.execute(
+            "INSERT INTO sources(file, chunk, sheet, page, layout, notes, first_motor, motors) "
+            "VALUES (?,?,?,?,?,?,?,?)",
+            (file_id, chunk, source.sheet, source.page, source.layout, _lines(batch.notes),
+             first, len(batch)),
+        )  # fmt: skip
+        return _row_id(cursor)
+
+    def _add_headings(self, source_id: int, headings: Sequence[Heading]) -> int:
+        base = self._next("headings")
+        self.connection.executemany(
+            "INSERT INTO headings VALUES (?,?,?,?,?,?,?,?,?,?)",
+            [
+                (base + i, source_id, h.text, h.quantity, h.unit,
+                 None if h.convention is None else self._convention(h.convention),
+                 h.score, h.reason, h.factor, h.offset)
+                for i, h in enumerate(headings)
+            ],
+        )  # fmt: skip
+        return base
+
+    def _add_patterns(self, patterns: Sequence[Pattern], base: int, headings: int) -> None:
+        self.connection.executemany(
+            "INSERT INTO patterns VALUES (?,?,?,?,?,?,?)",
+            [
+                (base + number, place.quantity,
+                 None if place.heading is None else headings + place.heading,
+                 None if place.read_as is None else self._convention(place.read_as),
+                 None if place.convention is None else self._convention(place.convention),
+                 place.row or None, place.column or None)
+                for number, pattern in enumerate(patterns)
+                for place in pattern
+            ],
+        )  # fmt: skip
+
+    def _convention(self, convention: Convention) -> int:
+        number = self._conventions.get(convention)
+        if number is None:
+            c = convention
+            cursor = self.connection.execute(
+                'INSERT INTO conventions("current", voltage, "between", connection, temperature, '
+                "shape, basis) VALUES (?,?,?,?,?,?,?)",
+                (c.current, c.voltage, c.between, c.connection, c.temperature, c.shape, c.basis),
+            )
+            number = self._conventions[convention] = _row_id(cursor)
+        return number
+
+    def _kind_ids(self, batch: Batch) -> list[int]:
+        kinds = zip(
+            batch.commutation.tolist(), batch.commutation_basis.tolist(), batch.magnet,
+            batch.magnet_basis.tolist(), batch.reference_temperature.tolist(),
+            batch.reference_temperature_basis.tolist(), strict=True,
+        )  # fmt: skip
+        seen: dict[tuple, int] = {}
+        return [seen.get(kind) or seen.setdefault(kind, self._kind(*kind)) for kind in kinds]
+
+    def _kind(self, commutation: int, c: int, magnet: str, m: int, reference: float, r: int) -> int:
+        word = Commutation(commutation).word
+        key = (word, MODEL_BASES[c], magnet, MODEL_BASES[m], reference, MODEL_BASES[r])
+        if key not in self._kinds:
+            cursor = self.connection.execute(
+                "INSERT INTO kinds(commutation, commutation_basis, magnet, magnet_basis, "
+                "reference_temperature, reference_temperature_basis) VALUES (?,?,?,?,?,?)",
+                key,
+            )
+            self._kinds[key] = _row_id(cursor)
+        return self._kinds[key]
+
+    def _replace(self, identity: Sequence[tuple[str, str]]) -> dict[int, int]:
+        """Mark the motors that the catalog has as replaced; source → how many of its motors."""
+        touched: dict[int, int] = {}
+        where = "part_number = ? AND maker = ? AND replaced_by IS NULL"
+        for who in identity:
+            row = self.connection.execute(f"SELECT id, source FROM motor WHERE {where}", who).fetchone()
+            if row is not None:
+                touched[row[1]] = touched.get(row[1], 0) + 1
+        if touched:
+            self.connection.executemany(
+                f"UPDATE motor SET replaced_by = {self.import_id} WHERE {where}", identity
+            )
+        return touched
+
+    # ---- figures
+
+    def _add_figures(
+        self, first: int, batch: Batch, applied: Sequence[AppliedCorrection]
+    ) -> None:
+        ids = range(first, first + len(batch))
+        numbers = [key for key in figure_keys() if key in batch.figures]
+        texts = {key: batch.figures[key].text for key in numbers}
+        for a in applied:
+            # the text stays what was published
+            texts[a.quantity] = list(texts[a.quantity])
+            texts[a.quantity][a.entry] = a.text
+        for key in text_keys():
+            if key in batch.texts:
+                texts[key] = batch.texts[key].text
+        self._insert("figure_text", list(texts), ids, list(texts.values()))
+        # SQLite keeps a NaN as NULL
+        values = [batch.figures[key].value.tolist() for key in numbers]
+        self._insert("figure_value", numbers, ids, values)
+        factors = np.array([h.factor for h in batch.headings] or [1.0])
+        digits = []
+        for key in numbers:
+            f = batch.figures[key]
+            digit, others = encode(f, factors[f.heading.clip(0, len(factors) - 1)])
+            digits.append(digit)
+            self.connection.executemany(
+                "INSERT INTO figure_intervals VALUES (?,?,?,?)",
+                [(first + i, key, low, high) for i, low, high in others],
+            )
+        self._insert("figure_digit", numbers, ids, digits)
+        self.connection.executemany(
+            "INSERT INTO applied_corrections VALUES (?,?,?,?,?,?)",
+            [(first + a.entry, a.quantity, a.correction, a.value, a.low, a.high) for a in applied],
+        )
+
+    def _insert(
+        self, table: str, keys: Sequence[str], ids: Iterable[int], columns: Sequence[Iterable]
+    ) -> None:
+        names = "".join(f', "{key}"' for key in keys)
+        marks = ",?" * len(keys)
+        self.connection.executemany(
+            f"INSERT INTO {table}(id{names}) VALUES (?{marks})", zip(ids, *columns, strict=True)
+        )
+
+    def _add_exceptions(
+        self,
+        first: int,
+        batch: Batch,
+        row: Ints,
+        column: Ints,
+        pattern_of: Ints,
+        patterns: Sequence[Pattern],
+    ) -> None:
+        """Places that don't follow from motor and pattern, and qualifiers."""
+        columns: dict[str, tuple[Ints, Ints, np.ndarray]] = {
+            key: (f.row, f.column, ~np.isnan(f.value)) for key, f in batch.figures.items()
+        }
+        for key, text in batch.texts.items():
+            present = np.array([t is not None for t in text.text], dtype=bool)
+            columns[key] = (text.row, text.column, present)
+        for key, (rows, places, present) in columns.items():
+            fixed = [{place.quantity: place for place in pattern}.get(key) for pattern in patterns]
+            fixed_row = np.array([p.row if p else 0 for p in fixed])[pattern_of]
+            fixed_column = np.array([p.column if p else 0 for p in fixed])[pattern_of]
+            usual_row = np.where(fixed_row > 0, fixed_row, row)
+            usual_column = np.where(fixed_column > 0, fixed_column, column)
+            odd = np.flatnonzero(present & ((rows != usual_row) | (places != usual_column)))
+            self.connection.executemany(
+                "INSERT INTO figure_places VALUES (?,?,?,?)",
+                [(first + i, key, rows[i].item(), places[i].item()) for i in odd.tolist()],
+            )
+        self.connection.executemany(
+            "INSERT INTO figure_qualifiers VALUES (?,?,?)",
+            [
+                (first + i, key, qualifier)
+                for key, figures in batch.figures.items()
+                for i, qualifier in figures.qualifiers.items()
+            ],
+        )
+
+    def _add_further(self, first: int, batch: Batch, headings: int) -> None:
+        self.connection.executemany(
+            'INSERT INTO further_figures(motor, "condition", quantity, heading, convention, text, '
+            'value, low, high, unit, qualifier, "row", "column") VALUES (?,?,?,?,?,?,?,?,?,?,?,?,?)',
+            [*self._repeat_rows(first, batch, headings), *self._condition_rows(first, batch)],
+        )
+        self.connection.executemany(
+            "INSERT INTO points VALUES (?,?,?,?,?,?)",
+            [
+                (first + entry, number, point.name, point.row or None, key, value)
+                for entry, points in batch.points.items()
+                for number, point in enumerate(points)
+                for key, value in point.figures.items()
+            ],
+        )
+
+    def _repeat_rows(self, first: int, batch: Batch, headings: int) -> Iterator[tuple]:
+        for key, columns in batch.repeats.items():
+            for f in columns:
+                for i in np.flatnonzero(~np.isnan(f.value)).tolist():
+                    yield (
+                        first + i, None, key, _heading(f, i, batch, headings),
+                        self._convention(f.conventions[f.convention[i]]), f.text[i],
+                        f.value[i].item(), f.low[i].item(), f.high[i].item(), None,
+                        f.qualifiers.get(i), f.row[i].item() or None, f.column[i].item() or None,
+                    )  # fmt: skip
+
+    def _condition_rows(self, first: int, batch: Batch) -> Iterator[tuple]:
+        for condition in batch.conditions:
+            for entry, figures in condition.figures.items():
+                for key, p in figures.items():
+                    yield (
+                        first + entry, condition.when, key, None, self._convention(p.convention),
+                        p.text, p.value, p.low, p.high, p.unit or None, p.qualifier,
+                        p.row or None, p.column or None,
+                    )  # fmt: skip
+
+    # ---- what follows from the figures
+
+    def _add_constants(self, first: int, reconciled: Reconciled) -> None:
+        names: list[str] = []
+        columns: list[list] = []
+        for key, c in reconciled.constants.items():
+            names += [key, f"{key}_low", f"{key}_high", f"{key}_by"]
+            by = np.where(np.isnan(c.value), -1, c.source * 4 + c.basis)
+            codes = {
+                code: self._derivation(CONSTANT_BASES[code % 4], c.sources[code // 4])
+                for code in np.unique(by[by >= 0]).tolist()
+            }
+            columns += [
+                c.value.tolist(), c.low.tolist(), c.high.tolist(),
+                [codes.get(code) for code in by.tolist()],
+            ]  # fmt: skip
+        ids = range(first, first + len(reconciled.batch))
+        self._insert("constants", names, ids, columns)
+
+    def _derivation(self, basis: str, figures: Sequence[str]) -> int:
+        key = (basis, " ".join(figures))
+        if key not in self._derivations:
+            cursor = self.connection.execute(
+                "INSERT INTO derivations(basis, figures) VALUES (?,?)", key
+            )
+            self._derivations[key] = _row_id(cursor)
+        return self._derivations[key]
+
+    def add_findings(self, source_id: int, first: int, reconciled: Reconciled) -> None:
+        """The findings of a table whose first motor has the id ``first``."""
+        number = self._next("findings")
+        pairs = list(zip(reconciled.findings, reconciled.finding_motor, strict=True))
+        self.connection.executemany(
+            f"INSERT INTO findings VALUES ({','.join('?' * 16)})",
+            [
+                (number + i, source_id, first + entry, *_finding_row(finding))
+                for i, (finding, entry) in enumerate(pairs)
+            ],
+        )
+        entries: dict[str, list[int]] = {}
+        if any(finding.scope == "column" for finding, _ in pairs):
+            for i, part in enumerate(reconciled.batch.part_number):
+                entries.setdefault(part, []).append(first + i)
+        self.connection.executemany(
+            "INSERT OR IGNORE INTO finding_motors VALUES (?,?)",
+            [
+                (number + i, motor)
+                for i, (finding, _) in enumerate(pairs)
+                if finding.scope == "column"
+                for part in finding.part_numbers
+                for motor in entries.get(part, ())
+            ],
+        )
+
+
+def _finding_row(f: Finding) -> tuple:
+    return (
+        f.scope, f.severity, f.relation, " ".join(f.figures), f.suspect, f.ratio, f.cause,
+        " ".join(f.other_causes), f.implied.value if f.implied else None,
+        f.implied.unit if f.implied else None, f.cell.row if f.cell else None,
+        f.cell.column if f.cell else None, f.message,
+    )  # fmt: skip
+
+
+def _heading(figures: FigureColumn, entry: int, batch: Batch, base: int) -> int | None:
+    number = int(figures.heading[entry])
+    return base + number if 0 <= number < len(batch.headings) else None
+
+
+def _places(numbers: Ints) -> list[int | None]:
+    return [number or None for number in numbers.tolist()]
+
+
+def _lines(texts: Sequence[str]) -> str | None:
+    return json.dumps(list(texts), ensure_ascii=False) if texts else None
+
+
+def _row_id(cursor: sqlite3.Cursor) -> int:
+    assert cursor.lastrowid is not None
+    return cursor.lastrowid
