@@ -1,0 +1,1 @@
+"""The commands: each module parses what was typed, calls one function, prints the answer."""
