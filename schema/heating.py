@@ -26,7 +26,7 @@ Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
 
 #: Numbers in each temporary of the periodic state.
-_CHUNK = 1 << 15
+_CHUNK = 1 << 14
 #: Nodes and weights of Gauss's rule on 0..1, for means of the ripple over a piece.
 _RULE = np.polynomial.legendre.leggauss(5)
 _NODES, _WEIGHTS = (_RULE[0] + 1) / 2, _RULE[1] / 2
@@ -126,7 +126,9 @@ def heating(m: Machines, load: Load, demand: Demand, *, periodic: bool) -> Heati
         swings = load.pieces.period > SHORT_CYCLE * m.thermal_time_constant_winding
         swings &= np.isfinite(temperature + inner + outer + own_outer)
         which = np.flatnonzero(swings & np.isfinite(m.thermal_time_constant_housing))
-        width = max(1, _CHUNK // (6 * len(load.pieces.duration)))
+        # Like with like: how finely the cycle is cut follows the shortest time constant.
+        which = which[np.argsort(m.thermal_time_constant_winding[which])]
+        width = max(1, _CHUNK // (4 * len(load.pieces.duration)))
         for begin in range(0, len(which), width):
             some = which[begin : begin + width]
             body = TwoBody(

@@ -28,32 +28,34 @@ def largest_square(
     motor's torque as their combination by four `weights` (n,); per unit of that torque and of load
     speed U has the parts `drop` = Ra/Km, `emf` = Km·N, `reactance` = p·N·La/Km, all (n,).
     """
+    if len(accelerated) == 0:
+        return square
     table = np.stack(weights)
-    for start, end in accelerated:
-        torque0, torque1 = start @ table, end @ table
-        speed0, speed1 = start[3], end[3]
-        rise, gain = torque1 - torque0, speed1 - speed0
-        # The crosswise part peaks inside where its slope vanishes; only if that could exceed what
-        # the ends show is the quartic looked at.
-        curvature = 2 * rise * gain
-        slope = speed0 * rise + torque0 * gain
-        at = np.where(curvature != 0, -slope / np.where(curvature != 0, curvature, 1.0), 0.0)
-        inside = (at > 0) & (at < 1)
-        across = (torque0 + rise * at) * (speed0 + gain * at) * reactance
-        along = np.maximum(
-            np.abs(torque0 * drop + speed0 * emf), np.abs(torque1 * drop + speed1 * emf)
-        )
-        which = np.flatnonzero(inside & (along**2 + across**2 > square))
-        if which.size:
-            u0 = torque0[which] * drop[which] + speed0 * emf[which]
-            du = rise[which] * drop[which] + gain * emf[which]
-            peak = _peak(u0, du, torque0[which], rise[which], speed0, gain, reactance[which])
-            square[which] = np.maximum(square[which], peak)
+    first, second = accelerated[:, 0], accelerated[:, 1]
+    speed0, speed1 = first[:, 3:], second[:, 3:]
+    # U² can peak inside only if its crosswise part, the product of speed and torque, does: if the
+    # product's slope, itself a combination of the four weights, changes sign over the piece.
+    slope0 = (speed0 * second + (speed1 - 2 * speed0) * first) @ table
+    slope1 = ((2 * speed1 - speed0) * second - speed1 * first) @ table
+    piece, which = np.nonzero(slope0 * slope1 < 0)
+    if piece.size == 0:
+        return square
+    torque0, torque1 = ((ends @ table)[piece, which] for ends in (first, second))
+    w0, w1 = speed0[piece, 0], speed1[piece, 0]
+    u0, u1 = (t * drop[which] + w * emf[which] for t, w in ((torque0, w0), (torque1, w1)))
+    begin, end = slope0[piece, which], slope1[piece, which]
+    across = (torque0 * w0 - begin**2 / (2 * (end - begin))) * reactance[which]
+    bound = np.maximum(u0**2, u1**2) + across**2
+    kept = bound > square[which]
+    which, u0, u1 = which[kept], u0[kept], u1[kept]
+    torque0, torque1, w0, w1 = torque0[kept], torque1[kept], w0[kept], w1[kept]
+    peak = _peak(u0, u1 - u0, torque0, torque1 - torque0, w0, w1 - w0, reactance[which])
+    np.maximum.at(square, which, peak)
     return square
 
 
 def _peak(
-    u0: Array, du: Array, t0: Array, dt: Array, w0: float, dw: float, reactance: Array
+    u0: Array, du: Array, t0: Array, dt: Array, w0: Array, dw: Array, reactance: Array
 ) -> Array:
     """Largest value on 0..1 of (u0 + du·s)² + (reactance·(t0 + dt·s)·(w0 + dw·s))²."""
     y0, y1, y2 = (reactance * y for y in (t0 * w0, t0 * dw + dt * w0, dt * dw))

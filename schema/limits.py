@@ -72,6 +72,12 @@ class Utilisations:
         arrays = {name: array[index] for name, array in self._arrays().items()}
         return Utilisations(**arrays, needed=self.needed)
 
+    def put(self, index: Any, other: Utilisations) -> None:
+        """Overwrite the entries at `index`."""
+        theirs = other._arrays()
+        for name, array in self._arrays().items():
+            array[index] = theirs[name]
+
     @classmethod
     def joined(cls, parts: list[Utilisations]) -> Utilisations:
         """One after the other along the first axis."""

@@ -7,6 +7,7 @@ torque is proportional to (1 + α·θ)/(1 + β·θ)², β ≤ 0.
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass, fields
 
 import numpy as np
@@ -108,8 +109,11 @@ class TwoBody:
         return TwoBody(*(getattr(self, field.name)[index] for field in fields(self)))
 
 
-#: Cuts of each piece: close after its start, where the winding moves fastest.
-_CUTS = (np.arange(7) / 6) ** 2
+#: Into how many cuts a piece goes, by its duration over the winding's time constant.
+_CUT_COUNTS = ((0.1, 1), (0.5, 2), (2.0, 4), (8.0, 8), (np.inf, 16))
+#: Cuts shorter than this share of the time constant may peak inside; in longer ones the winding
+#: has settled, and their ends tell all.
+_SHORT_CUT = 2.0
 
 
 def periodic_peak(
@@ -131,26 +135,32 @@ def periodic_peak(
     heats the housing, `resistance` Ra at 25 °C, `magnet` β, `start` the temperature of the mean
     balance, all (K,).
 
-    Each piece is cut in six, in which the loss is a quadratic in time and depends on the
+    Each piece is cut in up to 16, in which the loss is a quadratic in time and depends on the
     temperature by its chord between both ends: a linear system of two states with a quadratic
     input, solved exactly by its eigenvalues. The chord's ends are iterated.
     """
-    share = np.diff(_CUTS)
-    h = (duration[:, None] * share).ravel()  # (N,) durations of the cuts
-    current_nodes = _at_cuts(current)
-    i0, di = current_nodes[..., 0], current_nodes[..., 1]
-    torque = _at_cuts(friction[..., 0])
-    speed = _at_cuts(friction[..., 1])
-    cut_ripple = np.repeat(ripple, share.size, axis=1)
+    time_constant = body.winding_capacity * body.to_housing
+    piece, begin, end = _cuts(duration / time_constant.min())
+    h = duration[piece] * (end - begin)  # (N,) durations of the cuts
+
+    def at_cuts(ends: Array) -> tuple[Array, Array]:
+        """Values (K, P, 2) at the ends of pieces → (K, N) at the start of cuts, rise over them."""
+        rise = (ends[..., 1] - ends[..., 0])[:, piece]
+        return ends[:, piece, 0] + rise * begin, rise * (end - begin)
+
+    i0, di = at_cuts(current)
+    torque = at_cuts(friction[..., 0])
+    speed = at_cuts(friction[..., 1])
+    cut_ripple = ripple[:, piece]
     K, N = i0.shape
     Ra = resistance[:, None]
     # Winding loss per unit of (1+αθ)/(1+βθ)², and housing heat: c0 + c1·s + c2·s² with s in 0..1.
     loss = np.stack([Ra * i0**2, 2 * Ra * i0 * di, Ra * di**2])
     rubbing = np.stack(
         [
-            torque[..., 0] * speed[..., 0],
-            torque[..., 0] * speed[..., 1] + torque[..., 1] * speed[..., 0],
-            torque[..., 1] * speed[..., 1],
+            torque[0] * speed[0],
+            torque[0] * speed[1] + torque[1] * speed[0],
+            torque[1] * speed[1],
         ]
     )
     beta = np.nan_to_num(magnet)[:, None]
@@ -159,7 +169,7 @@ def periodic_peak(
     runaway = np.zeros(K, bool)
     active = np.arange(K)
     for _ in range(40):
-        found, sound = _one_period(
+        found, sound, highest = _one_period(
             body.take(active),
             ambient - REFERENCE_TEMPERATURE,
             h,
@@ -171,9 +181,9 @@ def periodic_peak(
         )
         runaway[active[~sound]] = True
         change = np.abs(found - nodes[active]).max(axis=1)
-        settled = sound & (change <= 1e-6 * (1 + np.abs(found).max(axis=1)))
+        settled = sound & (change <= 1e-5 * (1 + np.abs(found).max(axis=1)))
         nodes[active] = found
-        peak[active[settled]] = found[settled].max(axis=1) + REFERENCE_TEMPERATURE
+        peak[active[settled]] = highest[settled] + REFERENCE_TEMPERATURE
         active = active[sound & ~settled]
         if active.size == 0:
             break
@@ -181,12 +191,20 @@ def periodic_peak(
     return peak, runaway
 
 
-def _at_cuts(ends: Array) -> Array:
-    """(K, P, 2) values at the ends of pieces → (K, N, 2) start and increase over each cut."""
-    start, end = ends[..., :1], ends[..., 1:]
-    values = start + (end - start) * _CUTS[:-1]
-    rise = (end - start) * np.diff(_CUTS)
-    return np.stack([values, rise], axis=-1).reshape(ends.shape[0], -1, 2)
+def _cuts(duration: Array) -> tuple[NDArray[np.intp], Array, Array]:
+    """Piece of each cut and where in it (0..1) the cut begins and ends.
+
+    `duration` (P,) in time constants. Cuts lie close after a piece's start, where the winding
+    moves fastest.
+    """
+    piece, begin, end = [], [], []
+    for index, length in enumerate(duration):
+        count = next(count for limit, count in _CUT_COUNTS if length <= limit)
+        nodes = (np.arange(count + 1) / count) ** 2
+        piece.append(np.full(count, index))
+        begin.append(nodes[:-1])
+        end.append(nodes[1:])
+    return np.concatenate(piece), np.concatenate(begin), np.concatenate(end)
 
 
 def _one_period(
@@ -198,8 +216,12 @@ def _one_period(
     rubbing: Array,
     beta: Array,
     nodes: Array,
-) -> tuple[Array, Mask]:
-    """Winding temperatures above 25 °C at the cuts of the periodic state, from assumed ones."""
+) -> tuple[Array, Mask, Array]:
+    """The periodic state from assumed winding temperatures (K, N + 1) above 25 °C at the cuts.
+
+    Returns those found, where there is a periodic state, and the highest temperature, between the
+    cuts, too.
+    """
     alpha = COPPER_COEFFICIENT
     low, high = nodes[:, :-1], nodes[:, 1:]
     middle = (low + high) / 2
@@ -263,32 +285,54 @@ def _one_period(
     safe = np.where(sound, determinant, 1.0)
     winding_now = ((1 - m22) * u + m12 * v) / safe
     housing_now = (m21 * u + (1 - m11) * v) / safe
-    found = np.empty((K, N + 1))
-    found[:, 0] = winding_now
+    found, shell = np.empty((K, N + 1)), np.empty((K, N + 1))
+    found[:, 0], shell[:, 0] = winding_now, housing_now
     for n in range(N):
         winding_now, housing_now = (
             e11[:, n] * winding_now + e12[:, n] * housing_now + forced[0, :, n],
             e21[:, n] * winding_now + e22[:, n] * housing_now + forced[1, :, n],
         )
-        found[:, n + 1] = winding_now
+        found[:, n + 1], shell[:, n + 1] = winding_now, housing_now
     # Where the magnets would be gone there is nothing to iterate.
     sound &= np.isfinite(found).all(axis=1) & (1 + beta * found > 0.05).all(axis=1)
-    return found, sound
+    return found, sound, np.maximum(found.max(axis=1), _between(body, h, base, gain, found, shell))
+
+
+def _between(
+    body: TwoBody,
+    h: Array,
+    loss: Array,
+    gain: Callable[[Array], Array],
+    found: Array,
+    shell: Array,
+) -> Array:
+    """Highest winding temperature inside a cut, by the cubic through its ends and slopes."""
+    C1, to_housing = body.winding_capacity[:, None], body.to_housing[:, None]
+
+    def slope(loss: Array, winding: Array, housing: Array) -> Array:
+        return h * (loss * gain(winding) - (winding - housing) / to_housing) / C1
+
+    low, high = found[:, :-1], found[:, 1:]
+    rising = slope(loss[0], low, shell[:, :-1])
+    falling = slope(loss.sum(axis=0), high, shell[:, 1:])
+    inside = (rising > 0) & (falling < 0) & (h < _SHORT_CUT * C1 * to_housing)
+    s = np.where(inside, rising / np.where(inside, rising - falling, 1.0), 0.0)
+    cubic = low + s * s * (3 - 2 * s) * (high - low)
+    cubic += s * (1 - s) * ((1 - s) * rising - s * falling)
+    return np.where(inside, cubic, low).max(axis=1)
 
 
 def _phi(z: Array) -> tuple[Array, Array, Array, Array]:
     """φ0 = e^z, φ1 = (e^z − 1)/z, φ2 = (φ1 − 1)/z, φ3 = (φ2 − 1/2)/z."""
     small = np.abs(z) < 0.1
-    safe = np.where(small, 1.0, z)
-    first = np.expm1(safe) / safe
-    second = (first - 1) / safe
-    third = (second - 0.5) / safe
-    series3 = 1 / 6 + z * (1 / 24 + z * (1 / 120 + z * (1 / 720 + z * (1 / 5040 + z / 40320))))
-    series2 = 0.5 + z * series3
-    series1 = 1 + z * series2
-    return (
-        np.exp(z),
-        np.where(small, series1, first),
-        np.where(small, series2, second),
-        np.where(small, series3, third),
-    )
+    third = 1 / 6 + z * (1 / 24 + z * (1 / 120 + z * (1 / 720 + z * (1 / 5040 + z / 40320))))
+    second = 0.5 + z * third
+    first = 1 + z * second
+    if not small.all():
+        safe = np.where(small, 1.0, z)
+        closed1 = np.expm1(safe) / safe
+        closed2 = (closed1 - 1) / safe
+        first = np.where(small, first, closed1)
+        second = np.where(small, second, closed2)
+        third = np.where(small, third, (closed2 - 0.5) / safe)
+    return 1 + z * first, first, second, third
