@@ -18,7 +18,9 @@ EXPONENT = (
     r"|\s*[×xX*·]\s*10(?P<{0}lost>\d+)(?!\d))"
 )
 _BLANK_GROUPS = re.compile(r"\d{1,3}(?:[' ]\d{3})+")
-_TOKEN = re.compile(r"(?<![\w.,^/])" + DIGITS + r"(?P<exponent>" + EXPONENT.format("x") + r")?")
+_TOKEN = re.compile(
+    r"(?<![\w.,^/])(?<![^\W\d_]-)" + DIGITS + r"(?P<exponent>" + EXPONENT.format("x") + r")?"
+)
 
 
 @dataclass(frozen=True, slots=True)
