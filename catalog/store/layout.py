@@ -238,7 +238,22 @@ def _layout_1(db: Database) -> None:
     _guard_cache(db)
 
 
-MIGRATIONS: tuple[Callable[[Database], None], ...] = (_layout_1,)
+# ---- layout 2: gears beside the motors
+
+
+def _layout_2(db: Database) -> None:
+    text = dict.fromkeys(("part_number", "maker", "series", "currency"), str)
+    figures = ("ratio", "efficiency", "inertia", "mass", "continuous_torque", "peak_torque",
+               "maximum_input_speed", "backlash", "diameter", "length", "price")  # fmt: skip
+    db.table("gears").create(
+        {**text, "stages": int, **dict.fromkeys(figures, float)},
+        pk=("maker", "part_number"),
+        not_null={"maker", "part_number", "ratio"},
+        strict=True,
+    )
+
+
+MIGRATIONS: tuple[Callable[[Database], None], ...] = (_layout_1, _layout_2)
 """One function a layout, in order; the last brings a catalog to VERSION."""
 
 
