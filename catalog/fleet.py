@@ -1,0 +1,100 @@
+"""The catalog's motors as arrays for the search."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+from numpy.typing import NDArray
+
+from ..schema.machines import Machines, coulomb_torque
+from .requirement import Requirement, RequirementError
+from .where import columns_of
+
+if TYPE_CHECKING:
+    from .store import Catalog
+
+Array = NDArray[np.float64]
+
+_SAME = (
+    "torque_constant",
+    "armature_resistance",
+    "armature_inductance",
+    "rotor_inertia",
+    "viscous_damping",
+    "pole_pairs",
+    "magnet_coefficient",
+    "thermal_resistance_winding_housing",
+    "thermal_resistance_housing_ambient",
+    "thermal_resistance",
+    "thermal_time_constant_winding",
+    "thermal_time_constant_housing",
+    "maximum_winding_temperature",
+    "rated_temperature_rise",
+    "rating_ambient",
+    "nominal_speed",
+    "peak_torque",
+    "maximum_speed",
+)
+_CURRENTS = ("nominal_current", "continuous_stall_current", "peak_current")
+_OTHERS = ("commutation", "no_load_current", "friction_torque", "nominal_voltage", "motor_constant")
+_SHOWN = ("mass", "price", "diameter")
+_ENDS = tuple(
+    f"{key}_{end}" for key in ("torque_constant", "armature_resistance") for end in ("low", "high")
+)
+
+
+@dataclass
+class Fleet:
+    """M motors: their ids, the columns that were loaded, and what physics needs of them."""
+
+    columns: Mapping[str, Array]
+    machines: Machines
+
+    def __len__(self) -> int:
+        return len(self.columns["id"])
+
+    @property
+    def ids(self) -> NDArray[np.int64]:
+        return self.columns["id"].astype(np.int64)
+
+
+def machines_of(columns: Mapping[str, Array]) -> Machines:
+    """The columns as `Machines`."""
+    n = len(columns["id"])
+    friction = coulomb_torque(
+        columns["friction_torque"],
+        columns["torque_constant"],
+        columns["no_load_current"],
+        columns["viscous_damping"],
+        columns["armature_resistance"],
+        columns["nominal_voltage"],
+    )
+    built = {key: columns[key] for key in _SAME}
+    built |= {key: columns[f"armature_{key}"] for key in _CURRENTS}
+    return Machines(
+        **built,
+        coulomb_torque=np.broadcast_to(friction, (n,)),
+        commutation=np.nan_to_num(columns["commutation"]).astype(np.int8),
+    )
+
+
+def load_fleet(catalog: Catalog, requirement: Requirement | None = None) -> Fleet:
+    """All motors of the catalog with the columns that a requirement needs."""
+    names: Sequence[str] = [
+        *_SAME,
+        *(f"armature_{key}" for key in _CURRENTS),
+        *_OTHERS,
+        *_SHOWN,
+    ]
+    if requirement is not None:
+        names = [*names, *columns_of(requirement.where)]
+        if requirement.tolerance == "printed":
+            names = [*names, *_ENDS]
+    try:
+        columns = catalog.columns(names)
+    except KeyError as error:
+        raise RequirementError(f"The catalog keeps no figure {error.args[0]}.") from None
+    return Fleet(columns, machines_of(columns))
