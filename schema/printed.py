@@ -79,7 +79,7 @@ _RANGE = re.compile(
 _BRACKET = re.compile(r"\s*(?:\((?P<a>[^()]*)\)|\[(?P<b>[^\[\]]*)\]|\{(?P<c>[^{}]*)\})\s*")
 # Digits that belong to a unit: powers, "V/1000 rpm", "10^-4 kgm2", "1/min".
 _UNIT_DIGITS = re.compile(
-    r"(?<=[/(×x* ])1[., ']?000(?!\d)|(?:(?<=[/(×x* ])|^)10\^?[+-]?\d\b"
+    r"(?<=[/(×x* ])1[., ']?000(?!\d)|(?:(?<=[/(×x*· ])|^)10\^?[+-]?\d\b"
     r"|(?<=[^\W\d_°)])\^?-?[1234](?!\d)|\^[({]?[+-]?[\d./]+[)}]?|(?:(?<=[/(\s*·])|^)1(?=/)|0-p"
 )
 
@@ -244,7 +244,8 @@ class CellReader:
         if unit == ":1":  # a gear ratio
             return unit
         if re.search(r"\d", _UNIT_DIGITS.sub("", unit)) or re.match(r"[/.,:'+-]\s*\d", unit):
-            numbers = [v for d in re.findall(DIGITS, plain(self.text)) for v in self._values(d)]
+            found = re.finditer(rf"(?P<minus>(?<![\w.,)])-)?(?P<d>{DIGITS})", plain(self.text))
+            numbers = [-v if n["minus"] else v for n in found for v in self._values(n["d"])]
             raise self.fail("more than one number", list(dict.fromkeys(numbers)))
         if any(unit.count(a) != unit.count(b) for a, b in ("()", "[]", "{}")):
             raise self.fail("a bracket that has no partner", [figure.value])
