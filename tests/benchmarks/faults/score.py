@@ -3,6 +3,7 @@
 import math
 from collections import Counter, defaultdict
 from collections.abc import Iterable
+from copy import deepcopy
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -252,22 +253,23 @@ def _column(t: Tally, rng: np.random.Generator) -> None:
 
 
 def _pair(t: Tally, rng: np.random.Generator) -> None:
+    """Two faults in one full row, each of which could be pinned to its figure alone."""
     s = sheet(rng, full=True, tag="P")
+    other = deepcopy(s)
     i = int(rng.integers(len(s.motors)))
     first = plant(s, i, rng, cause="power-of-ten")
-    second = plant(s, i, rng, cause=str(rng.choice(["power-of-ten", "unexplained"])))
+    second = plant(other, i, rng, cause=str(rng.choice(["power-of-ten", "unexplained"])))
     if first is None or second is None or first.keys == second.keys:
         return
-    both = (*first.keys, *second.keys)
-    if not judge(s, Planted(i, both, "two", math.nan)).detectable:
+    if not (judge(s, first).identifiable and judge(other, second).identifiable):
         return
-    if not all(judge(s, p).detectable for p in (first, second)):
-        return
+    for key in second.keys:
+        s.printed[key][i] = other.printed[key][i]
+    both = {*first.keys, *second.keys}
     alarms = _alarms(reconcile(batch_of(s)).findings, s.part_numbers[i])
     t.n["pairs"] += 1
-    touched = {k for f in alarms for k in (f.suspect, *f.figures)}
-    t.n["pair found"] += set(both) <= touched
+    t.n["pair found"] += both <= {k for f in alarms for k in (f.suspect, *f.figures)}
     suspects = {f.suspect for f in alarms}
-    t.n["pair suspects"] += set(both) <= suspects
-    if not set(both) <= suspects:
+    t.n["pair suspects"] += both <= suspects
+    if not both <= suspects:
         t.examples.append(f"PAIR {s.kind} {both} said {suspects}")
