@@ -10,7 +10,7 @@ from lxml import etree
 from .grid import TableError
 
 _MOST_MEMBERS = 10_000
-_MOST_BYTES = 1_000_000_000
+_MOST_BYTES = 600_000_000
 FAULTS = (
     etree.XMLSyntaxError,
     zipfile.BadZipFile,

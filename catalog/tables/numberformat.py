@@ -1,10 +1,11 @@
 """A stored number as its number format shows it, so that a unit in the format is read.
 
-Format codes follow ECMA-376 Part 1 (SpreadsheetML), section 18.8.30 and 18.8.31. Two things
-are left out on purpose: thousands marks, and any decimal mark but the point, since both depend
-on the reader's locale while the number is known.
+Format codes follow ECMA-376 Part 1 (SpreadsheetML), section 18.8.30 and 18.8.31. Thousands
+marks, and any decimal mark but the point, are left out on purpose, since both depend on the
+reader's locale while the number is known; a zero always stands before the point.
 """
 
+import math
 import re
 from dataclasses import dataclass
 from datetime import datetime, timedelta
@@ -41,6 +42,7 @@ class Section:
     decimals: int = 0
     optional_decimals: int = 0
     integers: int = 0
+    places: int = 0
     exponent: int = 0
     percent: int = 0
     thousandfold: int = 0
@@ -106,7 +108,7 @@ def _section(code: str) -> Section:
     scale = len(digits) - len(digits.rstrip(","))
     return Section(
         kind, before, after, len(part.replace(",", "")), part.count("#") + part.count("?"),
-        whole.count("0"), exponent, percent, scale, fraction, condition,
+        whole.count("0"), len(whole.replace(",", "")), exponent, percent, scale, fraction, condition,
     )  # fmt: skip
 
 
@@ -134,8 +136,12 @@ def shown(value: float, code: str) -> tuple[str, str | None]:
         return plain(value), None
     scaled = number * 100**section.percent / 1000**section.thousandfold
     if section.exponent:
-        mantissa, _, power = f"{scaled:.{section.decimals}E}".partition("E")
-        digits = f"{mantissa}E{power[0]}{int(power[1:]):0{max(1, section.exponent)}d}"
+        # With several places before the point the exponent goes in steps of as many.
+        step = max(1, section.places)
+        power = math.floor(math.log10(abs(scaled))) // step * step if scaled else 0
+        mantissa = f"{scaled / 10.0**power:.{section.decimals}f}"
+        sign = "-" if power < 0 else "+"
+        digits = f"{mantissa}E{sign}{abs(power):0{section.exponent}d}"
     else:
         digits = f"{scaled:.{section.decimals}f}"
         for _ in range(section.optional_decimals):

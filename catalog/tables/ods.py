@@ -19,7 +19,7 @@ _OFFICE = "{urn:oasis:names:tc:opendocument:xmlns:office:1.0}"
 _TEXT = "{urn:oasis:names:tc:opendocument:xmlns:text:1.0}"
 _STYLE = "{urn:oasis:names:tc:opendocument:xmlns:style:1.0}"
 _MOST_ROWS, _MOST_COLUMNS = 1_048_576, 16_384
-_MOST_CONTENT = 150_000_000
+_MOST_CONTENT = 80_000_000
 _FIGURE = re.compile(r"[+\-−]?\d(?:[\d.,'’ \xa0\u202f]*\d)?(?:[eE][+\-]?\d+)?|[+\-−]?[.,]\d+")
 _NOT_SHOWN = {_OFFICE + "annotation", _TEXT + "ruby-text", _TEXT + "note-body"}
 

@@ -100,7 +100,7 @@ def _declared_codec(raw: bytes, known: str | None) -> str | None:
 def _refuse_binary(name: str, sample: str) -> None:
     controls = sum(sign < " " and sign not in "\t\r\n\f\x0b" for sign in sample)
     broken = sample.count("\N{REPLACEMENT CHARACTER}")
-    if controls > 0.02 * len(sample) or broken > 0.2 * len(sample):
+    if controls > 8 + 0.02 * len(sample) or broken > 0.2 * len(sample):
         raise TableError(
             f"{name}: is no text and no known table format; give a table as CSV, workbook, "
             "PDF, page or text"

@@ -11,12 +11,13 @@ from .grid import Grid
 _LABEL = r"[^\s:=;|]{1,40}(?:[ \xa0][^\s:=;|]{1,40}){0,9}"
 # A colon between digits is a ratio or a time, one before // a web address.
 _SIGN = r"[ \xa0]*(?:：|=|:(?!//)(?!(?<=\d:)\d))[ \xa0]*"
-_PAIR = re.compile(rf"\s*(?:[•·▪◦*\-–][ \xa0]+)?(?P<label>{_LABEL}){_SIGN}(?P<value>.*)$", re.S)
+_PAIR = re.compile(rf"\s*(?P<label>{_LABEL}){_SIGN}(?P<value>.*)$", re.S)
 _HARD = re.compile(
     rf"[;；|•▪、\n]|(?:(?<=!)|(?<=[^\W\d]{{5}}[.?]))[ \xa0]+(?=[A-ZÀ-Þ]{_LABEL}{_SIGN}\S)"
 )
 _COMMA = re.compile(r"[,，·][ \xa0]+(?=[^\W\d])")
 _SIGN_IN = re.compile(_SIGN)
+_BULLET = re.compile(r"^[•·▪◦*\-–][ \xa0]+")
 _WIDE = re.compile(r"[ \xa0\u2000-\u200a\u3000]{2,}|\t+|[ ]*│[ ]*")
 _NOTE = re.compile(r"\s*(?:[*†‡¹²³⁴⁵]|\(?\d{1,2}\)|note|anm)", re.IGNORECASE)
 _FIGURE = re.compile(
@@ -135,8 +136,9 @@ def _paragraphs(lines: list[str]) -> list[tuple[int, list[str]]]:
 def _logical_lines(paragraph: list[str], start: int) -> list[tuple[int, str]]:
     """Lines with what was wrapped put back: labels, values, hyphenated words."""
     out: list[tuple[int, str]] = []
-    for number, line in enumerate((line.strip() for line in paragraph), start):
-        if not out:
+    for number, whole in enumerate((line.strip() for line in paragraph), start):
+        line = _BULLET.sub("", whole)
+        if not out or line != whole:
             out.append((number, line))
             continue
         above = out[-1][1]
@@ -256,7 +258,10 @@ class _Block:
         for number, line in self.lines:
             words = line.split()
             tail = _tail(line)
-            if tail == n or (not seen and tail == 0 and len(words) in (n, n + 1) and n > 1):
+            heading = not seen and tail == 0 and n > 1 and len(words) >= n
+            if heading and len(words) > n + 1:  # a title has as many words, but few with digits
+                heading = all(any(sign.isdigit() for sign in word) for word in words[-n:])
+            if tail == n or heading:
                 label = " ".join(words[:-n])
                 rows.append([label, *words[-n:]])
                 seen = seen or tail == n

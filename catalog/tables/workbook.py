@@ -2,20 +2,17 @@
 
 import datetime
 import io
-import struct
 from collections.abc import Callable, Iterable, Sequence
-from pathlib import PurePath
 
 from .archive import Archive
+from .binary import OLE_MAGIC, check_xls, check_xlsb
 from .cells import clean, column_name, even, some
 from .grid import Grid, Span, TableError
 from .numberformat import plain
 from .source import Source
 
-OLE_MAGIC = bytes.fromhex("D0CF11E0A1B11AE1")
 _MOST_OLE = 100_000_000
 _MOST_ZIP = 200_000_000
-_MOST_BOX = 4_000_000
 _BINARY_REMARK = (
     "of this kind of workbook only stored values are read: units in number formats, hidden rows "
     "and columns, and errors in formulas can't be seen; XLSX tells them"
@@ -30,7 +27,7 @@ def read_workbook(source: Source, sheet: str | None) -> tuple[str, list[Grid], l
     archive = Archive(io.BytesIO(source.read(_MOST_ZIP, "workbook")), source.name)
     if "xl/workbook.bin" in archive:
         archive.prove()
-        _check_xlsb(archive)
+        check_xlsb(archive)
         return "xlsb", *_read_calamine(source, sheet)
     if "xl/workbook.xml" in archive:
         return "xlsx", *_read_xlsx(archive, sheet)
@@ -108,10 +105,7 @@ def _read_ods(archive: Archive, wanted: str | None) -> tuple[list[Grid], list[st
 
 def _read_xls(source: Source, wanted: str | None) -> tuple[list[Grid], list[str]]:
     data = source.read(_MOST_OLE, "workbook of the old kind")
-    if "EncryptedPackage".encode("utf-16-le") in data:
-        raise TableError(f"{source.name}: is protected by a password; save it without one")
-    if not any(entry.encode("utf-16-le") in data for entry in ("Workbook", "Book")):
-        raise TableError(f"{source.name}: is an Office file of the old kind, but no workbook")
+    check_xls(data, source.name)
     return _read_calamine(source, wanted)
 
 
@@ -133,15 +127,8 @@ def _read_calamine(source: Source, wanted: str | None) -> tuple[list[Grid], list
         title = sheets[i][0]
         try:
             sheet = book.get_sheet_by_name(title)
-            if sheet.height * sheet.width > _MOST_BOX:
-                raise TableError(
-                    f"{source.name}: sheet “{title}” spreads over {sheet.height} rows by "
-                    f"{sheet.width} columns, too much for one table; cut the motors out of it"
-                )
             values = sheet.to_python(skip_empty_area=False)
             merged = sheet.merged_cell_ranges or []
-        except TableError:
-            raise
         except Exception as error:
             raise _unreadable(source.name, error) from None
         return _of_values(values, merged, title)
@@ -192,46 +179,3 @@ def _text(value: object, row: int, column: int, dates: list[str]) -> str:
     if isinstance(value, datetime.time | datetime.timedelta):
         return f"time {value}"
     return f"date {value}".removesuffix(" 00:00:00")
-
-
-def _check_xlsb(archive: Archive) -> None:
-    """Refuse a sheet whose cells span so wide a box that the library would fill memory.
-
-    Records: MS-XLSB 2.1.4; BrtRowHdr is 0 and begins with the row, cells are 1 … 11 and begin
-    with the column.
-    """
-    for member in archive.members:
-        if not (PurePath(member).parent.name == "worksheets" and member.endswith(".bin")):
-            continue
-        data = archive.read(member)
-        at, row = 0, 0
-        top, bottom, left, right = 1 << 30, 0, 1 << 30, 0
-        while at < len(data):
-            kind, at = _packed(data, at, 2)
-            size, at = _packed(data, at, 4)
-            if kind == 0 and at + 4 <= len(data):
-                row = struct.unpack_from("<I", data, at)[0]
-            elif 1 <= kind <= 11 and at + 4 <= len(data):
-                column = struct.unpack_from("<I", data, at)[0]
-                top, bottom = min(top, row), max(bottom, row)
-                left, right = min(left, column), max(right, column)
-            at += size
-        if bottom >= top and (bottom + 1) * (right + 1) > _MOST_BOX:
-            raise TableError(
-                f"{archive.name}: a sheet spreads its cells down to {column_name(right + 1)}"
-                f"{bottom + 1}, too much for one table; cut the part with the motors out of it"
-            )
-
-
-def _packed(data: bytes, at: int, most: int) -> tuple[int, int]:
-    """A number of up to ``most`` bytes, seven bits each, lowest first."""
-    value = 0
-    for i in range(most):
-        if at >= len(data):
-            break
-        byte = data[at]
-        at += 1
-        value |= (byte & 0x7F) << (7 * i)
-        if byte < 128:
-            break
-    return value, at

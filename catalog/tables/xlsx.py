@@ -29,7 +29,7 @@ from .cells import (
 from .grid import Grid, TableError
 
 _MOST_ROWS, _MOST_COLUMNS = 1_048_576, 16_384
-_REFERENCE = re.compile(r"([A-Z]{1,3})(\d{1,7})")
+_SHORT = re.compile(r"-?(?:0|[1-9]\d*)(?:\.\d*[1-9])?")
 _MERGED = re.compile(rb'<(?:\w+:)?mergeCell\s[^>]*?ref="([A-Z]+)(\d+):([A-Z]+)(\d+)"')
 _DATA_END = re.compile(rb"</(?:\w+:)?sheetData\s*>|<(?:\w+:)?sheetData\s*/>")
 _ESCAPED = re.compile(r"_x([0-9A-Fa-f]{4})_")
@@ -116,6 +116,7 @@ class Workbook:
             self.sheets.append(Sheet(name, member, hidden))
         parts = {kind.rpartition("/")[2]: target for kind, target in targets.values()}
         self._codes = self._formats(parts.get("styles", "styles.xml"))
+        self._general = {str(i) for i, code in enumerate(self._codes) if code in {"General", "@"}}
         self._is_date = [numberformat.is_date(code) for code in self._codes]
         self._strings = self._shared(parts.get("sharedStrings", "sharedStrings.xml"))
 
@@ -188,10 +189,9 @@ class Workbook:
                 while chunk := stream.read(1 << 20):
                     tail += chunk
                     if not found:
-                        if end := _DATA_END.search(tail):
-                            tail, found = tail[end.end() :], True
-                        else:
-                            tail = tail[-64:]
+                        end = _DATA_END.search(tail) if b"sheetData" in tail else None
+                        found = end is not None
+                        tail = tail[end.end() :] if end else tail[-64:]
                     if len(tail) > 20_000_000:
                         break
             except FAULTS as error:
@@ -200,6 +200,15 @@ class Workbook:
             (int(m[2]), _number_of(m[1].decode()), int(m[4]), _number_of(m[3].decode()))
             for m in _MERGED.finditer(tail)
         ]
+
+    def simple_text(self, kind: str | None, style: str | None, value: str | None) -> str | None:
+        """The text of a cell that has but a value, where its format changes nothing; else None."""
+        if value and (style is None or style in self._general):
+            if kind == "s" and value.isdecimal() and int(value) < len(self._strings):
+                return self._strings[int(value)]
+            if (kind is None or kind == "n") and len(value) < 15 and _SHORT.fullmatch(value):
+                return value
+        return None
 
     def cell_text(self, cell: etree._Element, place: str, notes: _Notes) -> str:
         """The text of a <c> element as a person sees it."""
@@ -266,6 +275,7 @@ class _SheetReader:
         self.hidden_rows: set[int] = set()
         self.hidden_columns: set[int] = set()
         self.notes = _Notes()
+        self._letters: dict[str, int] = {}
 
     def chunks(self) -> Iterator[dict[int, dict[int, str]]]:
         archive = self._book._archive
@@ -292,6 +302,12 @@ class _SheetReader:
         if cells:
             yield cells
 
+    def _number(self, letters: str) -> int:
+        if not letters.isascii() or not letters.isupper() or len(letters) > 3:
+            raise ValueError(f"a cell has the reference {letters[:20]}")
+        number = self._letters[letters] = _number_of(letters)
+        return number
+
     def _column(self, item: etree._Element) -> None:
         if item.get("hidden") in {"1", "true"} or item.get("width") == "0":
             low = _within(item.get("min"), 1, _MOST_COLUMNS)
@@ -301,12 +317,21 @@ class _SheetReader:
     def _row(self, item: etree._Element, number: int) -> dict[int, str]:
         row: dict[int, str] = {}
         column = 0
+        plain_value = item.tag[:-3] + "v"
+        book = self._book
         for cell in item:
-            reference = _REFERENCE.match(cell.get("r") or "")
-            column = _number_of(reference[1]) if reference else column + 1
-            if not len(cell) or column > _MOST_COLUMNS:
+            letters = (cell.get("r") or "").rstrip("0123456789")
+            column = (
+                (self._letters.get(letters) or self._number(letters)) if letters else column + 1
+            )
+            count = len(cell)
+            if not count or column > _MOST_COLUMNS:
                 continue
-            text = self._book.cell_text(cell, f"{column_name(column)}{number}", self.notes)
+            text = None
+            if count == 1 and cell[0].tag == plain_value:  # most cells: spares the long way
+                text = book.simple_text(cell.get("t"), cell.get("s"), cell[0].text)
+            if text is None:
+                text = book.cell_text(cell, f"{column_name(column)}{number}", self.notes)
             if text:
                 row[column] = text
         if row and (item.get("hidden") in {"1", "true"} or item.get("ht") == "0"):

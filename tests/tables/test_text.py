@@ -1,0 +1,147 @@
+"""Pasted text: columns by blanks, pairs of label and value, labels over two lines."""
+
+from pathlib import Path
+
+from motorfolio.catalog.tables import read_tables
+
+from .files import check, one, read
+
+ALIGNED = """\
+BRUSHLESS MOTORS, FRAME 42
+
+Model           Un      n0      I0     Mn
+                V       rpm     mA     mNm
+AD-22-12        12              22.5   9.25
+AD-22-24        24      6120           9.23
+AD-22-48        48      6100    5.6
+
+* at 25 °C winding temperature
+"""
+
+
+def test_blank_cells_do_not_shift_aligned_columns(tmp_path: Path) -> None:
+    grid = one(read(tmp_path / "a.txt", ALIGNED))
+    assert grid.rows == [
+        ["BRUSHLESS MOTORS, FRAME 42", "", "", "", ""],
+        ["Model", "Un", "n0", "I0", "Mn"],
+        ["", "V", "rpm", "mA", "mNm"],
+        ["AD-22-12", "12", "", "22.5", "9.25"],
+        ["AD-22-24", "24", "6120", "", "9.23"],
+        ["AD-22-48", "48", "6100", "5.6", ""],
+        ["* at 25 °C winding temperature", "", "", "", ""],
+    ]
+    assert grid.row_numbers == [1, 3, 4, 5, 6, 7, 9]
+
+
+def test_ragged_blanks_with_even_rows_go_by_order(tmp_path: Path) -> None:
+    text = "Type  U  n\nLONG-NAME-1  24    6000\nA  12  5900\n"
+    grid = one(read(tmp_path / "a.txt", text))
+    assert grid.rows == [["Type", "U", "n"], ["LONG-NAME-1", "24", "6000"], ["A", "12", "5900"]]
+
+
+def test_single_blanks_take_the_figures_from_the_end(tmp_path: Path) -> None:
+    text = (
+        "Part number RB-06 RB-12 RB-24\nNominal voltage V 6 12 24\n"
+        "No load speed rpm 6170 6100 6120\nTerminal resistance Ω 1.31 5.35 –\n"
+    )
+    grid = one(read(tmp_path / "a.txt", text))
+    assert grid.rows == [
+        ["Part number", "RB-06", "RB-12", "RB-24"],
+        ["Nominal voltage V", "6", "12", "24"],
+        ["No load speed rpm", "6170", "6100", "6120"],
+        ["Terminal resistance Ω", "1.31", "5.35", "–"],
+    ]
+    assert "shift" in grid.remarks[0]
+
+
+def test_labels_over_two_lines(tmp_path: Path) -> None:
+    text = (
+        "Bestellnummer             A-12    A-24\n"
+        "Drehmoment-\n"
+        "konstante        mNm/A    18,1    36,2\n"
+        "Anschluss-\n"
+        "widerstand       Ω        0,62    2,45\n"
+        "Wärmewiderstand  K/W      5,2     5,2\n"
+        "(Gehäuse–Umgebung)\n"
+    )
+    grid = one(read(tmp_path / "a.txt", text))
+    assert [row[0] for row in grid.rows] == [
+        "Bestellnummer",
+        "Drehmomentkonstante",
+        "Anschlusswiderstand",
+        "Wärmewiderstand (Gehäuse–Umgebung)",
+    ]
+    assert grid.rows[1][-2:] == ["18,1", "36,2"]
+
+
+def test_two_tables_of_other_columns_are_two_grids(tmp_path: Path) -> None:
+    text = (
+        "Type      U    n\nA1        24   6000\nA2        12   5900\n\n"
+        "Accessory       Order number      Mass      Fits to\n"
+        "Encoder         991122            25 g      A1, A2\n"
+        "Brake           991133            60 g      A2\n"
+    )
+    file = read(tmp_path / "a.txt", text)
+    assert [len(grid.column_numbers) for grid in file.grids] == [3, 4]
+    for grid in file.grids:
+        check(grid)
+
+
+def test_pairs_with_all_separators() -> None:
+    text = (
+        "Model: WP-1\nQuiet motor, best quality! Rated voltage: 24VDC; No load speed: 4,000 ± 10 % "
+        "rpm; No-load current: <0.5A | Weight： 205g, Shaft: 5 mm\nRatio: 1:50\n\n"
+        "Model = WP-2\n• Rated voltage: 36V, Power 250 W (peak), Rated speed: 5,420rpm,\n"
+        "• Torque\nconstant: 0.055 Nm/A\n• Speed: 3000rpm; Speed: 2800rpm\n"
+    )
+    first, second = read_tables(None, text.encode(), format="text").grids
+    check(first)
+    check(second)
+    assert first.rows == [
+        ["Model", "WP-1"],
+        ["Quiet motor, best quality!", ""],
+        ["Rated voltage", "24VDC"],
+        ["No load speed", "4,000 ± 10 % rpm"],
+        ["No-load current", "<0.5A"],
+        ["Weight", "205g"],
+        ["Shaft", "5 mm"],
+        ["Ratio", "1:50"],
+    ]
+    assert first.row_numbers == [1, 2, 2, 2, 2, 2, 2, 3]
+    assert second.rows == [
+        ["Model", "WP-2"],
+        ["Rated voltage", "36V"],
+        ["Power 250 W (peak)", ""],
+        ["Rated speed", "5,420rpm"],
+        ["Torque constant", "0.055 Nm/A"],
+        ["Speed", "3000rpm"],
+        ["Speed", "2800rpm"],
+    ]
+
+
+def test_a_value_wrapped_onto_the_next_line(tmp_path: Path) -> None:
+    text = (
+        "Motor: A1\nRated voltage:\n24 V\nRated speed: 4,000 ±\n10 % rpm\n"
+        "Drehmoment-\nkonstante: 36 mNm/A\n"
+    )
+    grid = one(read(tmp_path / "a.txt", text))
+    assert grid.rows == [
+        ["Motor", "A1"],
+        ["Rated voltage", "24 V"],
+        ["Rated speed", "4,000 ± 10 % rpm"],
+        ["Drehmomentkonstante", "36 mNm/A"],
+    ]
+
+
+def test_a_label_with_a_comma_stays_whole(tmp_path: Path) -> None:
+    grid = one(read(tmp_path / "a.txt", "Motor: A1\nIdle current, I0: 61 mA\nL, ph-ph: 2 mH\n"))
+    assert [row[0] for row in grid.rows] == ["Motor", "Idle current, I0", "L, ph-ph"]
+
+
+def test_wide_east_asian_signs_take_two_places(tmp_path: Path) -> None:
+    text = (
+        "型号      电压    转速\n甲八十    220     3000\n"
+        "B                 2000\nC80       220     1000\n"
+    )
+    grid = one(read(tmp_path / "a.txt", text))
+    assert grid.rows[2] == ["B", "", "2000"]
