@@ -118,7 +118,9 @@ def _add_constants(constants: list[dict[str, Document]], key: str, c: ConstantCo
 
 def _kind(batch: Batch, i: int) -> Document:
     return doc.model(
-        doc.fact(Commutation(int(batch.commutation[i])).word, MODEL_BASES[batch.commutation_basis[i]]),
+        doc.fact(
+            Commutation(int(batch.commutation[i])).word, MODEL_BASES[batch.commutation_basis[i]]
+        ),
         doc.fact(batch.magnet[i], MODEL_BASES[batch.magnet_basis[i]]),
         float(batch.reference_temperature[i]),
         MODEL_BASES[batch.reference_temperature_basis[i]],

@@ -1,8 +1,9 @@
 """Files to motors in the catalog: read, correct, reconcile, store; all of a call, or nothing."""
 
+import hashlib
 import json
 from collections import Counter
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from contextlib import contextmanager
 from dataclasses import dataclass, field
 from pathlib import Path
@@ -37,23 +38,31 @@ MOST_FINDINGS = 1000
 
 @dataclass(frozen=True, slots=True)
 class Options:
-    """What a call tells about its files; ``overrides`` are readings as --set takes them."""
+    """What a call tells about its files.
+
+    overrides: heading as printed → "quantity[:unit[:convention]]"; keep: use them for the
+    maker's further files too.
+    """
 
     maker: str | None = None
     series: str | None = None
     sheet: str | None = None
     format: str | None = None
     commutation: str | None = None
-    overrides: tuple[str, ...] = ()
+    overrides: Mapping[str, str] = field(default_factory=dict)
     keep: bool = False
     strict: bool = False
     dry_run: bool = False
 
-    def fingerprint(self, kept: Sequence[tuple[str, str, str]]) -> str:
-        """What changes the reading of a file, as text: the same file under the same options and
-        kept readings is read alike."""
-        told = [self.maker, self.series, self.sheet, self.commutation, *self.overrides]
-        return json.dumps([told, [list(reading) for reading in kept]], ensure_ascii=False)
+    def fingerprint(self, headings: Sequence[Heading]) -> str:
+        """How a file was read, as text: the same bytes with the same fingerprint say the same."""
+        told = [self.maker, self.series, self.sheet, self.commutation]
+        read = [
+            [h.text, h.quantity, h.unit, h.convention.as_json() if h.convention else None]
+            for h in headings
+        ]
+        digest = hashlib.sha256(json.dumps(read, ensure_ascii=False).encode()).hexdigest()
+        return json.dumps([*told, digest], ensure_ascii=False)
 
 
 @dataclass(slots=True)
@@ -73,6 +82,7 @@ class FileResult:
     unread: list[Document] = field(default_factory=list)
     findings: list[Document] = field(default_factory=list)
     documents: list[Document] = field(default_factory=list)
+    makers: set[str] = field(default_factory=set)
     severities: Counter[str] = field(default_factory=Counter)
     motors: int = 0
     stored: int = 0
@@ -142,10 +152,11 @@ def import_files(
         with Catalog.open(catalog) as known:
             kept, corrections = known.kept_readings(), known.corrections()
     results: list[FileResult] = []
-    with _storing(catalog, options, kept) as store:
+    with _storing(catalog, options) as store:
         for file in files:
             table_file, reading = _read(file, options, kept, standard_input)
             result = FileResult(table_file.name, table_file.sha256, table_file.format)
+            result.headings = list(reading.headings)
             results.append(result)
             for table in _tables(reading.batches, corrections, result):
                 _note(result, table, with_documents, corrections)
@@ -183,24 +194,37 @@ def _read(
     kept: Sequence[tuple[str, str, str]],
     standard_input: Callable[[], bytes] | None,
 ) -> "tuple[TableFile, Reading]":
+    """The file's tables and their reading, with the readings kept for its maker."""
     from .reading import ReadOptions, read
     from .tables import read_tables
 
-    if file == STANDARD_INPUT:
-        data = standard_input() if standard_input else b""
-        table_file = read_tables(None, data, format=options.format, sheet=options.sheet)
-    else:
-        table_file = read_tables(Path(file), format=options.format, sheet=options.sheet)
-    return table_file, read(
-        table_file,
-        ReadOptions(
-            maker=options.maker,
-            series=options.series,
-            commutation=options.commutation,
-            overrides=options.overrides,
-            kept=tuple(kept),
-        ),
-    )
+    data = standard_input() if file == STANDARD_INPUT and standard_input else None
+
+    def attempt(readings: dict[str, str]) -> "tuple[TableFile, Reading]":
+        path = None if file == STANDARD_INPUT else Path(file)
+        table_file = read_tables(path, data, format=options.format, sheet=options.sheet)
+        return table_file, read(
+            table_file,
+            ReadOptions(
+                maker=options.maker or "",
+                series=options.series,
+                sheet=options.sheet,
+                overrides=dict(options.overrides),
+                kept=readings,
+                commutation=options.commutation,
+            ),
+        )
+
+    by_maker: dict[str, dict[str, str]] = {}
+    for maker, heading, reading in kept:
+        by_maker.setdefault(maker, {})[heading] = reading
+    first = attempt(by_maker.get(options.maker or "", {}))
+    if options.maker or not any(by_maker):
+        return first
+    # the sheet itself may name a maker for whom readings are kept
+    batch = next(iter(first[1].batches), None)
+    maker = batch.maker[0] if batch is not None and len(batch) else ""
+    return attempt(by_maker.get(maker, by_maker.get("", {})))
 
 
 # ---- one table at a time
@@ -215,7 +239,7 @@ class _Table:
 
 
 def _tables(
-    batches: "Iterator[Batch] | Sequence[Batch]",
+    batches: Iterable[Batch],
     corrections: Sequence[Correction],
     result: FileResult,
 ) -> Iterator[_Table]:
@@ -230,6 +254,7 @@ def _note(
     result: FileResult, table: _Table, with_documents: bool, corrections: Sequence[Correction]
 ) -> None:
     result.motors += len(table.published)
+    result.makers.update(table.published.maker)
     findings = finding_documents(table.reconciled)
     result.severities.update(f["severity"] for f in findings)
     if with_documents:
@@ -245,10 +270,8 @@ def _note(
 
 
 @contextmanager
-def _storing(
-    path: Path, options: Options, kept: Sequence[tuple[str, str, str]]
-) -> "Iterator[_Store]":
-    store = _Store(path, options, kept)
+def _storing(path: Path, options: Options) -> "Iterator[_Store]":
+    store = _Store(path, options)
     try:
         yield store
     except BaseException:
@@ -261,12 +284,9 @@ def _storing(
 class _Store:
     """Buffers tables, then writes them in one transaction."""
 
-    def __init__(
-        self, path: Path, options: Options, kept: Sequence[tuple[str, str, str]]
-    ) -> None:
+    def __init__(self, path: Path, options: Options) -> None:
         self.path = path
         self.options = options
-        self.fingerprint = options.fingerprint(kept)
         self.pending: list[tuple[FileResult, _Table]] = []
         self.catalog: Catalog | None = None
         self.created = False
@@ -291,7 +311,7 @@ class _Store:
             self.give_up()
             return
         self._flush()
-        if all(result.unchanged for result in results):
+        if all(result.unchanged for result in results) and not self.options.keep:
             self.give_up()
             return
         assert self.writer is not None
@@ -302,6 +322,7 @@ class _Store:
                 file_id = self.file_ids[id(result)]
                 if file_id is not None:
                     self._finish_file(file_id, result)
+            self._keep_readings(results)
             columns.rebuild(connection, sorted(self.touched))
             connection.execute(
                 "UPDATE imports SET files = ?, motors = ? WHERE id = ?",
@@ -309,6 +330,13 @@ class _Store:
                  self.writer.import_id),
             )  # fmt: skip
         self.catalog.commit()
+
+    def _keep_readings(self, results: Sequence[FileResult]) -> None:
+        assert self.catalog is not None
+        if self.options.keep:
+            for maker in sorted({maker for result in results for maker in result.makers}):
+                for heading, reading in self.options.overrides.items():
+                    self.catalog.set_kept_reading(maker, heading, reading)
 
     def _begin(self) -> Writer:
         self.created = not self.path.exists()
@@ -346,7 +374,7 @@ class _Store:
             return None
         return writer.add_file(
             file=result.file, sha256=result.sha256, format=result.format, layout="",
-            options=self.fingerprint, remarks=(),
+            options=self.options.fingerprint(result.headings), remarks=(),
         )  # fmt: skip
 
     def _is_stored(self, result: FileResult) -> bool:
@@ -357,7 +385,7 @@ class _Store:
         """
         assert self.writer is not None
         connection = self.writer.connection
-        wanted = (result.sha256, self.fingerprint)
+        wanted = (result.sha256, self.options.fingerprint(result.headings))
         last = connection.execute(
             "SELECT sha256, options FROM files WHERE file = ? ORDER BY id DESC LIMIT 1",
             (result.file,),
@@ -421,4 +449,3 @@ class _Store:
         if self.catalog is not None:
             self.catalog.close()
             self.catalog = None
-

@@ -200,6 +200,18 @@ class Catalog:
                 load.motors(self.connection, revisions.revision_ids(self.connection, known))
             )
 
+    def changed_motors(
+        self, import_id: int
+    ) -> Iterator[tuple["Document | None", "Document | None"]]:
+        """The motors that an import touched: documents before and after, None where none is."""
+        from . import revisions
+
+        with in_words(self.path):
+            for old, new in revisions.changed_motors(self.connection, import_id):
+                ids = [i for i in (old, new) if i is not None]
+                found = dict(zip(ids, load.motors(self.connection, ids), strict=True))
+                yield found.get(old or 0), found.get(new or 0)
+
     # ---- changing
 
     def undo(self, import_id: int | None = None) -> "Undone":
@@ -211,7 +223,9 @@ class Catalog:
             if not known:
                 raise CatalogError(f"Nothing has been imported into {self.path}.")
             if import_id is not None and import_id not in known:
-                raise CatalogError(f"{self.path} has no import {import_id}; see motorfolio revisions.")
+                raise CatalogError(
+                    f"{self.path} has no import {import_id}; see motorfolio revisions."
+                )
             done = revisions.undo(connection, known[-1] if import_id is None else import_id)
             columns.rebuild(connection, sorted(done.sources))
         return done
@@ -225,14 +239,13 @@ class Catalog:
             columns.rebuild(connection, sorted(revisions.remove(connection, motors, now())))
         return motors
 
-    def keep_reading(self, maker: str, heading: str, reading: str) -> None:
-        """Use this reading for the heading in further files of the maker."""
-        with self.changing() as connection:
-            connection.execute(
-                "INSERT INTO kept_readings VALUES (?,?,?,?) ON CONFLICT DO UPDATE SET "
-                "reading = excluded.reading, at = excluded.at",
-                (maker, heading, reading, now()),
-            )
+    def set_kept_reading(self, maker: str, heading: str, reading: str) -> None:
+        """Use this reading for the heading in further files of the maker; in a transaction."""
+        self.connection.execute(
+            "INSERT INTO kept_readings VALUES (?,?,?,?) ON CONFLICT DO UPDATE SET "
+            "reading = excluded.reading, at = excluded.at",
+            (maker, heading, reading, now()),
+        )
 
     def forget_reading(self, maker: str, heading: str) -> None:
         """No longer use the kept reading; CatalogError if there is none."""
@@ -245,4 +258,3 @@ class Catalog:
                     f'No reading of "{heading}" is kept for {maker or "no maker"}; '
                     "see motorfolio readings."
                 )
-

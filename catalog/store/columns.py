@@ -89,7 +89,9 @@ def load(connection: sqlite3.Connection, names: Sequence[str]) -> dict[str, Floa
             parts["id"].append(ids)
             for name in cached:
                 data = held.get((source, name))
-                parts[name].append(np.full(len(ids), np.nan) if data is None else np.frombuffer(data))
+                parts[name].append(
+                    np.full(len(ids), np.nan) if data is None else np.frombuffer(data)
+                )
         if missing:
             columns = select(connection, source, missing)
             for name in missing if mark is not None else ["id", *missing]:

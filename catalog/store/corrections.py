@@ -48,9 +48,7 @@ def corrected(
     """The batch with the corrections that apply, what they replaced, and remarks on the others."""
     if not corrections:
         return batch, [], []
-    entry_of = {
-        who: i for i, who in enumerate(zip(batch.maker, batch.part_number, strict=True))
-    }
+    entry_of = {who: i for i, who in enumerate(zip(batch.maker, batch.part_number, strict=True))}
     figures = dict(batch.figures)
     applied: list[AppliedCorrection] = []
     remarks: list[str] = []

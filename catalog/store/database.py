@@ -41,7 +41,9 @@ def _sentence(path: Path, error: sqlite3.Error) -> str:
             f"{BUSY_SECONDS:.0f} s; nothing was changed, try again when that is done."
         )
     if code in (sqlite3.SQLITE_READONLY, sqlite3.SQLITE_PERM):
-        return f"The catalog {path} can't be written (read-only file or folder); nothing was changed."
+        return (
+            f"The catalog {path} can't be written (read-only file or folder); nothing was changed."
+        )
     if code == sqlite3.SQLITE_FULL:
         return f"The disk is full: nothing was changed in {path}; make room and try again."
     if code in (sqlite3.SQLITE_NOTADB, sqlite3.SQLITE_CORRUPT):
@@ -122,4 +124,3 @@ def _identify(connection: sqlite3.Connection, path: Path) -> None:
 def layout_version(connection: sqlite3.Connection) -> int:
     """The layout that the file has (0: still empty)."""
     return connection.execute("PRAGMA user_version").fetchone()[0]
-

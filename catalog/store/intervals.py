@@ -31,7 +31,9 @@ def encode(
         )
     given = ~np.isnan(value)
     exact = (low == value) & (high == value)
-    digits = [int(e) if ok else None for e, ok in zip(exponent.tolist(), fits.tolist(), strict=True)]
+    digits = [
+        int(e) if ok else None for e, ok in zip(exponent.tolist(), fits.tolist(), strict=True)
+    ]
     odd = np.flatnonzero(given & ~fits & ~exact).tolist()
     return digits, [(i, low[i].item(), high[i].item()) for i in odd]
 

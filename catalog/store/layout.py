@@ -260,7 +260,9 @@ MIGRATIONS: tuple[Callable[[Database], None], ...] = (_layout_1, _layout_2)
 def _guard_cache(db: Database) -> None:
     """Drop a source's cached columns when someone edits its rows by hand."""
     for table in ("figure_value", "constants", "motor"):
-        source = "old.source" if table == "motor" else "(SELECT source FROM motor WHERE id = old.id)"
+        source = (
+            "old.source" if table == "motor" else "(SELECT source FROM motor WHERE id = old.id)"
+        )
         for event in ("UPDATE", "DELETE"):
             db.execute(
                 f"CREATE TRIGGER {table}_{event.lower()}_drops_cache AFTER {event} ON {table} "
@@ -354,7 +356,7 @@ def _published_view() -> str:
             )
         branches.append(
             f"SELECT m.maker, m.part_number, '{key}' AS quantity, d.text AS heading, "
-            f"t.\"{key}\" AS text, d.unit AS printed_unit, {value} AS value, {low} AS low, "
+            f't."{key}" AS text, d.unit AS printed_unit, {value} AS value, {low} AS low, '
             f"{high} AS high, '{unit}' AS unit, trim({convention}) AS convention, "
             'f.file, s.sheet, s.page, coalesce(e."row", p."row", m."row") AS "row", '
             'coalesce(e."column", p."column", m."column") AS "column", '
@@ -366,7 +368,7 @@ def _published_view() -> str:
             f"LEFT JOIN applied_corrections a ON a.motor = m.id AND a.quantity = '{key}' "
             "LEFT JOIN corrections k ON k.id = a.correction "
             "JOIN sources s ON s.id = m.source JOIN files f ON f.id = s.file "
-            f"WHERE t.\"{key}\" IS NOT NULL"
+            f'WHERE t."{key}" IS NOT NULL'
         )
     return " UNION ALL ".join(branches)
 
@@ -374,7 +376,7 @@ def _published_view() -> str:
 def _findings_view() -> str:
     return (
         "SELECT m.maker, m.part_number, n.scope, n.severity, n.relation, n.suspect, n.cause, "
-        "n.ratio, n.implied, n.unit, n.message, f.file, s.sheet, s.page, n.\"row\", n.\"column\" "
+        'n.ratio, n.implied, n.unit, n.message, f.file, s.sheet, s.page, n."row", n."column" '
         "FROM findings n JOIN motor m ON m.id = n.motor JOIN sources s ON s.id = n.source "
         "JOIN files f ON f.id = s.file WHERE m.replaced_by IS NULL"
     )

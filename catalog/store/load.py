@@ -162,7 +162,10 @@ class _Loader:
                 )  # fmt: skip
                 if (i, key) in corrections:
                     c = corrections[(i, key)]
-                    published = {part: doc.number(c[f"published_{part}"]) for part in ("value", "low", "high")}
+                    published = {
+                        part: doc.number(c[f"published_{part}"])
+                        for part in ("value", "low", "high")
+                    }
                     figure = doc.correction(figure, published, c["text"], c["reason"])
                 figures[key] = figure
             for key in self.texts:
@@ -170,7 +173,9 @@ class _Loader:
                     place = patterns[head["pattern"]].get(key)
                     row, column = places.get((i, key), (None, None))
                     figures[key] = doc.text_figure(
-                        texts[key], place["text"] if place else None, _cell(head, place, row, column)
+                        texts[key],
+                        place["text"] if place else None,
+                        _cell(head, place, row, column),
                     )
             repeats, conditions = further[i]
             yield doc.motor(
@@ -271,9 +276,7 @@ class _Loader:
         return found
 
 
-def findings(
-    connection: sqlite3.Connection, ids: Sequence[int]
-) -> Iterator[tuple[int, Document]]:
+def findings(connection: sqlite3.Connection, ids: Sequence[int]) -> Iterator[tuple[int, Document]]:
     """The findings of these ids, as (id, document)."""
     for start in range(0, len(ids), CHUNK):
         marks = ",".join(map(str, ids[start : start + CHUNK]))
@@ -290,26 +293,34 @@ def findings(
         cursor.row_factory = sqlite3.Row
         for r in cursor:
             placed = r["row"] is not None or r["column"] is not None
-            yield r["id"], {
-                "part_number": r["part_number"],
-                "scope": r["scope"],
-                "part_numbers": parts[r["id"]],
-                "severity": r["severity"],
-                "relation": r["relation"],
-                "figures": r["figures"].split(),
-                "suspect": r["suspect"],
-                "ratio": r["ratio"],
-                "cause": r["cause"],
-                "other_causes": r["other_causes"].split(),
-                "implied": None if r["unit"] is None else doc.amount(r["implied"], r["unit"]),
-                "cell": doc.cell(r["sheet"], r["page"], r["row"], r["column"]) if placed else None,
-                "message": r["message"],
-            }
+            yield (
+                r["id"],
+                {
+                    "part_number": r["part_number"],
+                    "scope": r["scope"],
+                    "part_numbers": parts[r["id"]],
+                    "severity": r["severity"],
+                    "relation": r["relation"],
+                    "figures": r["figures"].split(),
+                    "suspect": r["suspect"],
+                    "ratio": r["ratio"],
+                    "cause": r["cause"],
+                    "other_causes": r["other_causes"].split(),
+                    "implied": None if r["unit"] is None else doc.amount(r["implied"], r["unit"]),
+                    "cell": doc.cell(r["sheet"], r["page"], r["row"], r["column"])
+                    if placed
+                    else None,
+                    "message": r["message"],
+                },
+            )
 
 
 def finding_ids(connection: sqlite3.Connection, motors: Sequence[int] | None = None) -> list[int]:
     """Findings of these motors, or of all that are current; worst first."""
-    where = "m.replaced_by IS NULL"
+    where = (
+        "(m.replaced_by IS NULL OR EXISTS (SELECT 1 FROM finding_motors f JOIN motor o "
+        "ON o.id = f.motor WHERE f.finding = n.id AND o.replaced_by IS NULL))"
+    )
     if motors is not None:
         marks = ",".join(map(str, motors))
         where = (

@@ -46,8 +46,7 @@ class _Rebuilder:
         self.n: int = self.source["motors"]
         self.range = f"BETWEEN {self.first} AND {self.first + self.n - 1}"
         self.conventions = {
-            row[0]: Convention(*row[1:])
-            for row in connection.execute("SELECT * FROM conventions")
+            row[0]: Convention(*row[1:]) for row in connection.execute("SELECT * FROM conventions")
         }
         self.motors = self._dicts(
             "SELECT m.*, k.commutation, k.commutation_basis, k.magnet, k.magnet_basis, "

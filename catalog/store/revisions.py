@@ -133,9 +133,7 @@ def _delete_source(connection: sqlite3.Connection, source: int, first: int, n: i
 def remove(connection: sqlite3.Connection, motors: Sequence[Known], at: str) -> set[int]:
     """Take motors out of the catalog; their rows stay as earlier revisions, and undo brings them
     back. Returns the sources whose cached columns must be made anew."""
-    cursor = connection.execute(
-        "INSERT INTO imports(at, files, motors) VALUES (?, 0, 0)", (at,)
-    )
+    cursor = connection.execute("INSERT INTO imports(at, files, motors) VALUES (?, 0, 0)", (at,))
     sources = set()
     for known in motors:
         connection.execute(

@@ -43,7 +43,7 @@ class Stored:
 class Writer:
     """Writes the tables of one import; holds the small palettes that rows point into."""
 
-    def __init__(self, connection: sqlite3.Connection, import_id: int) -> None:
+    def __init__(self, connection: sqlite3.Connection, import_id: int = 0) -> None:
         self.connection = connection
         self.import_id = import_id
         self._conventions: dict[Convention, int] = {}
@@ -57,7 +57,14 @@ class Writer:
             self._derivations[(basis, figures)] = number
 
     def add_file(
-        self, *, file: str, sha256: str, format: str, layout: str, options: str, remarks: Sequence[str]
+        self,
+        *,
+        file: str,
+        sha256: str,
+        format: str,
+        layout: str,
+        options: str,
+        remarks: Sequence[str],
     ) -> int:
         """One row for a file of this import; the number other rows point to."""
         cursor = self.connection.execute(
@@ -103,18 +110,57 @@ class Writer:
                 _places(row), _places(column), strict=True,
             ),
         )  # fmt: skip
-        self._add_figures(first, batch, applied)
+        self._add_texts(first, batch, applied)
+        self._add_numbers(first, batch, applied)
         self._add_exceptions(first, batch, row, column, pattern_of, patterns)
         self._add_further(first, batch, heading_base)
         self._add_constants(first, reconciled)
-        self.add_findings(source_id, first, reconciled)
+        self._add_findings(source_id, first, reconciled)
         replaced = sum(touched.values())
         return Stored(n, n - replaced, set(touched) | {source_id})
+
+    def rewrite_table(
+        self,
+        source_id: int,
+        first: int,
+        published: Batch,
+        reconciled: Reconciled,
+        applied: Sequence[AppliedCorrection],
+    ) -> None:
+        """Write anew what follows from a stored table's figures and the corrections to them."""
+        batch = reconciled.batch
+        last = first + len(batch) - 1
+        for table, column in (
+            ("figure_value", "id"), ("figure_digit", "id"), ("constants", "id"),
+            ("figure_intervals", "motor"), ("applied_corrections", "motor"),
+            ("finding_motors", "motor"),
+        ):  # fmt: skip
+            self.connection.execute(
+                f"DELETE FROM {table} WHERE {column} BETWEEN ? AND ?", (first, last)
+            )
+        self.connection.execute("DELETE FROM findings WHERE source = ?", (source_id,))
+        old = "SELECT pattern FROM motor WHERE source = ?"
+        self.connection.execute(f"DELETE FROM patterns WHERE pattern IN ({old})", (source_id,))
+        row = self.connection.execute(
+            "SELECT min(id) FROM headings WHERE source = ?", (source_id,)
+        ).fetchone()
+        pattern_of, patterns = places_of(published, batch, *usual_places(batch))
+        base = self._next("patterns", "pattern")
+        self._add_patterns(patterns, base, row[0] or 0)
+        self.connection.executemany(
+            "UPDATE motor SET pattern = ? WHERE id = ?",
+            zip((pattern_of + base).tolist(), range(first, last + 1), strict=True),
+        )
+        self._add_numbers(first, batch, applied)
+        self._add_constants(first, reconciled)
+        self._add_findings(source_id, first, reconciled)
 
     # ---- who and where
 
     def _next(self, table: str, column: str = "id") -> int:
-        return self.connection.execute(f"SELECT ifnull(max({column}), 0) + 1 FROM {table}").fetchone()[0]
+        return self.connection.execute(
+            f"SELECT ifnull(max({column}), 0) + 1 FROM {table}"
+        ).fetchone()[0]
 
     def _add_source(self, file_id: int, chunk: int, batch: Batch, first: int) -> int:
         source = batch.source
@@ -191,7 +237,9 @@ class Writer:
         touched: dict[int, int] = {}
         where = "part_number = ? AND maker = ? AND replaced_by IS NULL"
         for who in identity:
-            row = self.connection.execute(f"SELECT id, source FROM motor WHERE {where}", who).fetchone()
+            row = self.connection.execute(
+                f"SELECT id, source FROM motor WHERE {where}", who
+            ).fetchone()
             if row is not None:
                 touched[row[1]] = touched.get(row[1], 0) + 1
         if touched:
@@ -202,12 +250,9 @@ class Writer:
 
     # ---- figures
 
-    def _add_figures(
-        self, first: int, batch: Batch, applied: Sequence[AppliedCorrection]
-    ) -> None:
+    def _add_texts(self, first: int, batch: Batch, applied: Sequence[AppliedCorrection]) -> None:
         ids = range(first, first + len(batch))
-        numbers = [key for key in figure_keys() if key in batch.figures]
-        texts = {key: batch.figures[key].text for key in numbers}
+        texts = {key: batch.figures[key].text for key in figure_keys() if key in batch.figures}
         for a in applied:
             # the text stays what was published
             texts[a.quantity] = list(texts[a.quantity])
@@ -216,6 +261,11 @@ class Writer:
             if key in batch.texts:
                 texts[key] = batch.texts[key].text
         self._insert("figure_text", list(texts), ids, list(texts.values()))
+
+    def _add_numbers(self, first: int, batch: Batch, applied: Sequence[AppliedCorrection]) -> None:
+        """Values in use and their intervals; what a correction replaced stands beside it."""
+        ids = range(first, first + len(batch))
+        numbers = [key for key in figure_keys() if key in batch.figures]
         # SQLite keeps a NaN as NULL
         values = [batch.figures[key].value.tolist() for key in numbers]
         self._insert("figure_value", numbers, ids, values)
@@ -345,7 +395,7 @@ class Writer:
             self._derivations[key] = _row_id(cursor)
         return self._derivations[key]
 
-    def add_findings(self, source_id: int, first: int, reconciled: Reconciled) -> None:
+    def _add_findings(self, source_id: int, first: int, reconciled: Reconciled) -> None:
         """The findings of a table whose first motor has the id ``first``."""
         number = self._next("findings")
         pairs = list(zip(reconciled.findings, reconciled.finding_motor, strict=True))

@@ -1,0 +1,45 @@
+"""What commands share: the options --catalog and --json, and printing a document."""
+
+import json
+import sys
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any
+
+import click
+
+Function = Callable[..., Any]
+
+
+def catalog_option(function: Function) -> Function:
+    """Adds --catalog; the command gets a Path."""
+    return click.option(
+        "--catalog",
+        type=click.Path(path_type=Path),
+        envvar="MOTORFOLIO_CATALOG",
+        default=Path("motorfolio.sqlite"),
+        show_default="MOTORFOLIO_CATALOG, else motorfolio.sqlite",
+        metavar="FILE",
+        help="The catalog.",
+    )(function)
+
+
+def json_option(function: Function) -> Function:
+    """Adds --json; the command gets ``as_json``."""
+    return click.option(
+        "--json", "as_json", is_flag=True, help="Print one JSON document and nothing else."
+    )(function)
+
+
+def print_json(document: Any) -> None:
+    """Print a document; laid out for a person where a person sees it."""
+    indent = 2 if sys.stdout.isatty() else None
+    json.dump(document, sys.stdout, ensure_ascii=False, indent=indent, allow_nan=False)
+    sys.stdout.write("\n")
+
+
+def say(message: str) -> None:
+    """A message to the person, on standard error."""
+    from ..report.plain import plain
+
+    click.echo(plain(message), err=True)

@@ -1,0 +1,74 @@
+"""motorfolio export: motors out of the catalog."""
+
+import os
+import sys
+import tempfile
+from collections.abc import Iterator
+from contextlib import contextmanager
+from pathlib import Path
+from typing import TextIO
+
+import click
+
+from .common import catalog_option, say
+
+
+@click.command(epilog="Example: motorfolio export --format csv --output motors.csv")
+@click.option(
+    "--format", "format_", type=click.Choice(["csv", "json", "toml", "parquet"]), default="csv",
+    show_default=True, help="JSON and TOML hold all that is known; Parquet needs an extra.",
+)  # fmt: skip
+@click.option(
+    "--units", default="si", show_default=True, metavar="si|FILE",
+    help='For CSV: SI, or a TOML file of lines such as torque_constant = "mN·m/A rms".',
+)  # fmt: skip
+@click.option(
+    "--output", type=click.Path(path_type=Path), metavar="FILE", help="Instead of standard output."
+)
+@catalog_option
+def command(format_: str, units: str, output: Path | None, catalog: Path) -> int:
+    """Write all motors, in a form that motorfolio import reads back.
+
+    CSV has the published figures, a column for each quantity and convention; JSON and TOML also
+    the printed texts, constants, findings and places.
+    """
+    from ..exporting import export, export_parquet, read_units
+    from ..store import Catalog
+
+    if units != "si" and format_ != "csv":
+        raise click.UsageError(f"--units is for CSV; {format_} is always in SI")
+    if format_ == "parquet" and output is None:
+        raise click.UsageError("Parquet is written to a file: give --output FILE")
+    chosen = None if units == "si" else read_units(Path(units))
+    with Catalog.open(catalog) as opened:
+        if output is None:
+            export(opened, format_, sys.stdout, chosen)
+            return 0
+        with _replacing(output) as (path, out):
+            if format_ == "parquet":
+                n = export_parquet(opened, path)
+            else:
+                n = export(opened, format_, out, chosen)
+    say(f"{n} motors written to {output}.")
+    return 0
+
+
+@contextmanager
+def _replacing(output: Path) -> Iterator[tuple[Path, TextIO]]:
+    """A file beside the output that takes its place when all is written."""
+    handle, name = tempfile.mkstemp(prefix=f".{output.name}.", dir=output.parent)
+    path = Path(name)
+    try:
+        with open(handle, "w", encoding="utf-8", newline="") as out:
+            yield path, out
+        path.chmod(0o666 & ~_umask())
+        path.replace(output)
+    except BaseException:
+        path.unlink(missing_ok=True)
+        raise
+
+
+def _umask() -> int:
+    mask = os.umask(0)
+    os.umask(mask)
+    return mask

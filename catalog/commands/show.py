@@ -1,0 +1,30 @@
+"""motorfolio show: one motor."""
+
+from pathlib import Path
+
+import click
+
+from .common import catalog_option, json_option, print_json
+
+
+@click.command(epilog="Example: motorfolio show EX-24-100")
+@click.argument("part")
+@catalog_option
+@json_option
+def command(part: str, catalog: Path, as_json: bool) -> int:
+    """Show a motor: its constants in SI, its figures as published, findings, and where all of it
+    came from.
+
+    PART is a part number, or MAKER/PART where two makers share one.
+    """
+    from ..store import Catalog
+
+    with Catalog.open(catalog) as opened:
+        document = opened.motor(part)
+    if as_json:
+        print_json(document)
+    else:
+        from ..report import card
+
+        click.echo(card.motor_card(document))
+    return 0

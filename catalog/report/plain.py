@@ -1,0 +1,71 @@
+"""Text from a datasheet as it may go to a terminal, and numbers as a person reads them."""
+
+import math
+import re
+
+# C0 and C1 controls, and the marks that turn the direction of writing
+_UNSAFE = re.compile("[\x00-\x1f\x7f-\x9f\u061c\u200e\u200f\u2028-\u202e\u2066-\u2069\ufeff]")
+
+
+def plain(text: str) -> str:
+    """The text with control characters made visible, so that a sheet can't steer the terminal."""
+    return _UNSAFE.sub(lambda sign: " " if sign[0] in "\n\t\r" else f"\\x{ord(sign[0]):02x}", text)
+
+
+def number(value: float | None, digits: int = 4) -> str:
+    """A number to so many significant digits; '–' where there is none."""
+    if value is None or not math.isfinite(value):
+        return "–"
+    return f"{value:.{digits}g}"
+
+
+def quantity(value: float | None, unit: str, digits: int = 4) -> str:
+    """A number with its unit; a pure number stands bare."""
+    shown = number(value, digits)
+    return shown if unit in ("1", "") or shown == "–" else f"{shown} {unit}"
+
+
+def interval(low: float | None, high: float | None, digits: int = 4) -> str:
+    """'30.15 … 30.25', '≤ 45', '≥ 3', or nothing."""
+    if low is None and high is None:
+        return ""
+    if low is None:
+        return f"≤ {number(high, digits)}"
+    if high is None:
+        return f"≥ {number(low, digits)}"
+    return "exact" if low == high else f"{number(low, digits)} … {number(high, digits)}"
+
+
+def words(key: str) -> str:
+    """A quantity's key as words."""
+    return key.replace("_", " ")
+
+
+def convention(found: dict | None) -> str:
+    """The convention of a figure in a few words: 'rms, lines (assumed)'."""
+    if not found:
+        return ""
+    said = [
+        str(found[k])
+        for k in ("current", "voltage", "between", "connection", "shape")
+        if k in found
+    ]
+    if "temperature" in found:
+        said.append(f"at {number(found['temperature'])} °C")
+    basis = found.get("basis")
+    return ", ".join(said) + (f" ({basis})" if basis and said and basis != "stated" else "")
+
+
+def cell(found: dict | None) -> str:
+    """A place in a file: 'Sheet1 row 3, column 5'."""
+    if not found:
+        return ""
+    parts = []
+    if found.get("row"):
+        parts.append(f"row {found['row']}")
+    if found.get("column"):
+        parts.append(f"column {found['column']}")
+    where = [
+        found[k] if k == "sheet" else f"page {found[k]}" for k in ("sheet", "page") if found.get(k)
+    ]
+    return " ".join([*map(str, where), ", ".join(parts)]).strip()
