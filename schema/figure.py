@@ -8,6 +8,7 @@ import math
 import re
 from collections.abc import Sequence
 from dataclasses import dataclass, field, replace
+from functools import cache
 
 import numpy as np
 
@@ -132,23 +133,29 @@ def read_column(
 _HALF = [float(f"5e-{places + 1}") for places in range(16)]
 
 
+@cache
+def _named_mark(note_marks: frozenset[str]) -> re.Pattern[str] | None:
+    """The marks that the notes name, at the end of a cell: "(1)", "1)", and letters as "24a"."""
+    cores = sorted(mark_cores(note_marks))
+    if not cores:
+        return None
+    every = "|".join(map(re.escape, cores))
+    letters = "|".join(re.escape(c) for c in cores if not c.isdigit()) or r"\b\B"
+    return re.compile(
+        rf"(?:\s*[(\[](?:{every})[)\]]|(?:(?<=\d)|\s)(?:{every})\)|(?:(?<=[\d.])|\s)(?:{letters}))$"
+    )
+
+
 def _without_marks(rest: str, note_marks: frozenset[str]) -> tuple[str, list[str]]:
     """Footnote marks off the ends of a cell: the unmistakable ones, and those the notes name."""
     marks: list[str] = []
-    cores = mark_cores(note_marks)
+    named = _named_mark(note_marks)
     leading = re.match(r"[*†‡§#]+\s*(?=[\d+.,-])", rest)
     if leading:
         marks.append(leading.group().strip())
         rest = rest[leading.end() :]
-    named = re.compile(
-        r"(?:\s*[(\[](?P<a>C)[)\]]|(?:(?<=\d)|\s)(?P<b>C)\)|(?<=[\d.])(?P<c>L)|\s(?P<d>L))$".replace(
-            "C", "|".join(map(re.escape, sorted(cores)))
-        ).replace(
-            "L", "|".join(map(re.escape, sorted(c for c in cores if not c.isdigit()))) or r"\b\B"
-        )
-    )
     while True:
-        found = _SURE_MARK.search(rest) or (named.search(rest) if cores else None)
+        found = _SURE_MARK.search(rest) or (named.search(rest) if named else None)
         if not found or not re.search(r"\d", rest[: found.start()]):
             return rest, marks
         if found.group().endswith(")") and "(" not in found.group():

@@ -4,6 +4,7 @@ import math
 import re
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from functools import cache
 
 from .errors import MotorfolioError
 from .numerals import DIGITS, EXPONENT, NumberStyle, readings
@@ -96,6 +97,7 @@ def half_digit(numeral: str, exponent: int = 0) -> float:
     return float(f"5e{exponent + zeros - 1}")
 
 
+@cache
 def mark_cores(note_marks: frozenset[str]) -> set[str]:
     """Footnote marks without brackets and raising: "¹⁾" → "1"."""
     return {re.sub(r"[()\[\]^\s]", "", plain(mark)) for mark in note_marks} - {""}
@@ -139,6 +141,8 @@ class CellReader:
 
     def _prefix(self, rest: str) -> tuple[str, str | None, str]:
         """What stands before the number: a diameter sign, a currency or DC/AC, a qualifier."""
+        if rest[:1].isdigit():
+            return "", None, rest
         rest = re.sub(r"^[Øø]\s*(?=[\d.,])", "", rest)
         qualifier = None
         for name, pattern in _PREFIX:
