@@ -53,3 +53,42 @@ def quantities() -> Mapping[str, Quantity]:
 def quantity(key: str) -> Quantity:
     """The quantity of that key; KeyError if there is none."""
     return quantities()[key]
+
+
+@dataclass(frozen=True, slots=True)
+class Words:
+    """The words of all languages together; words/en.toml explains the groups."""
+
+    names: Mapping[str, tuple[str, ...]]
+    generic: Mapping[str, tuple[str, ...]]
+    sections: Mapping[str, tuple[str, ...]]
+    conventions: Mapping[str, tuple[str, ...]]
+    variants: Mapping[str, tuple[str, ...]]
+    roles: Mapping[str, tuple[str, ...]]
+    magnets: Mapping[str, tuple[str, ...]]
+    commutations: Mapping[str, tuple[str, ...]]
+    connections: Mapping[str, tuple[str, ...]]
+    signs: Mapping[str, tuple[str, ...]]
+    same: Mapping[str, tuple[str, ...]]
+    fillers: tuple[str, ...]
+    captions: tuple[str, ...]
+    others: tuple[str, ...]
+
+
+_LISTS = ("fillers", "captions", "others")
+
+
+@cache
+def words() -> Words:
+    """The words of every file in words/, merged: a language is added as one more file there."""
+    merged: dict[str, dict[str, list[str]]] = {}
+    folder = resources.files("motorfolio.schema").joinpath("words")
+    for file in sorted(folder.iterdir(), key=lambda f: f.name):
+        if not file.name.endswith(".toml"):
+            continue
+        for group, entries in tomllib.loads(file.read_text(encoding="utf-8")).items():
+            for key, texts in entries.items():
+                merged.setdefault(group, {}).setdefault(key, []).extend(texts)
+    groups = {g: {k: tuple(t) for k, t in entries.items()} for g, entries in merged.items()}
+    lists = {g: groups.pop(g, {}).get("words", ()) for g in _LISTS}
+    return Words(**{g: MappingProxyType(e) for g, e in groups.items()}, **lists)

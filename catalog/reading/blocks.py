@@ -1,0 +1,195 @@
+"""A grid → its blocks: merged cells filled, parted at blank rows and columns, laid out by evidence."""
+
+from dataclasses import dataclass, field
+
+from ...schema.signs import plain
+from ..tables.grid import Grid
+from .cells import is_figure, strength
+from .label import parse_label
+
+_ROWS_TRIED, _COLUMNS_TRIED = 80, 40
+
+
+@dataclass(slots=True)
+class Block:
+    """A rectangle of a grid: rows of cells, and the place of each row and column in the file."""
+
+    rows: list[list[str]]
+    row_numbers: list[int]
+    column_numbers: list[int]
+    kind: str = "text"
+    line: int = 0
+    filled: set[tuple[int, int]] = field(default_factory=set)
+    """(row, column) indices of cells that a merged cell gave its text to."""
+
+    @property
+    def width(self) -> int:
+        """Columns."""
+        return len(self.column_numbers)
+
+
+def blocks_of(grid: Grid) -> list[Block]:
+    """The blocks of a grid in order, each laid out as "rows", "columns" or "text"."""
+    rows = [list(row) for row in grid.rows] if grid.spans else grid.rows
+    filled: set[tuple[int, int]] = set()
+    for span in grid.spans:
+        text = rows[span.row][span.column]
+        for r in range(span.row, min(span.row + span.rows, len(rows))):
+            for c in range(span.column, min(span.column + span.columns, len(rows[r]))):
+                if not rows[r][c]:
+                    rows[r][c] = text
+                    filled.add((r, c))
+    blocks = []
+    start = None
+    for i in range(len(rows) + 1):
+        blank = i == len(rows) or not any(rows[i])
+        if not blank and start is None:
+            start = i
+        elif blank and start is not None:
+            part = Block(
+                rows[start:i],
+                grid.row_numbers[start:i],
+                grid.column_numbers,
+                filled={(r - start, c) for r, c in filled if start <= r < i},
+            )
+            blocks += _side_by_side(part)
+            start = None
+    for block in blocks:
+        block.kind, block.line = orientation(block)
+    return _merged(blocks)
+
+
+def _side_by_side(block: Block) -> list[Block]:
+    """The blocks that blank columns part, where each side is a table of its own."""
+    if len(block.rows) > 400 or block.width < 3:
+        return [block]
+    used = [any(row[c] for row in block.rows) for c in range(block.width)]
+    ranges: list[tuple[int, int]] = []
+    start = None
+    for c in range(block.width + 1):
+        on = c < block.width and used[c]
+        if on and start is None:
+            start = c
+        elif not on and start is not None:
+            ranges.append((start, c))
+            start = None
+    if len(ranges) < 2:
+        return [block]
+    parts = [_cut(block, a, b) for a, b in ranges]
+    kinds = [orientation(p)[0] for p in parts]
+    strong = all(
+        kind != "text" and _score(part, kind) >= 1.9
+        for kind, part in zip(kinds, parts, strict=True)
+    )
+    return parts if strong else [block]
+
+
+def _cut(block: Block, a: int, b: int) -> Block:
+    keep = [i for i, row in enumerate(block.rows) if any(row[a:b])]
+    first, last = (keep[0], keep[-1] + 1) if keep else (0, 0)
+    return Block(
+        [row[a:b] for row in block.rows[first:last]],
+        block.row_numbers[first:last],
+        block.column_numbers[a:b],
+        filled={(r - first, c - a) for r, c in block.filled if a <= c < b and first <= r < last},
+    )
+
+
+def _score(block: Block, kind: str) -> float:
+    scores = row_scores(block) if kind == "rows" else column_scores(block)
+    return max(scores, default=0.0)
+
+
+def row_scores(block: Block) -> list[float]:
+    """For each of the first rows, how many headings it holds."""
+    scores = []
+    for row in block.rows[:_ROWS_TRIED]:
+        total, previous = 0.0, ""
+        for cell in row[:300]:
+            if cell and cell != previous:
+                total += strength(cell)
+            previous = cell
+        scores.append(total)
+    return scores
+
+
+def column_scores(block: Block) -> list[float]:
+    """For each of the first columns, how many headings it holds."""
+    scores = []
+    for c in range(min(block.width, _COLUMNS_TRIED)):
+        total, previous = 0.0, ""
+        for row in block.rows[:400]:
+            cell = row[c]
+            if cell and cell != previous:
+                total += strength(cell)
+            previous = cell
+        scores.append(total)
+    return scores
+
+
+def orientation(block: Block) -> tuple[str, int]:
+    """("rows", heading row), ("columns", label column) or ("text", 0), by where the headings are."""
+    rows, columns = row_scores(block), column_scores(block)
+    best_row, best_column = max(rows, default=0.0), max(columns, default=0.0)
+    if max(best_row, best_column) < 0.5:
+        return "text", 0
+    r = next(i for i, s in enumerate(rows) if s >= best_row - 1e-9)
+    c = next(i for i, s in enumerate(columns) if s >= best_column - 1e-9)
+    if len(block.rows) == 1:
+        single = sum(1 for x in block.rows[0] if x)
+        return (
+            ("text", 0) if single < 2 or not any(map(is_figure, block.rows[0])) else ("columns", c)
+        )
+    if not any(is_figure(x) for row in block.rows[:200] for x in row):
+        few = len([x for row in block.rows for x in row if x])
+        if few > 400 or max(best_row, best_column) < 2:
+            return "text", 0
+    if best_row > best_column + 1e-9:
+        return "rows", r
+    if best_column > best_row + 1e-9:
+        return "columns", c
+    across = sum(1 for x in block.rows[r] if x)
+    down = sum(1 for row in block.rows if row[c])
+    return ("rows", r) if best_row / across >= best_column / down else ("columns", c)
+
+
+def _merged(blocks: list[Block]) -> list[Block]:
+    """Sections of one table that blank rows part, put together again."""
+    merged: list[Block] = []
+    for block in blocks:
+        last = merged[-1] if merged else None
+        if (
+            last is not None
+            and last.kind == "columns"
+            and block.kind in ("columns", "text")
+            and block.column_numbers == last.column_numbers
+            and _goes_on(last, block)
+        ):
+            offset = len(last.rows)
+            last.rows = last.rows + block.rows
+            last.row_numbers = last.row_numbers + block.row_numbers
+            last.filled |= {(r + offset, c) for r, c in block.filled}
+            continue
+        merged.append(block)
+    return merged
+
+
+def _goes_on(last: Block, block: Block) -> bool:
+    """Whether a block continues a label column: same column, figures right of it, no new head."""
+    if block.kind == "text":
+        return False
+    if block.line != last.line:
+        return False
+    for row in block.rows:
+        texts = [x for x in row[block.line + 1 :] if x]
+        label = row[block.line]
+        if strength(label) >= 0.5 and plain(label):
+            names = parse_label(label).names
+            if any("part_number" in p.keys for p in names) and texts:
+                return False
+            return bool(texts) and any(is_figure(x) for x in texts)
+        if texts and not label and not any(is_figure(x) for x in texts):
+            return False
+        if texts and label and not any(is_figure(x) for x in texts):
+            return False
+    return False

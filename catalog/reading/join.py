@@ -1,0 +1,139 @@
+"""Tables of one file that speak of the same motors → one table."""
+
+from collections import Counter
+from dataclasses import replace
+
+from ...schema.signs import plain
+from .model import Field, Table
+
+
+def normal_id(text: str) -> str:
+    """A part number in a form in which dashes and blanks of any kind are alike."""
+    return plain(text).replace(" ", "").replace("-", "").replace("_", "").casefold()
+
+
+def id_field(table: Table) -> Field | None:
+    """The field that holds the part numbers, by its heading: the one whose texts differ most."""
+    named = [f for f in table.fields if any("part_number" in p.keys for p in f.label.names)]
+    named = [f for f in named if any(f.texts)]
+    if not named and table.layout == "rows" and table.fields:
+        first = table.fields[0]
+        blank = not first.heading or not first.label.names
+        distinct = len(set(first.texts)) == len(first.texts)
+        if (
+            blank
+            and not first.units
+            and distinct
+            and any(any(c.isalpha() for c in t) for t in first.texts)
+        ):
+            named = [first]
+    if not named:
+        return None
+
+    def worth(f: Field) -> tuple[float, int, int]:
+        filled = [t for t in f.texts if t]
+        return (round(len(set(filled)) / max(len(f.texts), 1), 2), _rank(f.heading), -f.source)
+
+    return max(named, key=worth)
+
+
+_NUMBERS = (
+    "number",
+    "no",
+    "nr",
+    "nummer",
+    "part",
+    "order",
+    "code",
+    "codice",
+    "art",
+    "référence",
+    "ref",
+    "番",
+    "号",
+    "sku",
+)
+_MODELS = ("model", "modell", "modèle", "type", "typ", "型", "motor")
+
+
+def _rank(heading: str) -> int:
+    low = plain(heading).casefold()
+    if any(low.startswith(w) or f" {w}" in low or w in low for w in _NUMBERS[:6]):
+        return 3
+    if any(w in low for w in _NUMBERS):
+        return 2
+    return 1 if any(w in low for w in _MODELS) else 0
+
+
+def ids_of(table: Table) -> list[str | None]:
+    """The part numbers of a table, None where it has none."""
+    if table.part_numbers:
+        return table.part_numbers
+    field = id_field(table)
+    return [t or None for t in field.texts] if field else [None] * table.count
+
+
+def joined(tables: list[Table], remarks: list[str]) -> list[Table]:
+    """Tables with motors in common made one; the others as they are."""
+    out: list[Table] = []
+    for table in tables:
+        ids = ids_of(table)
+        keys = {normal_id(i) for i in ids if i}
+        home = None
+        for earlier in out:
+            mine = {normal_id(i) for i in ids_of(earlier) if i}
+            if (
+                keys
+                and len(keys & mine) >= 0.5 * min(len(keys), len(mine))
+                and earlier.layout == table.layout
+            ):
+                home = earlier
+                break
+        if home is None:
+            out.append(table)
+        else:
+            _join(home, table, remarks)
+    return out
+
+
+def _join(home: Table, table: Table, remarks: list[str]) -> None:
+    here, there = ids_of(home), ids_of(table)
+    own_id = id_field(table)
+    counts = Counter(normal_id(i) for i in there if i)
+    for key, count in counts.items():
+        if count > 1:
+            remarks.append(
+                f'"{key}" stands {count} times in the second part of the table; the first counts'
+            )
+    position: dict[str, int] = {}
+    for k, text in enumerate(there):
+        if text:
+            position.setdefault(normal_id(text), k)
+    known = {normal_id(i): k for k, i in enumerate(here) if i}
+    extra = [k for k, text in enumerate(there) if text and normal_id(text) not in known]
+    for k in extra:
+        remarks.append(f'"{there[k]}" stands only in the second part of the table')
+    missing = [i for i in here if i and normal_id(i) not in position]
+    remarks += [f'"{i}" stands only in the first part of the table' for i in missing]
+    old = len(here)
+    for f in home.fields:
+        f.texts = [*f.texts, *("" for _ in extra)]
+        if f.places is not None:
+            f.places = [*f.places, *(table.places[k] for k in extra)]
+    home_id = id_field(home)
+    if home_id is not None and not home.part_numbers:
+        for j, k in enumerate(extra):
+            home_id.texts[old + j] = there[k] or ""
+    if home.part_numbers:
+        home.part_numbers = [*home.part_numbers, *(there[k] for k in extra)]
+    home.places = [*home.places, *(table.places[k] for k in extra)]
+    order = [position.get(normal_id(i)) if i else None for i in here] + list(extra)
+    for f in table.fields:
+        if f is own_id:
+            continue
+        texts = [f.texts[k] if k is not None else "" for k in order]
+        base = f.places or table.places
+        places = [base[k] if k is not None else home.places[j] for j, k in enumerate(order)]
+        home.fields.append(replace(f, texts=texts, places=places))
+    home.notes += table.notes
+    home.titles += table.titles

@@ -1,0 +1,319 @@
+"""The text of one heading → its names, symbols, units, conventions and conditions, kept apart."""
+
+import re
+from dataclasses import dataclass, field, replace
+from functools import lru_cache
+
+from ...schema.convention import Convention
+from ...schema.signs import plain
+from ...schema.units import is_unit_like
+from ...schema.vocabulary import quantities
+from .lexicon import find_symbol, lexicon, symbol_form, tokens
+from .phrase import Phrase, conventions_of, match_phrase, variant_of
+
+_OPENING, _CLOSING = "([{<【", ")]}>】"
+_NUMBERING = re.compile(r"\(?\d{1,2}[.)]?\s+(?=[^\W\d_]{3})|\(\d{1,2}\)\s*")
+_MARKS = re.compile(
+    r"(?:\s*(?:[*†‡§]+\)?|\^\(?(?:\d{1,2}|[a-z])\)|\^\(?[1456789a-z]\)?|(?<=\w)\s+\d\)))+$"
+)
+_TEMPERATURE = re.compile(
+    r"(?:(?:@|at|bei|à|a|T(?:amb|ref|w|_?0)?\s*=|ϑ\s*=|θ\s*=|,)\s*)?"
+    r"\(?(?P<t>[+-]?\d{1,3}(?:[.,]\d)?)\s*(?:°\s*C|℃|deg\.?\s*C|º\s*C|C\b)\)?(?:\s*時|\s*时)?"
+)
+_TOLERANCE = re.compile(r"(?:±|\+/-|\+-)\s*(?P<tol>\d+(?:[.,]\d+)?)\s*%")
+_CONDITION = re.compile(
+    r"(?:(?:@|at|bei|à|a|con|sous)\s+)?(?P<c>\b\d{1,3}(?:[.,]\d+)?\s*(?:k?V\s*(?:AC|DC)?|VAC|VDC|K)\b|\bS[1-9](?:[\s-]*\d+\s*%)?)"
+)
+_QUALIFIERS = {
+    "max": "at most",
+    "maximum": "at most",
+    "min": "at least",
+    "typ": "typical",
+    "typical": "typical",
+}
+_JOINERS = re.compile(r"\s+/\s+|\s*\|\s*|\n|\s*[;；]\s*|、")
+_SYMBOL_EDGES = re.compile(r"[\s,:=–-]+")
+
+
+@dataclass(frozen=True, slots=True)
+class Label:
+    """A heading taken apart.
+
+    ``names`` are the phrases that may name a quantity (one a language), ``symbols`` the symbols
+    beside them, ``units`` unit texts in order of trust. ``conditions`` are texts that say when
+    the figure holds. ``other`` is the word by which the heading is none of our quantities.
+    """
+
+    text: str
+    names: tuple[Phrase, ...] = ()
+    symbols: tuple[str, ...] = ()
+    units: tuple[str, ...] = ()
+    convention: Convention = field(default_factory=Convention)
+    forced: str | None = None
+    conditions: tuple[str, ...] = ()
+    variant: str | None = None
+    temperature: float | None = None
+    tolerance: float | None = None
+    qualifier: str | None = None
+    marks: tuple[str, ...] = ()
+    other: str | None = None
+
+    @property
+    def strength(self) -> float:
+        """How surely this is a heading at all: 1 for a name, less for a symbol."""
+        best = max((p.score for p in self.names), default=0.0)
+        if self.forced:
+            return 1.0
+        if best < 0.6 and self.symbols:
+            return 0.55
+        return best if best >= 0.6 else 0.0
+
+
+def _groups(text: str) -> tuple[str, list[str]]:
+    """The text outside brackets, and the contents of its outermost brackets."""
+    outside: list[str] = []
+    inside: list[str] = []
+    depth, current = 0, ""
+    for i, c in enumerate(text):
+        if c in _OPENING and not (c == "<" and not re.search(r">", text[i:])):
+            if depth:
+                current += c
+            else:
+                glued = current and current[-1] in "/·√"
+                if glued or re.match(r"\((?:rad|min|r|rev|U|N|m)?[\w·/^-]*\)\s*/", text[i:]):
+                    depth, current = depth, current + c
+                    continue
+                outside.append(current)
+                current = ""
+            depth += 1
+        elif c in _CLOSING and depth:
+            depth -= 1
+            if depth:
+                current += c
+            else:
+                inside.append(current.strip())
+                current = ""
+        else:
+            current += c
+    if depth:
+        outside.append(current)
+    else:
+        outside.append(current)
+    joined = " ".join(part.strip() for part in outside if part.strip(" ,;:"))
+    return joined, [i for i in inside if i]
+
+
+def _is_unit(text: str) -> bool:
+    return (
+        len(text) <= 40 and not re.fullmatch(r"[\d.,\s±]*(?:\d\s*%)?", text) and is_unit_like(text)
+    )
+
+
+@lru_cache(maxsize=16384)
+def parse_label(text: str) -> Label:
+    """Take a heading apart; nothing is decided about which quantity it is."""
+    label = Label(text)
+    clean = plain(text)
+    clean = re.sub(r"-\n\s*(?=[a-zà-ÿ])", "", clean)
+    if not clean:
+        return label
+    forced = re.match(r"([a-z][a-z_]+)(?=$|\s*[\[(])", clean)
+    rest = clean
+    if forced and forced.group(1) in quantities():
+        label = replace(label, forced=forced.group(1))
+        rest = clean[forced.end() :].strip()
+    else:
+        numbering = _NUMBERING.match(rest)
+        if numbering and not _is_unit(rest):
+            rest = rest[numbering.end() :]
+    marks = _MARKS.search(rest)
+    if marks and marks.start() > 0 and not _is_unit(rest):
+        label = replace(label, marks=tuple(re.findall(r"[*†‡§]+|\d{1,2}|[a-z]", marks.group())))
+        rest = rest[: marks.start()]
+    core, inside = _groups(rest)
+    for content in inside:
+        label = _bracket(label, content)
+    return _core(label, core)
+
+
+def _with_convention(label: Label, changes: dict[str, str]) -> Label:
+    if not changes:
+        return label
+    return replace(label, convention=label.convention.with_(**changes, basis="stated"))
+
+
+def _bracket(label: Label, content: str) -> Label:
+    """What one pair of brackets says."""
+    content = content.strip()
+    if re.fullmatch(r"\^?\(?\d{1,2}\)?|[*†‡]+", content):
+        return replace(label, marks=(*label.marks, content.strip("^()")))
+    low = content.rstrip(".").casefold()
+    if low in _QUALIFIERS:
+        label = replace(label, qualifier=_QUALIFIERS[low])
+        return replace(label, units=(*label.units, content)) if low == "min" else label
+    whole = conventions_of(content, whole=True)
+    if whole:
+        return _with_convention(label, whole)
+    if _is_unit(content):
+        return replace(label, units=(*label.units, content))
+    for piece in (
+        re.split(r"[,;、]\s*|\s+[/|]\s+", content) if re.search(r"[,;、|/]", content) else [content]
+    ):
+        label = _piece(label, piece.strip(), alone=piece.strip() == content)
+    return label
+
+
+def _piece(label: Label, piece: str, alone: bool) -> Label:
+    """One piece of a bracket or of a heading's end: unit, convention, condition, symbol or name."""
+    if not piece:
+        return label
+    found = conventions_of(piece, whole=True)
+    if found:
+        return _with_convention(label, found)
+    if _is_unit(piece):
+        return replace(label, units=(*label.units, piece))
+    if (t := _TEMPERATURE.fullmatch(piece)) is not None:
+        return replace(label, temperature=float(t["t"].replace(",", ".")))
+    if (t := _TOLERANCE.fullmatch(piece)) is not None:
+        return replace(label, tolerance=float(t["tol"].replace(",", ".")) / 100)
+    if variant_of(piece):
+        return replace(label, variant=variant_of(piece))
+    symbol = find_symbol(piece)
+    phrase = match_phrase(piece)
+    if phrase.score >= 0.9 and phrase.keys:
+        return replace(label, names=(*label.names, replace(phrase, bracketed=True)))
+    if symbol and symbol.surety > 0.85:
+        return replace(label, symbols=(*label.symbols, piece))
+    if phrase.section and not phrase.rest:
+        return replace(label, names=(*label.names, replace(phrase, bracketed=True)))
+    loose = conventions_of(piece, whole=False)
+    temperature = _TEMPERATURE.search(piece)
+    tolerance = _TOLERANCE.search(piece)
+    if temperature:
+        label = replace(label, temperature=float(temperature["t"].replace(",", ".")))
+    if tolerance:
+        label = replace(label, tolerance=float(tolerance["tol"].replace(",", ".")) / 100)
+    if phrase.other and not loose:
+        label = replace(label, other=label.other or phrase.other)
+    unit = re.match(r"(.+?)[\s,]+(?=\S+$)", piece)
+    if loose and unit and _is_unit(unit.group(1)):
+        label = replace(label, units=(*label.units, unit.group(1)))
+    label = _with_convention(label, loose)
+    return replace(label, conditions=(*label.conditions, piece))
+
+
+def _core(label: Label, core: str) -> Label:
+    """The text outside of brackets."""
+    core = core.strip(" ,:;=")
+    if not core:
+        return label
+    whole = match_phrase(core)
+    if whole.score >= 0.95 and not label.forced:
+        return replace(label, names=(whole, *label.names), other=label.other or whole.other)
+    if (found := conventions_of(core, whole=True)) and label.forced:
+        return _with_convention(label, found)
+    for pattern, name in ((_TEMPERATURE, "temperature"), (_TOLERANCE, "tolerance")):
+        at = pattern.search(core)
+        if at and (name == "tolerance" or at.start() > 0):
+            number = float(
+                (at.groupdict().get("t") or at.groupdict().get("tol") or "0").replace(",", ".")
+            )
+            value = number if name == "temperature" else number / 100
+            label = replace(label, **{name: value})
+            core = (core[: at.start()] + " " + core[at.end() :]).strip(" ,;@")
+    at = _CONDITION.search(core)
+    if at and at.start() > 0 and not find_symbol(core):
+        label = replace(label, conditions=(*label.conditions, at["c"]))
+        core = (core[: at.start()] + " " + core[at.end() :]).strip(" ,;@")
+    parts = [p.strip(" ,:=") for p in _JOINERS.split(core) if p.strip(" ,:=")]
+    if len(parts) > 1 and match_phrase(core).score < 0.95:
+        for part in parts:
+            if _is_unit(part) and not (part == parts[0] and find_symbol(part)):
+                label = replace(label, units=(*label.units, part))
+            else:
+                label = _named(label, part)
+        return label
+    return _named(label, core)
+
+
+def _named(label: Label, core: str) -> Label:
+    """A name with, perhaps, a symbol and a unit beside it."""
+    if not core:
+        return label
+    phrase = match_phrase(core)
+    if phrase.score >= 0.95:
+        return replace(label, names=(*label.names, phrase), other=label.other or phrase.other)
+    best: tuple[float, Phrase, str, str] | None = None
+    for name, symbol, unit in _splits(core):
+        p = match_phrase(name) if name else Phrase(name)
+        score = p.score if name else 0.0
+        if symbol and not name:
+            hit = find_symbol(symbol)
+            score = 0.9 * hit.surety if hit else 0.0
+        if unit:
+            score += 0.001 * len(unit) + 0.02
+        if symbol:
+            score += 0.005
+        if best is None or score > best[0] + 1e-9:
+            best = (score, p, symbol, unit)
+    assert best is not None
+    score, phrase, symbol, unit = best
+    if score < 0.5 and "_" in core:
+        return _named(label, core.replace("_", " "))
+    if symbol:
+        label = replace(label, symbols=(*label.symbols, symbol))
+    if unit:
+        label = replace(label, units=(*label.units, unit))
+    if phrase.text:
+        label = replace(label, names=(*label.names, phrase), other=label.other or phrase.other)
+    return label
+
+
+def _splits(core: str):
+    """(name, symbol, unit) in every way that the text could be divided."""
+    found = [(core, "", "")]
+    if find_symbol(core):
+        found.append(("", core, ""))
+    cuts = [
+        m.span()
+        for m in re.finditer(
+            r"\s*[,/:]\s*|\s+(?:in|en)\s+|[\s_]+|(?<=[^\x00-\x7f])(?=[A-Za-z])", core
+        )
+    ]
+    for start, end in cuts:
+        if start == 0 or end >= len(core):
+            continue
+        head, tail = core[:start].strip(), core[end:].strip()
+        if not head or not tail:
+            continue
+        units = [t for t in (tail, tail.replace("_", "/"), tail.replace("_", " ")) if _is_unit(t)]
+        if units:
+            found.append((head, "", units[0]))
+            if find_symbol(head):
+                found.append(("", head, units[0]))
+            for name, symbol in _name_and_symbol(head):
+                found.append((name, symbol, units[0]))
+    found += [(name, symbol, "") for name, symbol in _name_and_symbol(core)]
+    return found
+
+
+def _name_and_symbol(text: str) -> list[tuple[str, str]]:
+    pieces = [p for p in _SYMBOL_EDGES.split(text) if p]
+    if len(pieces) < 2:
+        return []
+    found = []
+    last, first = pieces[-1], pieces[0]
+    if find_symbol(last) and len(symbol_form(last)) <= 8:
+        found.append((text[: text.rindex(last)].strip(" ,:=–-"), last))
+    if find_symbol(first):
+        found.append((text[text.index(first) + len(first) :].strip(" ,:=–-"), first))
+    if len(pieces) > 2:
+        two = text[text.rindex(pieces[-2]) :]
+        if find_symbol(two) and len(symbol_form(two)) <= 6:
+            found.append((text[: text.rindex(pieces[-2])].strip(" ,:=–-"), two))
+    return [(n, s) for n, s in found if n]
+
+
+def roles_of(text: str) -> set[str]:
+    """The roles a column may have by its heading: unit, symbol, label, remark, number, value."""
+    return lexicon().roles.get("".join(tokens(text)), set())

@@ -1,0 +1,109 @@
+"""What the reading of a file is made of: options, tables, fields, and the result."""
+
+from collections.abc import Iterable
+from dataclasses import dataclass, field
+
+from ...schema.batch import Batch, Heading
+from ...schema.errors import MotorfolioError
+from .label import Label
+
+
+class ReadingError(MotorfolioError):
+    """A file in which no motor is found."""
+
+
+@dataclass(slots=True)
+class ReadOptions:
+    """What the user told: names, and how headings are to be read.
+
+    ``overrides`` maps a heading as printed to "quantity[:unit[:convention]]"; ``kept`` holds
+    those kept from earlier files of the maker, used where ``overrides`` says nothing.
+    """
+
+    maker: str = ""
+    series: str | None = None
+    sheet: str | None = None
+    overrides: dict[str, str] = field(default_factory=dict)
+    kept: dict[str, str] = field(default_factory=dict)
+    commutation: str | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Unread:
+    """One cell or heading that was not read, with the reason and what it may be."""
+
+    part_number: str | None
+    heading: str
+    sheet: str | None
+    page: int | None
+    row: int | None
+    column: int | None
+    text: str
+    reason: str
+    guesses: tuple[str, ...] = ()
+
+
+@dataclass(slots=True)
+class Reading:
+    """A file as understood. ``batches`` may be lazy for a long table: run through it once; it
+    adds to ``unread`` while it runs."""
+
+    layout: str
+    headings: list[Heading]
+    batches: Iterable[Batch]
+    unread: list[Unread]
+    remarks: list[str]
+
+
+@dataclass(slots=True)
+class Field:
+    """One heading with the cells of all motors under it (or beside it).
+
+    ``texts`` has one text a motor; ``row`` and ``column`` are the heading's place in the file.
+    In layout "rows" the motors' cells stand in ``column``, in layout "columns" in ``row``.
+    """
+
+    heading: str
+    label: Label
+    texts: list[str]
+    row: int
+    column: int
+    units: tuple[str, ...] = ()
+    captions: tuple[str, ...] = ()
+    section: str | None = None
+    when: tuple[str, ...] = ()
+    temperature: float | None = None
+    variant: str | None = None
+    line: int = 0
+    source: int = 0
+    places: list[int] | None = None
+
+
+@dataclass(slots=True)
+class Table:
+    """Motors and fields of one block, whichever way it was laid out.
+
+    ``places`` are the rows (layout "rows") or columns ("columns") of the motors in the file.
+    """
+
+    layout: str
+    fields: list[Field]
+    places: list[int]
+    sheet: str | None = None
+    page: int | None = None
+    titles: list[str] = field(default_factory=list)
+    notes: list[str] = field(default_factory=list)
+    remarks: list[str] = field(default_factory=list)
+    part_numbers: list[str | None] = field(default_factory=list)
+    columns: list[int] = field(default_factory=list)
+    head: list[list[str]] = field(default_factory=list)
+
+    @property
+    def count(self) -> int:
+        """How many motors the table has."""
+        return len(self.places)
+
+    def place(self, field_: Field, motor: int) -> tuple[int, int]:
+        """Row and column of a motor's cell in the file."""
+        line = (field_.places or self.places)[motor]
+        return (line, field_.column) if self.layout == "rows" else (field_.row, line)

@@ -1,0 +1,136 @@
+"""A file's grids → batches: blocks, tables joined, headings matched once, figures read."""
+
+from pathlib import PurePath
+
+from ...schema.batch import Batch, Heading
+from ..tables.grid import Grid, TableFile
+from .batches import TableReader
+from .blocks import Block, blocks_of
+from .join import joined
+from .layout import lay_out_columns, lay_out_rows
+from .model import ReadingError, ReadOptions, Reading, Table, Unread
+from .points import points_table
+
+
+def read(file: TableFile, options: ReadOptions) -> Reading:
+    """All motors of a file, as published; raises ReadingError if there is none.
+
+    ``Reading.batches`` is a list, or lazy where a table goes on in chunks.
+    """
+    remarks = list(file.skipped)
+    unread: list[Unread] = []
+    headings: list[Heading] = []
+    batches: list[Batch] = []
+    layout = ""
+    grids = [g for g in file.grids if not options.sheet or g.sheet == options.sheet]
+    if not grids:
+        names = ", ".join(str(g.sheet) for g in file.grids if g.sheet)
+        raise ReadingError(f'{file.name}: has no sheet "{options.sheet}"; it has {names or "none"}')
+    lazy = None
+    lone: list[Table] = []
+    for grid in grids:
+        remarks += grid.remarks
+        tables = _tables(grid)
+        if not tables and grid.sheet:
+            remarks.append(f"sheet {grid.sheet}: no motor table, skipped")
+        lone += tables
+    stem = PurePath(file.name).stem
+    found = [t for t in joined(lone, remarks)]
+    for position, table in enumerate(found):
+        reader = TableReader(table, file, options, stem, position if len(found) > 1 else None)
+        if not reader.worthwhile:
+            remarks += reader.why_not
+            unread += reader.unread
+            continue
+        layout = layout or table.layout
+        headings += reader.headings
+        grid = next((g for g in grids if g.continuation is not None), None)
+        if grid is not None and table.layout == "rows" and len(found) == 1:
+            lazy = reader.lazily(grid.continuation, unread)
+            remarks += reader.remarks
+            continue
+        batch = reader.batch()
+        unread += reader.unread
+        remarks += reader.remarks
+        batches.append(batch)
+    if not batches and lazy is None:
+        raise ReadingError(
+            f"{file.name}: no motor is found in it; a table of motors has headings such as "
+            '"Nominal voltage [V]" over or beside figures'
+        )
+    return Reading(
+        layout or "rows", headings, lazy if lazy is not None else batches, unread, remarks
+    )
+
+
+def _tables(grid: Grid) -> list[Table]:
+    """The tables of one grid with the titles and notes that stand about them."""
+    tables: list[Table] = []
+    loose: list[str] = []
+    for block in blocks_of(grid):
+        texts = [_line(row) for row in block.rows] if block.kind == "text" else []
+        if block.kind == "text":
+            if tables and _continues_rows(tables[-1], block):
+                _append_rows(tables[-1], block)
+                continue
+            loose += texts
+            if tables:
+                tables[-1].notes += texts
+            continue
+        table = points_table(block) or (
+            lay_out_rows(block) if block.kind == "rows" else lay_out_columns(block)
+        )
+        table.sheet, table.page = grid.sheet, grid.page
+        table.titles = [*loose, *table.titles]
+        loose = []
+        previous = tables[-1] if tables else None
+        if previous is not None and _same_heads(previous, table):
+            _append_table(previous, table)
+            continue
+        tables.append(table)
+    return tables
+
+
+def _line(row: list[str]) -> str:
+    out: list[str] = []
+    for t in row:
+        if t and (not out or out[-1] != t):
+            out.append(t)
+    return " ".join(out)
+
+
+def _continues_rows(table: Table, block: Block) -> bool:
+    """Whether rows behind a blank row go on with the table above."""
+    if table.layout != "rows" or not table.fields:
+        return False
+    wide = max(sum(1 for t in row if t) for row in block.rows)
+    return wide >= max(3, len(table.fields) // 2)
+
+
+def _append_rows(table: Table, block: Block) -> None:
+    for row, number in zip(block.rows, block.row_numbers, strict=True):
+        if sum(1 for t in row if t) < 2:
+            table.notes.append(_line(row))
+            continue
+        for field in table.fields:
+            field.texts.append(row[field.source] if field.source < len(row) else "")
+        table.places.append(number)
+
+
+def _same_heads(a: Table, b: Table) -> bool:
+    """Whether a later table repeats the headings of the one before."""
+    return (
+        a.layout == b.layout == "rows"
+        and [f.heading for f in a.fields] == [f.heading for f in b.fields]
+        and [f.column for f in a.fields] == [f.column for f in b.fields]
+    )
+
+
+def _append_table(a: Table, b: Table) -> None:
+    for fa, fb in zip(a.fields, b.fields, strict=True):
+        fa.texts += fb.texts
+    a.places += b.places
+    a.notes += b.notes
+    a.titles += b.titles
+    if b.fields:
+        a.remarks.append(f"row {b.fields[0].row}: the headings again, passed over")
