@@ -363,9 +363,14 @@ def _drive(drive: Mapping[str, Any], reader: Reader) -> Drive:
     )
 
 
-def merged(file: Mapping[str, Any], options: Mapping[str, Any]) -> Document:
-    """A file's document with what options add; RequirementError where they contradict."""
-    result: Document = {key: value for key, value in file.items()}
+def merged(file: Mapping[str, Any], options: Mapping[str, Any], folder: Path) -> Document:
+    """A file's document with what options add; RequirementError where they contradict.
+
+    A cycle's file in it is looked for in `folder`, and stands with its path in the result.
+    """
+    result: Document = dict(file)
+    if isinstance(result.get("cycle"), str):
+        result["cycle"] = str((folder / result["cycle"]).absolute())
     for section, added in options.items():
         there = result.get(section)
         if not there:
@@ -388,6 +393,19 @@ def merged(file: Mapping[str, Any], options: Mapping[str, Any]) -> Document:
                 table[key] = value
         result[section] = table
     return result
+
+
+def saved(requirement: Requirement) -> str:
+    """The requirement as a TOML file that stands alone: a cycle's file is written out in rows."""
+    document = dict(requirement.document)
+    if isinstance(document.get("cycle"), str):
+        linear = requirement.axis.travel is not None
+        rows = cycle_table.from_file(Path(document["cycle"]), linear)
+        units = [accepts[0] for accepts in cycle_table.axis_units(linear).values()]
+        document["cycle"] = [
+            [f"{value!r} {unit}" for value, unit in zip(row, units, strict=True)] for row in rows
+        ]
+    return to_toml(document)
 
 
 def read_file(path: Path) -> Document:
@@ -446,5 +464,6 @@ __all__ = [
     "merged",
     "read_file",
     "read_requirement",
+    "saved",
     "to_toml",
 ]

@@ -1,0 +1,200 @@
+"""A search as a person reads it: the ranked table, near misses, counts, the safety line."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from typing import Any
+
+from rich.console import Console
+from rich.table import Table
+from rich.text import Text
+
+from .plain import number, plain, words
+
+Document = Mapping[str, Any]
+
+SAFETY = (
+    "A screening aid: verify against the maker's current datasheet, and follow local codes and "
+    "licensed practice."
+)
+_RPM = 60 / (2 * 3.141592653589793)
+
+
+def print_search(document: Document, console: Console) -> None:
+    """Counts, candidates, near misses."""
+    counts, candidates = document["counts"], document["candidates"]
+    rejected = sum(counts["rejected"].values())
+    console.print(
+        f"{counts['considered']} motors: {counts['feasible']} do it, {rejected} do not, "
+        f"{counts['unknown']} unknown."
+    )
+    if candidates:
+        console.print(candidate_table(candidates))
+        for line in _notes(candidates):
+            console.print(Text(line), soft_wrap=False)
+    else:
+        console.print("No motor does it.")
+    if counts["rejected"]:
+        by_limit = ", ".join(f"{words(k)} {n}" for k, n in counts["rejected"].items())
+        console.print(Text(f"Rejected by: {by_limit}."))
+    if counts["lacking"]:
+        lacking = ", ".join(f"{words(k)} {n}" for k, n in counts["lacking"].items())
+        console.print(Text(f"Unknown for lack of: {lacking}."))
+    if document["near_misses"]:
+        console.print()
+        console.print("Near misses:")
+        for miss in document["near_misses"]:
+            console.print(Text(_miss(miss)))
+
+
+def _miss(miss: Document) -> str:
+    use = miss["utilisation"].get(miss["limiting"])
+    geared = f" with {miss['gear']['part_number']}" if "gear" in miss else ""
+    over = f"{words(miss['limiting'])} {use:.0%}" if use is not None else words(miss["limiting"])
+    return plain(f"  {miss['part_number']}{geared} ({miss['maker']}): {over}. {miss['needs']}")
+
+
+def candidate_table(candidates: Sequence[Document]) -> Table:
+    """The ranked table: fits in 80 columns."""
+    geared = any("gear" in c for c in candidates)
+    table = Table(box=None, pad_edge=False, padding=(0, 1), header_style="bold")
+    table.add_column("#", justify="right")
+    table.add_column("motor", overflow="fold")
+    table.add_column("gear" if geared else "ratio", overflow="fold")
+    for heading in ("mass kg", "peak A", "rms A", "winding °C"):
+        table.add_column(heading, justify="right")
+    table.add_column("limit", overflow="fold")
+    for rank, c in enumerate(candidates, start=1):
+        mass = c["pair_mass"] if "pair_mass" in c else c["mass"]
+        use = c["utilisation"].get(c["limiting"]) if c["limiting"] else None
+        table.add_row(
+            str(rank),
+            Text(plain(c["part_number"])),
+            Text(plain(c["gear"]["part_number"]) if "gear" in c else _ratio(c)),
+            number(mass["value"], 3),
+            number(c["peak_current"]["value"], 3),
+            number(c["rms_current"]["value"], 3),
+            number(c["winding_temperature"]["value"], 3),
+            "–" if use is None else f"{words(c['limiting'])} {use:.0%}",
+        )
+    return table
+
+
+def _ratio(c: Document) -> str:
+    pairs = c["ratio_intervals"]
+    spans = ", ".join(f"{low:.3g}–{high:.3g}" for low, high in pairs)
+    return f"{c['ratio']:.4g}" + (f" ({spans})" if spans else "")
+
+
+def _notes(candidates: Sequence[Document]) -> list[str]:
+    """Supply and inertia of the first candidate, and remarks, each with the motors it concerns."""
+    lines = []
+    first = candidates[0]
+    if "supply" in first:
+        lines.append(f"{plain(first['part_number'])} {_supply(first)}.")
+    corners = [c for c in candidates if "worst_corner" in c]
+    if corners:
+        lines.append(f"Worst case of {plain(first['part_number'])}: {first['worst_corner']}.")
+    remarks: dict[str, list[str]] = {}
+    for c in candidates:
+        for remark in c["remarks"]:
+            remarks.setdefault(remark, []).append(plain(c["part_number"]))
+    for remark, parts in remarks.items():
+        who = "all shown" if len(parts) == len(candidates) > 2 else ", ".join(parts)
+        lines.append(f"Note on {who}: {remark}.")
+    return lines
+
+
+def _supply(c: Document) -> str:
+    s = c["supply"]
+    said = (
+        f"draws {number(s['mean_power']['value'], 3)} W on average and "
+        f"{number(s['peak_power']['value'], 3)} W at most, "
+        f"{number(s['energy_per_cycle']['value'], 3)} J a cycle"
+    )
+    if s["energy_returned"]["value"]:
+        said += f", and returns {number(s['energy_returned']['value'], 3)} J"
+    if "bus_capacitance" in s:
+        said += (
+            f" (a bus that may rise {s['bus_rise']:.0%}: "
+            f"{_farads(s['bus_capacitance']['value'])}, or a brake resistor of at most "
+            f"{number(s['brake_resistor']['value'], 3)} Ω for "
+            f"{number(s['brake_power']['value'], 3)} W)"
+        )
+    if c["inertia_ratio"] is not None and c["inertia_ratio"] > 0:
+        said += f"; load to rotor inertia {number(c['inertia_ratio'], 3)}"
+    return said
+
+
+def _farads(value: float) -> str:
+    return f"{number(value * 1e6, 3)} µF" if value < 1e-3 else f"{number(value * 1e3, 3)} mF"
+
+
+def print_requirement(document: Document, console: Console) -> None:
+    """The requirement as understood: the cycle in rows, then everything else."""
+    if document["title"]:
+        console.print(Text(plain(document["title"]), style="bold"))
+    table = Table(box=None, pad_edge=False, padding=(0, 1), header_style="bold")
+    for heading in ("from s", "for s", "speed rpm", "torque N·m", "power W"):
+        table.add_column(heading, justify="right")
+    for row in document["cycle"]:
+        table.add_row(
+            number(row["time"]["value"]),
+            number(row["duration"]["value"]),
+            _span(row["speed"], _RPM),
+            _span(row["torque"]),
+            _span(row["power"]),
+        )
+    console.print("At the load's shaft, its inertia's acceleration included:")
+    console.print(table)
+    load = document["load"]
+    console.print(
+        f"Peak torque {_si(load['peak_torque'])}, rms {_si(load['rms_torque'])}; peak speed "
+        f"{number(load['peak_speed']['value'] * _RPM)} rpm, rms "
+        f"{number(load['rms_speed']['value'] * _RPM)} rpm; peak power {_si(load['peak_power'])}; "
+        f"period {_si(load['period'])}."
+    )
+    for name in (
+        "load_inertia", "supply", "lowest_supply", "available_voltage", "current_limit",
+        "power_limit", "pwm_frequency", "peak_current", "continuous_current", "ambient", "mounting",
+        "gear_inertia",
+    ):  # fmt: skip
+        if document[name]["value"]:
+            convention = ""
+            if name.endswith("s_current") or name == "peak_current":
+                key = "continuous_current_convention" if "cont" in name else "current_convention"
+                convention = {"dc": " (armature)"}.get(document[key], f" {document[key]}")
+            console.print(f"  {words(name)}: {_si(document[name])}{convention}")
+    if "ratio_range" in document:
+        low, high = document["ratio_range"]
+        console.print(f"  gear ratio: {low:g} to {high:g}, efficiency {document['gear_efficiency']:.0%}")
+    elif document["gears"]:
+        console.print("  gears: those of the catalog")
+    else:
+        ratios = ", ".join(f"{r:g}" for r in document["ratios"])
+        console.print(f"  gear ratio: {ratios}, efficiency {document['gear_efficiency']:.0%}")
+    if document["permissible_rise"] < 1:
+        console.print(
+            f"  altitude {_si(document['altitude'])}: {document['permissible_rise']:.1%} of the "
+            "permissible temperature rise (IEC 60034-1's rule, from memory)"
+        )
+    for name in ("largest_inertia_ratio", "worst_case"):
+        if document[name]:
+            console.print(f"  {words(name)}: {document[name]}")
+    console.print(
+        f"  reserve {document['reserve']:.0%}, ordered by {document['order_by']}, "
+        f"at most {document['limit']} shown"
+    )
+    for limit in document["where"]:
+        console.print(Text(f"  where {plain(limit)}"))
+
+
+def _si(found: Document) -> str:
+    return f"{number(found['value'])} {found['unit']}"
+
+
+def _span(pair: Sequence[Document], factor: float = 1.0) -> str:
+    first, second = (p["value"] * factor + 0.0 for p in pair)
+    if abs(first - second) <= 1e-9 * max(abs(first), abs(second)):
+        return number(first)
+    return f"{number(first)} … {number(second)}"
