@@ -108,7 +108,8 @@ def _section(code: str) -> Section:
     scale = len(digits) - len(digits.rstrip(","))
     return Section(
         kind, before, after, len(part.replace(",", "")), part.count("#") + part.count("?"),
-        whole.count("0"), len(whole.replace(",", "")), exponent, percent, scale, fraction, condition,
+        whole.count("0"), len(whole.replace(",", "")), exponent, percent, scale, fraction,
+        condition,
     )  # fmt: skip
 
 
