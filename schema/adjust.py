@@ -6,26 +6,27 @@ system regular, so that one incomplete motor can't stop the batch.
 """
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 import numpy as np
 from numpy.typing import NDArray
 
 from .batch import Floats
 from .model import (
-    FAMILY_ROWS,
     INDEX,
     LAW_SCATTER,
     UNPUBLISHED_I0,
     UNPUBLISHED_I0_SERVO,
-    F,
     P,
     Readings,
+    Slopes,
     family_matrix,
     linear_matrix,
     nonlinear_rows,
     ridge,
 )
+
+Rows = Iterator[tuple[Floats, Floats, Slopes]]
 
 CHUNK = 4096
 ITERATIONS = 5
@@ -39,7 +40,8 @@ class Problem:
     y (n, F) logarithms of the figures, brought to the DC motor at the reference temperature (0
     where absent); present (n, F); digits and scatter (n, F) standard deviations of y from the
     printed digits and from custom; servo (n,) true for sinusoidal motors; family (n, 4) what the
-    motor's family shares (logarithms), family_sd its standard deviation (inf: no family).
+    motor's family shares (logarithms), family_sd its standard deviation (inf: no family); scale
+    (n,) or (1,) how much of the customary scatter the table shows.
     """
 
     y: Floats
@@ -50,7 +52,7 @@ class Problem:
     family: Floats
     family_sd: Floats
     readings: Readings
-    scale: float = 1.0
+    scale: Floats = field(default_factory=lambda: np.ones(1))
 
     def __len__(self) -> int:
         return len(self.y)
@@ -60,7 +62,7 @@ class Problem:
         return Problem(
             self.y[which], self.present[which], self.digits[which], self.scatter[which],
             self.servo[which], self.family[which], self.family_sd[which], self.readings,
-            self.scale,
+            self.scale if len(self.scale) == 1 else self.scale[which],
         )  # fmt: skip
 
     def without(self, figures: NDArray[np.integer]) -> "Problem":
@@ -72,7 +74,7 @@ class Problem:
 
     def sd(self) -> Floats:
         """Standard deviation of every figure's row, shape (n, F)."""
-        return np.sqrt(self.digits**2 + (self.scale * self.scatter) ** 2)
+        return np.sqrt(self.digits**2 + (self.scale[:, None] * self.scatter) ** 2)
 
     def weights(self) -> Floats:
         """1/variance of every figure's row, 0 where absent."""
@@ -82,7 +84,7 @@ class Problem:
         """1/variance of the laws and of the prior on an unpublished no-load current."""
         laws = np.empty((len(self), LAWS))
         scatter = np.array(list(LAW_SCATTER.values()))
-        laws[:, :-1] = 1.0 / np.maximum(self.scale * scatter, 1e-3) ** 2
+        laws[:, :-1] = 1.0 / (self.scale[:, None] * scatter) ** 2
         unpublished = ~self.present[:, INDEX["no_load_current"]]
         prior = np.where(self.servo, UNPUBLISHED_I0_SERVO[1], UNPUBLISHED_I0[1]) ** -2.0
         laws[:, -1] = np.where(unpublished, prior, 0.0)
@@ -125,75 +127,91 @@ class _Equations:
         self.rows = np.flatnonzero(problem.present.any(axis=0) & matrix.any(axis=1))
         self.matrix = matrix[self.rows]
         self.y = problem.y[:, self.rows] - self.constant[self.rows]
+        self.squares = _outer(self.matrix)
         self.family = family_matrix()
+        self.family_value = np.nan_to_num(problem.family)
         with np.errstate(divide="ignore"):
             self.family_weight = np.where(
                 np.isfinite(problem.family_sd), problem.family_sd**-2.0, 0.0
             )
+        self.has_family = bool(self.family_weight.any())
         self.prior_mean, self.prior_weight = ridge()
 
-    def normal(self, x: Floats, typical: bool, damp: Floats | None) -> tuple[Floats, Floats]:
-        """Normal matrix (n, P, P) and right-hand side (n, P) at x."""
+    def normal(
+        self, x: Floats, typical: bool = False, cut: float | None = None
+    ) -> tuple[Floats, Floats]:
+        """Normal matrix (n, P, P) and right-hand side (n, P) at x.
+
+        With ``cut`` residuals beyond so many standard deviations lose weight (Cauchy).
+        """
         weight = self.weight[:, self.rows]
-        if damp is not None:
-            weight = weight * damp
-        left = self.matrix[:, :, None] * self.matrix[:, None, :]
-        matrix = (weight @ left.reshape(len(self.rows), -1)).reshape(-1, P, P)
-        right = (weight * (self.y - x @ self.matrix.T)) @ self.matrix
-        if self.family_weight.any():
-            left = self.family[:, :, None] * self.family[:, None, :]
-            matrix += (self.family_weight @ left.reshape(len(FAMILY_ROWS), -1)).reshape(-1, P, P)
-            gap = np.nan_to_num(self.problem.family) - x @ self.family.T
-            right += (self.family_weight * gap) @ self.family
+        gap = self.y - x @ self.matrix.T
+        if cut is not None:
+            weight = weight / (1.0 + weight * (gap / cut) ** 2)
+        matrix = (weight @ self.squares).reshape(-1, P, P)
+        right = (weight * gap) @ self.matrix
+        if self.has_family:
+            weight, gap = self.family_weight, self.family_value - x @ self.family.T
+            if cut is not None:
+                weight = weight / (1.0 + weight * (gap / cut) ** 2)
+            matrix += (weight @ _outer(self.family)).reshape(-1, P, P)
+            right += (weight * gap) @ self.family
         index = np.arange(P)
         matrix[:, index, index] += self.prior_weight
         right += self.prior_weight * (self.prior_mean - x)
         for residual, w, slopes in self.nonlinear(x, typical):
+            damped = w if cut is None else w / (1.0 + w * (residual / cut) ** 2)
             for a, slope_a in slopes:
-                weighed = w * slope_a
+                weighed = damped * slope_a
                 right[:, a] += weighed * residual
                 for b, slope_b in slopes:
                     matrix[:, a, b] += weighed * slope_b
         return matrix, right
 
-    def nonlinear(self, x: Floats, typical: bool = False):
+    def nonlinear(self, x: Floats, typical: bool = False) -> Rows:
         """The nonlinear rows at x."""
         return nonlinear_rows(
             x, self.problem.y, self.weight, self.laws, self.problem.servo,
             self.problem.readings, typical,
         )  # fmt: skip
 
-    def chi2(self, x: Floats) -> Floats:
-        """Weighted sum of squares of all rows but the weak prior."""
+    def chi2(self, x: Floats, cut: float | None = None) -> Floats:
+        """Weighted sum of squares of all rows but the weak prior; with ``cut`` of the Cauchy
+        loss, which grows as the logarithm."""
+
+        def loss(square: Floats) -> Floats:
+            return square if cut is None else cut**2 * np.log1p(square / cut**2)
+
         weight = self.weight[:, self.rows]
-        total = (weight * (self.y - x @ self.matrix.T) ** 2).sum(axis=1)
-        gap = np.nan_to_num(self.problem.family) - x @ self.family.T
-        total += (self.family_weight * gap**2).sum(axis=1)
+        total = loss(weight * (self.y - x @ self.matrix.T) ** 2).sum(axis=1)
+        if self.has_family:
+            gap = self.family_value - x @ self.family.T
+            total += loss(self.family_weight * gap**2).sum(axis=1)
         for residual, w, _ in self.nonlinear(x):
-            total += w * residual**2
+            total += loss(w * residual**2)
         return total
+
+
+def _outer(rows: Floats) -> Floats:
+    """The outer product of every row with itself, flat: shape (m, P·P)."""
+    return (rows[:, :, None] * rows[:, None, :]).reshape(len(rows), -1)
+
+
+ROBUST_CUTS = (30.0, 10.0, 5.0, 3.0, 3.0, 3.0, 3.0)
+"""The cut of the robust fit, step by step, in standard deviations."""
 
 
 def _fit_chunk(problem: Problem, robust: bool) -> Fit:
     equations = _Equations(problem)
     x = np.broadcast_to(equations.prior_mean, (len(problem), P)).copy()
-    damp = None
-    matrix, right = equations.normal(x, True, None)
+    matrix, right = equations.normal(x, typical=True)
     x += np.linalg.solve(matrix, right[..., None])[..., 0]
-    for _ in range(ITERATIONS):
-        matrix, right = equations.normal(x, False, damp)
+    cuts = ROBUST_CUTS if robust else (None,) * ITERATIONS
+    for cut in cuts:
+        matrix, right = equations.normal(x, cut=cut)
         step = np.linalg.solve(matrix, right[..., None])[..., 0]
         x += np.clip(step, -3.0, 3.0)
-        if np.abs(step).max(initial=0.0) < 1e-6:
+        if not robust and np.abs(step).max(initial=0.0) < 1e-6:
             break
     covariance = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
-    return Fit(x, covariance, equations.chi2(x))
-
-
-def leave_one_out(problem: Problem) -> Iterator[tuple[int, NDArray[np.integer], Fit]]:
-    """For each figure: its index, the motors that have it, and their fit without it."""
-    for figure in range(F):
-        who = np.flatnonzero(problem.present[:, figure])
-        if who.size:
-            part = problem.take(who)
-            yield figure, who, fit(part.without(np.full(who.size, figure)))
+    return Fit(x, covariance, equations.chi2(x, cuts[-1]))

@@ -227,3 +227,13 @@ def static_scores(form: Shape, log_ratio: Floats, sd: Floats) -> Floats:
         out[:, code] = np.maximum(out[:, code], value)
     out[:, CODE["unexplained"]] = np.maximum(out[:, CODE["unexplained"]], unexplained(log_ratio))
     return out
+
+
+def causes_of(scores: Floats, within: float = 4.6) -> tuple[str, ...]:
+    """The causes by likelihood: all that are within a factor of 100 of the likeliest."""
+    order = np.argsort(-scores)
+    best = scores[order[0]]
+    names = tuple(CAUSES[c] for c in order.tolist() if scores[c] > best - within)
+    if names[0] != "unexplained" and "unexplained" in names:
+        names = (*(n for n in names if n != "unexplained"), "unexplained")
+    return names

@@ -95,3 +95,28 @@ def _origin(
             name = "derived"
         basis.append(CONSTANT_BASES.index(name))
     return np.array(basis, dtype=np.int8)[source], sources, source.astype(np.int32)
+
+
+def joined(parts: list[dict[str, ConstantColumn]]) -> dict[str, ConstantColumn]:
+    """Constant columns of consecutive batches as one, with one palette of sources each."""
+    if len(parts) == 1:
+        return parts[0]
+    out: dict[str, ConstantColumn] = {}
+    for key in CANONICAL:
+        columns = [part[key] for part in parts]
+        index: dict[tuple[str, ...], int] = {}
+        source = [
+            np.array([index.setdefault(keys, len(index)) for keys in c.sources], dtype=np.int32)[
+                c.source
+            ]
+            for c in columns
+        ]
+        out[key] = ConstantColumn(
+            value=np.concatenate([c.value for c in columns]),
+            low=np.concatenate([c.low for c in columns]),
+            high=np.concatenate([c.high for c in columns]),
+            basis=np.concatenate([c.basis for c in columns]),
+            sources=list(index),
+            source=np.concatenate(source),
+        )
+    return out

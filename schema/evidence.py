@@ -13,6 +13,11 @@ from .batch import Batch, Floats
 from .causes import CAUSES, CODE, log_normal, shape, static_scores
 from .model import FIGURES, I0, IN, INDEX, R, U
 from .observed import copper, magnet_slope
+from .suspects import LeftOut
+from .vocabulary import quantity
+
+SLACK = 0.7
+"""Allowance on the plausible ranges, in logarithms."""
 
 SHARED = frozenset({
     "rotor_inertia", "motor_constant", "mechanical_time_constant", "electrical_time_constant",
@@ -76,12 +81,33 @@ class Evidence:
                     out[:, i] = np.where(number > 0, np.log(number), np.nan)
         return out
 
+    @cached_property
+    def plausible(self) -> tuple[Floats, Floats]:
+        """Logarithms of the plausible range of every figure, of the DC motor: two (F,)."""
+        bounds = np.log([quantity(key).plausible for key in FIGURES])
+        return bounds[:, 0], bounds[:, 1]
+
+    def implausible(self, part: Problem, left: LeftOut) -> Floats:
+        """How many values beyond any motor's each suspect would leave, shape (n, F)."""
+        low, high = self.plausible
+        with np.errstate(invalid="ignore"):
+            printed = part.present & ((part.y < low - SLACK) | (part.y > high + SLACK))
+            implied = part.y - left.log_ratio
+            beyond = part.present & ((implied < low - SLACK) | (implied > high + SLACK))
+        others = printed.sum(axis=1, keepdims=True) - printed
+        return (beyond + others).astype(float)
+
     def unit(self, motor: int, figure: int) -> str:
         """The unit a figure is printed in."""
         column = self.batch.figures.get(FIGURES[figure])
         if column is None or not self.batch.headings:
             return ""
         return self.batch.headings[int(column.heading[motor])].unit
+
+    def place(self, motor: int, figure: int) -> tuple[int, int]:
+        """Row and column of a figure in the file."""
+        column = self.batch.figures[FIGURES[figure]]
+        return int(column.row[motor]), int(column.column[motor])
 
     def text(self, motor: int, figure: int) -> str:
         """The printed text of a figure."""
@@ -105,6 +131,12 @@ class Evidence:
         for i, (m, f) in enumerate(zip(motors.tolist(), figures.tolist(), strict=True)):
             self._particular(out[i], m, f, float(log_ratio[i]), float(sd[i]))
         return out
+
+    def column_scores(self, figure: int, motors: np.ndarray, log_ratio: float, sd: float) -> Floats:
+        """The same for a factor that a whole column shares, shape (causes,)."""
+        first = int(motors[0])
+        form = shape(FIGURES[figure], int(self.batch.commutation[first]), self.unit(first, figure))
+        return static_scores(form, np.array([log_ratio]), np.array([sd]))[0]
 
     def _particular(self, row: Floats, m: int, f: int, log_ratio: float, sd: float) -> None:
         """Causes whose factor depends on this motor's own text, neighbours and figures."""

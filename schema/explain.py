@@ -5,11 +5,13 @@ import math
 import numpy as np
 
 from .batch import Batch
-from .judge import Suspicion
+from .columns import ColumnFault
+from .inference import Inferred
 from .model import FIGURES
 from .motor import Amount, Cell, Finding
 from .observed import to_model
-from .relations import CONSTANT_FIGURES, RELATIONS, Relation, own_relation
+from .relations import CONSTANT_FIGURES, CONVENTION, RELATIONS, Relation, own_relation
+from .suspects import Suspicion
 from .vocabulary import quantity
 
 SENTENCES = {
@@ -58,6 +60,10 @@ def number(value: float, digits: int = 3) -> str:
 def name(figure: str) -> str:
     """A figure's name in words."""
     return figure.replace("_", " ").replace("back emf", "back-EMF")
+
+
+def _times(ratio: float) -> str:
+    return f"{number(ratio)} times" if ratio > 0.2 else f"1/{number(1 / ratio)} of"
 
 
 class Narrator:
@@ -160,6 +166,9 @@ class Narrator:
             f"{self.amount(left, motor, right / self.dc_factor(left, motor))}, printed is "
             f"{self.printed(left, motor)}"
         )
+        used = (left, *roles.values())
+        if any(abs(self.dc_factor(key, motor) - 1.0) > 1e-3 for key in used):
+            text += ", all brought to the DC motor's conventions"
         with np.errstate(divide="ignore", invalid="ignore"):
             ratio = self.dc(left, motor) / right if right > 0 else math.nan
         return text, ratio
@@ -177,7 +186,6 @@ class Narrator:
         implied = float(column.value[motor]) / ratio
         cause, *others = suspicion.causes
         others = [o for o in others if o != "unexplained"]
-        times = f"{number(ratio)} times" if ratio >= 1 else f"1/{number(1 / ratio)} of"
         amount = self.amount(figure, motor, implied)
         text = (
             f"{name(figure).capitalize()} {self.printed(figure, motor)}{self.place(motor, figure)}"
@@ -189,7 +197,7 @@ class Narrator:
                 f"each other's place all figures agree; {name(figure)} would be {amount}."
             )
         else:
-            text += f" is {times} what the other figures imply ({amount})"
+            text += f" is {_times(ratio)} what the other figures imply ({amount})"
         names: tuple[str, ...] = (figure,)
         if relation is not None:
             equation, _ = self.equation(motor, relation, roles)
@@ -216,6 +224,92 @@ class Narrator:
             cell=self.cell(motor, figure),
             message=text,
         )
+
+    def column(
+        self, fault: ColumnFault, motors: np.ndarray | None, severity: str
+    ) -> tuple[int, Finding]:
+        """The finding of a mistake that a column shares; the first motor concerned."""
+        figure = FIGURES[fault.figure]
+        column = self.batch.figures[figure]
+        if motors is None:
+            motors = np.flatnonzero(np.isfinite(column.value))
+        first = int(motors[0])
+        rivals = tuple(FIGURES[f] for f in fault.rivals)
+        ratio = math.exp(fault.log_ratio)
+        implied = float(column.value[first]) / ratio
+        cause, *others = fault.causes
+        others = [o for o in others if o != "unexplained"]
+        heading = (
+            self.batch.headings[int(column.heading[first])].text if self.batch.headings else ""
+        )
+        told = f' under the heading "{heading}"' if heading else ""
+        text = (
+            f"{name(figure).capitalize()}{told} is {_times(ratio)} what the other figures imply, "
+            f"alike for {len(motors)} motors: {self.batch.part_number[first]} has "
+            f"{self.printed(figure, first)}{self.place(first, figure)}, implied is "
+            f"{self.amount(figure, first, implied)}"
+        )
+        relation, roles = self.relation_of(first, figure, frozenset())
+        names: tuple[str, ...] = (figure, *rivals)
+        if relation is not None:
+            equation, _ = self.equation(first, relation, roles)
+            text += f" ({equation})"
+            if not rivals:
+                names = tuple(dict.fromkeys((figure, relation.left, *roles.values())))
+        text += ". One mistake in the heading rather than one in every cell."
+        if rivals:
+            listed = ", ".join(name(r) for r in names)
+            text += f" Nothing else in the table tells which is wrong: {listed}."
+        return first, Finding(
+            part_number=None,
+            scope="column",
+            part_numbers=tuple(self.batch.part_number[m] for m in motors.tolist()),
+            severity=severity,  # type: ignore[arg-type]
+            relation=relation.name if relation else own_relation(figure),
+            figures=names,
+            suspect=None if rivals else figure,
+            ratio=ratio,
+            cause=cause,
+            other_causes=tuple(others),
+            implied=Amount(value=implied, unit=quantity(figure).unit),
+            cell=self.cell(first, figure),
+            message=f"{text} {self.because(cause, others)}",
+        )
+
+    def inference(self, inferred: Inferred) -> Finding:
+        """The note on conventions that the figures show where the sheet doesn't say."""
+        first = int(inferred.entries[0])
+        evidence = f"the figures of {inferred.motors} motor{'s' * (inferred.motors > 1)} agree"
+        if inferred.signature:
+            evidence += f" ({inferred.signature})"
+        text = (
+            f"The sheet doesn't state all conventions of its {inferred.kind.word} motors; taken as "
+            f"{', '.join(inferred.words)}, with which {evidence}."
+        )
+        if inferred.departs:
+            text += f" The customary reading would not fit ({', '.join(inferred.departs)})."
+        if inferred.rivals:
+            text += f" Fits as well: {'; '.join(inferred.rivals)}."
+        cause = "unexplained"
+        for word, named in (("peak", "peak-vs-rms"), ("phase", "line-vs-phase"),
+                            ("dc", "sinusoidal-current-convention")):  # fmt: skip
+            if any(word in d for d in inferred.departs):
+                cause = named
+        return Finding(
+            part_number=None, scope="column",
+            part_numbers=tuple(self.batch.part_number[m] for m in inferred.entries.tolist()),
+            severity="note", relation=CONVENTION, figures=inferred.figures, cause=cause,
+            cell=self.cell(first, inferred.figures[0]), message=text,
+        )  # fmt: skip
+
+    def points(self, motor: int, misfit: float) -> Finding:
+        """The note on operating points that no one motor gives."""
+        return Finding(
+            part_number=self.batch.part_number[motor], severity="warning",
+            relation="operating-points", figures=(),
+            message=f"The published operating points don't lie on the straight lines of one motor: "
+            f"the worst is off by {number(100 * misfit, 2)} %.",
+        )  # fmt: skip
 
     def because(self, cause: str, others: list[str]) -> str:
         """The cause in a sentence, with the likeliest others."""

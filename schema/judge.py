@@ -5,12 +5,12 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from .adjust import Problem
+from .adjust import Problem, fit
 from .batch import Floats
-from .causes import CAUSES
+from .causes import causes_of
 from .evidence import Evidence
-from .model import F
-from .suspects import Bools, LeftOut, contradicts, leave_out, own_sd
+from .suspects import Bools, LeftOut, Suspicion, contradicts, leave_out, own_sd
+from .swaps import find_swaps
 
 NEAR = 16.0
 """Figures whose leaving-out is worse than the best by more than this aren't considered rivals."""
@@ -19,71 +19,55 @@ CLEAR_FIT, CLEAR_ALL = 2.5, 6.0
 """A suspect is named when every rival is worse by this much in χ², and by this much when the
 causes are counted in (−2 × log odds)."""
 
-FAULT = -4.0
-"""Log prior that a given figure is wrong."""
+IMPLAUSIBLE = 6.0
+"""What it costs, in χ², when a suspect's implied value or another figure that then stays right lies
+beyond what motors of any size have."""
 
-SWAP = -5.0
-"""Log prior that some two cells of a motor are exchanged."""
-
-FITS = 2.0
-"""A cause fits within so many standard deviations of its ratio: half the square of it, in log."""
-
-
-@dataclass(slots=True)
-class Suspicion:
-    """One fault of one motor.
-
-    figure is the likeliest one; rivals the others that might be it just as well (none: it is
-    named); log_ratio of printed to implied with the implied value's sd; saved is the χ² that
-    leaving it out saves; causes the likeliest first; partner the other figure of a swap.
-    """
-
-    motor: int
-    figure: int
-    rivals: tuple[int, ...]
-    log_ratio: float
-    implied_sd: float
-    sd: float
-    saved: float
-    causes: tuple[str, ...]
-    partner: int | None = None
+STEP = 1000
+"""Motors judged at a time."""
 
 
 @dataclass(slots=True)
 class _Ranking:
-    """Candidates of n motors, arrays (n, F): total evidence against and each one's causes."""
+    """Candidates of n motors, arrays (n, F): χ² and total evidence against each (inf: none), sd of
+    its ratio, and the log odds of its causes."""
 
+    chi2: Floats
     total: Floats
+    sd: Floats
     scores: dict[tuple[int, int], Floats]
 
 
 def _rank(
-    evidence: Evidence, motors: NDArray[np.integer], part: Problem, left: LeftOut
+    evidence: Evidence, motors: NDArray[np.integer], part: Problem, left: LeftOut, bad: Bools
 ) -> _Ranking:
-    best = np.nanmin(left.chi2, axis=1, keepdims=True)
+    best = np.nanmin(np.where(bad, left.chi2, np.inf), axis=1, keepdims=True)
     with np.errstate(invalid="ignore"):
-        row, figure = np.nonzero(left.chi2 <= best + NEAR)
+        row, figure = np.nonzero((left.chi2 <= best + NEAR) & part.present)
     sd = own_sd(part, left)
     scores = evidence.scores(motors[row], figure, left.log_ratio[row, figure], sd[row, figure])
-    top = scores.max(axis=1)
-    odds = top + np.log(np.exp(scores - top[:, None]).sum(axis=1))
-    total = np.full((len(motors), F), np.inf)
-    total[row, figure] = left.chi2[row, figure] - 2.0 * odds
+    chi2, total = np.full(left.chi2.shape, np.inf), np.full(left.chi2.shape, np.inf)
+    chi2[row, figure] = left.chi2[row, figure]
+    chi2 += IMPLAUSIBLE * evidence.implausible(part, left)
+    total[row, figure] = chi2[row, figure] - 2.0 * np.logaddexp.reduce(scores, axis=1)
     pairs = zip(row.tolist(), figure.tolist(), strict=True)
-    return _Ranking(total, dict(zip(pairs, scores, strict=True)))
+    return _Ranking(chi2, total, sd, dict(zip(pairs, scores, strict=True)))
 
 
 def judge(evidence: Evidence, motors: NDArray[np.integer]) -> tuple[list[Suspicion], Bools]:
     """The suspicions of these motors, and the mask (N, F) of figures left out for it."""
     removed = np.zeros_like(evidence.problem.present)
     out: list[Suspicion] = []
-    step = 1000
-    for start in range(0, len(motors), step):
-        out += _judge_some(evidence, motors[start : start + step], removed)
+    for start in range(0, len(motors), STEP):
+        out += _judge_some(evidence, motors[start : start + STEP])
+    for s in out:
+        removed[s.motor, s.figure] = True
+        if s.partner is not None:
+            removed[s.motor, s.partner] = True
     return out, removed
 
 
-def _judge_some(evidence: Evidence, motors: NDArray[np.integer], removed: Bools) -> list[Suspicion]:
+def _judge_some(evidence: Evidence, motors: NDArray[np.integer]) -> list[Suspicion]:
     part = evidence.problem.take(motors)
     part.present = part.present.copy()
     limit = np.maximum(part.present.sum(axis=1) // 3, 1)
@@ -94,62 +78,76 @@ def _judge_some(evidence: Evidence, motors: NDArray[np.integer], removed: Bools)
         active = active[turn < limit[active]]
         if not active.size:
             break
-        sub = part.take(active)
-        left = leave_out(sub)
-        bad = contradicts(chi2[active], left)
-        go = bad.any(axis=1)
-        if not go.any():
-            break
-        sub, active = sub.take(np.flatnonzero(go)), active[go]
-        left = LeftOut(left.chi2[go], left.log_ratio[go], left.implied_sd[go])
-        ranking = _rank(evidence, motors[active], sub, left)
-        for i, local in enumerate(active.tolist()):
-            total = np.where(bad[go][i], ranking.total[i], np.inf)
-            if not np.isfinite(total).any():  # the best fits don't depart enough to tell
-                total = np.where(bad[go][i], left.chi2[i] + 1e3, np.inf)
-                ranking.total[i] = np.minimum(ranking.total[i], total)
-            figure = int(np.argmin(total))
-            suspicion = _suspicion(evidence, int(motors[local]), i, figure, float(chi2[local]), sub, left,
-                                   ranking)  # fmt: skip
-            found.setdefault(local, []).append(suspicion)
-            chi2[local] = left.chi2[i, figure]
-            part.present[local, figure] = False
+        active = _one_turn(evidence, motors, part, chi2, active, found)
+    _reconsider(evidence, motors, part, found)
+    swaps = find_swaps(evidence, motors, part, chi2, found)
     out: list[Suspicion] = []
     for local, suspicions in found.items():
-        m = int(motors[local])
-        for s in suspicions:
-            removed[m, s.figure] = True
-        out += suspicions
+        out += swaps.get(local, suspicions)
     return out
 
 
+def _one_turn(
+    evidence: Evidence, motors: NDArray[np.integer], part: Problem, chi2: Floats,
+    active: NDArray[np.integer], found: dict[int, list[Suspicion]],
+) -> NDArray[np.integer]:  # fmt: skip
+    """Take the likeliest suspect out of every motor that still contradicts itself; those motors."""
+    sub = part.take(active)
+    left = leave_out(sub)
+    bad = contradicts(chi2[active], left)
+    go = np.flatnonzero(bad.any(axis=1))
+    if not go.size:
+        return active[:0]
+    sub, active, bad = sub.take(go), active[go], bad[go]
+    left = LeftOut(left.chi2[go], left.log_ratio[go], left.implied_sd[go])
+    ranking = _rank(evidence, motors[active], sub, left, bad)
+    for i, local in enumerate(active.tolist()):
+        figure = int(np.argmin(np.where(bad[i], ranking.total[i], np.inf)))
+        verdict = _suspicion(int(motors[local]), i, figure, float(chi2[local]), left, ranking)
+        found.setdefault(local, []).append(verdict)
+        chi2[local] = left.chi2[i, figure]
+        part.present[local, figure] = False
+    return active
+
+
+def _reconsider(
+    evidence: Evidence, motors: NDArray[np.integer], part: Problem,
+    found: dict[int, list[Suspicion]],
+) -> None:  # fmt: skip
+    """Where several figures are out, put each back and see who its rivals are without the rest."""
+    pairs = [(local, s) for local, ss in found.items() if len(ss) > 1 for s in ss]
+    if not pairs:
+        return
+    locals_ = np.array([local for local, _ in pairs])
+    sub = part.take(locals_)
+    sub.present = sub.present.copy()
+    sub.present[np.arange(len(pairs)), [s.figure for _, s in pairs]] = True
+    before = fit(sub).chi2
+    left = leave_out(sub)
+    bad = contradicts(before, left)
+    ranking = _rank(evidence, motors[locals_], sub, left, bad)
+    for local in {local for local, _ in pairs}:
+        found[local] = []
+    for i, (local, old) in enumerate(pairs):
+        if not bad[i, old.figure]:
+            part.present[local, old.figure] = True
+            continue
+        found[local].append(_suspicion(old.motor, i, old.figure, float(before[i]), left, ranking))
+
+
 def _suspicion(
-    evidence: Evidence, motor: int, i: int, figure: int, before: float, sub: Problem,
-    left: LeftOut, ranking: _Ranking,
-) -> Suspicion:  # fmt: skip
-    total, chi2 = ranking.total[i], left.chi2[i]
+    motor: int, i: int, figure: int, before: float, left: LeftOut, ranking: _Ranking
+) -> Suspicion:
+    total, chi2 = ranking.total[i], ranking.chi2[i]
     with np.errstate(invalid="ignore"):
         rival = (total - total[figure] < CLEAR_ALL) | (chi2 - chi2[figure] < CLEAR_FIT)
     rival &= np.isfinite(total)
     rival[figure] = False
     order = sorted(np.flatnonzero(rival).tolist(), key=lambda f: total[f])
-    scores = ranking.scores.get((i, figure))
-    sd = float(own_sd(sub.take(slice(i, i + 1)), LeftOut(chi2[None], left.log_ratio[i][None],
-               left.implied_sd[i][None]))[0, figure])  # fmt: skip
+    scores = ranking.scores[(i, figure)]
     return Suspicion(
         motor, figure, tuple(order), float(left.log_ratio[i, figure]),
-        float(left.implied_sd[i, figure]), sd, float(before - chi2[figure]),
-        causes_of(scores),
+        float(left.implied_sd[i, figure]), float(ranking.sd[i, figure]),
+        float(before - left.chi2[i, figure]), causes_of(scores),
+        odds=float(np.logaddexp.reduce(scores)),
     )  # fmt: skip
-
-
-def causes_of(scores: Floats | None, within: float = 4.6) -> tuple[str, ...]:
-    """The causes by likelihood: all that are within a factor of 100 of the likeliest."""
-    if scores is None:
-        return ("unexplained",)
-    order = np.argsort(-scores)
-    best = scores[order[0]]
-    names = tuple(CAUSES[c] for c in order.tolist() if scores[c] > best - within)
-    if names[0] != "unexplained" and "unexplained" in names:
-        names = (*(n for n in names if n != "unexplained"), "unexplained")
-    return names

@@ -24,6 +24,27 @@ Bools = NDArray[np.bool_]
 
 
 @dataclass(slots=True)
+class Suspicion:
+    """One fault of one motor.
+
+    figure is the likeliest one; rivals the others that might be it just as well (none: it is
+    named); log_ratio of printed to implied with the implied value's sd; saved is the χ² that
+    leaving it out saves; causes the likeliest first; partner the other figure of a swap.
+    """
+
+    motor: int
+    figure: int
+    rivals: tuple[int, ...]
+    log_ratio: float
+    implied_sd: float
+    sd: float
+    saved: float
+    causes: tuple[str, ...]
+    partner: int | None = None
+    odds: float = 0.0
+
+
+@dataclass(slots=True)
 class LeftOut:
     """Every figure of n motors left out in turn, all arrays (n, F), NaN where absent.
 

@@ -1,0 +1,83 @@
+"""What one table says as a whole: how it reads where two readings are customary, and how much of
+the customary scatter it shows."""
+
+from dataclasses import replace
+
+import numpy as np
+
+from .adjust import Problem, fit
+from .batch import Floats
+from .model import INDEX, LAW_SCATTER, Readings
+
+SAMPLE = 240
+"""Motors of a table that decide what concerns the whole table."""
+
+SCALES = np.array([0.2, 0.35, 0.5, 0.7, 0.85, 1.0])
+
+SCALE_PRIOR = 0.7
+"""Standard deviation of the logarithm of the scale before the figures are seen."""
+
+
+def sample(n: int, size: int = SAMPLE) -> np.ndarray:
+    """Indices of motors spread evenly over a table of n."""
+    return np.unique(np.linspace(0, n - 1, min(n, size)).astype(np.int64))
+
+
+def readings(problem: Problem) -> Readings:
+    """The reading of stall torque, nominal speed and maximum power that fits the median motor.
+
+    One reading per table: the one with the smaller robust loss of the median motor; the
+    customary one unless another fits better.
+    """
+    plain = ~problem.servo
+    chosen = problem.readings
+    trials: list[tuple[str, str]] = [
+        ("stall_torque", "stall_torque_net"),
+        ("maximum_power", "maximum_power_electrical"),
+        ("nominal_speed", "nominal_speed_hot"),
+    ]
+    for figure, field in trials:
+        who = np.flatnonzero(plain & problem.present[:, INDEX[figure]])
+        if not who.size:
+            continue
+        part = problem.take(who)
+        other = replace(chosen, **{field: not getattr(chosen, field)})
+        losses = []
+        for reading in (chosen, other):
+            part.readings = reading
+            losses.append(float(np.median(fit(part, robust=True).chi2)))
+        if losses[1] < losses[0] - 1.0:
+            chosen = other
+    return chosen
+
+
+def scale(problem: Problem) -> float:
+    """How much of the customary scatter the motors of a table show, at most all of it.
+
+    The mean of its square under the marginal likelihood of the robust residuals over ``SCALES``,
+    with a weak prior at 1: a sheet computed from its constants holds to its printed digits, and
+    its many figures that agree say so.
+    """
+    n = len(problem)
+    count = SCALES.size
+    stacked = problem.take(np.tile(np.arange(n), count))
+    stacked.scale = np.repeat(SCALES, n)
+    fitted = fit(stacked, robust=True)
+    sign, log_det = np.linalg.slogdet(fitted.covariance)
+    variance = np.where(stacked.present, 2.0 * np.log(stacked.sd()), 0.0).sum(axis=1)
+    laws = _laws_in_force(stacked)
+    variance += (laws * 2.0 * np.log(stacked.scale)[:, None]).sum(axis=1)
+    cost = fitted.chi2 + variance - np.where(sign > 0, log_det, 0.0)
+    total = cost.reshape(count, n).sum(axis=1) + (np.log(SCALES) / SCALE_PRIOR) ** 2
+    share = np.exp(-0.5 * (total - total.min()))
+    return float(np.sqrt((share * SCALES**2).sum() / share.sum()))
+
+
+def _laws_in_force(problem: Problem) -> Floats:
+    """1 where a law binds a printed figure, 0 where it only defines an unprinted one."""
+    out = np.empty((len(problem), len(LAW_SCATTER)))
+    for i, key in enumerate(LAW_SCATTER):
+        out[:, i] = 1.0
+        if key == "nominal_speed":
+            out[:, i] = ~problem.servo
+    return out
