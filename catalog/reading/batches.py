@@ -40,6 +40,7 @@ from .kind import (
     notes_of,
     signature,
 )
+from .label import parse_label
 from .layout import inherit
 from .lexicon import squeeze, symbol_form, tokens
 from .match import Match, Matcher
@@ -67,6 +68,7 @@ class TableReader:
         self.id_field = None if table.part_numbers else id_field(table)
         self.style = self._style()
         self.matches = self._match()
+        self._share_frame()
         self.why_not: list[str] = []
         figures = [m for m in self.matches if m.role in ("figure", "point")]
         self.worthwhile = bool(figures) and table.count > 0
@@ -87,6 +89,42 @@ class TableReader:
         for f in self.table.fields:
             if any(is_ditto(t) for t in f.texts[:5000]):
                 f.texts = inherit(f.texts, ditto_only=True)
+
+    def _share_frame(self) -> None:
+        """A figure of the frame that stands once, at the first of its motors, holds for all.
+
+        Where a column names the frame (a model printed once, its windings below), it holds
+        down to the next model; without one only if no other motor has the figure.
+        """
+        groups = self._frame_groups()
+        for m in self.matches:
+            if m.role != "figure" or m.key is None or not quantity(m.key).frame:
+                continue
+            f = m.field
+            shared = False
+            texts = list(f.texts)
+            places = list(f.places or self.table.places)
+            for group in groups:
+                if len(group) > 1 and texts[group[0]] and not any(texts[k] for k in group[1:]):
+                    for k in group[1:]:
+                        texts[k], places[k] = texts[group[0]], places[group[0]]
+                    shared = True
+            if shared:
+                f.texts, f.places = texts, places
+                m.reason += "; printed once for the motors of a frame"
+
+    def _frame_groups(self) -> list[list[int]]:
+        n = self.table.count
+        for m in self.matches:
+            if m.key in ("series", "part_number") and m.field is not self.id_field:
+                texts = m.field.texts
+                if texts and texts[0] and not all(texts):
+                    return _runs(texts)
+                if m.key == "series" and all(texts):
+                    return _runs(
+                        [t if k == 0 or t != texts[k - 1] else "" for k, t in enumerate(texts)]
+                    )
+        return [list(range(n))] if 1 < n <= 200 else []
 
     def _style(self) -> NumberStyle:
         texts = [
@@ -233,7 +271,9 @@ class TableReader:
             return None
         base = default_convention(m.key, q.carries, self.commutation)
         said: dict[str, str | float] = {}
-        said.update(self.notes.conventions)
+        for subject, stated in self.notes.conventions:
+            if subject is None or subject in _subjects_of(m.key):
+                said.update(stated)
         for mark in m.field.label.marks:
             if mark in self.notes.marked:
                 said.update(note_conventions(self.notes.marked[mark]))
@@ -386,12 +426,14 @@ class TableReader:
         unread: list[Unread],
     ) -> Batch:
         n = len(ids)
+        maker = self.options.maker or self._titled("maker") or ""
+        series = self.options.series or self._titled("series")
         names = self._names(ids, places[0] if places else [], unread)
         batch = Batch(
             source=self.source,
             part_number=names,
-            maker=[self.options.maker] * n,
-            series=[self.options.series] * n,
+            maker=[maker] * n,
+            series=[series] * n,
             headings=self.headings,
             figures={},
             commutation=np.full(n, int(self.commutation), dtype=np.int8),
@@ -505,6 +547,17 @@ class TableReader:
                        "", f'no part number; "{name}" stands for it', ("part_number",))
             )  # fmt: skip
         return out
+
+    def _titled(self, key: str) -> str | None:
+        """What a title line says of all motors: "Maker: …", "Series: …"."""
+        for title in self.table.titles:
+            for line in title.split("\n"):
+                heading, colon, text = plain(line).partition(":")
+                if not colon or len(heading) > 40 or not text.strip():
+                    continue
+                if any(key in p.keys for p in parse_label(heading).names):
+                    return text.strip()
+        return None
 
     def _title_name(self) -> str | None:
         """A part number in the titles: "Motor AX-12", "Type: AX-12"."""
@@ -694,6 +747,26 @@ class TableReader:
                         int(rows[i]),
                     )
                 return
+
+
+def _runs(texts: Sequence[str]) -> list[list[int]]:
+    """Indices in groups, a new one at every text."""
+    groups: list[list[int]] = []
+    for k, text in enumerate(texts):
+        if text or not groups:
+            groups.append([k])
+        else:
+            groups[-1].append(k)
+    return groups
+
+
+def _subjects_of(key: str) -> tuple[str, ...]:
+    """What a note may call a quantity."""
+    if key in ("back_emf_constant", "speed_constant") or key.endswith("voltage"):
+        return ("voltage",)
+    if key in ("terminal_resistance", "terminal_inductance"):
+        return ("winding",)
+    return ("current",)
 
 
 def _fill(first: FigureColumn, other: FigureColumn, where: np.ndarray) -> None:

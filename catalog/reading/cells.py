@@ -59,7 +59,7 @@ def strength(text: str) -> float:
     if not clean or len(clean) > 120 or not _LETTER.search(clean):
         return 0.0
     if re.match(r"[+<>≤≥±]?[.,]?\d", clean) and not re.match(
-        r"\d{1,2}[.)]?\s+[^\W\d_]{3}|2p", clean
+        r"\d{1,2}[.)]?\s+[^\W\d_]{2}|2p", clean
     ):
         return 0.0
     label = parse_label(text)

@@ -9,7 +9,6 @@ from ...schema.batch import MODEL_BASES
 from ...schema.convention import Commutation
 from ...schema.signs import plain
 from ...schema.vocabulary import words
-from .label import parse_label
 from .lexicon import canonical, is_cjk, squeeze, tokens
 from .match import Match
 from .phrase import conventions_of
@@ -31,7 +30,7 @@ class Notes:
     """What the notes of a table set for all its figures, and for those with a mark."""
 
     texts: list[str] = field(default_factory=list)
-    conventions: dict[str, str] = field(default_factory=dict)
+    conventions: list[tuple[str | None, dict[str, str]]] = field(default_factory=list)
     temperature: float | None = None
     tolerance: float | None = None
     marked: dict[str, str] = field(default_factory=dict)
@@ -56,24 +55,64 @@ def notes_of(texts: Sequence[str]) -> Notes:
             core = re.sub(r"[()^]", "", mark["m"])
             notes.marked[core] = mark["t"]
             continue
-        stated = note_conventions(clean)
-        notes.conventions.update(stated)
-        label = parse_label(clean)
+        notes.conventions += clauses_of(clean)
         found = re.search(r"(-?\d{1,3}(?:[.,]\d)?)\s*(?:°\s*C|℃)", clean)
         if found and (not _AMBIENT.search(clean) or _WINDING.search(clean)):
             notes.temperature = float(found[1].replace(",", "."))
         tolerance = re.search(r"(?:±|\+/-)\s*(\d+(?:[.,]\d+)?)\s*%", clean)
         if tolerance and not re.search(r"voltage|spannung|tension|supply", clean, re.I):
             notes.tolerance = float(tolerance[1].replace(",", ".")) / 100
-        del label
     return notes
 
 
+_SUBJECTS = {
+    "current": r"current|strom|ströme|courant|corrent|corrient|intensit|電流|电流|amp[eè]re|torque constant|momentenkonstante|drehmomentkonst",
+    "voltage": r"volt|emf|spannung|tension|tensi[oó]n|emk|f\.?c\.?[eé]\.?m|電圧|电压|电势|电动势|起電力",
+    "winding": r"resist|résist|widerst|induct|indukt|indutt|抵抗|インダクタンス|电阻|电感",
+}
+
+
+def clauses_of(text: str) -> list[tuple[str | None, dict[str, str]]]:
+    """(subject, conventions) for each clause of a note; subject None: of all its figures.
+
+    Single words that sheets use otherwise too ("3-phase motor", "peak current for 2 s",
+    "brushed DC motor") state nothing here.
+    """
+    found: list[tuple[str | None, dict[str, str]]] = []
+    for clause in re.split(r"[;；。]|[.,]\s|、|\s(?:and|und|et|e|y)\s", text):
+        stated = note_conventions(clause)
+        if not stated:
+            continue
+        subjects = [
+            s for s, words_ in _SUBJECTS.items() if re.search(words_, clause, re.IGNORECASE)
+        ]
+        found += [(s, stated) for s in subjects] or [(None, stated)]
+    return found
+
+
 def note_conventions(text: str) -> dict[str, str]:
-    """Conventions in a sentence of a note: rms, peak, line to line, per phase, star, delta."""
-    stated = conventions_of(text, whole=False)
+    """Conventions in a clause of a note: rms, peak, line to line, per phase, star, delta."""
+    stated = dict(conventions_of(text, whole=False))
     low = plain(text).casefold()
-    if re.search(r"\brms\b|effektiv|effizien|efficace|eficaz|有效值|実効値", low):
+    whole = conventions_of(text, whole=True)
+    if not whole:
+        if stated.get("current") == "dc":
+            stated = {k: v for k, v in stated.items() if v != "dc"}
+        if stated.get("between") == "phase" and not re.search(
+            r"per phase|phase (?:value|resist|induct|quant)|line to neutral|l-n|pro phase|je phase|"
+            r"strang|par phase|per fase|por fase|valeurs? (?:de|par) phase|每相|相あたり|相当り|相值|相値|of one phase|phase-neutr",
+            low,
+        ):
+            stated.pop("between")
+        if stated.get("current") == "peak" and not re.search(
+            r"peak[- ]values?|amplitude|scheitel|spitzenwert|crête|crest|cresta|valor(?:es)? de pico|valori di picco|"
+            r"a\s?(?:pk|peak)|v\s?(?:pk|peak)|波高値|峰值|ピーク値|peak of|are peak|is peak|in peak|peak line|peak, ",
+            low,
+        ):
+            stated = {k: v for k, v in stated.items() if v != "peak"}
+    if re.search(
+        r"(?<![a-z])rms(?![a-z])|[av]rms|effektiv|efficace|eficaz|effic\.|有效值|実効値", low
+    ):
         stated = {**stated, "current": "rms", "voltage": "rms"}
     return stated
 

@@ -6,13 +6,13 @@ from functools import lru_cache
 
 from ...schema.convention import Convention
 from ...schema.signs import plain
-from ...schema.units import is_unit_like
+from ...schema.units import is_unit_like, unit_of
 from ...schema.vocabulary import quantities
 from .lexicon import find_symbol, lexicon, symbol_form, tokens
 from .phrase import Phrase, conventions_of, match_phrase, variant_of
 
 _OPENING, _CLOSING = "([{<【", ")]}>】"
-_NUMBERING = re.compile(r"\(?\d{1,2}[.)]?\s+(?=[^\W\d_]{3})|\(\d{1,2}\)\s*")
+_NUMBERING = re.compile(r"\(?\d{1,2}[.)]?\s+(?=[^\W\d_]{2})|\(\d{1,2}\)\s*")
 _MARKS = re.compile(
     r"(?:\s*(?:[*†‡§]+\)?|\^\(?(?:\d{1,2}|[a-z])\)|\^\(?[1456789a-z]\)?|(?<=\w)\s+\d\)))+$"
 )
@@ -32,6 +32,9 @@ _QUALIFIERS = {
     "typical": "typical",
 }
 _JOINERS = re.compile(r"\s+/\s+|\s*\|\s*|\n|\s*[;；]\s*|、")
+_TWO_SCRIPTS = re.compile(
+    r"([^A-Za-z]*[\u3040-\u30ff\u3400-\u9fff][^A-Za-z]*?)\s+([A-Za-z][A-Za-z].*)$", re.S
+)
 _SYMBOL_EDGES = re.compile(r"[\s,:=–-]+")
 
 
@@ -127,12 +130,17 @@ def parse_label(text: str) -> Label:
         if numbering and not _is_unit(rest):
             rest = rest[numbering.end() :]
     marks = _MARKS.search(rest)
-    if marks and marks.start() > 0 and not _is_unit(rest):
+    balanced = marks and rest.count("(", 0, marks.start()) == rest.count(")", 0, marks.start())
+    if marks and balanced and marks.start() > 0 and not _is_unit(rest):
         label = replace(label, marks=tuple(re.findall(r"[*†‡§]+|\d{1,2}|[a-z]", marks.group())))
         rest = rest[: marks.start()]
     core, inside = _groups(rest)
     for content in inside:
-        label = _bracket(label, content)
+        whole = match_phrase(f"{core} {content}") if not _is_unit(content) else Phrase("")
+        if whole.keys and whole.score >= 0.96 and whole.keys != match_phrase(core).keys:
+            core = f"{core} {content}"
+        else:
+            label = _bracket(label, content)
     return _core(label, core)
 
 
@@ -151,6 +159,8 @@ def _bracket(label: Label, content: str) -> Label:
     if low in _QUALIFIERS:
         label = replace(label, qualifier=_QUALIFIERS[low])
         return replace(label, units=(*label.units, content)) if low == "min" else label
+    if unit_of(content) is not None:
+        return replace(label, units=(*label.units, content))
     whole = conventions_of(content, whole=True)
     if whole:
         return _with_convention(label, whole)
@@ -205,6 +215,11 @@ def _piece(label: Label, piece: str, alone: bool) -> Label:
 def _core(label: Label, core: str) -> Label:
     """The text outside of brackets."""
     core = core.strip(" ,:;=")
+    marks = _MARKS.search(core)
+    if marks and marks.start() > 0 and not _is_unit(core):
+        found = re.findall(r"[*†‡§]+|\d{1,2}|[a-z]", marks.group())
+        label = replace(label, marks=(*label.marks, *found))
+        core = core[: marks.start()].strip(" ,:;=")
     if not core:
         return label
     whole = match_phrase(core)
@@ -258,6 +273,11 @@ def _named(label: Label, core: str) -> Label:
             best = (score, p, symbol, unit)
     assert best is not None
     score, phrase, symbol, unit = best
+    two = _TWO_SCRIPTS.match(core)
+    if score < 0.95 and two:
+        for part in (two[1], two[2]):
+            label = _named(label, part.strip())
+        return label
     if score < 0.5 and "_" in core:
         return _named(label, core.replace("_", " "))
     if symbol:

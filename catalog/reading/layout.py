@@ -193,9 +193,7 @@ def _fit(captions: list[str], keys: list[set]) -> int:
     for caption, generics in zip(captions, keys, strict=True):
         section = section_of(caption) if caption else None
         for g in generics:
-            if section is None:
-                faults += 1
-            elif (caption, g) in seen or (section, g) in impossible:
+            if section is None or (caption, g) in seen or (section, g) in impossible:
                 faults += 1
             seen.add((caption, g))
     return -faults
@@ -217,14 +215,8 @@ def _body(block: Block, start: int, head_rows: list[list[str]]):
             texts = {t for t in row if t}
             if not texts:
                 continue
-            if (
-                len(texts) == 1
-                and not any(is_figure(t) for t in texts)
-                or (
-                    filled <= 2
-                    and not any(is_figure(t) and len(t) < 20 for t in texts)
-                    and filled < 2
-                )
+            if (len(texts) == 1 and not any(is_figure(t) for t in texts)) or (
+                filled <= 2 and not any(is_figure(t) and len(t) < 20 for t in texts) and filled < 2
             ):
                 text = _text_of(row)
                 if filled == 1 and block.width > 1:

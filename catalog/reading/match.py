@@ -87,9 +87,9 @@ def family_of(fields: list[Field]) -> str | None:
                 servo += 0.7
             elif key in ("no_load_speed", "no_load_current", "speed_torque_gradient"):
                 dc += 2
-            elif key in ("speed_constant", "maximum_efficiency") and len(keys) == 1:
-                dc += 1
-            elif key in ("stall_torque", "stall_current") and len(keys) == 1:
+            elif (key in ("speed_constant", "maximum_efficiency") and len(keys) == 1) or (
+                key in ("stall_torque", "stall_current") and len(keys) == 1
+            ):
                 dc += 1
         if symbols & {
             "Mmax",
@@ -196,6 +196,8 @@ class Matcher:
             offer(f.label.forced, EXACT, "the heading is the quantity's own name")
         for phrase in f.label.names:
             self._of_phrase(f, phrase, offer)
+        if any(k.startswith("thermal_resistance_") for k in scored):
+            scored.pop("thermal_resistance", None)  # one language was less exact than another
         named = dict(scored)
         for symbol in f.label.symbols:
             hit = find_symbol(symbol)

@@ -8,7 +8,7 @@ from .batches import TableReader
 from .blocks import Block, blocks_of
 from .join import joined
 from .layout import lay_out_columns, lay_out_rows
-from .model import ReadingError, ReadOptions, Reading, Table, Unread
+from .model import Reading, ReadingError, ReadOptions, Table, Unread
 from .points import points_table
 
 
