@@ -19,6 +19,9 @@ COMMANDS: dict[str, tuple[str, str]] = {
     "import": ("import_", "Read datasheet tables into the catalog."),
     "check": ("check", "Say which published figures contradict each other, and why."),
     "show": ("show", "Show a motor: constants, figures as published, findings."),
+    "search": ("search", "Find the motors that do what a machine asks."),
+    "operate": ("operate", "Show a motor at work, under voltage or current control."),
+    "gears": ("gears", "Read tables of gears, or list those of the catalog."),
     "compare": ("compare", "Put motors side by side."),
     "export": ("export", "Write the catalog as CSV, JSON, TOML or Parquet."),
     "convert": ("convert", "Convert a figure from one unit to another."),
@@ -67,7 +70,7 @@ def group() -> None:
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
-    """Run a command; returns its exit status: 0 done, 1 what was asked does not hold, 2 unusable."""
+    """Run a command; returns its status: 0 done, 1 what was asked does not hold, 2 unusable."""
     for stream in (sys.stdout, sys.stderr):
         _never_fail_on_a_sign(stream)
     try:

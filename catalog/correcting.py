@@ -112,7 +112,7 @@ def _in_si(quantity: str, text: str, figure: Document) -> tuple[float, float, fl
     unit = read_unit(read.unit, _accepts(quantity, figure))
     if unit.marks:
         raise MotorfolioError(
-            f'"{text}" names a convention; give the value in the one that the figure is published in.'
+            f'"{text}" names a convention; give the value in that of the published figure.'
         )
     if not math.isfinite(read.value) or (read.value == 0 and not quantities()[quantity].zero):
         raise MotorfolioError(f'"{text}" is no possible {quantity}.')

@@ -88,8 +88,8 @@ def export(catalog: Catalog, format: str, out: TextIO, units: Units | None = Non
 def export_parquet(catalog: Catalog, path: Path) -> int:
     """Write the wide view of motors in SI as Parquet (extra ``parquet``); returns how many."""
     try:
-        import pyarrow
-        import pyarrow.parquet
+        import pyarrow  # pyright: ignore[reportMissingImports]
+        import pyarrow.parquet  # pyright: ignore[reportMissingImports]
     except ImportError:
         raise MotorfolioError(
             "Parquet needs the extra: pip install 'motorfolio[parquet]'."
@@ -177,7 +177,8 @@ def _write_csv(motors: Callable[[], Iterator[Document]], out: TextIO, units: Uni
     writer = csv.writer(out, lineterminator="\n")
     writer.writerow([*identity, *(inert(column.heading) for column in ordered)])
     n = 0
-    for n, motor in enumerate(motors(), 1):
+    for motor in motors():
+        n += 1
         row = [""] * (len(identity) + len(ordered))
         row[: len(identity)] = [inert(motor[key] or "") for key in identity]
         for column, text in _cells(motor, units):
@@ -266,9 +267,8 @@ def _number_text(
 
 
 def _digits(value: float) -> str:
-    """Twelve significant digits, without an exponent where it can be read without."""
-    text = f"{value:.12g}"
-    return text
+    """Twelve significant digits."""
+    return f"{value:.12g}"
 
 
 def _convention(found: dict[str, Any] | None) -> Convention:

@@ -165,7 +165,7 @@ def import_files(
                 store.add(result, table)
             result.layout = reading.layout
             result.headings = list(reading.headings)
-            result.remarks += [*table_file.skipped, *reading.remarks]
+            result.remarks += reading.remarks
             result.unread = [unread_document(u) for u in reading.unread]
             if not result.motors:
                 raise MotorfolioError(_no_motor(result))
@@ -410,8 +410,8 @@ class _Store:
         return bool(
             self.writer.connection.execute(
                 "SELECT EXISTS (SELECT 1 FROM motor m JOIN sources s ON s.id = m.source "
-                "JOIN imports i ON i.id = m.replaced_by WHERE i.files = 0 AND i.id <> ? AND s.file = "
-                "(SELECT max(id) FROM files WHERE file = ?))",
+                "JOIN imports i ON i.id = m.replaced_by WHERE i.files = 0 AND i.id <> ? "
+                "AND s.file = (SELECT max(id) FROM files WHERE file = ?))",
                 (self.writer.import_id, file),
             ).fetchone()[0]
         )

@@ -2,10 +2,14 @@
 
 from dataclasses import asdict
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 import click
 
 from .common import catalog_option, json_option, print_json, say
+
+if TYPE_CHECKING:
+    from ..store import Catalog
 
 
 @click.command(
@@ -64,7 +68,7 @@ def command(
     return 0
 
 
-def _print_list(opened, as_json: bool) -> None:  # noqa: ANN001
+def _print_list(opened: "Catalog", as_json: bool) -> None:
     found = opened.corrections()
     if as_json:
         print_json({"corrections": [{**asdict(c), "maker": c.maker or None} for c in found]})

@@ -1,6 +1,7 @@
 """motorfolio revisions: imports, and what became of a motor."""
 
 from dataclasses import asdict
+from itertools import pairwise
 from pathlib import Path
 
 import click
@@ -24,7 +25,7 @@ def command(part: str | None, catalog: Path, as_json: bool) -> int:
         else:
             imports = []
             documents = opened.revisions(part)
-    changes = [between(a, b) for a, b in zip(documents, documents[1:], strict=False)]
+    changes = [between(a, b) for a, b in pairwise(documents)]
     if as_json:
         print_json(
             {"imports": [asdict(i) for i in imports]}

@@ -49,7 +49,8 @@ def _sources(keys: Sequence[str]) -> str:
     if not keys:
         return ""
     if len(keys) > MOST_SOURCES:
-        return f" from {', '.join(map(p.words, keys[:MOST_SOURCES]))} and {len(keys) - MOST_SOURCES} more"
+        first = ", ".join(map(p.words, keys[:MOST_SOURCES]))
+        return f" from {first} and {len(keys) - MOST_SOURCES} more"
     return f" from {', '.join(map(p.words, keys))}"
 
 

@@ -27,7 +27,10 @@ AMBIENT_WIDTH = 2.0
 
 CACHED: tuple[str, ...] = (
     *CANONICAL,
-    *(f"{key}_{end}" for key in ("torque_constant", "armature_resistance") for end in ("low", "high")),
+    "torque_constant_low",
+    "torque_constant_high",
+    "armature_resistance_low",
+    "armature_resistance_high",
     "commutation",
     "magnet_coefficient",
     "nominal_voltage",

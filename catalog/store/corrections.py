@@ -59,7 +59,7 @@ def corrected(
         column = figures[c.quantity]
         if column.text[entry] != c.published_text:
             remarks.append(
-                f"{c.part_number}, {c.quantity}: the correction to {c.text} was made when the sheet "
+                f"{c.part_number}, {c.quantity}: it was corrected to {c.text} when the sheet "
                 f'printed "{c.published_text}"; it now prints "{column.text[entry]}", so the '
                 "correction is not applied."
             )

@@ -24,11 +24,13 @@ def encode(
     """
     value, low, high = figures.value, figures.low, figures.high
     with np.errstate(divide="ignore", invalid="ignore"):
+        # an exact figure has no last digit
         exponent = np.rint(np.log10(2 * (high - value) / np.abs(factor)))
         half = half_digit(exponent, factor)
         fits = (np.abs(high - value - half) <= NEAR * half) & (
             np.abs(value - low - half) <= NEAR * half
         )
+    fits &= np.isfinite(exponent)
     given = ~np.isnan(value)
     exact = (low == value) & (high == value)
     digits = [

@@ -311,8 +311,9 @@ def _wide_view() -> str:
     constants = [f'c."{key}" AS "{with_unit(key, unit)}"' for key, unit in CANONICAL.items()]
     taken = set(CANONICAL)
     figures = [
-        f'v."{key}" AS "{"published_" if key in taken else ""}{with_unit(key, quantities()[key].unit)}"'
+        f'v."{key}" AS "{prefix}{with_unit(key, quantities()[key].unit)}"'
         for key in figure_keys()
+        for prefix in ("published_" if key in taken else "",)
     ]
     texts = [f't."{key}" AS "{"printed_" if key in ("magnet", "commutation") else ""}{key}"'
              for key in text_keys()]  # fmt: skip
@@ -363,7 +364,8 @@ def _published_view() -> str:
             f"k.text AS corrected_to, m.replaced_by IS NULL AS current FROM motor m "
             f"JOIN figure_text t ON t.id = m.id {join}"
             f"LEFT JOIN patterns p ON p.pattern = m.pattern AND p.quantity = '{key}' "
-            "LEFT JOIN headings d ON d.id = p.heading LEFT JOIN conventions c ON c.id = p.convention "
+            "LEFT JOIN headings d ON d.id = p.heading "
+            "LEFT JOIN conventions c ON c.id = p.convention "
             f"LEFT JOIN figure_places e ON e.motor = m.id AND e.quantity = '{key}' "
             f"LEFT JOIN applied_corrections a ON a.motor = m.id AND a.quantity = '{key}' "
             "LEFT JOIN corrections k ON k.id = a.correction "

@@ -207,7 +207,8 @@ class _Loader:
         numbers = sorted({head["pattern"] for head in heads})
         found: dict[int, dict[str, sqlite3.Row]] = {number: {} for number in numbers}
         for r in self._rows(
-            "SELECT p.*, h.text, h.unit, h.factor FROM patterns p LEFT JOIN headings h ON h.id = p.heading "
+            "SELECT p.*, h.text, h.unit, h.factor FROM patterns p "
+            "LEFT JOIN headings h ON h.id = p.heading "
             "WHERE p.pattern IN ({ids})",
             numbers,
         ):
@@ -287,7 +288,8 @@ def findings(connection: sqlite3.Connection, ids: Sequence[int]) -> Iterator[tup
         ):
             parts[number].append(part)
         cursor = connection.execute(
-            "SELECT n.*, m.part_number, s.sheet, s.page FROM findings n JOIN motor m ON m.id = n.motor "
+            "SELECT n.*, m.part_number, s.sheet, s.page FROM findings n "
+            "JOIN motor m ON m.id = n.motor "
             f"JOIN sources s ON s.id = n.source WHERE n.id IN ({marks}) ORDER BY n.id"
         )
         cursor.row_factory = sqlite3.Row

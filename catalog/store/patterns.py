@@ -8,6 +8,7 @@ headings and conventions share one pattern.
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
 from ...schema.batch import Batch, Ints
 from ...schema.convention import Convention
@@ -70,8 +71,7 @@ def places_of(
     for key in keys:
         f, read = batch.figures[key], published.figures[key]
         given = ~np.isnan(f.value)
-        for numbers in (f.heading, f.convention, read.convention):
-            facets.append(_filled(numbers, given))
+        facets += [_filled(x, given) for x in (f.heading, f.convention, read.convention)]
     if not facets or n == 0:
         return np.zeros(n, dtype=np.int32), [tuple(_texts(batch, np.arange(n)))]
     table = np.ascontiguousarray(np.stack(facets, axis=1).astype(np.int32))
@@ -128,7 +128,7 @@ def _commonest(places: Ints) -> int:
     return int(numbers[np.argmax(counts)])
 
 
-def _texts(batch: Batch, members: Ints) -> list[Place]:
+def _texts(batch: Batch, members: NDArray[np.integer]) -> list[Place]:
     found = []
     for key, text in batch.texts.items():
         heading = next((i for i, h in enumerate(batch.headings) if h.quantity == key), None)

@@ -214,11 +214,11 @@ class _Rebuilder:
         ):
             key, i = row["quantity"], row["motor"] - self.first
             convention = self.conventions.get(row["convention"], Convention())
-            numbers = [_number(row[part]) for part in ("value", "low", "high")]
+            value, low, high = (_number(row[part]) for part in ("value", "low", "high"))
             if row["condition"] is not None:
                 condition = conditions.setdefault(row["condition"], Condition(row["condition"]))
                 condition.figures.setdefault(i, {})[key] = PlacedFigure(
-                    *numbers, row["text"], row["unit"] or "", convention, row["qualifier"],
+                    value, low, high, row["text"], row["unit"] or "", convention, row["qualifier"],
                     row["row"] or 0, row["column"] or 0,
                 )  # fmt: skip
                 continue
@@ -226,11 +226,16 @@ class _Rebuilder:
             columns = repeats.setdefault(key, [])
             if number == len(columns):
                 columns.append(empty_figures(self.n))
-            self._set(columns[number], i, numbers, row, convention)
+            self._set(columns[number], i, (value, low, high), row, convention)
         return repeats, list(conditions.values())
 
     def _set(
-        self, f: FigureColumn, i: int, numbers: list[float], row: dict, convention: Convention
+        self,
+        f: FigureColumn,
+        i: int,
+        numbers: tuple[float, float, float],
+        row: dict,
+        convention: Convention,
     ) -> None:
         f.value[i], f.low[i], f.high[i] = numbers
         f.text[i] = row["text"]

@@ -10,7 +10,7 @@ from .load import Known
 
 @dataclass(frozen=True, slots=True)
 class Import:
-    """One call that stored something; ``motors`` counts what it read, ``replaced`` what it ended."""
+    """One call that stored something; ``motors`` what it stored, ``replaced`` what it ended."""
 
     id: int
     at: str
@@ -62,7 +62,8 @@ def changed_motors(
     """What an import did: (earlier row, new row) a motor, None where there is none."""
     rows = connection.execute(
         "SELECT (SELECT old.id FROM motor old WHERE old.replaced_by = ?1 "
-        "AND old.part_number = m.part_number AND old.maker = m.maker ORDER BY old.id DESC LIMIT 1), "
+        "AND old.part_number = m.part_number AND old.maker = m.maker "
+        "ORDER BY old.id DESC LIMIT 1), "
         "m.id FROM motor m JOIN sources s ON s.id = m.source JOIN files f ON f.id = s.file "
         'WHERE f."import" = ?1 ORDER BY m.id',
         (import_id,),
@@ -115,7 +116,8 @@ def _delete_source(connection: sqlite3.Connection, source: int, first: int, n: i
     ):  # fmt: skip
         connection.execute(f"DELETE FROM {table} WHERE id BETWEEN ? AND ?", span)
     for table in (
-        "figure_intervals", "figure_places", "figure_qualifiers", "further_figures", "points", "finding_motors",
+        "figure_intervals", "figure_places", "figure_qualifiers", "further_figures", "points",
+        "finding_motors",
         "applied_corrections",
     ):  # fmt: skip
         connection.execute(f"DELETE FROM {table} WHERE motor BETWEEN ? AND ?", span)

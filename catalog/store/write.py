@@ -333,7 +333,8 @@ class Writer:
     def _add_further(self, first: int, batch: Batch, headings: int) -> None:
         self.connection.executemany(
             'INSERT INTO further_figures(motor, "condition", quantity, heading, convention, text, '
-            'value, low, high, unit, qualifier, "row", "column") VALUES (?,?,?,?,?,?,?,?,?,?,?,?,?)',
+            'value, low, high, unit, qualifier, "row", "column") '
+            "VALUES (?,?,?,?,?,?,?,?,?,?,?,?,?)",
             [*self._repeat_rows(first, batch, headings), *self._condition_rows(first, batch)],
         )
         self.connection.executemany(
