@@ -205,11 +205,11 @@ def _remarks(
             "the winding's insulation bears it"
         )
     if machine.commutation[0] == Commutation.SINUSOIDAL:
-        rated = np.fmax(machine.nominal_speed[0], np.nan_to_num(machine.maximum_speed[0]))
-        if rated * machine.torque_constant[0] > _FIELD_WEAKENED * nominal:
+        rated = machine.nominal_speed[0] * machine.torque_constant[0]
+        if rated > _FIELD_WEAKENED * nominal:
             said.append(
-                "its sheet states speeds beyond what its voltage gives (field weakening), which "
-                "is outside the model"
+                "its rated speed is beyond what its voltage gives (field weakening), which is "
+                "outside the model"
             )
         inductances = catalog.connection.execute(
             "SELECT count(DISTINCT value) FROM (SELECT value FROM further_figures WHERE motor = ?1 "

@@ -100,7 +100,7 @@ def _draw(m, demand, ratio, temperature, bridge_drop, pieces):
     energy = np.diff(primitive, axis=0) * duration  # (3, n, P, 2)
     energy = np.moveaxis(energy, 0, -1).reshape(len(ratio), -1)  # in the order of time
     drawn = np.maximum(energy, 0).sum(axis=1)
-    returned = -np.minimum(energy, 0).sum(axis=1)
+    returned = np.maximum(-energy, 0).sum(axis=1)
     flat = (len(ratio), -1)
     return (
         np.maximum(highest.reshape(flat).max(axis=1), 0),
