@@ -3,9 +3,15 @@
 ``read_tables`` is the way in; what it returns is described in ``grid``.
 """
 
+from __future__ import annotations
+
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from .grid import Grid, Span, TableError, TableFile
+
+if TYPE_CHECKING:
+    from .source import Source
 
 __all__ = ["FORMATS", "Grid", "Span", "TableError", "TableFile", "read_tables"]
 
@@ -41,6 +47,19 @@ def read_tables(
     kind = detect.binary_kind(source)
     if kind and format:
         raise TableError(f"{source.name}: is a {kind}, not {format}; save it as a file")
+    try:
+        kind, grids, skipped = _read(source, kind, format, sheet)
+    except TableError as error:
+        if str(error).startswith(source.name):
+            raise
+        raise TableError(f"{source.name}: {error}") from None
+    return TableFile(source.name, source.survey.sha256, kind, grids, skipped)
+
+
+def _read(
+    source: Source, kind: str | None, format: str | None, sheet: str | None
+) -> tuple[str, list[Grid], list[str]]:
+    """(format, grids, what was passed over); ``kind`` is that of a binary file, else None."""
     skipped: list[str] = []
     if kind == "workbook":
         from .workbook import read_workbook
@@ -60,7 +79,7 @@ def read_tables(
     grids = [grid for grid in grids if any(any(row) for row in grid.rows)]
     if not grids:
         raise TableError(f"{source.name}: holds no table")
-    return TableFile(source.name, source.survey.sha256, kind, grids, skipped)
+    return kind, grids, skipped
 
 
 def _named(name: str, grids: list[Grid], sheet: str) -> Grid:

@@ -47,7 +47,7 @@ def subscript(text: str) -> str:
 
 
 def _raised_already(text: str) -> bool:
-    return all(sign in "⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻⁽⁾ⁿ*†‡°®™" for sign in text)
+    return all(sign in "⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻⁽⁾ⁿ*†‡°®™'\"′″’”" for sign in text)
 
 
 def column_name(number: int) -> str:

@@ -16,6 +16,7 @@ _ROLES = {"presentation", "none", "navigation", "menu", "banner", "search"}
 _UNSEEN = re.compile(r"display\s*:\s*none|visibility\s*:\s*hidden", re.IGNORECASE)
 _BLANKS = re.compile(r"[ \t\r\n\f]+")
 _CELLS = ("td", "th")
+_MOST_COLUMNS = 16_384
 _MOST_SPAN = 1000  # HTML Living Standard, 4.9.11: colspan is clipped to 1000
 _XML_HEAD = re.compile(r"^\s*<\?xml[^>]*\?>")
 
@@ -171,6 +172,8 @@ def _table(table: etree._Element, name: str) -> Grid:
             start = len(row)
             row.append(clean(_shown(cell)))
             row += [""] * (columns - 1)
+            if len(row) > _MOST_COLUMNS:
+                raise TableError(f"{name}: a table has more than {_MOST_COLUMNS} columns")
             if down > 1:
                 for column in range(start, start + columns):
                     held[column] = down - 1
@@ -178,7 +181,7 @@ def _table(table: etree._Element, name: str) -> Grid:
                 spans.append(Span(len(rows), start, down, columns))
         for column in [c for c, left in held.items() if left and c >= len(row)]:
             held[column] -= 1
-        total += len(row)
+        total += max(len(row), len(held))
         if total > MOST_CELLS:
             raise TableError(f"{name}: a table has more than {MOST_CELLS} cells; split it")
         rows.append(row)

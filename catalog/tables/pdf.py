@@ -27,6 +27,7 @@ class _Run:
     x1: float
     y1: float
     text: str
+    base: "_Run | None" = None  # the run that a raised or lowered sign belongs to
 
     @property
     def height(self) -> float:
@@ -169,17 +170,46 @@ def _turn(page):
     return lambda l, b, r, t: (l, b, r, t)  # noqa: E741
 
 
-def _lines(runs: list[_Run]) -> list[_Line]:
-    """Runs on one baseline, joined where only a word's space parts them.
+def _attach_scripts(runs: list[_Run]) -> None:
+    """Find small runs set higher or lower right behind another: '²' in g cm², '₀' in M₀.
 
-    A smaller run set higher or lower than the one it follows is a raised or lowered sign.
+    Boxes are those of the ink, so that a small sign is told by its height and by where its
+    lower or upper edge stands against the run before it.
     """
-    if not runs:
+    ends: dict[int, list[_Run]] = {}
+    for run in runs:
+        ends.setdefault(int(run.x1 // 4), []).append(run)
+    for run in runs:
+        near = int(run.x0 // 4)
+        for base in (r for at in (near - 1, near, near + 1) for r in ends.get(at, ())):
+            height = base.height
+            if (
+                base is run
+                or base.base is not None
+                or run.height > 0.72 * height
+                or not -0.1 * height < run.x0 - base.x1 < 0.3 * height
+                or not base.y0 - 0.8 * height < (run.y0 + run.y1) / 2 < base.y1 + 0.5 * height
+            ):
+                continue
+            raised = run.y0 > base.y0 + 0.4 * height and run.y1 > base.y1 - 0.2 * height
+            lowered = run.y1 < base.y0 + 0.45 * height and run.text[0].isalnum()
+            if raised or lowered:
+                run.text = superscript(run.text) if raised else subscript(run.text)
+                run.base = base
+                break
+
+
+def _lines(runs: list[_Run]) -> list[_Line]:
+    """Runs on one baseline, joined where only a word's space parts them."""
+    _attach_scripts(runs)
+    full = [run for run in runs if run.base is None]
+    if not full:
         return []
-    usual = statistics.median(run.height for run in runs)
+    usual = statistics.median(run.height for run in full)
     groups: list[list[_Run]] = []
     middles: list[float] = []
-    for run in sorted(runs, key=lambda r: -(r.y0 + r.y1) / 2):
+    at_of: dict[int, int] = {}
+    for run in sorted(full, key=lambda r: -(r.y0 + r.y1) / 2):
         middle = (run.y0 + run.y1) / 2
         at = None
         for i in range(len(groups) - 1, max(-1, len(groups) - 4), -1):
@@ -187,13 +217,16 @@ def _lines(runs: list[_Run]) -> list[_Line]:
                 at = i
                 break
         if at is None:
-            groups.append([run])
+            at = len(groups)
+            groups.append([])
             middles.append(middle)
-        else:
-            groups[at].append(run)
-            # The fuller type gives the line; raised signs do not move it.
-            tallest = max(groups[at], key=lambda r: r.height)
-            middles[at] = (tallest.y0 + tallest.y1) / 2
+        groups[at].append(run)
+        at_of[id(run)] = at
+        tallest = max(groups[at], key=lambda r: r.height)
+        middles[at] = (tallest.y0 + tallest.y1) / 2
+    for run in runs:
+        if run.base is not None:
+            groups[at_of[id(run.base)]].append(run)
     lines = []
     for group, middle in zip(groups, middles, strict=True):
         group.sort(key=lambda r: r.x0)
@@ -207,26 +240,19 @@ def _lines(runs: list[_Run]) -> list[_Line]:
 
 def _pieces(group: list[_Run]) -> list[Piece]:
     pieces: list[Piece] = []
-    above: _Run | None = None
+    size = 0.0
     for run in group:
-        if above is not None and pieces:
+        if pieces:
             piece = pieces[-1]
             gap = run.x0 - piece.x1
-            size = max(above.height, run.height)
-            if gap < _WORD_GAP * size:
-                small = run.height < 0.8 * above.height or above.height < 0.8 * size
-                text = run.text
-                if small and run.height < above.height and gap < 0.25 * size:
-                    lift = (run.y0 + run.y1) / 2 - (above.y0 + above.y1) / 2
-                    text = superscript(text) if lift > 0 else subscript(text)
-                    piece.text += text
-                else:
-                    piece.text += (" " if gap > 0.12 * size else "") + text
-                    above = run
+            size = max(size, run.height)
+            if run.base is not None or gap < _WORD_GAP * size:
+                apart = run.base is None and gap > 0.12 * size
+                piece.text += (" " if apart else "") + run.text
                 piece.x1 = max(piece.x1, run.x1)
                 continue
         pieces.append(Piece(run.x0, run.x1, run.text))
-        above = run
+        size = run.height
     return pieces
 
 

@@ -77,10 +77,6 @@ def open_source(path: Path | None, data: bytes | None) -> Source:
         survey = _survey(io.BytesIO(data))
     else:
         source_name = str(path)
-        if path.is_dir():
-            raise TableError(f"{path}: is a folder; name the files in it")
-        if path.exists() and not path.is_file():
-            raise TableError(f"{path}: is no ordinary file; use - to read standard input")
         data = None
         with _opened(path, source_name) as file:
             survey = _survey(file)
@@ -92,6 +88,10 @@ def open_source(path: Path | None, data: bytes | None) -> Source:
 def _opened(path: Path | None, name: str) -> BinaryIO:
     assert path is not None
     try:
+        if path.is_dir():
+            raise TableError(f"{name}: is a folder; name the files in it")
+        if path.exists() and not path.is_file():
+            raise TableError(f"{name}: is no ordinary file; use - to read standard input")
         return path.open("rb")
     except FileNotFoundError:
         raise TableError(f"{name}: there is no such file") from None

@@ -75,16 +75,15 @@ def test_a_drawing_beside_and_text_upward(tmp_path: Path) -> None:
     buffer = io.BytesIO()
     canvas = Canvas(buffer, pagesize=A4)
     canvas.setFont("Helvetica", 9)
-    for i, row in enumerate(
-        [["Type", "U (V)", "n (rpm)"], ["A1", "24", "6000"], ["A2", "", "5900"]]
-    ):
+    rows = [["Type", "U (V)", "n (rpm)"], ["A1", "24", "6000"], ["A2", "", "5900"]]
+    for i, row in enumerate(rows):
         for j, cell in enumerate(row):
             canvas.drawString(80 + 90 * j, 700 - 14 * i, cell)
     canvas.rotate(90)
     canvas.drawString(690, -500, "dimension upward 42.5")
     canvas.save()
     grid = one(read(tmp_path / "a.pdf", buffer.getvalue()))
-    assert grid.rows == [["Type", "U (V)", "n (rpm)"], ["A1", "24", "6000"], ["A2", "", "5900"]]
+    assert grid.rows == rows
 
 
 def test_a_table_over_pages_without_its_heading_is_one(tmp_path: Path) -> None:
@@ -162,9 +161,9 @@ def test_a_locked_document_says_so(tmp_path: Path) -> None:
 
 
 def test_a_damaged_document_says_so(tmp_path: Path) -> None:
-    with pytest.raises(TableError, match="damaged|no text"):
+    with pytest.raises(TableError, match=r"damaged|no text"):
         read(tmp_path / "a.pdf", b"%PDF-1.7\n" + b"garbage " * 100)
     content = pdf([table(BLOCK, True)])
     (tmp_path / "b.pdf").write_bytes(content[: len(content) // 3])
-    with pytest.raises(TableError, match="damaged|no text"):
+    with pytest.raises(TableError, match=r"damaged|no text"):
         read_tables(tmp_path / "b.pdf")
