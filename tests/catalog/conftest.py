@@ -108,9 +108,13 @@ def batch() -> Batch:
         "maximum_winding_temperature": temperature,
         "price": price,
     }
-    b.repeats = {"torque_constant": [column([nan, 0.0611, nan], [None, "8.65", None], heading=3, at=4)]}
+    b.repeats = {
+        "torque_constant": [column([nan, 0.0611, nan], [None, "8.65", None], heading=3, at=4)]
+    }
     rows = np.arange(2, 5, dtype=np.int32)
-    b.texts = {"protection": TextColumn(["IP54", None, "IP65"], rows, np.full(3, 5, dtype=np.int32))}
+    b.texts = {
+        "protection": TextColumn(["IP54", None, "IP65"], rows, np.full(3, 5, dtype=np.int32))
+    }
     placed = PlacedFigure(1.5, 1.45, 1.55, "1.5", "A", Convention(current="rms"), "about", 3, 6)
     b.conditions = [Condition("at 48 V", {1: {"nominal_current": placed}})]
     b.points = {2: [Point("maximum output", {"nominal_torque": 0.1, "nominal_speed": 300.0}, 4)]}

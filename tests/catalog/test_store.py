@@ -43,7 +43,9 @@ def reconciled(batch):
 def store(path, batch, result=None):
     result = result or reconciled(batch)
     with Catalog.open(path, create=True) as catalog, catalog.changing() as connection:
-        number = connection.execute("INSERT INTO imports(at, files, motors) VALUES ('', 1, 3)").lastrowid
+        number = connection.execute(
+            "INSERT INTO imports(at, files, motors) VALUES ('', 1, 3)"
+        ).lastrowid
         writer = Writer(connection, number)
         file_id = writer.add_file(
             file=batch.source.file, sha256=batch.source.sha256, format="csv", layout="rows",
@@ -189,9 +191,7 @@ def test_pole_pairs_are_half_the_poles(catalog_file, batch):
     batch.figures["pole_pairs"] = column([3, np.nan, np.nan], ["3", None, None], heading=0, at=10)
     store(catalog_file, batch)
     with Catalog.open(catalog_file) as catalog:
-        np.testing.assert_array_equal(
-            catalog.columns(["pole_pairs"])["pole_pairs"], [3, 4, np.nan]
-        )
+        np.testing.assert_array_equal(catalog.columns(["pole_pairs"])["pole_pairs"], [3, 4, np.nan])
 
 
 def test_the_views_read_plainly(catalog_file, batch):
@@ -257,7 +257,9 @@ def test_intervals_are_kept_by_the_last_digit():
     value = np.array([0.0302, 24800.0, 5.0, 19.0, 0.5])
     low = np.array([0.03015, 24750.0, 5.0, 10.0, np.nan])
     high = np.array([0.03025, 24850.0, 5.0, 28.0, 0.5])
-    figures = column(value, ["30.2", "24800", "5", "10…28", "≤ 0.5"], heading=0, at=1, low=low, high=high)
+    figures = column(
+        value, ["30.2", "24800", "5", "10…28", "≤ 0.5"], heading=0, at=1, low=low, high=high
+    )
     digits, others = encode(figures, np.array([1e-3, 1.0, 1.0, 1.0, 1.0]))
     assert digits == [-1, 2, None, None, None]
     assert [entry for entry, _, _ in others] == [3, 4]
@@ -278,7 +280,9 @@ def test_many_motors_under_changing_headings(catalog_file):
     empty = {name: c for name, c in reconciled(blank_batch(["x"])).constants.items() if not name}
     store(catalog_file, batch, Reconciled(batch, empty))
     with Catalog.open(catalog_file) as catalog:
-        patterns = catalog.connection.execute("SELECT count(DISTINCT pattern) FROM motor").fetchone()
+        patterns = catalog.connection.execute(
+            "SELECT count(DISTINCT pattern) FROM motor"
+        ).fetchone()
         kinds = [m["figures"]["torque_constant"]["convention"]["current"] for m in catalog.motors()]
         rows = [m["figures"]["torque_constant"]["cell"]["row"] for m in catalog.motors()]
     assert patterns == (3,)
