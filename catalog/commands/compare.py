@@ -22,7 +22,8 @@ def command(parts: tuple[str, ...], catalog: Path, as_json: bool) -> int:
     if as_json:
         print_json(documents)
     else:
-        from ..report import terminal
+        from ..report.comparison import print_comparison
+        from ..report.screen import paged
 
-        terminal.print_comparison(documents)
+        paged(lambda out: print_comparison(documents, out))
     return 0

@@ -24,7 +24,8 @@ def command(part: str, catalog: Path, as_json: bool) -> int:
     if as_json:
         print_json(document)
     else:
-        from ..report import card
+        from ..report.card import print_card
+        from ..report.screen import paged
 
-        click.echo(card.motor_card(document))
+        paged(lambda out: print_card(document, out))
     return 0

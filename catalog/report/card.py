@@ -1,96 +1,189 @@
-"""A motor on one screen, as aligned text: light, so that `show` answers at once."""
+"""A motor on one screen: constants with interval and basis, figures as published beside SI,
+findings in plain words, and the place all of it came from."""
 
-from collections.abc import Sequence
-from textwrap import wrap
+from collections.abc import Iterable, Iterator, Mapping, Sequence
+
+from rich import box
+from rich.console import Console, Group, RenderableType
+from rich.table import Table
+from rich.text import Text
 
 from ..documents import Document
 from . import plain as p
+from .screen import SAFETY
 
-WIDTH = 100
-MOST_SOURCES = 2
+SIGNS = {"error": "✗", "warning": "!", "note": "·"}
+STYLES = {"error": "bold red", "warning": "yellow", "note": "dim"}
+
+FEW = 1
+"""Figures that a constant came from are named up to this number, else counted."""
+
+WIDE = 150
+"""From this width on the figures stand beside the rest."""
 
 
-def motor_card(motor: Document) -> str:
-    """Constants, figures as published beside SI, findings, and the place all came from."""
-    kind = motor["model"]
-    commutation, magnet = kind["commutation"], kind["magnet"]
-    name = " ".join(filter(None, (motor["maker"], motor["part_number"])))
-    head = [p.plain(name)]
-    if motor["series"]:
-        head.append(f"series {p.plain(motor['series'])}")
-    head.append(f"{commutation['value']} commutation ({commutation['basis']})")
-    if magnet["value"] != "unknown":
-        head.append(f"{magnet['value']} magnets ({magnet['basis']})")
-    lines = [", ".join(head), *_constants(motor["constants"]), *_figures(motor["figures"])]
+def print_card(motor: Document, out: Console) -> None:
+    """The card; ``motor`` is the interface's MOTOR."""
+    out.print(_title(motor))
+    out.print(Text(_kind(motor), style="dim"))
+    first: list[RenderableType] = [_constants(motor["constants"])]
+    second = list(_published(motor))
+    third: list[RenderableType] = [*finding_lines(motor["findings"])]
+    third += [Text(f"From {_source(motor['source'])}.", style="dim"), Text(SAFETY, style="dim")]
+    if out.width >= WIDE:
+        grid = Table.grid(padding=(0, 3), expand=True)
+        grid.add_column(ratio=3)
+        grid.add_column(ratio=2)
+        grid.add_row(Group(*second), Group(*first, *third))
+        out.print(grid)
+    else:
+        out.print(Group(*first, *second, *third))
+
+
+def _published(motor: Document) -> Iterator[RenderableType]:
+    """What the sheet says, conditions and operating points after it."""
+    yield _figures(motor["figures"], _marks(motor["findings"]), "As published")
     for key, repeats in motor.get("repeats", {}).items():
-        lines += [f"  {p.words(key)}, given again: {_printed(f)}" for f in repeats]
+        for figure in repeats:
+            yield Text(f"  {p.words(key)}, given again: {_printed(figure)}")
     for condition in motor.get("conditions", ()):
-        lines += ["", f"When {p.plain(condition['when'])}", *_figures(condition["figures"])[2:]]
+        yield _figures(condition["figures"], {}, f"When {p.plain(condition['when'])}")
     for point in motor.get("points", ()):
-        figures = ", ".join(
+        shown = ", ".join(
             f"{p.words(key)} {p.quantity(f['value'], f['unit'])}"
             for key, f in point["figures"].items()
         )
-        lines.append(f"  point {p.plain(point['name'])}: {figures}")
-    lines += ["", *_findings(motor["findings"]), "", f"From {_source(motor['source'])}"]
-    return "\n".join(lines)
+        yield Text(f"  point {p.plain(point['name'])}: {shown}")
 
 
-def _constants(constants: dict[str, Document]) -> list[str]:
-    rows = [
-        (p.words(key), p.quantity(c["value"], c["unit"]), p.interval(c["low"], c["high"]),
-         c["basis"] + _sources(c["from"]))
-        for key, c in constants.items()
-    ]  # fmt: skip
-    return ["", "Constants at 25 °C", *_aligned(rows)] if rows else ["", "No constants are known."]
+def _title(motor: Document) -> Text:
+    title = Text(p.plain(motor["part_number"]), style="bold")
+    about = [motor["maker"], f"series {motor['series']}" if motor["series"] else None]
+    description = motor["figures"].get("description")
+    if description and isinstance(description["value"], str):
+        about.append(description["value"])
+    for part in filter(None, about):
+        title.append(f"  {p.plain(part)}", style="not bold")
+    return title
 
 
-def _sources(keys: Sequence[str]) -> str:
+def _kind(motor: Document) -> str:
+    kind = motor["model"]
+    commutation, magnet, reference = (
+        kind[key] for key in ("commutation", "magnet", "reference_temperature")
+    )
+    said = [f"{commutation['value']} commutation ({commutation['basis']})"]
+    if magnet["value"] == "unknown":
+        said.append("magnets unknown")
+    else:
+        said.append(f"{magnet['value']} magnets ({magnet['basis']})")
+    if reference["value"] is not None:
+        said.append(f"figures at {p.number(reference['value'])} °C ({reference['basis']})")
+    return ", ".join(said)
+
+
+def _table(*headings: str) -> Table:
+    table = Table(box=box.SIMPLE_HEAD, pad_edge=False, show_edge=False, padding=(0, 1))
+    for heading in headings:
+        table.add_column(heading, overflow="fold")
+    return table
+
+
+def _cells(cells: Iterable[str | Text]) -> list[Text]:
+    return [cell if isinstance(cell, Text) else Text(cell) for cell in cells]
+
+
+def _constants(constants: Mapping[str, Document]) -> RenderableType:
+    if not constants:
+        return Text("No constants are known.")
+    table = _table("Constants at 25 °C", "Value", "95 % interval", "Basis")
+    table.columns[2].no_wrap = True
+    for key, c in constants.items():
+        value, low, high, unit = scaled(c["value"], c["low"], c["high"], c["unit"])
+        table.add_row(
+            *_cells((p.words(key), p.quantity(value, unit), p.interval(low, high),
+                     c["basis"] + _from(c["from"])))
+        )  # fmt: skip
+    return table
+
+
+_PREFIXES = ((1.0, ""), (1e-3, "m"), (1e-6, "µ"), (1e-9, "n"))
+_PREFIXED = frozenset({
+    "A", "V", "Ω", "H", "N·m", "N·m/A", "V·s/rad", "N·m/√W", "N·m·s/rad", "s", "W", "m",
+})  # fmt: skip
+
+
+def scaled(
+    value: float | None, low: float | None, high: float | None, unit: str
+) -> tuple[float | None, float | None, float | None, str]:
+    """The same with a prefix of the unit that leaves 1 … 999 before the decimal point."""
+    if value is None or unit not in _PREFIXED or value == 0 or abs(value) >= 0.1:
+        return value, low, high, unit
+    factor, prefix = next((f for f in _PREFIXES if abs(value) >= f[0]), _PREFIXES[-1])
+    low, high = (None if end is None else end / factor for end in (low, high))
+    return value / factor, low, high, prefix + unit
+
+
+def _from(keys: Sequence[str]) -> str:
     if not keys:
         return ""
-    if len(keys) > MOST_SOURCES:
-        first = ", ".join(map(p.words, keys[:MOST_SOURCES]))
-        return f" from {first} and {len(keys) - MOST_SOURCES} more"
+    if len(keys) > FEW:
+        return f", {len(keys)} figures"
     return f" from {', '.join(map(p.words, keys))}"
 
 
-def _figures(figures: dict[str, Document]) -> list[str]:
-    rows = []
+def _marks(findings: Iterable[Document]) -> dict[str, str]:
+    """The worst severity of the figures that findings doubt: the suspect, else all rivals."""
+    marks: dict[str, str] = {}
+    for f in findings:
+        for key in [f["suspect"]] if f["suspect"] else f["figures"]:
+            if key not in marks or list(SIGNS).index(f["severity"]) < list(SIGNS).index(marks[key]):
+                marks[key] = f["severity"]
+    return marks
+
+
+def _figures(figures: Mapping[str, Document], marks: Mapping[str, str], title: str) -> Table:
+    table = _table("", title, "Printed", "In SI", "Convention", "Cell")
     for key, f in figures.items():
-        value = f["value"]
-        si = "" if isinstance(value, str) else p.quantity(value, f["unit"])
-        note = p.convention(f.get("convention"))
+        value, unit = f["value"], f.get("unit", "")
+        note: str = p.convention(f.get("convention"))
         if "corrected" in f:
-            c = f["corrected"]
-            si = p.quantity(c["value"], c["unit"])
-            note = f"corrected to {p.plain(c['text'])}: {p.plain(c['reason'])}"
-        rows.append((p.words(key), _printed(f), si, note, p.cell(f.get("cell"))))
-    return ["", "As published, and in SI", *_aligned(rows)]
+            value, unit = f["corrected"]["value"], f["corrected"]["unit"]
+            note = f"corrected to {p.plain(f['corrected']['text'])}: {f['corrected']['reason']}"
+        si = "" if isinstance(value, str) else p.quantity(*_in_prefix(value, unit))
+        severity = marks.get(key)
+        sign = Text(SIGNS[severity], style=STYLES[severity]) if severity else ""
+        table.add_row(*_cells((sign, p.words(key), _printed(f), si, p.plain(note), _place(f))))
+    return table
+
+
+def _in_prefix(value: float | None, unit: str) -> tuple[float | None, str]:
+    shown, _, _, prefixed = scaled(value, None, None, unit)
+    return shown, prefixed
 
 
 def _printed(f: Document) -> str:
     return p.plain(" ".join(filter(None, (f["text"], f.get("printed_unit")))))
 
 
-def _findings(findings: Sequence[Document]) -> list[str]:
+def _place(f: Document) -> str:
+    """Row and column in short: R10 C3."""
+    cell = f.get("cell") or {}
+    return " ".join(
+        f"{sign}{cell[key]}" for sign, key in (("R", "row"), ("C", "column")) if cell.get(key)
+    )
+
+
+def finding_lines(findings: Sequence[Document]) -> Iterator[Text]:
+    """Every finding as a paragraph, its severity as a word and a sign."""
     if not findings:
-        return ["No findings."]
-    lines = []
+        yield Text("No findings: the figures agree with one another.")
     for f in findings:
-        first, *rest = wrap(f"{f['severity']}: {p.plain(f['message'])}", WIDTH) or [""]
-        lines += [first, *(f"    {line}" for line in rest)]
-    return lines
+        line = Text(f"{SIGNS[f['severity']]} {f['severity']}: ", style=STYLES[f["severity"]])
+        line.append(p.plain(f["message"]), style="default")
+        yield line
 
 
 def _source(source: Document) -> str:
     parts = [source["file"], source["sheet"], f"page {source['page']}" if source["page"] else None]
     return p.plain(", ".join(part for part in parts if part))
-
-
-def _aligned(rows: Sequence[Sequence[str]]) -> list[str]:
-    widths = [max(len(row[i]) for row in rows) for i in range(len(rows[0]))] if rows else []
-    return [
-        "  "
-        + "  ".join(cell.ljust(width) for cell, width in zip(row, widths, strict=True)).rstrip()
-        for row in rows
-    ]

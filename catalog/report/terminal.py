@@ -12,22 +12,14 @@ from rich.text import Text
 
 from ..documents import Document
 from . import plain as p
+from .screen import console, paged
 
 if TYPE_CHECKING:
     from ..importing import FileResult, ImportResult
     from ..store.revisions import Import
 
-NARROWEST = 80
 MOST_UNREAD = 40
 SEVERITIES = {"error": "bold red", "warning": "yellow", "note": "dim"}
-
-
-def console() -> Console:
-    """Standard output, at least 80 columns wide; no colour where there is no terminal."""
-    out = Console(markup=False, highlight=False, emoji=False)
-    if out.width < NARROWEST:
-        out.width = NARROWEST
-    return out
 
 
 def _table(*headings: str, right: Sequence[str] = ()) -> Table:
@@ -131,14 +123,18 @@ def _print_cells(out: Console, motors: Iterable[Document]) -> None:
 
 def print_findings(findings: Sequence[Document], motors: int) -> None:
     """All findings, worst first, and a line that counts them."""
-    out = console()
-    _print_findings(out, findings)
     counts = [
         f"{n} {severity}{'s' * (n != 1)}"
         for severity in SEVERITIES
         if (n := sum(f["severity"] == severity for f in findings))
     ]
-    out.print(f"{motors} motor{'s' * (motors != 1)} checked: {', '.join(counts) or 'no findings'}.")
+
+    def draw(out: Console) -> None:
+        _print_findings(out, findings)
+        said = ", ".join(counts) or "no findings"
+        out.print(f"{motors} motor{'s' * (motors != 1)} checked: {said}.")
+
+    paged(draw)
 
 
 def _print_findings(out: Console, findings: Iterable[Document]) -> None:
@@ -164,23 +160,7 @@ def _print_findings(out: Console, findings: Iterable[Document]) -> None:
             out.print(Text("    " + "; ".join(details), style="dim"))
 
 
-# ---- comparing, and changes
-
-
-def print_comparison(motors: Sequence[Document]) -> None:
-    """Motors side by side: constants, then figures as published."""
-    out = console()
-    table = _table("", *(p.plain(m["part_number"]) for m in motors))
-    table.add_row(*_cells(["maker", *(m["maker"] for m in motors)]))
-    for key in dict.fromkeys(key for m in motors for key in m["constants"]):
-        cells = [m["constants"].get(key) for m in motors]
-        table.add_row(*_cells([p.words(key), *(_amount(cell) for cell in cells)]))
-    table.add_section()
-    for key in dict.fromkeys(key for m in motors for key in m["figures"]):
-        cells = [m["figures"].get(key) for m in motors]
-        published = " (published)" if any(key in m["constants"] for m in motors) else ""
-        table.add_row(*_cells([p.words(key) + published, *(_amount(cell) for cell in cells)]))
-    out.print(table)
+# ---- changes
 
 
 def _amount(document: Document | None) -> str:
