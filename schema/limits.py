@@ -28,14 +28,14 @@ class Utilisations:
     """What the cycle takes of each limit; arrays of one shape (M, R) or (M,), NaN = unknown.
 
     The six limits are pure numbers. `runaway` marks thermal runaway: there is no winding
-    temperature, `thermal` is NaN, and the motor is rejected. Currents are armature amperes, the
-    worse of cold and hot, `peak_current_value` without PWM ripple, `rms_current` with it;
-    `ripple_current` is its rms over the cycle, `ripple_peak_to_peak` its largest swing (brushed
-    and block only). `peak_voltage` is a magnitude in V, `peak_speed` in rad/s and
-    `peak_torque_value` in N·m are those of the motor's shaft, `winding_temperature` in °C (the
-    peak of the periodic state where time constants are known), `copper_loss` in W the mean over
-    the cycle at the winding temperature, at the ambient where that is unknown. `ripple_unknown`
-    marks motors whose ripple was asked for and left out, since their inductance is unknown,
+    temperature, `thermal` is NaN, the rest is that of the cold motor, which is rejected. Currents
+    are armature amperes, the worse of cold and hot, `peak_current_value` without PWM ripple,
+    `rms_current` with it; `ripple_current` is its rms over the cycle, `ripple_peak_to_peak` its
+    largest swing (brushed and block only). `peak_voltage` is a magnitude in V, `peak_speed` in
+    rad/s and `peak_torque_value` in N·m are those of the motor's shaft, `winding_temperature` in
+    °C (the peak of the periodic state where time constants are known), `copper_loss` in W the mean
+    over the cycle at the winding temperature, at the ambient where that is unknown.
+    `ripple_unknown` marks motors whose ripple was asked for and left out, since their inductance is unknown,
     `friction_assumed` those without any friction figure (friction counted as 0).
     """
 

@@ -117,8 +117,10 @@ def judge_worst(
         for k in (low, high)
         for r in (small, large)
     ]
-    most = np.stack([np.nan_to_num(corner.largest, nan=-np.inf) for corner in corners])
-    return Utilisations.worst(corners), most.argmax(axis=0).astype(np.int8)
+    # Of corners equally bad the one that is worst for current and heat.
+    order = np.array([1, 0, 2, 3], np.int8)
+    most = np.stack([np.nan_to_num(corners[c].largest, nan=-np.inf) for c in order])
+    return Utilisations.worst(corners), order[most.argmax(axis=0)]
 
 
 @dataclass(frozen=True)

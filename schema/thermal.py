@@ -110,7 +110,7 @@ class TwoBody:
 
 
 #: Into how many cuts a piece goes, by its duration over the winding's time constant.
-_CUT_COUNTS = ((0.1, 1), (0.5, 2), (2.0, 4), (8.0, 8), (np.inf, 16))
+_CUT_COUNTS = ((0.05, 1), (0.5, 2), (2.0, 4), (8.0, 8), (np.inf, 16))
 #: Cuts shorter than this share of the time constant may peak inside; in longer ones the winding
 #: has settled, and their ends tell all.
 _SHORT_CUT = 2.0
@@ -248,6 +248,12 @@ def _one_period(
     # Heat rates, winding and housing: input polynomials in s = t/h.
     winding = base * at_middle / C1
     winding[0] -= mean_loss * chord * middle / C1
+    # Second order, where the winding moves evenly through the cut: the loss grows as the
+    # temperature does, and the chord runs above the curve by `sag` in the middle.
+    even = h < _SHORT_CUT * C1 * body.to_housing[:, None]
+    sag = np.where(even, mean_loss * (at_middle - gain(middle)) / C1, 0.0)
+    along = np.where(even, (base[1] + base[2]) * chord * gap / C1, 0.0)
+    winding += np.stack([along / 4, -along - 4 * sag, along + 4 * sag])
     housing = rubbing / C2
     housing[0] += ambient / (body.to_ambient[:, None] * C2)
 

@@ -2,13 +2,14 @@
 
 200 made-up motors × cycles: brushed and sinusoidal, geared both ways, vertical axes, cycles short
 and long against the thermal time constants, up to 0.8 of the current of thermal runaway. An
-ordinary run takes each ninth; MOTORFOLIO_FULL_PROOF=1 takes them all. The magnets have the
+ordinary run takes each 19th; MOTORFOLIO_FULL_PROOF=1 takes them all. The magnets have the
 winding's temperature on both sides.
 """
 
 from __future__ import annotations
 
 import os
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -18,41 +19,59 @@ from motorfolio.schema.operation import (
     Demand,
     Gearing,
     Machines,
+    Supply,
     Surroundings,
     Utilisations,
     judge,
 )
+from motorfolio.schema.ratios import feasible_ratios
 
 from .simulated_machine import Plant
 
 CASES = 200
 FULL = os.environ.get("MOTORFOLIO_FULL_PROOF") == "1"
+#: Geared cases, brushed and sinusoidal, for the edges of the feasible ratios.
+GEARED = [number for number in range(40) if number % 4 >= 2 and number % 6 != 0]
+
+
+def posed(plant: Plant, limit: float = 155.0, supply: float | None = None, **given):
+    """The plant as the package sees it: a motor and what is asked of it."""
+    columns = {
+        "torque_constant": plant.Km,
+        "armature_resistance": plant.Ra,
+        "armature_inductance": plant.La,
+        "rotor_inertia": plant.J,
+        "coulomb_torque": plant.Tc,
+        "viscous_damping": plant.b,
+        "pole_pairs": plant.p,
+        "commutation": 2 if plant.sinusoidal else 0,
+        "magnet_coefficient": plant.beta,
+        "thermal_resistance_winding_housing": plant.Rth1,
+        "thermal_resistance_housing_ambient": plant.Rth2,
+        "thermal_time_constant_winding": plant.tau_w,
+        "thermal_time_constant_housing": plant.tau_h,
+        "maximum_winding_temperature": limit,
+    }
+    demand = Demand(
+        Cycle.from_rows(plant.time, plant.speed, plant.torque),
+        Gearing(plant.JL, plant.eta, plant.Jg),
+        Supply(supply),
+        surroundings=Surroundings(plant.ambient),
+    )
+    return Machines.of(**{**columns, **given}), demand
 
 
 def judged(plant: Plant, scale: float = 1.0, *, time_constants: bool = True) -> Utilisations:
     """The package's answer; `scale` multiplies both thermal resistances."""
-    nan = np.nan
-    motor = Machines.of(
-        torque_constant=plant.Km,
-        armature_resistance=plant.Ra,
-        armature_inductance=plant.La,
-        rotor_inertia=plant.J,
-        coulomb_torque=plant.Tc,
-        viscous_damping=plant.b,
-        pole_pairs=plant.p,
-        commutation=2 if plant.sinusoidal else 0,
-        magnet_coefficient=plant.beta,
-        thermal_resistance_winding_housing=plant.Rth1 * scale,
-        thermal_resistance_housing_ambient=plant.Rth2 * scale,
-        thermal_time_constant_winding=plant.tau_w if time_constants else nan,
-        thermal_time_constant_housing=plant.tau_h if time_constants else nan,
-        maximum_winding_temperature=155.0,
-    )
-    demand = Demand(
-        Cycle.from_rows(plant.time, plant.speed, plant.torque),
-        Gearing(plant.JL, plant.eta, plant.Jg),
-        surroundings=Surroundings(plant.ambient),
-    )
+    scaled = {
+        "thermal_resistance_winding_housing": plant.Rth1 * scale,
+        "thermal_resistance_housing_ambient": plant.Rth2 * scale,
+    }
+    if not time_constants:
+        scaled |= dict.fromkeys(
+            ("thermal_time_constant_winding", "thermal_time_constant_housing"), np.nan
+        )
+    motor, demand = posed(plant, **scaled)
     return judge(motor, demand, plant.ratio)
 
 
@@ -134,8 +153,42 @@ def deviations(number: int) -> dict[str, float]:
     }
 
 
-@pytest.mark.parametrize("number", range(0, CASES, 1 if FULL else 9))
+@pytest.mark.parametrize("number", range(0, CASES, 1 if FULL else 19))
 def test_simulation_agrees(number: int) -> None:
     found = deviations(number)
     for name, deviation in found.items():
         assert abs(deviation) < 0.01, (name, found)
+
+
+def simulated_utilisation(plant: Plant, ratio: float, limit: float, supply: float) -> float:
+    """The larger of voltage and temperature over their limits, at another gear ratio."""
+    other = replace(plant, ratio=ratio)
+    own = judged(other).winding_temperature.item()
+    outer = other.Rth2 / (other.Rth1 + other.Rth2)
+    seen = other.steady(own, other.ambient + outer * (own - other.ambient))
+    hot, cold = other.at(seen["temperature"]), other.at(other.ambient)
+    return max(
+        max(hot["voltage"], cold["voltage"]) / supply,
+        (seen["temperature"] - other.ambient) / (limit - other.ambient),
+    )
+
+
+@pytest.mark.parametrize("number", GEARED if FULL else GEARED[:3])
+def test_ratio_edges_within_half_a_per_cent(number: int) -> None:
+    """Half a per cent inside an edge the simulated motor holds every limit, outside it does not."""
+    plant, _ = made_up(number)
+    own = judged(plant)
+    limit = plant.ambient + 1.2 * (own.winding_temperature.item() - plant.ambient)
+    supply = 1.2 * own.peak_voltage.item()
+    motor, demand = posed(plant, limit, supply)
+    low, high = plant.ratio / 4, plant.ratio * 4
+    found = feasible_ratios(motor, demand, low, high)
+    assert found.motor.size > 0
+    tried = 0
+    for inner, outer in [(a, a / 1.005) for a in found.low] + [(b, b * 1.005) for b in found.high]:
+        if not low * 1.006 < inner < high / 1.006:
+            continue
+        assert simulated_utilisation(plant, inner**2 / outer, limit, supply) < 1
+        assert simulated_utilisation(plant, outer, limit, supply) > 1
+        tried += 1
+    assert tried > 0
