@@ -9,7 +9,9 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from ..schema.drive import (
+    DriveError,
     Motor,
+    acceleration_at_current,
     braking,
     bridge_share,
     frequency_note,
@@ -22,7 +24,6 @@ from ..schema.drive import (
     time_at_current,
     time_at_voltage,
     torque_at_current,
-    acceleration_at_current,
 )
 from ..schema.errors import MotorfolioError
 from ..schema.machines import Commutation, Machines
@@ -62,7 +63,9 @@ def at_work(
         ("resistance", motor.armature_resistance),
     ):
         if math.isnan(value):
-            raise OperateError(f"The catalog has no {name} of {part_number}, without which nothing follows.")
+            raise OperateError(
+                f"The catalog has no {name} of {part_number}, without which nothing follows."
+            )
     supply, current = asked["supply"], asked["current"]
     if supply is None and current is None:
         raise OperateError("Say what drives the motor: --supply, --current, or both.")
@@ -77,7 +80,7 @@ def at_work(
     if supply is not None:
         document["voltage_control"] = _voltage(motor, machines, asked, document["notes"])
     if current is not None:
-        document["current_control"] = _current(motor, asked)
+        document["current_control"] = _current(motor, asked, document["notes"])
     if asked["deceleration"] is not None:
         document["braking"] = _braking(motor, asked)
     return document
@@ -120,7 +123,12 @@ def _voltage(
         if motor.commutation != Commutation.SINUSOIDAL and not math.isnan(motor.rotor_inertia):
             exact = not math.isnan(motor.armature_inductance)
             seconds = time_at_voltage(
-                motor, voltage, wanted, load_torque=torque, load_inertia=inertia, with_inductance=exact
+                motor,
+                voltage,
+                wanted,
+                load_torque=torque,
+                load_inertia=inertia,
+                with_inductance=exact,
             )
             document["time_to_speed"] = amount(seconds, "s")
             if math.isinf(seconds):
@@ -159,7 +167,7 @@ def _ripple(
     return document
 
 
-def _current(motor: Motor, asked: Mapping[str, float | None]) -> Document:
+def _current(motor: Motor, asked: Mapping[str, float | None], notes: list[str]) -> Document:
     current, torque = asked["current"], asked["torque"] or 0.0
     assert current is not None
     inertia, speed = asked["load_inertia"] or 0.0, asked["speed"]
@@ -180,9 +188,11 @@ def _current(motor: Motor, asked: Mapping[str, float | None]) -> Document:
         if supply is not None:
             duty = 1.0 if asked["duty"] is None else asked["duty"]
             voltage = duty * supply - (asked["drop"] or 0.0)
-            document["time_with_voltage_limit"] = amount(
-                run_up_time(motor, voltage, current, speed, torque, inertia), "s"
-            )
+            try:
+                limited = run_up_time(motor, voltage, current, speed, torque, inertia)
+                document["time_with_voltage_limit"] = amount(limited, "s")
+            except DriveError as error:
+                notes.append(str(error)[0].lower() + str(error)[1:].rstrip("."))
     return document
 
 

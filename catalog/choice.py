@@ -40,7 +40,8 @@ _CASES = 1 << 18
 @dataclass
 class Judged:
     """M motors at a ratio each: utilisations (M,), further ones by name, verdict codes, the index
-    of a gear (−1: none) and the corner of the tolerances that decides (−1: not asked)."""
+    of a gear (−1: none), the corner of the tolerances that decides (−1: not asked), and whether
+    the gear lacks what it takes to know."""
 
     ratio: Array
     use: Utilisations
@@ -48,6 +49,7 @@ class Judged:
     verdict: NDArray[np.int8]
     gear: NDArray[np.intp]
     corner: NDArray[np.int8]
+    unsure: NDArray[np.bool_]
 
     def __len__(self) -> int:
         return len(self.ratio)
@@ -88,14 +90,14 @@ class Judged:
             self.verdict[index],
             self.gear[index],
             self.corner[index],
+            self.unsure[index],
         )
 
     def put(self, index: NDArray[np.intp], other: Judged) -> None:
         """Replace the motors at `index`."""
-        for name in ("ratio", "verdict", "gear", "corner"):
+        for name in ("ratio", "verdict", "gear", "corner", "unsure"):
             getattr(self, name)[index] = getattr(other, name)
-        for name, array in self.use._arrays().items():
-            array[index] = getattr(other.use, name)
+        self.use.put(index, other.use)
         for name, array in self.extra.items():
             array[index] = other.extra[name]
 
@@ -126,7 +128,7 @@ class Judge:
                 machines, requirement.demand, ratios, tolerance=some, periodic=periodic
             )
         M, R = use.voltage.shape
-        ratio = np.broadcast_to(ratios, (M, R)).ravel()
+        ratio = np.array(np.broadcast_to(ratios, (M, R))).ravel()
         flat = use.reshape(-1)
         extra = self._further(machines, ratio, R, flat)
         judged = Judged(
@@ -136,6 +138,7 @@ class Judge:
             flat.verdict(requirement.reserve),
             np.full(M * R, -1, np.intp),
             np.full(M * R, -1, np.int8) if corner is None else corner.ravel(),
+            np.zeros(M * R, bool),
         )
         return self._decided(judged)
 
@@ -148,7 +151,9 @@ class Judge:
             judged.verdict[column > self.requirement.allowed] = Verdict.REJECTED
         return judged
 
-    def _further(self, machines: Machines, ratio: Array, R: int, use: Utilisations) -> dict[str, Array]:
+    def _further(
+        self, machines: Machines, ratio: Array, R: int, use: Utilisations
+    ) -> dict[str, Array]:
         requirement = self.requirement
         result: dict[str, Array] = {}
         if requirement.largest_inertia_ratio is not None:
@@ -220,6 +225,7 @@ def _joined(parts: list[Judged]) -> Judged:
         np.concatenate([part.verdict for part in parts]),
         np.concatenate([part.gear for part in parts]),
         np.concatenate([part.corner for part in parts]),
+        np.concatenate([part.unsure for part in parts]),
     )
 
 
@@ -320,6 +326,13 @@ def choose_gears(
         for name, column in gear_limits.items():
             found.extra[name] = np.full(len(machines), column[number])
         found = own._decided(found)
+        # Without its efficiency, and its inertia where the load is accelerated, nothing is known.
+        moves = (
+            judge_.requirement.demand.cycle.speed_start != judge_.requirement.demand.cycle.speed_end
+        ).any()
+        if gear.efficiency is None or (gear.inertia is None and moves):
+            found.verdict[found.verdict == Verdict.FEASIBLE] = Verdict.UNKNOWN
+            found.unsure[:] = True
         found.gear[:] = number
         fits[:, number] = found.verdict == Verdict.FEASIBLE
         largest = np.nan_to_num(found.largest, nan=0.0, posinf=np.finfo(float).max)

@@ -89,7 +89,9 @@ def _columns(
         try:
             found[kind] = (at, read_unit(unit, wanted).factor)
         except MotorfolioError as error:
-            raise RequirementError(f'The cycle {path}, heading "{heading.strip()}": {error}.') from error
+            raise RequirementError(
+                f'The cycle {path}, heading "{heading.strip()}": {error}.'
+            ) from error
     missing = [kind for kind in units if kind not in found]
     if missing:
         effort = "force" if units["effort"] == ("N",) else "torque"

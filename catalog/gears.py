@@ -62,7 +62,10 @@ _COLUMNS: dict[str, tuple[str, str]] = {
     "ratio": ("1", r"(gear |reduction )?ratio|i|reduction"),
     "stages": ("1", r"(number of )?stages?"),
     "efficiency": ("1", r"(max\.? |maximum )?efficiency|η"),
-    "inertia": ("kg·m²", r"(mass |rotational )?(moment of )?inertia( at (the )?(input|motor)( shaft)?)?"),
+    "inertia": (
+        "kg·m²",
+        r"(mass |rotational )?(moment of )?inertia( at (the )?(input|motor)( shaft)?)?",
+    ),
     "mass": ("kg", r"mass|weight"),
     "continuous_torque": (
         "N·m",
@@ -81,7 +84,9 @@ _COLUMNS: dict[str, tuple[str, str]] = {
     "length": ("m", r"length"),
     "price": ("currency", r"price"),
 }
-_HEADING = re.compile(r"^(?P<name>.*?)\s*(?:\[(?P<a>.*)\]|\((?P<b>[^()]*)\)|,\s*(?P<c>\S+)|\s+in\s+(?P<d>\S+))?$")
+_HEADING = re.compile(
+    r"^(?P<name>.*?)\s*(?:\[(?P<a>.*)\]|\((?P<b>[^()]*)\)|,\s*(?P<c>\S+)|\s+in\s+(?P<d>\S+))?$"
+)
 #: Figures without which a gear can't be judged at all.
 _NEEDED = ("part_number", "ratio")
 
@@ -240,9 +245,7 @@ def load_gears(catalog: Catalog, requirement: Requirement) -> list[Gear]:
         assert ratios.high is not None
         gears = [gear for gear in gears if ratios.low <= gear.ratio <= ratios.high]
     elif ratios.values:
-        gears = [
-            g for g in gears if any(abs(g.ratio - r) <= 1e-6 * r for r in ratios.values)
-        ]
+        gears = [g for g in gears if any(abs(g.ratio - r) <= 1e-6 * r for r in ratios.values)]
     if not gears:
         raise RequirementError(
             f"The catalog has no gear with a ratio of {ratios.text}; allow other ratios."

@@ -137,7 +137,10 @@ class _Motor:
         return motor
 
     def judge(
-        self, requirement: Requirement, machines: Machines | None = None, ratios: Array | None = None
+        self,
+        requirement: Requirement,
+        machines: Machines | None = None,
+        ratios: Array | None = None,
     ) -> Judged:
         """The motor (or others in its place) at all its ratios."""
         machines = self.machines if machines is None else machines
@@ -232,7 +235,9 @@ class _Motor:
         factor = float(armature_amperes(1.0, drive.convention, self.machines.commutation)[0])
         needed = self.judged.use.peak_current_value / self.requirement.allowed
         mask = self.others_pass("peak_current") & ~(needed > self.machines.peak_current[0])
-        return self._drive("peak_current", drive.peak_current, drive.convention, needed / factor, mask)
+        return self._drive(
+            "peak_current", drive.peak_current, drive.convention, needed / factor, mask
+        )
 
     def continuous_current(self) -> Change | None:
         drive = self.requirement.demand.drive
@@ -326,12 +331,12 @@ class _Motor:
             return None
         while most > period / 100 and with_(most / 3):
             most /= 3
-        seconds = _digits(_bisect(with_, most, most / 3 if most > period / 100 else 0.0, _STEPS), up=True)
+        seconds = _digits(
+            _bisect(with_, most, most / 3 if most > period / 100 else 0.0, _STEPS), up=True
+        )
         if not with_(seconds):
             return None
-        return _change(
-            "dwell", 0.0, seconds, "s", f"{seconds:g} s more standstill in each cycle"
-        )
+        return _change("dwell", 0.0, seconds, "s", f"{seconds:g} s more standstill in each cycle")
 
     def inertia_ratio(self) -> Change | None:
         requirement = self.requirement
@@ -402,7 +407,7 @@ class _Motor:
         Ra = float(self.machines.armature_resistance[0]) * k**2
         return Change(
             "winding", 1.0, k, "1",
-            f"a winding of {k:.2f} times the turns (Km {Km:.3g} N·m/A, Ra {Ra:.3g} Ω)",
+            f"a winding of {k:.3g} times the turns (Km {Km:.3g} N·m/A, Ra {Ra:.3g} Ω)",
             {"torque_constant": (Km, "N·m/A"), "armature_resistance": (Ra, "Ω")},
         )  # fmt: skip
 

@@ -106,7 +106,9 @@ def read_requirement(
     reader = Reader(origin or {})
     for key in document:
         if key not in {*SECTIONS, *LISTS, "cycle", "title"}:
-            raise RequirementError(unknown("file", key, {**SECTIONS, **LISTS, "cycle": 0, "title": 0}))
+            raise RequirementError(
+                unknown("file", key, {**SECTIONS, **LISTS, "cycle": 0, "title": 0})
+            )
     values = {section: reader.section(document, section) for section in SECTIONS}
     axis = _axis(values["load"], reader)
     on_axis, rests = _cycle(document, axis, reader, folder)
@@ -168,7 +170,9 @@ def _axis(load: Mapping[str, Any], reader: Reader) -> Axis:
                 )
 
     if kind == "rotary":
-        refuse((*_LINEAR_ONLY, *(key for keys in _LINEAR.values() for key in keys)), "a linear axis")
+        refuse(
+            (*_LINEAR_ONLY, *(key for keys in _LINEAR.values() for key in keys)), "a linear axis"
+        )
         return Axis(
             inertia=load.get("inertia", 0.0),
             friction=load.get("friction_torque", 0.0),
@@ -204,7 +208,9 @@ def _cycle(
                 "point": reader.name("point", "torque"),
                 "move": "[[move]]",
                 "cycle": reader.name("", "cycle"),
-            }[name].replace("point.torque", "[[point]]").removeprefix(".")
+            }[name]
+            .replace("point.torque", "[[point]]")
+            .removeprefix(".")
             for name in given
         ]
         raise RequirementError(
@@ -275,10 +281,7 @@ def _moves(tables: Sequence[Mapping[str, Any]], linear: bool) -> Cycle:
             continue
         if table[way] == 0:
             raise RequirementError(f"Move {number} goes nowhere; give a {way}, or a dwell alone.")
-        told = {
-            key: table.get(key)
-            for key in ("time", "top_speed", "acceleration")
-        }
+        told = {key: table.get(key) for key in ("time", "top_speed", "acceleration")}
         try:
             there, back = (
                 move(

@@ -157,9 +157,7 @@ def rank_key(fleet: Fleet, judged: Judged, order_by: str) -> Array:
     return fleet.columns[order_by]
 
 
-def _with_gear(
-    key: Array, gears: list[Gear], gear: Index, order_by: str
-) -> Array:
+def _with_gear(key: Array, gears: list[Gear], gear: Index, order_by: str) -> Array:
     """Mass and price are those of motor and gear together; a gear's diameter counts if larger."""
     name = "mass" if order_by == "size" else order_by
     if not gears or name not in ("mass", "price", "diameter"):
@@ -207,9 +205,7 @@ def _ranked(
     if cut.size == 0:
         return feasible[order]
     last = cut[-1]
-    end = int(
-        np.searchsorted(primary[order], primary[last], side="right")
-    )
+    end = int(np.searchsorted(primary[order], primary[last], side="right"))
     end = min(end, requirement.limit + _TIES)
     head = order[:end]
     names = names_of(catalog, fleet.ids[feasible[head]])
@@ -260,6 +256,8 @@ def _lacking(
     counts = {}
     if (passed.unknown & unknown).any():
         counts["where"] = int((passed.unknown & unknown).sum())
+    if (judged.unsure & unknown).any():
+        counts["gear"] = int((judged.unsure & unknown).sum())
     for name in judged.needed(requirement):
         count = int((np.isnan(judged.utilisation(name)) & unknown).sum())
         if count:
@@ -318,9 +316,7 @@ def _exact(found: Found, motors: Index, judged: Judged) -> list[list[tuple[float
     has = np.flatnonzero(np.isfinite(ranges.best))
     if has.size:
         own = judge if not isinstance(judge.tolerance, tuple) else _some(judge, has)
-        judged.put(
-            has, best_of(own, machines.take(has), ranges.best[has, None], periodic=True)
-        )
+        judged.put(has, best_of(own, machines.take(has), ranges.best[has, None], periodic=True))
     return [ranges.of(i) for i in range(len(motors))]
 
 

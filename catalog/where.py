@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import operator
 import re
-import sqlite3
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
@@ -67,7 +66,9 @@ def read_where(text: str) -> Where:
     sign = {"≤": "<=", "≥": ">=", "≠": "!=", "==": "="}.get(match["sign"], match["sign"])
     known = known_keys()
     if key not in known:
-        raise RequirementError(unknown("catalog of figures", key, known).replace("requirement's ", ""))
+        raise RequirementError(
+            unknown("catalog of figures", key, known).replace("requirement's ", "")
+        )
     accepts = known[key]
     value = match["value"].strip("\"'")
     if not accepts:
@@ -123,7 +124,9 @@ def _number(
         case "<" | ">":
             keeps = _SIGNS[limit.sign](column, limit.value)
         case _:
-            keeps = _SIGNS[limit.sign](column, limit.value + (margin if "<" in limit.sign else -margin))
+            keeps = _SIGNS[limit.sign](
+                column, limit.value + (margin if "<" in limit.sign else -margin)
+            )
     if limit.unit:
         known &= _currencies(columns["id"], catalog) == limit.unit
     return keeps, known

@@ -78,7 +78,9 @@ class Axis:
             parts = _cut(parts, _crossing(parts.torque_start, parts.torque_end))
             start, end = parts.torque_start, parts.torque_end
             power = np.sign(start + end) * np.sign(parts.speed_start + parts.speed_end)
-            through = np.where(power > 0, 1 / self.efficiency, np.where(power < 0, self.efficiency, 1))
+            through = np.where(
+                power > 0, 1 / self.efficiency, np.where(power < 0, self.efficiency, 1)
+            )
             start, end = start * through, end * through
         lever = self.lever
         return Cycle(

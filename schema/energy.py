@@ -50,7 +50,9 @@ def draw(
         span = slice(begin, begin + width)
         with np.errstate(all="ignore"):
             parts.append(
-                _draw(machines.take(span), demand, ratio[span], temperature[span], bridge_drop, pieces)
+                _draw(
+                    machines.take(span), demand, ratio[span], temperature[span], bridge_drop, pieces
+                )
             )
     return Draw(*(np.concatenate(column) for column in zip(*parts, strict=True)))
 

@@ -93,7 +93,11 @@ def _show(gears: list[Any], readings: list[Any], as_json: bool) -> None:
     for heading in ("gear", "ratio", "η", "torque N·m", "peak N·m", "input rpm", "mass kg"):
         table.add_column(heading, justify="left" if heading == "gear" else "right")
     for gear in gears:
-        rpm = None if gear.maximum_input_speed is None else gear.maximum_input_speed * 9.549296585513721
+        rpm = (
+            None
+            if gear.maximum_input_speed is None
+            else gear.maximum_input_speed * 9.549296585513721
+        )
         table.add_row(
             Text(plain(gear.part_number)),
             number(gear.ratio),

@@ -39,7 +39,9 @@ _NOT_NEGATIVE = {"supply", "drop", "speed", "load_inertia", "deceleration", "pwm
 @click.option("--temperature", metavar="Q", help="Of the winding.  [default: 25 °C]")
 @catalog_option
 @json_option
-def command(part: str, catalog: Path, as_json: bool, temperature: str | None, **options: Any) -> int:
+def command(
+    part: str, catalog: Path, as_json: bool, temperature: str | None, **options: Any
+) -> int:
     """Show a motor at work: speed at a voltage and load, torque and acceleration at a current,
     times, the share the bridge gives, current ripple, braking.
 

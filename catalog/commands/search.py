@@ -166,9 +166,11 @@ def _requirement(options: dict[str, Any]) -> Any:
 def _document(options: dict[str, Any]) -> tuple[dict[str, Any], dict[tuple[str, str], str]]:
     """The options as a requirement's document, and which option each key came from."""
     document: dict[str, Any] = {}
-    origin = {
-        ("point", key): f"--{key}" for key in ("torque", "speed", "duration")
-    } | {("", "cycle"): "--cycle", ("gear", "use"): "--gears", ("wanted", "where"): "--where"}
+    origin = {("point", key): f"--{key}" for key in ("torque", "speed", "duration")} | {
+        ("", "cycle"): "--cycle",
+        ("gear", "use"): "--gears",
+        ("wanted", "where"): "--where",
+    }
     points = _points(options)
     if points:
         document["point"] = points

@@ -39,4 +39,5 @@ def _value(found: Any) -> str:
         return "never"
     if unit == "rad/s":
         return f"{number(value)} rad/s ({number(value * _RPM)} rpm)"
-    return f"{number(value + 0.0)} {unit}"
+    shown = f"{value:.0f}" if 1e4 <= abs(value) < 1e7 else number(value + 0.0)
+    return f"{shown} {unit}"

@@ -167,7 +167,9 @@ def print_requirement(document: Document, console: Console) -> None:
             console.print(f"  {words(name)}: {_si(document[name])}{convention}")
     if "ratio_range" in document:
         low, high = document["ratio_range"]
-        console.print(f"  gear ratio: {low:g} to {high:g}, efficiency {document['gear_efficiency']:.0%}")
+        console.print(
+            f"  gear ratio: {low:g} to {high:g}, efficiency {document['gear_efficiency']:.0%}"
+        )
     elif document["gears"]:
         console.print("  gears: those of the catalog")
     else:

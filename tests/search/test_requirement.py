@@ -1,0 +1,225 @@
+"""Requirements: read from texts, refused in one sentence, written and read back."""
+
+from __future__ import annotations
+
+import math
+from pathlib import Path
+
+import numpy as np
+import pytest
+
+from motorfolio.catalog.requirement import (
+    merged,
+    read_file,
+    read_requirement,
+    saved,
+    to_toml,
+)
+from motorfolio.catalog.requirement_fields import (
+    LISTS,
+    SECTIONS,
+    RequirementError,
+    json_schema,
+    read_ratio,
+)
+from motorfolio.catalog.where import read_where
+from motorfolio.schema.errors import MotorfolioError
+
+from .made import SAMPLES
+
+RPM = 2 * math.pi / 60
+MACHINES = sorted((SAMPLES / "machines").glob("*.toml"))
+POINT = {"point": [{"torque": "0.1 N·m", "speed": "3000 rpm"}]}
+
+
+@pytest.mark.parametrize("path", MACHINES, ids=lambda p: p.stem)
+def test_the_sample_machines_round_trip(path: Path, tmp_path: Path) -> None:
+    first = read_requirement(read_file(path))
+    again = tmp_path / "again.toml"
+    again.write_text(saved(first), encoding="utf-8")
+    second = read_requirement(read_file(again))
+    assert second.document == first.document
+    assert second.demand.supply == first.demand.supply
+    assert second.demand.drive == first.demand.drive
+    assert np.array_equal(second.demand.cycle.torque_end, first.demand.cycle.torque_end)
+
+
+def test_lift_axis_as_understood() -> None:
+    """The belt axis by hand: weight (12 − 4) kg, 15 N friction, thirds over 0.6 m in 1.2 s."""
+    r = read_requirement(read_file(SAMPLES / "machines" / "lift_axis.toml"))
+    cycle = r.demand.cycle
+    assert cycle.speed_end[0] == pytest.approx(0.75 / 0.02)
+    assert cycle.torque_start[0] == pytest.approx((8 * 9.80665 + 15) * 0.02)
+    assert r.load_inertia == pytest.approx(16 * 0.02**2 + 300e-7)
+    assert r.demand.supply.available == pytest.approx(0.96 * 45 - 0.6)
+    assert r.demand.supply.voltage == 48  # what switches, and makes the ripple
+    assert r.with_supply(50).demand.supply.available == pytest.approx(0.96 * 50 - 0.6)
+    assert r.rest_effort == pytest.approx(8 * 9.80665 * 0.02)
+
+
+def test_altitude_takes_of_the_rise() -> None:
+    """1 % of the permissible rise for each 100 m above 1000 m: IEC 60034-1 (from memory)."""
+
+    def at(altitude: str) -> float:
+        document = {**POINT, "ambient": {"altitude": altitude}}
+        return read_requirement(document).demand.surroundings.permissible_rise
+
+    assert at("900 m") == 1
+    assert at("2500 m") == pytest.approx(0.85)
+
+
+def test_currents_in_their_conventions() -> None:
+    drive = {"peak_current": "14 A peak", "continuous_current": "5 Arms"}
+    read = read_requirement({**POINT, "drive": drive}).demand.drive
+    assert (read.peak_current, read.convention) == (14, "peak")
+    assert (read.continuous_current, read.continuous_convention) == (5, "rms")
+    plain = read_requirement({**POINT, "drive": {"peak_current": "5 A"}}).demand.drive
+    assert plain.convention == "dc"
+
+
+@pytest.mark.parametrize(
+    ("given", "values", "span"),
+    [
+        ("5", (5.0,), None),
+        (5, (5.0,), None),
+        ("3..20", (), (3.0, 20.0)),
+        ("3, 5,8", (3.0, 5.0, 8.0), None),
+        ([8, 3], (3.0, 8.0), None),
+        ("50:1", (50.0,), None),
+    ],
+)
+def test_ratios(given, values, span) -> None:
+    ratios = read_ratio(given, "--ratio")
+    assert ratios.values == values
+    assert (ratios.low, ratios.high) == (span or (None, None))
+
+
+SUPPLY = {"supply": {"voltage": "24 V"}}
+
+
+@pytest.mark.parametrize(
+    ("document", "words"),
+    [
+        ({}, "what the load does"),
+        ({"point": [{"torque": "1", "speed": "10 rpm"}]}, "without a unit"),
+        ({"point": [{"torque": 1, "speed": "10 rpm"}]}, "without a unit"),
+        ({"point": [{"torque": "1 V", "speed": "10 rpm"}]}, "N·m would do"),
+        ({"point": [{"torque": "1 N·m", "speed": "10 Hz"}]}, "speed"),
+        ({"point": [{"torque": "1 N·m", "speed": "10 m/s"}]}, "rad/s"),
+        ({"point": [{"torque": "1 N·m"}]}, "no speed"),
+        ({"point": [{"torque": "1 N·m", "speed": "1 rpm"}] * 2}, "duration"),
+        ({"point": [{"torque": "1 N·m", "speed": "1 rpm", "duration": "0 s"}]}, "too small"),
+        ({**POINT, "move": [{"dwell": "1 s"}]}, "leave one"),
+        ({**POINT, "gear": {"ratio": "20..3"}}, "3..20"),
+        ({**POINT, "gear": {"ratio": "0"}}, "above 0"),
+        ({**POINT, "gear": {"ratio": "much"}}, "gear ratio"),
+        ({**POINT, "gear": {"efficiency": "130 %"}}, "at most 100%"),
+        ({**POINT, "gear": {"use": "catalog", "efficiency": 0.9}}, "bring their own"),
+        ({**POINT, "supply": {"voltage": "24 V", "lowest_voltage": "30 V"}}, "exchange"),
+        ({**POINT, "supply": {"bridge_drop": "1 V"}}, "supply.voltage"),
+        ({**POINT, "supply": {"voltage": "1 V", "bridge_drop": "2 V"}}, "nothing"),
+        ({**POINT, "drive": {"pwm_frequency": "20 kHz"}}, "supply.voltage"),
+        ({**POINT, "drive": {"peak_current": "2 A", "continuous_current": "3 A"}}, "exchange"),
+        ({**POINT, "drive": {"peak_current": "2 A rms", "current_convention": "peak"}}, "leave one"),
+        ({**POINT, "wanted": {"order_by": "beauty"}}, "would do"),
+        ({**POINT, "wanted": {"reserve": "-5 %"}}, "too small"),
+        ({**POINT, "wanted": {"limit": 0}}, "too small"),
+        ({**POINT, "wanted": {"where": ["mas < 3 kg"]}}, "did you mean mass"),
+        ({**POINT, "wanted": {"where": ["mass < 3"]}}, "without a unit"),
+        ({**POINT, "wanted": {"where": ["heavy"]}}, "is no limit"),
+        ({**POINT, "wanted": {"where": ["maker < X"]}}, "is text"),
+        ({**POINT, "ambient": {"altitude": "5000 m"}}, "at most 4000"),
+        ({**POINT, "suply": {"voltage": "24 V"}}, "did you mean supply"),
+        ({**POINT, "supply": {"volts": "24 V"}}, "no 'volts'"),
+        ({**POINT, "load": {"kind": "belt"}}, "pulley_radius"),
+        ({**POINT, "load": {"moving_mass": "3 kg"}}, "linear axis"),
+        ({"move": [{"time": "1 s"}]}, "no angle"),
+        ({"move": [{"angle": "0 rad", "time": "1 s"}]}, "goes nowhere"),
+        ({"move": [{"angle": "1 rad", "profile": "trapezoidal", "time": "1 s"}]}, "two of"),
+        ({"cycle": [["0 s", "0 rpm", "1 N·m"], ["1 s", "5 rpm", "1 N·m"]]}, "end it at the speed"),
+        ({"cycle": [["1 s", "0 rpm", "1 N·m"], ["0 s", "0 rpm", "1 N·m"]]}, "backward"),
+        ({"cycle": "nowhere.csv"}, "no cycle file"),
+    ],
+)  # fmt: skip
+def test_one_sentence_says_what_would_do(document, words) -> None:
+    with pytest.raises(MotorfolioError, match=words.replace(".", r"\.")) as error:
+        read_requirement(document)
+    assert "\n" not in str(error.value)
+
+
+@pytest.mark.parametrize(
+    ("text", "words"),
+    [
+        ("", "empty"),
+        ("time,speed [rpm],torque [N·m]\n0,0,1\n", "has no unit"),
+        ("time [s],speed [rpm]\n0,0\n", "no column torque"),
+        ("time [s],speed [rpm],torque [V]\n0,0,1\n", "heading"),
+        ("time [s],speed [rpm],torque [N·m]\n0,0,x\n", "row 2"),
+        ("time [s],speed [rpm],torque [N·m]\n0,0,1\n0,9,1\n1,0,1\n", "speed steps"),
+        ("time [s],time [s],speed [rpm],torque [N·m]\n0,0,0,1\n", "two columns"),
+    ],
+)
+def test_bad_cycle_files(tmp_path: Path, text: str, words: str) -> None:
+    (tmp_path / "c.csv").write_text(text, encoding="utf-8")
+    with pytest.raises(MotorfolioError, match=words):
+        read_requirement({"cycle": "c.csv"}, folder=tmp_path)
+
+
+def test_cycle_file_in_other_clothes(tmp_path: Path) -> None:
+    """Semicolons, decimal commas, units in words, ms and rpm."""
+    text = "Time (ms);Speed in rpm;Torque [mNm]\n0;0;1,5\n500;60;1,5\n1000;0;1,5\n"
+    (tmp_path / "c.csv").write_text(text, encoding="utf-8")
+    r = read_requirement({"cycle": "c.csv"}, folder=tmp_path)
+    assert r.demand.cycle.duration == pytest.approx([0.5, 0.5])
+    assert r.demand.cycle.speed_end == pytest.approx([60 * RPM, 0])
+    assert r.demand.cycle.torque_start == pytest.approx([1.5e-3, 1.5e-3])
+    r.document["cycle"] = str(tmp_path / "c.csv")
+    again = tmp_path / "r.toml"
+    again.write_text(saved(r), encoding="utf-8")
+    rows = read_requirement(read_file(again)).demand.cycle
+    assert np.array_equal(rows.speed_end, r.demand.cycle.speed_end)
+
+
+def test_file_and_options_together() -> None:
+    file = {**POINT, **SUPPLY, "wanted": {"where": ["mass < 1 kg"]}}
+    both = merged(
+        file, {"supply": {"bridge_drop": "1 V"}, "wanted": {"where": ["price < 9 EUR"]}}, Path()
+    )
+    assert both["supply"] == {"voltage": "24 V", "bridge_drop": "1 V"}
+    assert both["wanted"]["where"] == ["mass < 1 kg", "price < 9 EUR"]
+    with pytest.raises(RequirementError, match="leave one"):
+        merged(file, {"supply": {"voltage": "12 V"}}, Path())
+    with pytest.raises(RequirementError, match="leave one"):
+        merged(file, POINT, Path())
+
+
+def test_where() -> None:
+    limit = read_where("mass <= 500 g")
+    assert (limit.key, limit.sign, limit.value) == ("mass", "<=", pytest.approx(0.5))
+    assert read_where('maker = "Some Maker"').value == "Some Maker"
+    assert read_where("torque-constant ≥ 10 mNm/A").value == pytest.approx(0.01)
+    assert read_where("price < 99.50 EUR").unit == "EUR"
+
+
+def test_schema_names_every_key_of_the_samples() -> None:
+    schema = json_schema()["properties"]
+    for path in MACHINES:
+        for section, content in read_file(path).items():
+            assert section in schema
+            tables = content if isinstance(content, list) else [content]
+            for table in tables:
+                if isinstance(table, dict):
+                    inner = schema[section].get("items", schema[section])["properties"]
+                    assert set(table) <= set(inner)
+    assert set(SECTIONS) | set(LISTS) <= set(schema)
+
+
+def test_toml_writes_what_it_reads(tmp_path: Path) -> None:
+    import tomllib
+
+    document = {
+        "title": 'a "b" \\ ü',
+        "gear": {"ratio": [1, 2.5], "efficiency": 0.9},
+        "move": [{"angle": "1 rad", "there_and_back": True}, {"dwell": "1 s"}],
+    }
+    assert tomllib.loads(to_toml(document)) == document
