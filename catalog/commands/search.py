@@ -112,7 +112,7 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
         return 0
     requirement = _requirement(options)
     if options["save_requirement"] is not None:
-        from ..requirement import saved
+        from ..requirement_file import saved
 
         options["save_requirement"].write_text(saved(requirement), encoding="utf-8")
     if options["explain"]:
@@ -122,11 +122,10 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
         if as_json:
             print_json(document)
         else:
-            from rich.console import Console
-
             from ..report.candidates import print_requirement
+            from ..report.screen import paged
 
-            print_requirement(document, Console(highlight=False))
+            paged(lambda out: print_requirement(document, out))
         return 0
     from ..candidate_documents import search_document
     from ..near_misses import near_misses
@@ -141,11 +140,10 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
     if as_json:
         print_json(document)
     else:
-        from rich.console import Console
-
         from ..report.candidates import print_search
+        from ..report.screen import paged
 
-        print_search(document, Console(highlight=False))
+        paged(lambda out: print_search(document, out))
     if not document["candidates"]:
         say(_why_none(document))
     say(SAFETY)
@@ -154,7 +152,8 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
 
 def _requirement(options: dict[str, Any]) -> Any:
     """The requirement of file and options together."""
-    from ..requirement import merged, read_file, read_requirement
+    from ..requirement import read_requirement
+    from ..requirement_file import merged, read_file
 
     given, origin = _document(options)
     path = options["requirement"]
@@ -193,7 +192,7 @@ def _points(options: dict[str, Any]) -> list[dict[str, str]]:
     torques, speeds, durations = (options[key] for key in ("torque", "speed", "duration"))
     if len(torques) != len(speeds):
         raise RequirementError(
-            f"There are {len(torques)} --torque and {len(speeds)} --speed; a point needs one of each."
+            f"There are {len(torques)} --torque and {len(speeds)} --speed; a point needs both."
         )
     if durations and len(durations) != len(torques):
         raise RequirementError(
