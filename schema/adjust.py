@@ -14,6 +14,7 @@ from numpy.typing import NDArray
 from .batch import Floats
 from .model import (
     INDEX,
+    LAW_BINDS,
     LAW_SCATTER,
     UNPUBLISHED_I0,
     UNPUBLISHED_I0_SERVO,
@@ -40,8 +41,9 @@ class Problem:
     y (n, F) logarithms of the figures, brought to the DC motor at the reference temperature (0
     where absent); present (n, F); digits and scatter (n, F) standard deviations of y from the
     printed digits and from custom; servo (n,) true for sinusoidal motors; family (n, 4) what the
-    motor's family shares (logarithms), family_sd its standard deviation (inf: no family); scale
-    (n,) or (1,) how much of the customary scatter the table shows.
+    motor's family shares (logarithms), family_sd its standard deviation (inf: no family);
+    bound (n, laws) which laws say anything about a motor's published figures (as published:
+    leaving a figure out doesn't unbind what implies it); scale (n,) or (1,) how much of the customary scatter the table shows.
     """
 
     y: Floats
@@ -52,6 +54,7 @@ class Problem:
     family: Floats
     family_sd: Floats
     readings: Readings
+    bound: NDArray[np.bool_]
     scale: Floats = field(default_factory=lambda: np.ones(1))
 
     def __len__(self) -> int:
@@ -61,7 +64,7 @@ class Problem:
         """The same for these motors (repeats allowed)."""
         return Problem(
             self.y[which], self.present[which], self.digits[which], self.scatter[which],
-            self.servo[which], self.family[which], self.family_sd[which], self.readings,
+            self.servo[which], self.family[which], self.family_sd[which], self.readings, self.bound[which],
             self.scale if len(self.scale) == 1 else self.scale[which],
         )  # fmt: skip
 
@@ -84,11 +87,19 @@ class Problem:
         """1/variance of the laws and of the prior on an unpublished no-load current."""
         laws = np.empty((len(self), LAWS))
         scatter = np.array(list(LAW_SCATTER.values()))
-        laws[:, :-1] = 1.0 / (self.scale[:, None] * scatter) ** 2
+        laws[:, :-1] = self.bound / (self.scale[:, None] * scatter) ** 2
         unpublished = ~self.present[:, INDEX["no_load_current"]]
         prior = np.where(self.servo, UNPUBLISHED_I0_SERVO[1], UNPUBLISHED_I0[1]) ** -2.0
         laws[:, -1] = np.where(unpublished, prior, 0.0)
         return laws
+
+
+def bound_laws(present: NDArray[np.bool_]) -> NDArray[np.bool_]:
+    """Which laws say anything about the published figures, (n, number of laws)."""
+    out = np.empty((len(present), len(LAW_SCATTER)), dtype=bool)
+    for i, law in enumerate(LAW_SCATTER):
+        out[:, i] = present[:, [INDEX[key] for key in LAW_BINDS[law]]].any(axis=1)
+    return out
 
 
 @dataclass(slots=True)
@@ -127,7 +138,7 @@ class _Equations:
         self.rows = np.flatnonzero(problem.present.any(axis=0) & matrix.any(axis=1))
         self.matrix = matrix[self.rows]
         self.y = problem.y[:, self.rows] - self.constant[self.rows]
-        self.squares = _outer(self.matrix)
+        self.prior_mean, self.prior_weight = ridge()
         self.family = family_matrix()
         self.family_value = np.nan_to_num(problem.family)
         with np.errstate(divide="ignore"):
@@ -135,38 +146,58 @@ class _Equations:
                 np.isfinite(problem.family_sd), problem.family_sd**-2.0, 0.0
             )
         self.has_family = bool(self.family_weight.any())
-        self.prior_mean, self.prior_weight = ridge()
+        # unknowns that no row of this chunk touches keep their prior and stay out of the matrix
+        touched = np.asarray(self.matrix.any(axis=0))
+        if self.has_family:
+            touched |= (self.family != 0).any(axis=0)
+        start = np.broadcast_to(self.prior_mean, (len(problem), P))
+        for _, _, slopes in self.nonlinear(start, typical=True):
+            touched[[unknown for unknown, _ in slopes]] = True
+        self.active = np.flatnonzero(touched)
+        self.position = {unknown: i for i, unknown in enumerate(self.active.tolist())}
+        self.squares = _outer(self.matrix[:, self.active])
+        self.family_squares = _outer(self.family[:, self.active])
 
     def normal(
         self, x: Floats, typical: bool = False, cut: float | None = None
     ) -> tuple[Floats, Floats]:
-        """Normal matrix (n, P, P) and right-hand side (n, P) at x.
+        """Normal matrix (n, A, A) and right-hand side (n, A) of the active unknowns at x.
 
         With ``cut`` residuals beyond so many standard deviations lose weight (Cauchy).
         """
+        active, at = self.active, self.position
+        size = active.size
         weight = self.weight[:, self.rows]
         gap = self.y - x @ self.matrix.T
         if cut is not None:
             weight = weight / (1.0 + weight * (gap / cut) ** 2)
-        matrix = (weight @ self.squares).reshape(-1, P, P)
-        right = (weight * gap) @ self.matrix
+        matrix = (weight @ self.squares).reshape(-1, size, size)
+        right = (weight * gap) @ self.matrix[:, active]
         if self.has_family:
             weight, gap = self.family_weight, self.family_value - x @ self.family.T
             if cut is not None:
                 weight = weight / (1.0 + weight * (gap / cut) ** 2)
-            matrix += (weight @ _outer(self.family)).reshape(-1, P, P)
-            right += (weight * gap) @ self.family
-        index = np.arange(P)
-        matrix[:, index, index] += self.prior_weight
-        right += self.prior_weight * (self.prior_mean - x)
+            matrix += (weight @ self.family_squares).reshape(-1, size, size)
+            right += (weight * gap) @ self.family[:, active]
+        index = np.arange(size)
+        matrix[:, index, index] += self.prior_weight[active]
+        right += self.prior_weight[active] * (self.prior_mean - x)[:, active]
         for residual, w, slopes in self.nonlinear(x, typical):
             damped = w if cut is None else w / (1.0 + w * (residual / cut) ** 2)
             for a, slope_a in slopes:
                 weighed = damped * slope_a
-                right[:, a] += weighed * residual
+                right[:, at[a]] += weighed * residual
                 for b, slope_b in slopes:
-                    matrix[:, a, b] += weighed * slope_b
+                    matrix[:, at[a], at[b]] += weighed * slope_b
         return matrix, right
+
+    def covariance(self, matrix: Floats) -> Floats:
+        """Covariance (n, P, P) of all unknowns from a normal matrix of the active ones."""
+        out = np.zeros((len(matrix), P, P))
+        rest = np.setdiff1d(np.arange(P), self.active)
+        out[:, rest, rest] = 1.0 / self.prior_weight[rest]
+        out[:, self.active[:, None], self.active[None, :]] = np.linalg.inv(matrix)
+        return out
 
     def nonlinear(self, x: Floats, typical: bool = False) -> Rows:
         """The nonlinear rows at x."""
@@ -204,14 +235,14 @@ ROBUST_CUTS = (30.0, 10.0, 5.0, 3.0, 3.0, 3.0, 3.0)
 def _fit_chunk(problem: Problem, robust: bool) -> Fit:
     equations = _Equations(problem)
     x = np.broadcast_to(equations.prior_mean, (len(problem), P)).copy()
+    active = equations.active
     matrix, right = equations.normal(x, typical=True)
-    x += np.linalg.solve(matrix, right[..., None])[..., 0]
+    x[:, active] += np.linalg.solve(matrix, right[..., None])[..., 0]
     cuts = ROBUST_CUTS if robust else (None,) * ITERATIONS
     for cut in cuts:
         matrix, right = equations.normal(x, cut=cut)
         step = np.linalg.solve(matrix, right[..., None])[..., 0]
-        x += np.clip(step, -3.0, 3.0)
-        if not robust and np.abs(step).max(initial=0.0) < 1e-6:
+        x[:, active] += np.clip(step, -3.0, 3.0)
+        if not robust and np.abs(step).max(initial=0.0) < 1e-5:
             break
-    covariance = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
-    return Fit(x, covariance, equations.chi2(x, cuts[-1]))
+    return Fit(x, equations.covariance(matrix), equations.chi2(x, cuts[-1]))

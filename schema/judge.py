@@ -23,6 +23,9 @@ IMPLAUSIBLE = 6.0
 """What it costs, in χ², when a suspect's implied value or another figure that then stays right lies
 beyond what motors of any size have."""
 
+BETTER = 2.0
+"""How much likelier another suspect must be to take the place of the first found."""
+
 STEP = 1000
 """Motors judged at a time."""
 
@@ -128,11 +131,19 @@ def _reconsider(
     ranking = _rank(evidence, motors[locals_], sub, left, bad)
     for local in {local for local, _ in pairs}:
         found[local] = []
+        part.present[local] |= evidence.problem.present[motors[local]]
     for i, (local, old) in enumerate(pairs):
-        if not bad[i, old.figure]:
-            part.present[local, old.figure] = True
+        if not bad[i].any():
             continue
-        found[local].append(_suspicion(old.motor, i, old.figure, float(before[i]), left, ranking))
+        figure = old.figure
+        total = np.where(bad[i], ranking.total[i], np.inf)
+        best = int(np.argmin(total))
+        if not bad[i, figure] or total[best] < total[figure] - BETTER:
+            figure = best  # the first look was misled by the other faults
+        if part.present[local, figure]:
+            part.present[local, figure] = False
+            verdict = _suspicion(old.motor, i, figure, float(before[i]), left, ranking)
+            found[local].append(verdict)
 
 
 def _suspicion(

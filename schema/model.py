@@ -68,7 +68,7 @@ P = len(UNKNOWNS)
 
 POINT_FIGURES = frozenset(
     {"no_load_speed", "stall_torque", "nominal_current", "nominal_torque", "nominal_speed",
-     "friction_torque", "nominal_voltage", "continuous_stall_current", "peak_current"}
+     "friction_torque", "nominal_voltage"}
 )  # fmt: skip
 """Figures that are unknowns themselves: their own row holds to the printed digits only, the
 customary scatter belongs to the law that ties them to the constants."""
@@ -82,10 +82,20 @@ FAMILY_ROWS: tuple[tuple[str, dict[int, float]], ...] = (
 """What the windings of one motor size share."""
 
 LAW_SCATTER = {
-    # customary scatter of the laws, one standard deviation (common practice, no source)
-    "no_load_speed": 0.025, "stall_torque": 0.02, "nominal_torque": 0.05, "nominal_speed": 0.025,
+    # customary scatter of the laws, one standard deviation (common practice, no source); that of
+    # the nominal torque is from scatter of 5 % of T_N and some of I_N
+    "no_load_speed": 0.025, "stall_torque": 0.02, "nominal_torque": 0.06, "nominal_speed": 0.025,
     "friction_torque": 0.10,
 }  # fmt: skip
+
+LAW_BINDS = {
+    # the figures of which at least one must be published for a law to say anything
+    "no_load_speed": ("no_load_speed", "maximum_power"),
+    "stall_torque": ("stall_torque", "maximum_power"),
+    "nominal_torque": ("nominal_torque", "rated_power", "rated_efficiency"),
+    "nominal_speed": ("nominal_speed", "rated_power", "rated_efficiency"),
+    "friction_torque": ("friction_torque", "viscous_damping"),
+}
 
 UNPUBLISHED_I0 = (np.log(0.015), 1.0)
 """I0·Ra/U of a motor whose no-load current isn't published: mean and sd of its logarithm
@@ -174,11 +184,15 @@ def nonlinear_rows(
     lost, steep = np.log1p(-brake), brake / (1.0 - brake)
 
     # n0 = (U − Ra·I0)/Km
-    residual = u - k + lost - x[:, N0]
-    yield residual, laws[:, 0], [(N0, 1.0), (U, -1.0 - steep), (K, 1.0), (R, steep), (I0, steep)]
+    if laws[:, 0].any():
+        residual = u - k + lost - x[:, N0]
+        slopes: Slopes = [(N0, 1.0), (U, -1.0 - steep), (K, 1.0), (R, steep), (I0, steep)]
+        yield residual, laws[:, 0], slopes
 
     # T_s = Km·(I_s − I0), or Km·I_s
-    if readings.stall_torque_net:
+    if not laws[:, 1].any():
+        pass
+    elif readings.stall_torque_net:
         residual = k + u - r + lost - x[:, TS]
         slopes = [(TS, 1.0), (K, -1.0), (U, -1.0 - steep), (R, 1.0 + steep), (I0, steep)]
         yield residual, laws[:, 1], slopes
@@ -186,37 +200,40 @@ def nonlinear_rows(
         yield k + u - r - x[:, TS], laws[:, 1], [(TS, 1.0), (K, -1.0), (U, -1.0), (R, 1.0)]
 
     # T_N = Km·(I_N − I0)
-    idle = 0.05 if typical else np.minimum(np.exp(np.minimum(i0 - i_n, 0.0)), CLIP)
-    idle = np.broadcast_to(np.asarray(idle, dtype=float), k.shape)
-    steep_n = idle / (1.0 - idle)
-    residual = k + i_n + np.log1p(-idle) - x[:, TN]
-    yield residual, laws[:, 2], [(TN, 1.0), (K, -1.0), (IN, -1.0 - steep_n), (I0, steep_n)]
+    if laws[:, 2].any():
+        idle = 0.05 if typical else np.minimum(np.exp(np.minimum(i0 - i_n, 0.0)), CLIP)
+        idle = np.broadcast_to(np.asarray(idle, dtype=float), k.shape)
+        slope = idle / (1.0 - idle)
+        residual = k + i_n + np.log1p(-idle) - x[:, TN]
+        yield residual, laws[:, 2], [(TN, 1.0), (K, -1.0), (IN, -1.0 - slope), (I0, slope)]
 
     # n_N = (U − Ra·I_N)/Km; on a servo sheet only n_N <= U/Km
-    hot = HOT_RESISTANCE if readings.nominal_speed_hot else 1.0
-    drop = 0.15 if typical else np.minimum(hot * np.exp(np.minimum(r + i_n - u, 0.5)), CLIP)
-    drop = np.where(servo, 0.0, drop)
-    steep_d = drop / (1.0 - drop)
-    residual = u - k + np.log1p(-drop) - x[:, NN]
-    w = np.where(servo & ((residual > 0.0) | typical), 0.0, laws[:, 3])
-    yield residual, w, [(NN, 1.0), (U, -1.0 - steep_d), (K, 1.0), (R, steep_d), (IN, steep_d)]
+    if laws[:, 3].any():
+        hot = HOT_RESISTANCE if readings.nominal_speed_hot else 1.0
+        drop = 0.15 if typical else np.minimum(hot * np.exp(np.minimum(r + i_n - u, 0.5)), CLIP)
+        drop = np.where(servo, 0.0, drop)
+        slope = drop / (1.0 - drop)
+        residual = u - k + np.log1p(-drop) - x[:, NN]
+        w = np.where(servo & ((residual > 0.0) | typical), 0.0, laws[:, 3])
+        yield residual, w, [(NN, 1.0), (U, -1.0 - slope), (K, 1.0), (R, slope), (IN, slope)]
 
     # Km·I0 = T_c + b·n0, b = 0 unless published
-    damped = weight[:, INDEX["viscous_damping"]] > 0.0
-    coulomb, viscous = x[:, TF], np.where(damped, x[:, B] + x[:, N0], -np.inf)
-    if typical:
-        viscous = np.full_like(viscous, -np.inf)
-    total = np.logaddexp(coulomb, viscous)
-    share = np.exp(np.clip(viscous - total, -50.0, 0.0)) * damped
-    residual = k + i0 - total
-    slopes = [(TF, 1.0 - share), (B, share), (N0, share), (K, -1.0), (I0, -1.0)]
-    yield residual, laws[:, 4], slopes
+    if laws[:, 4].any():
+        damped = weight[:, INDEX["viscous_damping"]] > 0.0
+        coulomb, viscous = x[:, TF], np.where(damped, x[:, B] + x[:, N0], -np.inf)
+        if typical:
+            viscous = np.full_like(viscous, -np.inf)
+        total = np.logaddexp(coulomb, viscous)
+        share = np.exp(np.clip(viscous - total, -50.0, 0.0)) * damped
+        slopes = [(TF, 1.0 - share), (B, share), (N0, share), (K, -1.0), (I0, -1.0)]
+        yield k + i0 - total, laws[:, 4], slopes
 
     # I0 where it isn't published
     mean, servo_mean = UNPUBLISHED_I0[0], UNPUBLISHED_I0_SERVO[0]
-    residual = np.where(servo, servo_mean - i0 + i_n, mean - i0 - r + u)
-    r_slope, n_slope = np.where(servo, 0.0, 1.0), np.where(servo, -1.0, 0.0)
-    yield residual, laws[:, 5], [(I0, 1.0), (R, r_slope), (U, -r_slope), (IN, n_slope)]
+    if laws[:, 5].any():
+        residual = np.where(servo, servo_mean - i0 + i_n, mean - i0 - r + u)
+        r_slope, n_slope = np.where(servo, 0.0, 1.0), np.where(servo, -1.0, 0.0)
+        yield residual, laws[:, 5], [(I0, 1.0), (R, r_slope), (U, -r_slope), (IN, n_slope)]
 
     # η_max = (1 − √(I0/I_s))²
     i = INDEX["maximum_efficiency"]

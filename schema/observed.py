@@ -6,7 +6,7 @@ from collections.abc import Mapping
 import numpy as np
 from numpy.typing import NDArray
 
-from .adjust import Problem
+from .adjust import Problem, bound_laws
 from .batch import MAGNETS, Batch, FigureColumn, Floats
 from .convention import Commutation, Convention, to_dc
 from .model import FAMILY_ROWS, FIGURES, POINT_FIGURES, F, Readings
@@ -116,5 +116,5 @@ def observe(
     rows = len(FAMILY_ROWS)
     return Problem(
         y, present, digits, scatter, servo, np.full((n, rows), np.nan),
-        np.full((n, rows), np.inf), readings or Readings(),
+        np.full((n, rows), np.inf), readings or Readings(), bound_laws(present),
     )  # fmt: skip

@@ -6,7 +6,6 @@ from dataclasses import replace
 import numpy as np
 
 from .adjust import Problem, fit
-from .batch import Floats
 from .model import INDEX, LAW_SCATTER, Readings
 
 SAMPLE = 240
@@ -65,19 +64,10 @@ def scale(problem: Problem) -> float:
     fitted = fit(stacked, robust=True)
     sign, log_det = np.linalg.slogdet(fitted.covariance)
     variance = np.where(stacked.present, 2.0 * np.log(stacked.sd()), 0.0).sum(axis=1)
-    laws = _laws_in_force(stacked)
+    laws = stacked.bound.copy()
+    laws[:, list(LAW_SCATTER).index("nominal_speed")] &= ~stacked.servo
     variance += (laws * 2.0 * np.log(stacked.scale)[:, None]).sum(axis=1)
     cost = fitted.chi2 + variance - np.where(sign > 0, log_det, 0.0)
     total = cost.reshape(count, n).sum(axis=1) + (np.log(SCALES) / SCALE_PRIOR) ** 2
     share = np.exp(-0.5 * (total - total.min()))
     return float(np.sqrt((share * SCALES**2).sum() / share.sum()))
-
-
-def _laws_in_force(problem: Problem) -> Floats:
-    """1 where a law binds a printed figure, 0 where it only defines an unprinted one."""
-    out = np.empty((len(problem), len(LAW_SCATTER)))
-    for i, key in enumerate(LAW_SCATTER):
-        out[:, i] = 1.0
-        if key == "nominal_speed":
-            out[:, i] = ~problem.servo
-    return out

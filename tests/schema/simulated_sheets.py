@@ -98,12 +98,15 @@ def make(
     speed = math.exp(rng.uniform(math.log(3000), math.log(9000))) * RPM
     truth = {k: np.empty(n) for k in ("Km", "Ra", "J", "La", "I0")}
     sheet = Sheet(batch, truth, {k: np.full(n, np.nan) for k in keys})
+    friction = rng.uniform(0.008, 0.025) * size**2 * speed  # torque: about Km·(U/Ra)/80
+    if servo:
+        friction *= 0.3
     for i in range(n):
         u = u0
         km = u / speed * 1.28 ** (i - n / 2) * math.exp(rng.normal(0, 0.03))
         ra = (km / size) ** 2
         load = rng.uniform(0.08, 0.2) * u / ra
-        i0 = rng.uniform(0.008, 0.025) * u / ra if not servo else load * rng.uniform(0.01, 0.04)
+        i0 = friction * math.exp(rng.normal(0, 0.03)) / km
         n0, i_s = (u - ra * i0) / km, u / ra
         ts, tn, nn = km * (i_s - i0), km * (load - i0), (u - ra * load) / km
         if servo:
