@@ -35,8 +35,8 @@ class Utilisations:
     rad/s and `peak_torque_value` in N·m are those of the motor's shaft, `winding_temperature` in
     °C (the peak of the periodic state where time constants are known), `copper_loss` in W the mean
     over the cycle at the winding temperature, at the ambient where that is unknown.
-    `ripple_unknown` marks motors whose ripple was asked for and left out, since their inductance is unknown,
-    `friction_assumed` those without any friction figure (friction counted as 0).
+    `ripple_unknown` marks motors whose ripple was asked for and left out, since their inductance
+    is unknown, `friction_assumed` those without any friction figure (friction counted as 0).
     """
 
     voltage: Array

@@ -7,6 +7,7 @@ A stiff speed controller makes the motor follow the cycle; nothing here knows th
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass, replace
 
 import numpy as np
@@ -40,76 +41,69 @@ class Plant:
     torque: np.ndarray
     frozen: float | None = None  # winding temperature held there, if any
 
-    def load(self, t: float, k: int) -> tuple[float, float, float]:
-        """Load speed, acceleration and external torque at a time of row interval k."""
-        t0, t1 = self.time[k], self.time[k + 1]
-        s = (t - t0) / (t1 - t0)
-        a = (self.speed[k + 1] - self.speed[k]) / (t1 - t0)
-        w = self.speed[k] + (self.speed[k + 1] - self.speed[k]) * s
-        return w, a, self.torque[k] + (self.torque[k + 1] - self.torque[k]) * s
+    def rates(self, k: int):
+        """d/dt of i_q, i_d, motor speed, winding and housing temperature, ∫i² dt in interval k.
 
-    def rates(self, t: float, y: np.ndarray, k: int) -> np.ndarray:
-        """d/dt of i_q, i_d, motor speed, winding and housing temperature, ∫i² dt."""
-        iq, i_d, w, Tw, Th, _ = y
-        if self.frozen is not None:
-            Tw = self.frozen
-        step = self.time[k + 1] - self.time[k]
+        Plain floats: most of the time goes into these calls.
+        """
+        t0, step = float(self.time[k]), float(self.time[k + 1] - self.time[k])
+        speed, torque = float(self.speed[k]), float(self.torque[k])
+        aL = float(self.speed[k + 1] - self.speed[k]) / step
+        slope = float(self.torque[k + 1] - self.torque[k]) / step
         fast, slow = 1e-5 * step, 1e-4 * step
-        wL, aL, Text = self.load(t, k)
-        flux = 1 + self.beta * (Tw - 25)
-        warm = (234.5 + Tw) / (234.5 + 25)
-        # Directions are those of the motion that is asked for.
-        TL = Text + self.JL * aL
-        power = TL * wL
-        g = 1 / self.eta if power > 0 else self.eta if power < 0 else 1.0
-        rubbing = self.Tc * np.sign(wL) + self.b * w
-        inertia = self.J + self.Jg + self.JL * g / self.ratio**2
-        if self.sinusoidal:
-            psi = self.Km * flux / (np.sqrt(3) * self.p)
-            shaft = 1.5 * self.p * psi * iq
-            per_ampere = 1.5 * self.p * psi
-            R = self.Ra * warm / 2
-            copper = 1.5 * R * (iq**2 + i_d**2)
-        else:
-            shaft = self.Km * flux * iq
-            per_ampere = self.Km * flux
-            copper = self.Ra * warm * iq**2
-        wanted = inertia / (per_ampere * slow) * (self.ratio * wL - w)
-        vd, vq = self.volts(y, wanted, fast, flux, warm)
-        if self.sinusoidal:
-            L, we = self.La / 2, self.p * w
-            psi = self.Km * flux / (np.sqrt(3) * self.p)
-            diq = (vq - R * iq - we * (L * i_d + psi)) / L
-            did = (vd - R * i_d + we * L * iq) / L
-        else:
-            diq = (vq - self.Ra * warm * iq - self.Km * flux * w) / self.La
-            did = 0.0
-        dw = (shaft - rubbing - Text * g / self.ratio) / inertia
-        C1, C2 = self.tau_w / self.Rth1, self.tau_h / self.Rth2
-        dTw = (copper - (Tw - Th) / self.Rth1) / C1
-        dTh = ((Tw - Th) / self.Rth1 - (Th - self.ambient) / self.Rth2 + rubbing * w) / C2
-        return np.array([diq, did, dw, dTw, dTh, iq**2 + i_d**2])
+        ratio, eta, sinusoidal, frozen = self.ratio, self.eta, self.sinusoidal, self.frozen
+        Km, Ra, La, Tc, b, beta, p = self.Km, self.Ra, self.La, self.Tc, self.b, self.beta, self.p
+        Rth1, Rth2, ambient = self.Rth1, self.Rth2, self.ambient
+        C1, C2 = self.tau_w / Rth1, self.tau_h / Rth2
+        rotor, JL = self.J + self.Jg, self.JL
 
-    def volts(
-        self, y: np.ndarray, wanted: float, fast: float, flux: float, warm: float
-    ) -> tuple[float, float]:
-        """Voltages of a current controller with the time constant `fast`."""
-        iq, i_d, w = y[:3]
-        if not self.sinusoidal:
-            return 0.0, self.Ra * warm * iq + self.Km * flux * w + self.La * (wanted - iq) / fast
-        R, L, we = self.Ra * warm / 2, self.La / 2, self.p * w
-        psi = self.Km * flux / (np.sqrt(3) * self.p)
-        return (
-            R * i_d - we * L * iq - L * i_d / fast,
-            R * iq + we * (L * i_d + psi) + L * (wanted - iq) / fast,
-        )
+        def rates(t: float, y: np.ndarray) -> list[float]:
+            iq, i_d, w, Tw, Th, _ = y.tolist()
+            if frozen is not None:
+                Tw = frozen
+            wL, Text = speed + aL * (t - t0), torque + slope * (t - t0)
+            flux = Km * (1 + beta * (Tw - 25))
+            warm = Ra * (234.5 + Tw) / (234.5 + 25)
+            # Directions are those of the motion that is asked for.
+            power = (Text + JL * aL) * wL
+            g = 1 / eta if power > 0 else eta if power < 0 else 1.0
+            rubbing = Tc * ((wL > 0) - (wL < 0)) + b * w
+            inertia = rotor + JL * g / ratio**2
+            if sinusoidal:
+                psi = flux / (math.sqrt(3) * p)
+                per_ampere = 1.5 * p * psi
+                R, L, we = warm / 2, La / 2, p * w
+                wanted = inertia / (per_ampere * slow) * (ratio * wL - w)
+                vd = R * i_d - we * L * iq - L * i_d / fast
+                vq = R * iq + we * (L * i_d + psi) + L * (wanted - iq) / fast
+                diq = (vq - R * iq - we * (L * i_d + psi)) / L
+                did = (vd - R * i_d + we * L * iq) / L
+                copper = 1.5 * R * (iq * iq + i_d * i_d)
+            else:
+                per_ampere = flux
+                wanted = inertia / (per_ampere * slow) * (ratio * wL - w)
+                v = warm * iq + flux * w + La * (wanted - iq) / fast
+                diq = (v - warm * iq - flux * w) / La
+                did = 0.0
+                copper = warm * iq * iq
+            dw = (per_ampere * iq - rubbing - Text * g / ratio) / inertia
+            dTw = (copper - (Tw - Th) / Rth1) / C1
+            dTh = ((Tw - Th) / Rth1 - (Th - ambient) / Rth2 + rubbing * w) / C2
+            return [diq, did, dw, dTw, dTh, iq * iq + i_d * i_d]
+
+        return rates
 
     def voltage(self, y: np.ndarray) -> float:
         """Terminal voltage at settled currents: of the brushes, or line to line at its peak."""
         Tw = y[3] if self.frozen is None else self.frozen
         flux, warm = 1 + self.beta * (Tw - 25), (234.5 + Tw) / (234.5 + 25)
-        vd, vq = self.volts(y, y[0], 1.0, flux, warm)
-        return float(np.hypot(vd, vq) * (np.sqrt(3) if self.sinusoidal else 1.0))
+        iq, i_d, w = y[:3]
+        if not self.sinusoidal:
+            return abs(self.Ra * warm * iq + self.Km * flux * w)
+        R, L, we = self.Ra * warm / 2, self.La / 2, self.p * w
+        psi = self.Km * flux / (np.sqrt(3) * self.p)
+        vd, vq = R * i_d - we * L * iq, R * iq + we * (L * i_d + psi)
+        return float(np.sqrt(3) * np.hypot(vd, vq))
 
     @property
     def armature(self) -> float:
@@ -127,7 +121,7 @@ class Plant:
                 continue
             settled = np.linspace(t0 + 2e-3 * (t1 - t0), t1, 120)
             run = solve_ivp(
-                self.rates, (t0, t1), y, "LSODA", t_eval=settled, args=(k,), rtol=1e-6, atol=1e-7
+                self.rates(k), (t0, t1), y, "LSODA", t_eval=settled, rtol=1e-6, atol=1e-7
             )
             assert run.success, run.message
             y = run.y[:, -1]
