@@ -162,7 +162,7 @@ def _xlsx(page: Page) -> bytes:
 def _hide_old_column(sheet: object, page: Page) -> None:
     """A hidden copy of the last column with other numbers, as left over from an older issue."""
     grid = page.grids[0]
-    column = max(len(row) for row in grid) + 1
+    column = max(len(row) for g in page.grids for row in g) + 1
     top = len(page.before) * 2
     for r, row in enumerate(grid, start=top + 1):
         cell = row[-1]

@@ -43,7 +43,8 @@ def _state_conventions(sheet: Sheet, page: Page) -> None:
             if column.key in CURRENT_KEYS:
                 column.convention["current"] = "rms"
     columns = {c.key: c for c in sheet.columns}
-    if recipe.has("between") and sheet.kind != "brushed":
+    symbols_only = recipe.layout.endswith("symbols")
+    if recipe.has("between") and sheet.kind != "brushed" and not symbols_only:
         between = rng.choice(["lines", "phase"])
         for key in ("terminal_resistance", "terminal_inductance"):
             if key in columns:
@@ -52,7 +53,7 @@ def _state_conventions(sheet: Sheet, page: Page) -> None:
     mark = rng.choice(["1)", "¹⁾", "*"])
     if recipe.has("footnote label") and "terminal_resistance" in columns:
         columns["terminal_resistance"].label += rng.choice(["", " "]) + mark
-        page.after.append(f"{mark} 25 °C")
+        page.after.append(f"{mark} {sheet.word('typical')}")
     if recipe.has("footnote cell"):
         key = next((k for k in ("no_load_speed", "nominal_speed") if k in columns), "")
         cell = columns[key].cells[-1] if key else None
@@ -228,7 +229,8 @@ def _grouped(sheet: Sheet) -> tuple[list[str], list[str]]:
         _generic(sheet, c.key) if g not in ("", "constants") else c.label
         for c, g in zip(sheet.columns, groups, strict=True)
     ]
-    return [sheet.word(g) if g else "" for g in groups], subs
+    words = {"stall": "standstill"} if sheet.kind == "servo" else {}
+    return [sheet.word(words.get(g, g)) if g else "" for g in groups], subs
 
 
 def _rows_grouped(sheet: Sheet, page: Page) -> None:

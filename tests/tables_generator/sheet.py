@@ -141,7 +141,7 @@ def _qualify(recipe: Recipe, key: str, place: int, unit: u.Unit, printed: Printe
     style = STYLES[recipe.style]
     number, text = printed.number, printed.text
     last = Decimal(1).scaleb(int(number.as_tuple().exponent))
-    forms = ["± percent", "± absolute", "hedge"]
+    forms = ["hedge"] if unit.name == "%" else ["± percent", "± absolute", "hedge"]
     if key == "no_load_current":
         forms += ["at most", "at most"]
     if key in ("terminal_inductance", "rotor_inertia", "mass"):

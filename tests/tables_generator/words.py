@@ -322,6 +322,8 @@ part_number
 _CAPTIONS = {
     "rated": "Rated data;Nenndaten;Valeurs nominales;Dati nominali;Valores nominales;定格;额定数据",
     "no_load": "No load;Leerlauf;À vide;A vuoto;En vacío;無負荷;空载",
+    "standstill": "Continuous stall;Stillstand;Permanent à l'arrêt;Stallo continuativo;"
+    "A rotor parado;連続ストール;静态",
     "stall": "Stall;Anlauf;Démarrage;Spunto;Arranque;起動;堵转",
     "constants": "Constants;Konstanten;Constantes;Costanti;Constantes;定数;常数",
     "electrical": "Electrical data;Elektrische Daten;Données électriques;Dati elettrici;"
