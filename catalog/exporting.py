@@ -209,8 +209,10 @@ def _figures(motor: Document) -> Iterator[tuple[str, Document, str]]:
     figures = dict(motor["figures"])
     for key in ("commutation", "magnet"):
         fact = motor["model"][key]
-        if key not in figures and fact["basis"] != "assumed":
-            figures[key] = {"text": fact["value"], "value": fact["value"]}
+        if key not in figures and fact["value"] != "unknown":
+            # what the sheet did not state is not stated by its export either
+            known = "" if fact["basis"] in ("told", "stated") else f" ({fact['basis']})"
+            figures[key] = {"value": f"{fact['value']}{known}"}
     for key, figure in figures.items():
         yield key, figure, ""
     for key, repeats in motor.get("repeats", {}).items():
@@ -259,6 +261,8 @@ def _number_text(
         return sign + shown
     if _PLAIN_NUMBER.fullmatch((figure["text"] or "").strip()):
         return shown
+    if not re.search(r"[±%]|\+\s*/?\s*-", figure["text"] or "±"):
+        return f"{_digits(low)}…{_digits(high)}"
     if abs((low + high) / 2 - value) <= 1e-9 * abs(value):
         return f"{shown} ± {_digits(float(f'{(high - low) / 2:.6g}'))}"
     return (

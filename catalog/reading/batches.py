@@ -8,6 +8,7 @@ import numpy as np
 
 from ...schema.batch import (
     MAGNETS,
+    MODEL_BASES,
     Batch,
     Condition,
     FigureColumn,
@@ -49,6 +50,10 @@ from .phrase import conventions_of
 
 CHUNK = 20_000
 _STYLE_ROWS = 2000
+
+
+_EXPORTED_FACT = re.compile(r"\((inferred|assumed)\)$")
+"""What an export says of a fact that no sheet states: it is known as before, and no text."""
 
 
 class TableReader:
@@ -607,12 +612,18 @@ class TableReader:
                 value = known[text]
                 if value is None:
                     continue
+                basis = STATED
+                if exported := _EXPORTED_FACT.search(text):
+                    basis = MODEL_BASES.index(exported[1])
+                    found.text[i] = None
                 if key == "magnet" and value in MAGNETS:
                     batch.magnet[i] = value
-                    batch.magnet_basis[i] = STATED
+                    batch.magnet_basis[i] = basis
                 elif key != "magnet" and self.commutation_basis != TOLD:
                     batch.commutation[i] = int(Commutation[value.upper()])
-                    batch.commutation_basis[i] = STATED
+                    batch.commutation_basis[i] = basis
+            if all(text is None for text in found.text):
+                del batch.texts[key]
 
     def _cell_conventions(
         self, figure: FigureColumn, values: Values, q: Quantity, base: Convention

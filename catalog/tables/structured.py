@@ -11,7 +11,17 @@ from .grid import Grid, TableError
 from .numberformat import plain
 
 _MOST_VALUES = 4_000_000
-_FIGURE_KEYS = {"text", "value", "unit", "low", "high", "convention", "printed_unit"}
+_FIGURE_KEYS = {
+    "text",
+    "value",
+    "unit",
+    "low",
+    "high",
+    "convention",
+    "printed_unit",
+    "cell",
+    "corrected",
+}
 _FIRST = ("part_number", "maker", "series")
 # A printed text whose marks mean the same in every locale: digits and a decimal point that
 # can't be a thousands mark.
@@ -198,8 +208,10 @@ def _exported(motor: _Object, number: int, remarks: list[str]) -> list[tuple[str
         for key in ("commutation", "magnet"):
             told = model.get(key)
             basis = told.get("basis") if isinstance(told, _Object) else None
-            if key not in figures and isinstance(told, _Object) and basis in ("told", "stated"):
-                pairs.append((key, _scalar(told.get("value"))))
+            if key not in figures and isinstance(told, _Object) and told.get("value") != "unknown":
+                # what the sheet did not state is not stated by its export either
+                known = "" if basis in ("told", "stated") else f" ({_scalar(basis)})"
+                pairs.append((key, f"{_scalar(told.get('value'))}{known}"))
     for condition in motor.get("conditions") or []:
         if isinstance(condition, _Object) and isinstance(condition.get("figures"), _Object):
             when = _scalar(condition.get("when"))

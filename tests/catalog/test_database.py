@@ -115,7 +115,7 @@ def test_a_locked_catalog_is_said_to_be_locked(run, sheet, catalog_file, monkeyp
 def test_a_full_disk_changes_nothing(run, sheet, catalog_file, tmp_path, monkeypatch):
     """A page limit gives the very error of a full disk (SQLITE_FULL)."""
     run("import", sheet)
-    before = [row for row in _dump(catalog_file)]
+    before = _dump(catalog_file)
     other = tmp_path / "other.csv"
     rows = "\n".join(TABLE.splitlines()[1].replace("PUFFIN-A", f"AUK-{i}") for i in range(3000))
     other.write_text(TABLE.splitlines()[0] + "\n" + rows, encoding="utf-8")
@@ -134,7 +134,7 @@ def test_a_full_disk_changes_nothing(run, sheet, catalog_file, tmp_path, monkeyp
 
 def _dump(path):
     connection = sqlite3.connect(path)
-    lines = [line for line in connection.iterdump()]
+    lines = list(connection.iterdump())
     connection.close()
     return lines
 

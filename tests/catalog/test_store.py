@@ -28,7 +28,8 @@ def reconciled(batch):
     findings = [
         Finding(
             part_number="A-1", severity="error", relation="kt-kv", figures=("torque_constant",),
-            suspect="torque_constant", ratio=1.41, cause="peak-vs-rms", other_causes=("unexplained",),
+            suspect="torque_constant", ratio=1.41, cause="peak-vs-rms",
+            other_causes=("unexplained",),
             implied=Amount(value=0.0214, unit="N·m/A"), cell=Cell(sheet="Motors", row=2, column=3),
             message="Torque constant is 1.41 times what the others imply.",
         ),
@@ -88,9 +89,9 @@ def test_a_motor_says_where_each_figure_stood(catalog_file, batch):
     assert second["figures"]["torque_constant"]["cell"]["row"] == 9
     assert first["figures"]["price"]["unit"] == "EUR"
     assert first["figures"]["price"]["value"] == 0
-    assert second["conditions"] == [
-        {"when": "at 48 V", "figures": {"nominal_current": second["conditions"][0]["figures"]["nominal_current"]}}
-    ]  # fmt: skip
+    (condition,) = second["conditions"]
+    assert condition["when"] == "at 48 V"
+    assert condition["figures"]["nominal_current"]["cell"]["row"] == 3
 
 
 def test_the_batch_is_rebuilt_as_it_was(catalog_file, batch):

@@ -133,6 +133,7 @@ def test_an_export_is_handed_over(tmp_path: Path) -> None:
         "maximum_efficiency": "0.848",
         "description": "quiet",
         "commutation": "block",
+        "magnet": "ferrite (assumed)",
     }
     assert grid.rows[0][:3] == ["part_number", "maker", "series"]
 
