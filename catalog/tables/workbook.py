@@ -1,8 +1,13 @@
 """Workbooks: which sheets are read, and the older binary kinds."""
 
-import datetime
 import io
-from collections.abc import Callable, Iterable, Sequence
+import json
+import subprocess
+import sys
+from collections.abc import Callable
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any
 
 from .archive import Archive
 from .binary import OLE_MAGIC, check_xls, check_xlsb
@@ -13,10 +18,21 @@ from .source import Source
 
 _MOST_OLE = 100_000_000
 _MOST_ZIP = 200_000_000
+_MOST_SECONDS = 30
 _BINARY_REMARK = (
     "of this kind of workbook only stored values are read: units in number formats, hidden rows "
     "and columns, and errors in formulas can't be seen; XLSX tells them"
 )
+
+
+@dataclass(frozen=True, slots=True)
+class _Sheet:
+    """A sheet of a binary workbook: merged ranges as (top, left), (bottom, right) from 0."""
+
+    name: str
+    hidden: bool
+    merged: list[tuple[tuple[int, int], tuple[int, int]]]
+    rows: list[list[Any]]
 
 
 def read_workbook(source: Source, sheet: str | None) -> tuple[str, list[Grid], list[str]]:
@@ -28,7 +44,7 @@ def read_workbook(source: Source, sheet: str | None) -> tuple[str, list[Grid], l
     if "xl/workbook.bin" in archive:
         archive.prove()
         check_xlsb(archive)
-        return "xlsb", *_read_calamine(source, sheet)
+        return "xlsb", *_read_binary(source, sheet)
     if "xl/workbook.xml" in archive:
         return "xlsx", *_read_xlsx(archive, sheet)
     if "content.xml" in archive and _is_spreadsheet(archive):
@@ -106,56 +122,57 @@ def _read_ods(archive: Archive, wanted: str | None) -> tuple[list[Grid], list[st
 def _read_xls(source: Source, wanted: str | None) -> tuple[list[Grid], list[str]]:
     data = source.read(_MOST_OLE, "workbook of the old kind")
     check_xls(data, source.name)
-    return _read_calamine(source, wanted)
+    return _read_binary(source, wanted)
 
 
-def _read_calamine(source: Source, wanted: str | None) -> tuple[list[Grid], list[str]]:
-    import python_calamine as calamine
-
+def _read_binary(source: Source, wanted: str | None) -> tuple[list[Grid], list[str]]:
     data = source.read(_MOST_OLE, "workbook of this kind")
     try:
-        book = calamine.load_workbook(io.BytesIO(data))
-        sheets = [
-            (meta.name, meta.visible != calamine.SheetVisibleEnum.Visible)
-            for meta in book.sheets_metadata
-            if meta.typ == calamine.SheetTypeEnum.WorkSheet
-        ]
-    except Exception as error:  # the library raises its own and, on damage, a panic's exception
-        raise _unreadable(source.name, error) from None
+        child = subprocess.run(
+            [sys.executable, "-P", str(Path(__file__).with_name("binary_child.py"))],
+            input=data,
+            capture_output=True,
+            timeout=_MOST_SECONDS,
+            check=False,
+        )
+    except subprocess.TimeoutExpired:
+        raise TableError(
+            f"{source.name}: takes more than {_MOST_SECONDS} s to open; save it as XLSX"
+        ) from None
+    sheets: list[_Sheet] = []
+    complete = child.returncode == 0
+    try:
+        lines = map(json.loads, child.stdout.splitlines())
+        for head in lines:
+            if isinstance(head, dict):
+                raise _unreadable(source.name, head["error"])
+            sheets.append(_Sheet(head[0], head[1], head[2], list(iter(lines.__next__, None))))
+    except (ValueError, StopIteration):
+        complete = False
+    if not complete:
+        raise _unreadable(source.name, "")
+    named = [(sheet.name, sheet.hidden) for sheet in sheets]
+    return _collect(source.name, named, wanted, lambda i: _of_values(sheets[i]))
 
-    def read(i: int) -> Grid:
-        title = sheets[i][0]
-        try:
-            sheet = book.get_sheet_by_name(title)
-            values = sheet.to_python(skip_empty_area=False)
-            merged = sheet.merged_cell_ranges or []
-        except Exception as error:
-            raise _unreadable(source.name, error) from None
-        return _of_values(values, merged, title)
 
-    return _collect(source.name, sheets, wanted, read)
-
-
-def _unreadable(name: str, error: Exception) -> TableError:
-    reason = str(error).split("\n")[0][:120]
+def _unreadable(name: str, reason: str) -> TableError:
     if "password" in reason.lower() or "encrypt" in reason.lower():
         return TableError(f"{name}: is protected by a password; save it without one")
-    return TableError(f"{name}: the workbook is damaged ({reason}); save it again as XLSX")
+    first = reason.split("\n")[0][:120]
+    return TableError(
+        f"{name}: the workbook is damaged{f' ({first})' if first else ''}; save it again as XLSX"
+    )
 
 
-def _of_values(
-    values: Iterable[Iterable[object]],
-    merged: Sequence[tuple[tuple[int, int], tuple[int, int]]],
-    title: str,
-) -> Grid:
+def _of_values(sheet: _Sheet) -> Grid:
     dates: list[str] = []
     rows = [
         [_text(value, i, j, dates) for j, value in enumerate(row, 1)]
-        for i, row in enumerate(values, 1)
+        for i, row in enumerate(sheet.rows, 1)
     ]
     spans = [
         Span(top, left, bottom - top + 1, right - left + 1)
-        for (top, left), (bottom, right) in merged
+        for (top, left), (bottom, right) in sheet.merged
     ]
     remarks = [_BINARY_REMARK]
     if dates:
@@ -163,19 +180,17 @@ def _of_values(
             f"dates in {some(dates)}: a spreadsheet may have made them of a figure such as 6-12; "
             "they are no numbers"
         )
-    grid = even(rows, sheet=title, spans=spans, remarks=remarks)
+    grid = even(rows, sheet=sheet.name, spans=spans, remarks=remarks)
     grid.decimal = "."
     return grid
 
 
-def _text(value: object, row: int, column: int, dates: list[str]) -> str:
+def _text(value: Any, row: int, column: int, dates: list[str]) -> str:
     if isinstance(value, str):
         return clean(value)
     if isinstance(value, bool):
         return str(value).upper()
-    if isinstance(value, int | float):
-        return plain(float(value))
-    dates.append(f"{column_name(column)}{row}")
-    if isinstance(value, datetime.time | datetime.timedelta):
-        return f"time {value}"
-    return f"date {value}".removesuffix(" 00:00:00")
+    if isinstance(value, list):
+        dates.append(f"{column_name(column)}{row}")
+        return f"{value[0]} {value[1]}".removesuffix(" 00:00:00")
+    return plain(float(value))

@@ -15,7 +15,7 @@ from openpyxl import Workbook
 from motorfolio.catalog.tables import TableError, read_tables
 from motorfolio.schema.errors import MotorfolioError
 
-from .files import compound, ods, xls, xlsb, xlsx, zipped
+from .files import check, compound, ods, xls, xlsb, xlsx, zipped
 
 
 def small_xlsx() -> bytes:
@@ -194,6 +194,37 @@ def test_bad_input_does_not_fill_memory(tmp_path: Path, case: str) -> None:
     # The interpreter and its libraries take some 100 MB of the address space.
     assert run.stderr == ""
     assert not message or re.search(message, run.stdout)
+
+
+@pytest.mark.parametrize("kind", ["xls", "xlsb", "xlsx", "ods", "pdf", "csv"])
+def test_random_damage_is_an_error_or_a_table(
+    tmp_path: Path, kind: str, capfd: pytest.CaptureFixture[str]
+) -> None:
+    cells: dict[tuple[int, int], float | str] = {(0, 0): "Part", (1, 0): "A1", (1, 1): 0.5}
+    whole = {
+        "xls": xls(cells),
+        "xlsb": xlsb(cells),
+        "xlsx": small_xlsx(),
+        "ods": ods('<table:table table:name="a"><table:table-row/></table:table>'),
+        "pdf": b"%PDF-1.4\n1 0 obj<</Type/Catalog/Pages 2 0 R>>endobj\n"
+        b"2 0 obj<</Type/Pages/Kids[3 0 R]/Count 1>>endobj\n"
+        b"3 0 obj<</Type/Page/Parent 2 0 R/MediaBox[0 0 9 9]>>endobj\ntrailer<</Root 1 0 R>>",
+        "csv": 'Typ;Größe\n"A1";"1,5"\n'.encode() * 20,
+    }[kind]
+    draw = random.Random(11)
+    sentences: list[str] = []
+    for _ in range(25):
+        content = bytearray(whole)
+        for _ in range(draw.randrange(1, 12)):
+            content[draw.randrange(len(content))] = draw.randrange(256)
+        (tmp_path / "a").write_bytes(content)
+        try:
+            for grid in read_tables(tmp_path / "a").grids:
+                check(grid)
+        except TableError as error:
+            sentences.append(str(error))
+    assert not any("\n" in sentence for sentence in sentences)
+    assert capfd.readouterr() == ("", "")
 
 
 def test_what_is_no_readable_file(tmp_path: Path) -> None:
