@@ -145,7 +145,8 @@ def gear_document(shown: Shown) -> Document:
 
 def _currency(shown: Shown, found: Found, catalog: Catalog) -> str:
     row = catalog.connection.execute(
-        "SELECT h.unit FROM motor m JOIN patterns p ON p.pattern = m.pattern AND p.quantity = 'price' "
+        "SELECT h.unit FROM motor m "
+        "JOIN patterns p ON p.pattern = m.pattern AND p.quantity = 'price' "
         "JOIN headings h ON h.id = p.heading WHERE m.id = ?",
         (int(found.fleet.ids[shown.motor]),),
     ).fetchone()
@@ -235,7 +236,7 @@ def requirement_document(requirement: Requirement) -> Document:
     ratio: Any = [ratios.low, ratios.high] if ratios.is_range else list(ratios.values)
     document: Document = {
         "title": requirement.title or None,
-        "cycle": [row for row in cycle_rows(demand.cycle, demand.gearing.load_inertia)],
+        "cycle": list(cycle_rows(demand.cycle, demand.gearing.load_inertia)),
         "load_inertia": amount(requirement.load_inertia, "kg·m²"),
         "ratio_range" if ratios.is_range else "ratios": ratio,
         "gears": "catalog" if requirement.use_gears else None,

@@ -1,4 +1,4 @@
-"""At which ratio, and behind which gear, each motor does best: the limits of physics and further ones.
+"""At which ratio, and behind which gear, each motor does best, by the limits of physics and others.
 
 Beside the limits of a motor at work there may be limits on the ratio of inertias, on the supply's
 current and power, and those of a gear; they are utilisations like the others.
@@ -31,7 +31,7 @@ _COARSE = 25
 _AROUND = 9
 #: Cases that the periodic winding temperature is worth at once; beyond, only where it may decide.
 _FEW = 60_000
-#: Motors above this utilisation at the coarse grid's best ratio have none between two of its ratios.
+#: Motors above this utilisation at the coarse grid's best ratio have none that does between.
 _HOPELESS = 2.0
 #: Cases judged at once.
 _CASES = 1 << 18

@@ -73,7 +73,7 @@ _COLUMNS: dict[str, tuple[str, str]] = {
     ),
     "peak_torque": (
         "N·m",
-        r"(max\.? |maximum )?(peak|intermittent|intermittently permissible|acceleration) (output )?torque",
+        r"(max\.? |maximum )?(peak|intermittent(ly permissible)?|acceleration) (output )?torque",
     ),
     "maximum_input_speed": (
         "rad/s",
@@ -85,7 +85,8 @@ _COLUMNS: dict[str, tuple[str, str]] = {
     "price": ("currency", r"price"),
 }
 _HEADING = re.compile(
-    r"^(?P<name>.*?)\s*(?:\[(?P<a>.*)\]|\((?P<b>[^()]*)\)|,\s*(?P<c>\S+)|\s+in\s+(?P<d>\S+))?$"
+    r"^(?P<name>.*?)\s*"
+    r"(?:\[(?P<a>.*)\]|\((?P<b>[^()]*)\)|,\s*(?P<c>\S+)|\s+in\s+(?P<d>\S+))?$"
 )
 #: Figures without which a gear can't be judged at all.
 _NEEDED = ("part_number", "ratio")

@@ -327,8 +327,8 @@ def _ratio_number(text: Any, name: str) -> float:
         return float(text)
     except (TypeError, ValueError):
         raise RequirementError(
-            f"{name}: {str(text).strip()!r} is no gear ratio; give a number (5), a range (3..20) or a "
-            "list (3,5,8)."
+            f"{name}: {str(text).strip()!r} is no gear ratio; give a number (5), a range (3..20) "
+            "or a list (3,5,8)."
         ) from None
 
 

@@ -244,10 +244,8 @@ def _rejected(judged: Judged, passed: Passed, rejected: NDArray[np.bool_]) -> di
         counts["where"] = int(passed.rejected.sum())
     others = rejected & ~passed.rejected
     codes = np.bincount(judged.limiting()[others], minlength=len(judged.names()))
-    for name, count in zip(judged.names(), codes.tolist(), strict=True):
-        if count:
-            counts[name] = count
-    return counts
+    by_limit = zip(judged.names(), codes.tolist(), strict=True)
+    return counts | {name: count for name, count in by_limit if count}
 
 
 def _lacking(

@@ -11,8 +11,8 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 from numpy.typing import NDArray
 
+from ..schema.canonical import CANONICAL
 from ..schema.errors import MotorfolioError
-from ..schema.motor import CANONICAL
 from ..schema.units import quantity, read_unit
 from ..schema.vocabulary import quantities
 from .requirement_fields import RequirementError, unknown

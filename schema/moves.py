@@ -99,7 +99,7 @@ def ramps(
 def _speeds(shape: Ramps, profile: str) -> tuple[Array, Array]:
     """Durations (S,) and speeds at their ends (S + 1,) of a move."""
     if profile == "s-curve":
-        # Speed over the rise of the acceleration is a parabola: v/top = x²/(2·j·(1 − j)), x = t/ramp.
+        # While the acceleration rises the speed is a parabola in x = t/ramp: x²/(2·j·(1 − j)).
         j = JERK_SHARE
         bend = _FINER * j
         low = bend**2 / (2 * j * (1 - j))

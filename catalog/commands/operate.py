@@ -73,7 +73,7 @@ def command(
         print_json(document)
         return 0
     from ..report.at_work import lines
-    from ..report.candidates import SAFETY
+    from ..report.safety import SAFETY
 
     for line in lines(document):
         click.echo(line)

@@ -135,7 +135,7 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
     with Catalog.open(catalog) as opened:
         found = search(opened, requirement)
         document = search_document(found, near_misses(found, opened), opened)
-    from ..report.candidates import SAFETY
+    from ..report.safety import SAFETY
 
     if as_json:
         print_json(document)

@@ -13,10 +13,6 @@ from .plain import number, plain, words
 
 Document = Mapping[str, Any]
 
-SAFETY = (
-    "A screening aid: verify against the maker's current datasheet, and follow local codes and "
-    "licensed practice."
-)
 _RPM = 60 / (2 * 3.141592653589793)
 
 

@@ -13,8 +13,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ...schema.batch import MAGNETS
+from ...schema.canonical import CANONICAL
 from ...schema.convention import Commutation, Convention, to_dc
-from ...schema.motor import CANONICAL
 from ...schema.vocabulary import quantities
 
 Floats = NDArray[np.float64]

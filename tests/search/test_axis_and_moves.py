@@ -136,7 +136,7 @@ def test_a_screw_loses_both_ways() -> None:
     assert shaft.torque_start == pytest.approx([2 * ideal, ideal / 2, ideal])
     assert axis.separate_inertia == 0
     # the mass's acceleration passes the screw, and turns the power round where it must
-    ramp = axis.at_shaft(Cycle.from_rows([0, 0.1, 0.2], [0, 0.1, 0], [0, 0] + [0]))
+    ramp = axis.at_shaft(Cycle.from_rows([0, 0.1, 0.2], [0, 0.1, 0], [0, 0, 0]))
     pushed = 100 * (GRAVITY + 1.0) * 0.005 / (2 * math.pi)
     assert ramp.torque_start[0] == pytest.approx(2 * pushed)
 

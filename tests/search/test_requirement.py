@@ -8,13 +8,7 @@ from pathlib import Path
 import numpy as np
 import pytest
 
-from motorfolio.catalog.requirement import (
-    merged,
-    read_file,
-    read_requirement,
-    saved,
-    to_toml,
-)
+from motorfolio.catalog.requirement import read_requirement
 from motorfolio.catalog.requirement_fields import (
     LISTS,
     SECTIONS,
@@ -22,6 +16,7 @@ from motorfolio.catalog.requirement_fields import (
     json_schema,
     read_ratio,
 )
+from motorfolio.catalog.requirement_file import merged, read_file, saved, to_toml
 from motorfolio.catalog.where import read_where
 from motorfolio.schema.errors import MotorfolioError
 
@@ -120,7 +115,7 @@ SUPPLY = {"supply": {"voltage": "24 V"}}
         ({**POINT, "supply": {"voltage": "1 V", "bridge_drop": "2 V"}}, "nothing"),
         ({**POINT, "drive": {"pwm_frequency": "20 kHz"}}, "supply.voltage"),
         ({**POINT, "drive": {"peak_current": "2 A", "continuous_current": "3 A"}}, "exchange"),
-        ({**POINT, "drive": {"peak_current": "2 A rms", "current_convention": "peak"}}, "leave one"),
+        ({**POINT, "drive": {"peak_current": "2 Arms", "current_convention": "dc"}}, "leave one"),
         ({**POINT, "wanted": {"order_by": "beauty"}}, "would do"),
         ({**POINT, "wanted": {"reserve": "-5 %"}}, "too small"),
         ({**POINT, "wanted": {"limit": 0}}, "too small"),

@@ -12,8 +12,9 @@ from motorfolio.catalog import choice
 from motorfolio.catalog.candidate_documents import search_document
 from motorfolio.catalog.gears import Gear, read_gears, store_gears
 from motorfolio.catalog.near_misses import near_misses
-from motorfolio.catalog.requirement import read_file, read_requirement
+from motorfolio.catalog.requirement import read_requirement
 from motorfolio.catalog.requirement_fields import RequirementError
+from motorfolio.catalog.requirement_file import read_file
 from motorfolio.catalog.search import Found, search
 from motorfolio.catalog.store import Catalog
 from motorfolio.catalog.tables import read_tables
