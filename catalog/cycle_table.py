@@ -50,7 +50,7 @@ def from_file(path: Path, linear: bool) -> list[tuple[float, float, float]]:
     except OSError as error:
         raise RequirementError(f"The cycle {path} can't be read: {error.strerror}.") from None
     delimiter = max(";\t,", key=text.partition("\n")[0].count)
-    rows = [row for row in csv.reader(text.splitlines(), delimiter=delimiter)]
+    rows = list(csv.reader(text.splitlines(), delimiter=delimiter))
     if not any(any(cell.strip() for cell in row) for row in rows):
         raise RequirementError(f"The cycle {path} is empty; give columns time, speed and torque.")
     columns = _columns(rows[0], axis_units(linear), path)
