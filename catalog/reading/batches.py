@@ -92,7 +92,7 @@ class TableReader:
     def _ditto(self) -> None:
         """Cells that say "as above" or "as left" take that text; frame figures too where blank."""
         for f in self.table.fields:
-            if any(is_ditto(t) for t in f.texts[:5000]):
+            if any(is_ditto(t) for t in set(f.texts[:_STYLE_ROWS]) if not t[:1].isdigit()):
                 f.texts = inherit(f.texts, ditto_only=True)
 
     def _share_frame(self) -> None:
@@ -207,7 +207,7 @@ class TableReader:
         if m.role not in ("figure", "repeat", "condition") or not m.units or m.key is None:
             return
         unit = m.units[0]
-        if "some sheets mean" not in unit.remark:
+        if not re.search(r"\bmay\b", unit.remark):  # the unit's own doubt about its meaning
             if unit.remark:
                 m.reason += f"; {unit.remark}"
             return
@@ -349,13 +349,13 @@ class TableReader:
                 continue
             f = m.field
             first = next((k for k, t in enumerate(f.texts) if t and not missing(t)), None)
-            if first is None and not f.heading:
+            if first is None:
                 continue
-            row, column = self.table.place(f, first) if first is not None else (f.row, f.column)
+            row, column = self.table.place(f, first)
             self.unread.append(
                 Unread(
                     None, f.heading, self.table.sheet, self.table.page, row, column,
-                    f.texts[first] if first is not None else "", m.reason, m.guesses,
+                    f.texts[first], m.reason, m.guesses,
                 )
             )  # fmt: skip
 
@@ -654,6 +654,8 @@ class TableReader:
         """A stated connection of the windings goes into the conventions that it concerns, and
         a motor whose own cell states another commutation gets the defaults of that."""
         texts = batch.texts.get("connection")
+        if texts is None and (batch.commutation == int(self.commutation)).all():
+            return
         for key in (*batch.figures, *batch.repeats):
             q = quantity(key)
             if not q.carries:
@@ -681,8 +683,6 @@ class TableReader:
                         if new not in column.conventions:
                             column.conventions.append(new)
                         column.convention[i] = column.conventions.index(new)
-                if texts is None and (batch.commutation == int(self.commutation)).all():
-                    continue
 
     def _place(self, batch: Batch, q: Quantity, figure: FigureColumn, m: Match) -> None:
         if m.role == "figure" and q.key not in batch.figures:

@@ -100,6 +100,11 @@ def _score(block: Block, kind: str) -> float:
     return max(scores, default=0.0)
 
 
+def _worth(cell: str) -> float:
+    sure = strength(cell)
+    return sure if sure >= 0.4 else 0.0
+
+
 def row_scores(block: Block) -> list[float]:
     """For each of the first rows, how many headings it holds."""
     scores = []
@@ -107,7 +112,7 @@ def row_scores(block: Block) -> list[float]:
         total, previous = 0.0, ""
         for cell in row[:300]:
             if cell and cell != previous:
-                total += strength(cell)
+                total += _worth(cell)
             previous = cell
         scores.append(total)
     return scores
@@ -117,13 +122,16 @@ def column_scores(block: Block) -> list[float]:
     """For each of the first columns, how many headings it holds."""
     scores = []
     for c in range(min(block.width, _COLUMNS_TRIED)):
-        total, previous = 0.0, ""
+        total, previous, filled = 0.0, "", 0
         for row in block.rows[:400]:
             cell = row[c]
             if cell and cell != previous:
-                total += strength(cell)
+                total += _worth(cell)
+                filled += 1
             previous = cell
-        scores.append(total)
+            if filled > 40 and total < 0.15 * filled:
+                break
+        scores.append(total if total >= 0.2 * filled else min(total, 1.0))
     return scores
 
 

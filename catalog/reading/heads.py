@@ -21,6 +21,8 @@ def head_field(
     symbols = tuple(t for kind, t in cells if kind == "symbol" and plain(t))
     captions = [t for kind, t in cells if kind == "caption" and plain(t)]
     names = [t for kind, t in cells if kind == "name" and plain(t)]
+    if not names and captions and not symbols:
+        names = [captions.pop()]
     captions, names = _parted(captions, names, joins)
     text = "\n".join(names)
     label = parse_label(_joined(names)) if names else Label("")
@@ -38,7 +40,7 @@ def head_field(
     clean_units = tuple(_unit_text(u) for u in units)
     return Field(
         heading, label, texts, row, column,
-        units=(*clean_units, *label.units), captions=tuple(captions), section=section,
+        units=tuple(f"{label.factor}{u}" for u in (*clean_units, *label.units)), captions=tuple(captions), section=section,
         when=when, temperature=temperature, variant=variant,
     )  # fmt: skip
 

@@ -32,6 +32,7 @@ _QUALIFIERS = {
     "typical": "typical",
 }
 _JOINERS = re.compile(r"\s+/\s+|\s*\|\s*|\n|\s*[;；]\s*|、")
+_POWER_OF_TEN = re.compile(r"\s*[×x*·]\s*10\s*\^?\s*(?P<p>[+-]?\d{1,2})$")
 _TWO_SCRIPTS = re.compile(
     r"([^A-Za-z]*[\u3040-\u30ff\u3400-\u9fff][^A-Za-z]*?)\s+([A-Za-z][A-Za-z].*)$", re.S
 )
@@ -60,6 +61,7 @@ class Label:
     qualifier: str | None = None
     marks: tuple[str, ...] = ()
     other: str | None = None
+    factor: str = ""
 
     @property
     def strength(self) -> float:
@@ -68,7 +70,7 @@ class Label:
         if self.forced:
             return 1.0
         if best < 0.6 and self.symbols:
-            return 0.55
+            return 0.2 if any(p.rest for p in self.names) else 0.55
         return best if best >= 0.6 else 0.0
 
 
@@ -220,6 +222,10 @@ def _core(label: Label, core: str) -> Label:
         found = re.findall(r"[*†‡§]+|\d{1,2}|[a-z]", marks.group())
         label = replace(label, marks=(*label.marks, *found))
         core = core[: marks.start()].strip(" ,:;=")
+    power = _POWER_OF_TEN.search(core)
+    if power and power.start() > 0:
+        label = replace(label, factor=f"10^{power['p']} ")
+        core = core[: power.start()].strip(" ,:;=")
     if not core:
         return label
     whole = match_phrase(core)
@@ -292,8 +298,11 @@ def _named(label: Label, core: str) -> Label:
 def _splits(core: str):
     """(name, symbol, unit) in every way that the text could be divided."""
     found = [(core, "", "")]
-    if find_symbol(core):
+    hit = find_symbol(core)
+    if hit:
         found.append(("", core, ""))
+        if hit.surety > 0.95:
+            return found  # "I_N" is no I in newtons
     cuts = [
         m.span()
         for m in re.finditer(

@@ -3,12 +3,13 @@
 import re
 
 from ...schema.signs import plain
+from ...schema.vocabulary import quantity
 from .blocks import Block
 from .cells import is_caption, is_ditto, is_figure, is_role, is_symbol, is_unit, missing, strength
 from .heads import HeadCell, classify, context_of, head_field
 from .label import parse_label
 from .model import Field, Table
-from .phrase import conventions_of, match_phrase, section_of, variant_of
+from .phrase import conventions_of, section_of, variant_of
 
 _MOST_HEAD_ROWS = 7
 
@@ -76,7 +77,7 @@ def lay_out_rows(block: Block) -> Table:
             if text and not (cells and cells[-1][1] == text):
                 cells.append(classify(text, kind))
         texts = columns[c] if c < len(columns) else []
-        if not cells and not any(texts):
+        if not any(texts) and all(kind == "caption" for kind, _ in cells):
             continue
         field = head_field(cells, texts, row_of, block.column_numbers[c])
         field.source = c
@@ -113,10 +114,20 @@ def _spread(row: list[str], block: Block, r: int) -> list[str]:
         return row
     spread: list[str] = []
     current = ""
-    for text in row:
+    for c, text in enumerate(row):
+        below = r + 1 < len(block.rows) and block.rows[r + 1][c]
+        if text and not below and _names_quantity(text):
+            current = ""
+            spread.append(text)
+            continue
         current = text or current
         spread.append(text or current)
     return spread
+
+
+def _names_quantity(text: str) -> bool:
+    """Whether a caption is rather the heading of its own column."""
+    return strength(text) >= 0.9 and any(p.keys for p in parse_label(text).names)
 
 
 def _resection(table: Table) -> None:
@@ -269,14 +280,10 @@ def lay_out_columns(block: Block) -> Table:
             units = [row[c] for c, role in enumerate(roles) if role == "unit" and row[c]]
             if strength(label) >= 0.9 and units and not spanning:
                 continue  # a quantity with no figure for any motor
-            if (
-                parse_label(label).strength >= 0.96
-                and not section_of(label)
-                and not spanning
-                and (not is_caption(label))
-            ):
-                if match_phrase(label).generic is None:
-                    continue
+            keys = {k for p in parse_label(label).names for k in p.keys}
+            measured = any(not quantity(k).text for k in keys)
+            if measured and not spanning and not section_of(label) and not is_caption(label):
+                continue
             caption = [label]
             continue
         if not any(texts):
@@ -397,7 +404,9 @@ def _header_rows(
         )
     elif plain_rows:
         best = max(plain_rows, key=lambda i: (_distinct(rows[i], values), i))
-    return best, conditions[0] if conditions and best is not None else None
+    if best is None and conditions:
+        return conditions[0], None
+    return best, conditions[0] if conditions else None
 
 
 def _id_rank(text: str) -> int:

@@ -125,7 +125,7 @@ def lexicon() -> Lexicon:
                 lex.known.update(form)
                 lex.phrases.setdefault(squeeze(form), form)
                 core = without_fillers(form)
-                if len(core) < len(form) and (len(core) > 1 or is_cjk(name)):
+                if len(core) < len(form) and (len(core) > 1 or is_cjk(squeeze(core))):
                     lex.short.setdefault(squeeze(core), set()).add(key)
     for group, table in (
         ("generic", lex.generic),

@@ -10,7 +10,7 @@ from ...schema.units import Unit, UnitError, read_unit, unit_of
 from ...schema.vocabulary import Quantity, quantities, quantity
 from .lexicon import find_symbol, squeeze, symbol_form, tokens
 from .model import Field
-from .phrase import COMPOSED, EXACT, Phrase
+from .phrase import COMPOSED, EXACT, Phrase, guesses_for
 
 THRESHOLD = 0.6
 CLOSE = 0.03
@@ -500,7 +500,7 @@ class Matcher:
                 f"nothing says which {generics[0]} it is",
                 GENERIC_GUESSES.get(generics[0], ()),
             )
-        guesses = tuple(g for p in f.label.names for g in p.guesses)[:3]
+        guesses = tuple(g for p in f.label.names if p.rest for g in guesses_for(p.text))[:3]
         return "not understood", guesses or self._by_unit(f)
 
     def _by_unit(self, f: Field) -> tuple[str, ...]:

@@ -4,7 +4,7 @@ import re
 from dataclasses import dataclass, field
 from functools import lru_cache
 
-from rapidfuzz import fuzz
+from rapidfuzz import fuzz, process
 
 from ...schema.signs import plain
 from .lexicon import canonical, is_cjk, lexicon, squeeze, tokens, without_fillers
@@ -54,7 +54,7 @@ class Phrase:
     """What a phrase names: ``keys`` with one score, or a ``generic`` figure of a ``section``.
 
     ``conventions`` are words of the phrase about conventions; ``rest`` are words that nothing
-    explains; ``other`` a word that makes it something else; ``guesses`` what comes near.
+    explains; ``other`` a word that makes it something else.
     """
 
     text: str
@@ -66,7 +66,6 @@ class Phrase:
     variant: str | None = None
     rest: tuple[str, ...] = ()
     other: str | None = None
-    guesses: tuple[str, ...] = ()
     how: str = ""
     bracketed: bool = False
 
@@ -203,7 +202,7 @@ def match_phrase(text: str) -> Phrase:
             text, near, TYPO, conventions=tuple(conventions.items()),
             how=f'"{text}" is spelled like a name of it',
         )  # fmt: skip
-    return Phrase(text, (), 0.0, rest=form, other=other, guesses=_guesses(form))
+    return Phrase(text, (), 0.0, rest=form, other=other)
 
 
 def _stripped(text: str, form: tuple[str, ...]) -> Phrase | None:
@@ -294,14 +293,11 @@ def _other(text: str, form: tuple[str, ...]) -> str | None:
     return None
 
 
-_ALIASES: list[tuple[tuple[str, ...], str]] = []
-
-
-def _aliases() -> list[tuple[tuple[str, ...], str]]:
-    if not _ALIASES:
-        lex = lexicon()
-        _ALIASES.extend((without_fillers(form) or form, key) for key, form in lex.phrases.items())
-    return _ALIASES
+@lru_cache(maxsize=1)
+def _aliases() -> tuple[list[str], list[tuple[tuple[str, ...], str]]]:
+    """Every name as squeezed core words, and beside it (core words, key into lexicon().names)."""
+    entries = [(without_fillers(form) or form, key) for key, form in lexicon().phrases.items()]
+    return [squeeze(core) for core, _ in entries], entries
 
 
 def _near(form: tuple[str, ...]) -> tuple[tuple[str, ...], float]:
@@ -311,8 +307,13 @@ def _near(form: tuple[str, ...]) -> tuple[tuple[str, ...], float]:
     core = without_fillers(form) or form
     if not any(t not in lex.known for t in core):
         return (), 0.0
+    squeezed, entries = _aliases()
     best: dict[str, float] = {}
-    for alias, key in _aliases():
+    hits = process.extract(
+        squeeze(core), squeezed, scorer=fuzz.ratio, score_cutoff=78, limit=None, processor=None
+    )
+    for _, _, index in hits:
+        alias, key = entries[index]
         if len(alias) != len(core):
             continue
         worst = 1.0
@@ -323,9 +324,7 @@ def _near(form: tuple[str, ...]) -> tuple[tuple[str, ...], float]:
                 worst = 0.0
                 break
             likeness = fuzz.ratio(mine, theirs) / 100
-            needed = 0.8 if len(theirs) > 5 else 0.85
-            if is_cjk(mine):
-                needed = 0.85
+            needed = 0.85 if is_cjk(mine) or len(theirs) <= 5 else 0.8
             worst = min(worst, likeness if likeness >= needed else 0.0)
             if not worst:
                 break
@@ -335,17 +334,17 @@ def _near(form: tuple[str, ...]) -> tuple[tuple[str, ...], float]:
     if not best:
         return (), 0.0
     top = max(best.values())
-    leaders = tuple(sorted(k for k, v in best.items() if v >= top - 0.05))
-    return leaders, TYPO
+    return tuple(sorted(k for k, v in best.items() if v >= top - 0.05)), TYPO
 
 
 @lru_cache(maxsize=4096)
-def _guesses(form: tuple[str, ...]) -> tuple[str, ...]:
+def guesses_for(text: str) -> tuple[str, ...]:
     """Quantities whose names come near, for a heading that is not read."""
     lex = lexicon()
+    form = canonical(tokens(text))
     mine = " ".join(without_fillers(form) or form)
     scored: dict[str, float] = {}
-    for alias, key in _aliases():
+    for alias, key in _aliases()[1]:
         likeness = fuzz.token_sort_ratio(mine, " ".join(alias), score_cutoff=60)
         if likeness:
             for name in lex.names[key]:

@@ -1,0 +1,104 @@
+"""Signs and words that mean different things on different sheets; all figures are invented."""
+
+import pytest
+
+from .sheets import RPM, sheet
+
+
+def one(heading: str, text: str, more: str = "") -> dict[str, float]:
+    s = sheet(f"Type | Nominal voltage [V] | {heading}{more and ' | ' + more.split('=')[0]}\n"
+              f"A | 24 | {text}{more and ' | ' + more.split('=')[1]}")  # fmt: skip
+    figures = s.motors()["A"]
+    figures.pop("nominal_voltage", None)
+    return figures
+
+
+@pytest.mark.parametrize(("heading", "text", "expected"), [
+    ("Km [Nm/A]", "0.05", {"torque_constant": 0.05}),
+    ("Km [mNm/√W]", "50", {"motor_constant": 0.05}),
+    ("Kv [rpm/V]", "300", {"speed_constant": 300 * RPM}),
+    ("Kv [V/krpm]", "4.3", {"back_emf_constant": 0.0430 / 1.0471975512}),
+    ("Drehzahlkonstante [V/1000 Upm]", "4.3", {"back_emf_constant": 4.3 * 30 / 3.14159265 / 1000}),
+    ("Drehzahlkonstante [min⁻¹/V]", "300", {"speed_constant": 300 * RPM}),
+    ("Stromkonstante [Nm/A]", "0.05", {"torque_constant": 0.05}),
+    ("Rm [rpm/mNm]", "12", {}),
+    ("R [Ω]", "1.2", {"terminal_resistance": 1.2}),
+    ("Rth [K/W]", "3.2", {"thermal_resistance": 3.2}),
+    ("M [Nm]", "1.2", {}),
+    ("Rated power [kW]", "0.4", {"rated_power": 400}),
+    ("Nennmoment [Ncm]", "12", {"nominal_torque": 0.12}),
+    ("Rated torque [g·cm]", "120", {"nominal_torque": 120 * 9.80665e-5}),
+    ("Rated torque [kg-cm]", "1.2", {"nominal_torque": 1.2 * 0.0980665}),
+    ("Trägheitsmoment [gcm²]", "33", {"rotor_inertia": 3.3e-6}),
+    ("Par nominal [Nm]", "0.3", {"nominal_torque": 0.3}),
+    ("Pares de polos", "4", {"pole_pairs": 4}),
+    ("Coppia nominale [Nm]", "0.3", {"nominal_torque": 0.3}),
+    ("Coppie polari", "4", {"pole_pairs": 4}),
+    ("Polzahl", "8", {"poles": 8}),
+    ("Polpaarzahl", "4", {"pole_pairs": 4}),
+    ("極対数", "4", {"pole_pairs": 4}),
+    ("极数", "8", {"poles": 8}),
+    ("回転数定数 [rpm/V]", "300", {"speed_constant": 300 * RPM}),
+    ("2p", "8", {"poles": 8}),
+    ("W [g]", "85", {"mass": 0.085}),
+    ("τ_m [ms]", "6", {"mechanical_time_constant": 0.006}),
+    ("Max. efficiency [%]", "85", {"maximum_efficiency": 0.85}),
+    ("Rated current [mA]", "850", {"nominal_current": 0.85}),
+    ("Winding temperature max. [°F]", "257", {"maximum_winding_temperature": 125}),
+    ("Thermal time constant motor [min]", "20", {"thermal_time_constant_housing": 1200}),
+])  # fmt: skip
+def test_unit_and_longest_name_decide(heading, text, expected):
+    assert one(heading, text) == pytest.approx(expected)
+
+
+@pytest.mark.parametrize("heading", [
+    "Insulation resistance [MΩ]", "Isolationswiderstand [MΩ]", "絶縁抵抗 [MΩ]", "绝缘电阻 [MΩ]",
+    "Résistance d'isolement [MΩ]", "Demagnetisation current [A]", "Entmagnetisierungsstrom [A]",
+    "Test voltage [V]", "Prüfspannung [V]", "Brake torque [Nm]", "Bremsmoment [Nm]",
+    "Gearbox torque [Nm]", "Encoder supply voltage [V]", "Torque ripple [mNm]", "Shaft length L [mm]",
+    "Holding brake current [A]", "Storage temperature [°C]", "Load inertia [kgcm²]", "Input power [W]",
+    "Power rate [kW/s]", "Speed [Hz]", "No-load speed [Hz]", "No-load speed [1/s]", "Stromkonstante [A/mNm]",
+    "耐電圧 [V]", "刹车力矩 [Nm]", "Corriente de desmagnetización [A]", "Width L [mm]", "Cable length [m]",
+])  # fmt: skip
+def test_what_is_no_figure_of_the_motor_is_listed_and_never_read(heading):
+    s = sheet(f"Type | Nominal voltage [V] | {heading}\nA | 24 | 3.5\nB | 24 | 4.5")
+    assert s.motors()["A"] == {"nominal_voltage": 24}
+    assert [u.text for u in s.reading.unread] == ["3.5"]
+    assert s.reading.unread[0].row == 2
+
+
+def test_a_speed_in_hertz_has_guesses():
+    s = sheet("Type | Nominal voltage [V] | No-load speed [Hz]\nA | 24 | 80")
+    assert "no_load_speed" in s.reading.unread[0].guesses or s.reading.unread[0].guesses
+
+
+def test_stall_figures_belong_to_the_family_of_the_sheet():
+    s = sheet("""
+Type | Rated speed [rpm] | Stall torque [Nm] | Stall current [Arms] | Peak torque [Nm] | Peak current [Arms]
+V | 3000 | 4.1 | 3.0 | 12 | 10
+""")
+    assert s.motors()["V"]["continuous_stall_torque"] == 4.1
+    assert s.motors()["V"]["continuous_stall_current"] == 3.0
+    s = sheet("Type | No-load speed [rpm] | Stall torque [mNm] | Stall current [A]\nM | 9000 | 41 | 3")
+    assert s.motors()["M"]["stall_torque"] == pytest.approx(0.041)
+
+
+def test_mains_and_bus_voltage():
+    s = sheet("Type | Mains voltage [VAC] | DC bus voltage [V] | Rated speed [rpm]\nA | 400 | 560 | 3000")
+    assert s.motors()["A"]["mains_voltage"] == 400
+    assert s.motors()["A"]["nominal_voltage"] == 560
+
+
+def test_phase_and_line_resistance():
+    s = sheet("Type | Rated voltage [V] | Phase resistance [Ω] | Pole pairs\nA | 48 | 0.3 | 4")
+    assert s.convention("terminal_resistance").between == "phase"
+    s = sheet("Type | Rated voltage [V] | Resistance, line-to-line [Ω] | Pole pairs\nA | 48 | 0.3 | 4")
+    assert s.convention("terminal_resistance").between == "lines"
+    assert s.convention("terminal_resistance").basis == "stated"
+
+
+def test_upper_case_export():
+    s = sheet("TYPE | RATED VOLTAGE (V) | RATED TORQUE (NM) | TORQUE CONSTANT (NM/A) | ROTOR INERTIA (KGCM2)\nA | 48 | 1.2 | 0.11 | 0.4")
+    assert s.motors()["A"] == pytest.approx(
+        {"nominal_voltage": 48, "nominal_torque": 1.2, "torque_constant": 0.11, "rotor_inertia": 4e-5}
+    )
