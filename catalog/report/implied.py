@@ -1,0 +1,133 @@
+"""Every published figure against the value that a motor's other figures imply for it."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from ...schema.adjust import Problem, fit
+from ...schema.inference import infer
+from ...schema.model import FIGURES, INDEX
+from ...schema.observed import observe
+from ...schema.suspects import leave_out, own_sd, predicted
+from ...schema.table import readings, sample, scale
+
+if TYPE_CHECKING:
+    from ...schema.batch import Batch
+    from ..store import Catalog
+
+VAGUE = 0.35
+"""A figure whose implied value is known no better than this (one standard deviation of its
+logarithm) has nothing to be held against."""
+
+BOUNDS = frozenset({"peak_current", "peak_torque"})
+SERVO_BOUNDS = frozenset({"nominal_voltage", "nominal_speed"})
+"""Figures that the others only bound: saturation lowers a peak torque, and on a servo sheet the
+rated speed is the maker's choice. They stand for comparison only where a finding doubts them."""
+
+
+@dataclass(frozen=True)
+class Implied:
+    """One figure: printed/implied, the ends of the printed interval over the implied value, and
+    the standard deviation of the ratio's logarithm that is customary (digits, scatter, and what
+    is known of the implied value)."""
+
+    key: str
+    ratio: float
+    low: float
+    high: float
+    sd: float
+    severity: str | None
+
+
+def implied_figures(catalog: Catalog, ids: Sequence[int]) -> dict[int, list[Implied]]:
+    """By motor's id, its figures in the order of the vocabulary.
+
+    Each figure is left out of the adjustment once; figures that a finding names as wrong stay out
+    of the adjustment for all others, so that they alone stand apart.
+    """
+    if not ids:
+        return {}
+    wanted = set(ids)
+    found: dict[int, list[Implied]] = {}
+    rows = catalog.connection.execute("SELECT id, source FROM motor ORDER BY id").fetchall()
+    sources = dict.fromkeys(source for number, source in rows if number in wanted)
+    for source in sources:
+        members = [number for number, s in rows if s == source]
+        entries = np.array([i for i, number in enumerate(members) if number in wanted])
+        batch = catalog.batch(source)
+        doubts = _doubts(catalog, [members[i] for i in entries])
+        for entry, figures in zip(entries, _of_batch(batch, entries, doubts), strict=True):
+            found[members[entry]] = figures
+    return found
+
+
+def _doubts(catalog: Catalog, ids: Sequence[int]) -> list[dict[str, tuple[str, bool]]]:
+    """Of each motor the doubted figures: worst severity, and whether it is named as wrong."""
+    from ..store import load
+
+    doubts: list[dict[str, tuple[str, bool]]] = []
+    for document in load.motors(catalog.connection, ids):
+        mine: dict[str, tuple[str, bool]] = {}
+        for f in document["findings"]:
+            if f["severity"] == "note":
+                continue
+            swapped = f["cause"] == "figures-swapped"
+            named = f["figures"][:2] if swapped else [f["suspect"]] if f["suspect"] else []
+            for key in named or f["figures"][:2]:
+                mine.setdefault(key, (f["severity"], key in named))
+        doubts.append(mine)
+    return doubts
+
+
+def _problem(batch: Batch) -> Problem:
+    """The table's adjustment as reconciling it does: conventions, readings and scatter first."""
+    batch, _ = infer(batch, observe(batch))
+    problem = observe(batch)
+    some = problem.take(sample(len(batch)))
+    some.readings = problem.readings = readings(some)
+    problem.scale = np.array([scale(some)])
+    return problem
+
+
+def _of_batch(
+    batch: Batch, entries: np.ndarray, doubts: Sequence[dict[str, tuple[str, bool]]]
+) -> list[list[Implied]]:
+    problem = _problem(batch).take(entries)
+    present = problem.present.copy()
+    named = np.zeros_like(present)
+    for i, mine in enumerate(doubts):
+        for key, (_, wrong) in mine.items():
+            if wrong and key in INDEX:
+                named[i, INDEX[key]] = present[i, INDEX[key]]
+    problem.present = present & ~named
+    left = leave_out(problem)
+    motor, figure = np.nonzero(named)
+    if motor.size:
+        rest = problem.take(motor)
+        value, sd = predicted(rest, fit(rest), figure)
+        left.log_ratio[motor, figure] = problem.y[motor, figure] - value
+        left.implied_sd[motor, figure] = sd
+    spread = own_sd(problem, left)
+    result: list[list[Implied]] = []
+    for i, entry in enumerate(entries):
+        mine = []
+        for f, key in enumerate(FIGURES):
+            if not present[i, f] or not spread[i, f] < VAGUE:
+                continue
+            severity = doubts[i].get(key, (None, False))[0]
+            bound = key in BOUNDS or (problem.servo[i] and key in SERVO_BOUNDS)
+            if bound and severity is None:
+                continue
+            column = batch.figures[key]
+            ratio = float(np.exp(left.log_ratio[i, f]))
+            ends = column.low[entry], column.high[entry]
+            low, high = (
+                ratio if np.isnan(end) else ratio * float(end / column.value[entry]) for end in ends
+            )
+            mine.append(Implied(key, ratio, low, high, float(spread[i, f]), severity))
+        result.append(mine)
+    return result

@@ -1,0 +1,1 @@
+"""One self-contained HTML file of a catalog or of a search."""

@@ -1,0 +1,109 @@
+"""Pictures: what they say, that they are the same each time, and that grey suffices."""
+
+import xml.etree.ElementTree as ET
+from pathlib import Path
+
+import pytest
+
+from motorfolio.catalog.cli import main
+
+pytest.importorskip("matplotlib", reason="pictures need the extra 'plot' (matplotlib)")
+
+ASKED = ("--torque", "50 mN·m", "--speed", "3000 rpm", "--supply", "24 V", "--ratio", "1..10")
+KINDS = {
+    "plane": ("plane", "DACHS-24", *ASKED),
+    "bare": ("plane", "TERN-45L"),
+    "candidates": ("candidates", *ASKED),
+    "ratios": ("ratios", "DACHS-24", *ASKED),
+    "figures": ("figures", "PIKA-3"),
+}
+
+
+@pytest.fixture(scope="module")
+def drawn(catalog: Path, tmp_path_factory: pytest.TempPathFactory) -> dict[str, Path]:
+    folder = tmp_path_factory.mktemp("pictures")
+    paths = {}
+    for name, call in KINDS.items():
+        paths[name] = folder / f"{name}.svg"
+        assert main(["plot", *call, "-o", str(paths[name]), "--catalog", str(catalog)]) == 0
+    return paths
+
+
+@pytest.mark.parametrize("name", KINDS)
+def test_svg_is_well_formed_and_the_same_each_time(drawn, catalog, tmp_path, name):
+    ET.parse(drawn[name])
+    again = tmp_path / "again.svg"
+    assert main(["plot", *KINDS[name], "-o", str(again), "--catalog", str(catalog)]) == 0
+    assert again.read_bytes() == drawn[name].read_bytes()
+
+
+def test_png_is_written_by_its_suffix(catalog, tmp_path):
+    path = tmp_path / "figures.png"
+    assert main(["plot", *KINDS["figures"], "-o", str(path), "--catalog", str(catalog)]) == 0
+    assert path.read_bytes().startswith(b"\x89PNG")
+
+
+def figure_of(catalog: Path, name: str):
+    from motorfolio.catalog.commands.requirement_options import requirement_of
+    from motorfolio.catalog.commands.search import command as search
+    from motorfolio.catalog.report.pictures import make
+    from motorfolio.catalog.store import Catalog
+
+    options = search.make_context("search", list(ASKED)).params
+    with Catalog.open(catalog) as opened:
+        requirement = requirement_of(options)
+        if name == "plane":
+            return make.plane_of(opened, "DACHS-24", requirement, cycle=True)
+        if name == "ratios":
+            return make.ratios_of(opened, "DACHS-24", requirement)
+        if name == "figures":
+            return make.figures_of(opened, "PIKA-3")
+        return make.candidates_of(opened, requirement)
+
+
+CLAIMS = {
+    "plane": ("DACHS-24 at 24 V: the cycle stays inside every limit", "rpm", "mN·m"),
+    "ratios": ("DACHS-24: gear ratios from 1.09 to 1.99 do it", "Gear ratio", "Utilisation"),
+    "figures": ("PIKA-3: the printed stall torque disagrees with the rest", "Printed value", ""),
+    "candidates": ("motors do it", "Mass in g", "Utilisation"),
+}
+
+
+@pytest.mark.parametrize("name", CLAIMS)
+def test_title_claims_and_axes_have_units(catalog, name):
+    claim, x, y = CLAIMS[name]
+    made = figure_of(catalog, name)
+    axes = made.axes[0]
+    assert claim in axes.get_title("left")
+    assert x in axes.get_xlabel()
+    assert y in axes.get_ylabel()
+    assert "verify" in made.get_supxlabel()
+
+
+def test_lines_differ_without_colour(catalog):
+    for name in ("plane", "ratios"):
+        lines = [
+            line for line in figure_of(catalog, name).axes[0].get_lines()
+            if not line.get_label().startswith("_")
+        ]  # fmt: skip
+        looks = [(repr(line._dash_pattern), line.get_linewidth(), line.get_marker())
+                 for line in lines]  # fmt: skip
+        assert len(set(looks)) == len(looks) > 1
+
+
+@pytest.mark.parametrize(
+    ("call", "said"),
+    [
+        (("figures", "PIKA-3", "-o", "x.pdf"), ".svg or .png"),
+        (("ratios", "DACHS-24", "--torque", "1 mN·m", "--speed", "1 rpm", "-o", "x.svg"), "--ratio"),
+        (("plane", "NONE-1", "-o", "x.svg"), "NONE-1"),
+        (("figures", "PIKA-3", "-o", "no/such/folder/x.svg"), "no/such/folder"),
+    ],
+)
+def test_what_cannot_be_drawn_is_one_sentence(catalog, tmp_path, monkeypatch, capsys, call, said):
+    monkeypatch.chdir(tmp_path)
+    assert main(["plot", *call, "--catalog", str(catalog)]) == 2
+    captured = capsys.readouterr()
+    assert said in captured.err
+    assert "Traceback" not in captured.err
+    assert not captured.out
