@@ -19,8 +19,20 @@ _OFFICE = "{urn:oasis:names:tc:opendocument:xmlns:office:1.0}"
 _TEXT = "{urn:oasis:names:tc:opendocument:xmlns:text:1.0}"
 _STYLE = "{urn:oasis:names:tc:opendocument:xmlns:style:1.0}"
 _MOST_ROWS, _MOST_COLUMNS = 1_048_576, 16_384
-_MOST_CONTENT = 80_000_000
+_MOST_CONTENT = 50_000_000
 _FIGURE = re.compile(r"[+\-−]?\d(?:[\d.,'’ \xa0\u202f]*\d)?(?:[eE][+\-]?\d+)?|[+\-−]?[.,]\d+")
+# Put together once: every cell is asked for them.
+_CELL, _COVERED = _TABLE + "table-cell", _TABLE + "covered-table-cell"
+_COLUMNS_REPEATED, _ROWS_REPEATED = (
+    _TABLE + "number-columns-repeated",
+    _TABLE + "number-rows-repeated",
+)
+_COLUMNS_SPANNED, _ROWS_SPANNED = (
+    _TABLE + "number-columns-spanned",
+    _TABLE + "number-rows-spanned",
+)
+_FORMULA, _PARAGRAPH = _TABLE + "formula", _TEXT + "p"
+_VALUE, _VALUE_TYPE = _OFFICE + "value", _OFFICE + "value-type"
 _NOT_SHOWN = {_OFFICE + "annotation", _TEXT + "ruby-text", _TEXT + "note-body"}
 
 Range = tuple[int, int, int, int]
@@ -121,7 +133,7 @@ class Document:
     def _read(self, table: etree._Element, found: _Found) -> None:
         column = 1
         for item in table.iter(_TABLE + "table-column"):
-            repeated = _count(item, "number-columns-repeated", _MOST_COLUMNS)
+            repeated = _count(item, _COLUMNS_REPEATED, _MOST_COLUMNS)
             if _hidden(item) or _in_hidden_group(item, table):
                 found.hidden_columns.update(
                     range(column, min(column + repeated, _MOST_COLUMNS + 1))
@@ -129,7 +141,7 @@ class Document:
             column += repeated
         number = 1
         for item in _rows(table):
-            repeated = _count(item, "number-rows-repeated", _MOST_ROWS)
+            repeated = _count(item, _ROWS_REPEATED, _MOST_ROWS)
             row = self._row(item, number, found)
             if row:
                 if repeated * len(row) > 200_000:
@@ -147,14 +159,14 @@ class Document:
         row: dict[int, str] = {}
         column = 1
         for cell in item:
-            if cell.tag not in (_TABLE + "table-cell", _TABLE + "covered-table-cell"):
+            if cell.tag not in (_CELL, _COVERED):
                 continue
-            repeated = _count(cell, "number-columns-repeated", _MOST_COLUMNS)
+            repeated = _count(cell, _COLUMNS_REPEATED, _MOST_COLUMNS)
             text = ""
-            if cell.tag == _TABLE + "table-cell":
-                text = self._text(cell, f"{column_name(column)}{number}", found)
-                rows = _count(cell, "number-rows-spanned", _MOST_ROWS)
-                columns = _count(cell, "number-columns-spanned", _MOST_COLUMNS)
+            if cell.tag == _CELL:
+                text = self._text(cell, number, column, found)
+                rows = _count(cell, _ROWS_SPANNED, _MOST_ROWS)
+                columns = _count(cell, _COLUMNS_SPANNED, _MOST_COLUMNS)
                 if rows * columns > 1:
                     found.merged.append((number, column, number + rows - 1, column + columns - 1))
             if text:
@@ -163,18 +175,24 @@ class Document:
             column += repeated
         return row
 
-    def _text(self, cell: etree._Element, place: str, found: _Found) -> str:
-        lines = [self._inline(item) for item in cell if item.tag == _TEXT + "p"]
+    def _text(self, cell: etree._Element, row: int, column: int, found: _Found) -> str:
+        lines = [
+            self._inline(item) if len(item) else item.text or ""
+            for item in cell
+            if item.tag == _PARAGRAPH
+        ]
         text = clean("\n".join(lines))
-        kind = cell.get(_OFFICE + "value-type")
+        kind = cell.get(_VALUE_TYPE)
         if kind in {"float", "percentage", "currency"}:
-            value = cell.get(_OFFICE + "value", "")
+            value = cell.get(_VALUE, "")
+            if text == value:
+                return text
             return _with_point(text, value) if kind != "percentage" else _percent(text, value)
         if kind in {"date", "time"}:
-            found.dates.append(place)
+            found.dates.append(f"{column_name(column)}{row}")
             return f"{kind} {cell.get(_OFFICE + f'{kind}-value') or text}"
-        if kind is None and not text and cell.get(_TABLE + "formula"):
-            found.unsolved.append(place)
+        if kind is None and not text and cell.get(_FORMULA):
+            found.unsolved.append(f"{column_name(column)}{row}")
             return "formula without a stored result"
         return text
 
@@ -229,11 +247,11 @@ def _in_hidden_group(item: etree._Element, table: etree._Element) -> bool:
 
 
 def _count(item: etree._Element, name: str, most: int) -> int:
-    text = item.get(_TABLE + name)
+    text = item.get(name)
     if text is None:
         return 1
     if not text.isdigit() or len(text) > 9:
-        raise ValueError(f"{name} is “{text[:20]}”")
+        raise ValueError(f"{name.rpartition('}')[2]} is “{text[:20]}”")
     return max(1, min(int(text), most))
 
 

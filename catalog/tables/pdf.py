@@ -9,6 +9,7 @@ from .cells import clean, subscript, superscript
 from .columns import Interval, Piece, arrange, find_columns, fits, join_split_labels
 from .grid import Grid, Span, TableError
 from .source import Source
+from .text import read_text
 
 _MOST_BYTES = 200_000_000
 _MOST_PAGES = 400
@@ -119,7 +120,9 @@ def _read(document, name: str) -> tuple[list[Grid], list[str]]:
             else "has no text"
         )
         raise TableError(f"{name}: {why}")
-    grids = [_grid(group) for group in _continued(_with_prose(blocks))]
+    grids: list[Grid] = []
+    for group in _continued(_with_prose(blocks)):
+        grids += [_grid(group)] if group[0].table else _text_grids(group[0])
     for grid in grids:
         for page in dict.fromkeys(grid.row_pages or [grid.page]):
             grid.remarks += remarks.get(page or 0, [])
@@ -361,6 +364,16 @@ def _repeats_heading(first: _Block, block: _Block) -> bool:
     heads = [line.pieces[0].text for line in first.lines if len(line.pieces) > 1][:4]
     own = [line.pieces[0].text for line in block.lines if len(line.pieces) > 1][:2]
     return any(text in heads for text in own)
+
+
+def _text_grids(block: _Block) -> list[Grid]:
+    """A page without a table, read as text: pairs of label and value, or lines as they are."""
+    lines = ["  ".join(piece.text for piece in line.pieces) for line in block.lines]
+    grids = read_text("\n".join(lines))
+    for grid in grids:
+        grid.page = block.page
+        grid.row_numbers = [block.lines[number - 1].number for number in grid.row_numbers]
+    return grids
 
 
 def _grid(group: list[_Block]) -> Grid:

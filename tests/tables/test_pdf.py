@@ -121,6 +121,19 @@ def test_two_tables_of_other_columns_on_a_page(tmp_path: Path) -> None:
     assert [grid.rows for grid in file.grids] == [first, second]
 
 
+def test_a_page_of_pairs_is_read_as_text(tmp_path: Path) -> None:
+    style = getSampleStyleSheet()["Normal"]
+    lines = ["Model: A1", "Rated voltage: 24 V; Rated speed: 3000 rpm", "Mass: 450 g"]
+    grid = one(read(tmp_path / "a.pdf", pdf([Paragraph(line, style) for line in lines])))
+    assert grid.rows == [
+        ["Model", "A1"],
+        ["Rated voltage", "24 V"],
+        ["Rated speed", "3000 rpm"],
+        ["Mass", "450 g"],
+    ]
+    assert (grid.page, grid.row_numbers) == (1, [1, 2, 2, 3])
+
+
 @pytest.mark.parametrize("angle", [90, 180, 270])
 def test_a_turned_page(tmp_path: Path, angle: int) -> None:
     buffer = io.BytesIO()
