@@ -21,7 +21,9 @@ Every table NAME has its expectation in ``NAME.expect.json``, written by hand fr
 
 from __future__ import annotations
 
+import contextlib
 import importlib.util
+import io
 import json
 import math
 import sys
@@ -102,19 +104,22 @@ def source(file: str) -> Path:
 
 def run(name: str) -> tuple[int, str, str, BaseException | None]:
     """Imports a table as a user would: exit status, standard output, standard error, crash."""
-    from click.testing import CliRunner
-
     from motorfolio.catalog.cli import main
 
     wanted = expectation(name)
+    out, err = io.StringIO(), io.StringIO()
+    status, crash = 2, None
     with tempfile.TemporaryDirectory() as folder:
-        result = CliRunner().invoke(
-            main,
-            ["import", str(source(wanted["file"])), *wanted.get("args", []), "--dry-run", "--json"],
-            env={"MOTORFOLIO_CATALOG": str(Path(folder) / "catalog.sqlite")},
-        )
-    crash = None if isinstance(result.exception, SystemExit) else result.exception
-    return result.exit_code, result.stdout, result.stderr, crash
+        catalog = ["--catalog", str(Path(folder) / "catalog.sqlite")]
+        call = ["import", str(source(wanted["file"])), *wanted.get("args", []), *catalog]
+        with contextlib.redirect_stdout(out), contextlib.redirect_stderr(err):
+            try:
+                status = main([*call, "--dry-run", "--json"])
+            except SystemExit as stop:
+                status = stop.code if isinstance(stop.code, int) else 2
+            except BaseException as error:
+                crash = error
+    return status, out.getvalue(), err.getvalue(), crash
 
 
 def score(name: str) -> Score:
