@@ -5,13 +5,13 @@ nonlinear rows are added to it. Missing figures have weight zero, and a weak pri
 system regular, so that one incomplete motor can't stop the batch.
 """
 
-from collections.abc import Iterator
 from dataclasses import dataclass, field
 
 import numpy as np
 from numpy.typing import NDArray
 
 from .batch import Floats
+from .equations import Equations, product
 from .model import (
     INDEX,
     LAW_BINDS,
@@ -20,17 +20,21 @@ from .model import (
     UNPUBLISHED_I0_SERVO,
     P,
     Readings,
-    Slopes,
-    family_matrix,
-    linear_matrix,
-    nonlinear_rows,
-    ridge,
 )
 
-Rows = Iterator[tuple[Floats, Floats, Slopes]]
+CHUNK = 2048
+"""Motors whose normal matrices are built at a time: what fits a processor's cache."""
 
-CHUNK = 4096
-ITERATIONS = 5
+ITERATIONS = 6
+KEPT = 3
+REST = 1e-4
+LONGEST = 3.0
+"""Steps of the adjustment: at most so many, with the first matrix kept for so many; at rest below
+this change of any logarithm; none longer than this."""
+
+ROBUST_CUTS = (30.0, 10.0, 5.0, 3.0, 3.0, 3.0, 3.0)
+"""The cut of the robust fit, step by step, in standard deviations."""
+
 LAWS = len(LAW_SCATTER) + 1
 
 
@@ -43,7 +47,8 @@ class Problem:
     printed digits and from custom; servo (n,) true for sinusoidal motors; family (n, 4) what the
     motor's family shares (logarithms), family_sd its standard deviation (inf: no family);
     bound (n, laws) which laws say anything about a motor's published figures (as published:
-    leaving a figure out doesn't unbind what implies it); scale (n,) or (1,) how much of the customary scatter the table shows.
+    leaving a figure out doesn't unbind what implies it); scale (n,) or (1,) how much of the
+    customary scatter the table shows.
     """
 
     y: Floats
@@ -64,7 +69,8 @@ class Problem:
         """The same for these motors (repeats allowed)."""
         return Problem(
             self.y[which], self.present[which], self.digits[which], self.scatter[which],
-            self.servo[which], self.family[which], self.family_sd[which], self.readings, self.bound[which],
+            self.servo[which], self.family[which], self.family_sd[which], self.readings,
+            self.bound[which],
             self.scale if len(self.scale) == 1 else self.scale[which],
         )  # fmt: skip
 
@@ -112,137 +118,87 @@ class Fit:
 
     def combination(self, row: Floats) -> tuple[Floats, Floats]:
         """Value and standard deviation of a linear combination of the unknowns."""
-        variance = np.einsum("p,npq,q->n", row, self.covariance, row, optimize=True)
-        return self.x @ row, np.sqrt(np.maximum(variance, 0.0))
+        used = np.flatnonzero(row)
+        variance = np.zeros(len(self.x))
+        for a in used:
+            for b in used:
+                variance += row[a] * row[b] * self.covariance[:, a, b]
+        return product(row[None, :], self.x.T)[0], np.sqrt(np.maximum(variance, 0.0))
 
 
 def fit(problem: Problem, robust: bool = False) -> Fit:
-    """Adjust all motors of a problem; with ``robust`` gross errors are weighed down."""
+    """Adjust all motors of a problem; with ``robust`` gross errors are weighed down.
+
+    Starts from the log-linear solution, in which the small corrections take typical values.
+    """
     n = len(problem)
     out = Fit(np.empty((n, P)), np.empty((n, P, P)), np.empty(n))
+    adjust = _robust if robust else _plain
     for start in range(0, n, CHUNK):
         part = slice(start, min(start + CHUNK, n))
-        chunk = _fit_chunk(problem.take(part), robust)
-        out.x[part], out.covariance[part], out.chi2[part] = chunk.x, chunk.covariance, chunk.chi2
+        chunk = problem.take(part)
+        equations = Equations(chunk)
+        x, inverse, chi2 = adjust(chunk, equations)
+        out.x[part], out.covariance[part], out.chi2[part] = (
+            x.T, equations.covariance(inverse), chi2
+        )  # fmt: skip
     return out
 
 
-class _Equations:
-    """The rows of one chunk, ready to be evaluated at any x."""
-
-    def __init__(self, problem: Problem) -> None:
-        self.problem = problem
-        self.weight = problem.weights()
-        self.laws = problem.law_weights()
-        matrix, self.constant = linear_matrix(problem.readings)
-        self.rows = np.flatnonzero(problem.present.any(axis=0) & matrix.any(axis=1))
-        self.matrix = matrix[self.rows]
-        self.y = problem.y[:, self.rows] - self.constant[self.rows]
-        self.prior_mean, self.prior_weight = ridge()
-        self.family = family_matrix()
-        self.family_value = np.nan_to_num(problem.family)
-        with np.errstate(divide="ignore"):
-            self.family_weight = np.where(
-                np.isfinite(problem.family_sd), problem.family_sd**-2.0, 0.0
-            )
-        self.has_family = bool(self.family_weight.any())
-        # unknowns that no row of this chunk touches keep their prior and stay out of the matrix
-        touched = np.asarray(self.matrix.any(axis=0))
-        if self.has_family:
-            touched |= (self.family != 0).any(axis=0)
-        start = np.broadcast_to(self.prior_mean, (len(problem), P))
-        for _, _, slopes in self.nonlinear(start, typical=True):
-            touched[[unknown for unknown, _ in slopes]] = True
-        self.active = np.flatnonzero(touched)
-        self.position = {unknown: i for i, unknown in enumerate(self.active.tolist())}
-        self.squares = _outer(self.matrix[:, self.active])
-        self.family_squares = _outer(self.family[:, self.active])
-
-    def normal(
-        self, x: Floats, typical: bool = False, cut: float | None = None
-    ) -> tuple[Floats, Floats]:
-        """Normal matrix (n, A, A) and right-hand side (n, A) of the active unknowns at x.
-
-        With ``cut`` residuals beyond so many standard deviations lose weight (Cauchy).
-        """
-        active, at = self.active, self.position
-        size = active.size
-        weight = self.weight[:, self.rows]
-        gap = self.y - x @ self.matrix.T
-        if cut is not None:
-            weight = weight / (1.0 + weight * (gap / cut) ** 2)
-        matrix = (weight @ self.squares).reshape(-1, size, size)
-        right = (weight * gap) @ self.matrix[:, active]
-        if self.has_family:
-            weight, gap = self.family_weight, self.family_value - x @ self.family.T
-            if cut is not None:
-                weight = weight / (1.0 + weight * (gap / cut) ** 2)
-            matrix += (weight @ self.family_squares).reshape(-1, size, size)
-            right += (weight * gap) @ self.family[:, active]
-        index = np.arange(size)
-        matrix[:, index, index] += self.prior_weight[active]
-        right += self.prior_weight[active] * (self.prior_mean - x)[:, active]
-        for residual, w, slopes in self.nonlinear(x, typical):
-            damped = w if cut is None else w / (1.0 + w * (residual / cut) ** 2)
-            for a, slope_a in slopes:
-                weighed = damped * slope_a
-                right[:, at[a]] += weighed * residual
-                for b, slope_b in slopes:
-                    matrix[:, at[a], at[b]] += weighed * slope_b
-        return matrix, right
-
-    def covariance(self, matrix: Floats) -> Floats:
-        """Covariance (n, P, P) of all unknowns from a normal matrix of the active ones."""
-        out = np.zeros((len(matrix), P, P))
-        rest = np.setdiff1d(np.arange(P), self.active)
-        out[:, rest, rest] = 1.0 / self.prior_weight[rest]
-        out[:, self.active[:, None], self.active[None, :]] = np.linalg.inv(matrix)
-        return out
-
-    def nonlinear(self, x: Floats, typical: bool = False) -> Rows:
-        """The nonlinear rows at x."""
-        return nonlinear_rows(
-            x, self.problem.y, self.weight, self.laws, self.problem.servo,
-            self.problem.readings, typical,
-        )  # fmt: skip
-
-    def chi2(self, x: Floats, cut: float | None = None) -> Floats:
-        """Weighted sum of squares of all rows but the weak prior; with ``cut`` of the Cauchy
-        loss, which grows as the logarithm."""
-
-        def loss(square: Floats) -> Floats:
-            return square if cut is None else cut**2 * np.log1p(square / cut**2)
-
-        weight = self.weight[:, self.rows]
-        total = loss(weight * (self.y - x @ self.matrix.T) ** 2).sum(axis=1)
-        if self.has_family:
-            gap = self.family_value - x @ self.family.T
-            total += loss(self.family_weight * gap**2).sum(axis=1)
-        for residual, w, _ in self.nonlinear(x):
-            total += loss(w * residual**2)
-        return total
-
-
-def _outer(rows: Floats) -> Floats:
-    """The outer product of every row with itself, flat: shape (m, P·P)."""
-    return (rows[:, :, None] * rows[:, None, :]).reshape(len(rows), -1)
-
-
-ROBUST_CUTS = (30.0, 10.0, 5.0, 3.0, 3.0, 3.0, 3.0)
-"""The cut of the robust fit, step by step, in standard deviations."""
-
-
-def _fit_chunk(problem: Problem, robust: bool) -> Fit:
-    equations = _Equations(problem)
-    x = np.broadcast_to(equations.prior_mean, (len(problem), P)).copy()
-    active = equations.active
+def _loglinear(equations: Equations) -> Floats:
+    x = equations.start()
     matrix, right = equations.normal(x, typical=True)
-    x[:, active] += np.linalg.solve(matrix, right[..., None])[..., 0]
-    cuts = ROBUST_CUTS if robust else (None,) * ITERATIONS
-    for cut in cuts:
-        matrix, right = equations.normal(x, cut=cut)
-        step = np.linalg.solve(matrix, right[..., None])[..., 0]
-        x[:, active] += np.clip(step, -3.0, 3.0)
-        if not robust and np.abs(step).max(initial=0.0) < 1e-5:
+    x[equations.active] += np.linalg.solve(matrix, right.T[:, :, None])[:, :, 0].T
+    return x
+
+
+def _step(inverse: Floats, right: Floats) -> Floats:
+    return np.clip((inverse @ right.T[:, :, None])[:, :, 0].T, -LONGEST, LONGEST)
+
+
+def _plain(problem: Problem, equations: Equations) -> tuple[Floats, Floats, Floats]:
+    """Gauss-Newton with the matrix of the first step kept; the few motors that this doesn't bring
+    to rest are iterated further with their own."""
+    x = _loglinear(equations)
+    active = equations.active
+    matrix, right = equations.normal(x)
+    inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
+    step = _step(inverse, right)
+    x[active] += step
+    size = np.abs(step).max(axis=0)
+    far = size > 0.2
+    for _ in range(KEPT):
+        step = _step(inverse, equations.gradient(x))
+        x[active] += step
+        size = np.abs(step).max(axis=0)
+        if size.max(initial=0.0) < REST:
             break
-    return Fit(x, equations.covariance(matrix), equations.chi2(x, cuts[-1]))
+    chi2 = equations.chi2(x)
+    who = np.flatnonzero(far | (size > REST))
+    if who.size:
+        x[:, who], inverse[who], chi2[who] = _further(problem.take(who), equations, x[:, who])
+    return x, inverse, chi2
+
+
+def _further(problem: Problem, whole: Equations, x: Floats) -> tuple[Floats, Floats, Floats]:
+    """More Gauss-Newton steps for some motors of a chunk, with the chunk's active unknowns."""
+    equations = Equations(problem, whole.active)
+    inverse = np.empty((0, 0, 0))
+    for _ in range(ITERATIONS):
+        matrix, right = equations.normal(x)
+        inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
+        step = _step(inverse, right)
+        x[equations.active] += step
+        if np.abs(step).max(initial=0.0) < REST:
+            break
+    return x, inverse, equations.chi2(x)
+
+
+def _robust(_: Problem, equations: Equations) -> tuple[Floats, Floats, Floats]:
+    x = _loglinear(equations)
+    inverse = np.empty((0, 0, 0))
+    for cut in ROBUST_CUTS:
+        matrix, right = equations.normal(x, cut)
+        inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
+        x[equations.active] += _step(inverse, right)
+    return x, inverse, equations.chi2(x, ROBUST_CUTS[-1])

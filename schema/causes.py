@@ -86,7 +86,7 @@ class _Collector:
         """A factor and its inverse; with ``slips`` also with a power of ten."""
         powers = {0: 1.0}
         if slips:
-            powers |= {3: 0.12, -3: 0.12, 1: 0.04, -1: 0.04, 2: 0.04, -2: 0.04}
+            powers |= {3: 0.08, -3: 0.08, 1: 0.02, -1: 0.02, 2: 0.02, -2: 0.02}
         for power, share in powers.items():
             for sign in (1, -1):
                 log_factor = sign * (math.log(factor) + power * math.log(10.0))
@@ -175,7 +175,7 @@ def shape(figure: str, commutation: int, unit: str) -> Shape:
         c.add("line-vs-phase", 1.5, 0.03)
     _temperature(c, figure)
     if figure in TORQUES:
-        c.between("gear-output-side", 2.5, 500.0, 0.05)
+        c.between("gear-output-side", 2.5, 500.0, 0.10)
     if figure == "torque_constant":
         c.between("gear-output-side", 2.5, 500.0, 0.01)
     if figure in ("stall_torque", "stall_current"):

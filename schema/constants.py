@@ -5,6 +5,7 @@ from numpy.typing import NDArray
 
 from .adjust import Fit, Problem
 from .batch import Batch, Floats
+from .equations import product
 from .model import FIGURES, I0, B, J, K, L, P, R, linear_matrix
 from .motor import CANONICAL, CONSTANT_BASES, ConstantColumn
 from .observed import copper, magnet_slope
@@ -58,7 +59,8 @@ def constants(batch: Batch, problem: Problem, fitted: Fit) -> dict[str, Constant
         for unknown, exponent in ROWS[key].items():
             row[unknown] = exponent
         log_value, sd = fitted.combination(row)
-        gain = np.abs(np.einsum("npq,q->np", fitted.covariance, row) @ matrix.T) * weights
+        moved = np.einsum("npq,q->pn", fitted.covariance, row)
+        gain = np.abs(product(matrix, moved).T) * weights
         used = (gain > INFLUENCE) & problem.present
         known = (sd < DETERMINED) & used.any(axis=1)
         log_value = log_value + shift.get(key, 0.0)

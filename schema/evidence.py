@@ -22,7 +22,6 @@ SLACK = 0.7
 SHARED = frozenset({
     "rotor_inertia", "motor_constant", "mechanical_time_constant", "electrical_time_constant",
     "friction_torque", "viscous_damping", "nominal_voltage", "maximum_efficiency",
-    "rated_efficiency", "rated_power",
 })  # fmt: skip
 """Figures that windings of one size share or nearly share: an equal neighbour tells nothing."""
 

@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 
 from .adjust import Fit, Problem, fit
 from .batch import Floats
+from .equations import product
 from .model import I0, INDEX, IPK, PEAK_BAND, F, K, R, U, linear_matrix
 
 GAIN = 12.0
@@ -19,6 +20,12 @@ GAIN = 12.0
 
 DEPARTURE = 0.05
 """What the ratio must differ from 1, beyond twice the implied value's standard deviation."""
+
+CURVED = (INDEX["maximum_efficiency"], INDEX["peak_torque"])
+"""Figures whose rows aren't sums of logarithms."""
+
+NEARLY = 0.8
+"""The part of ``GAIN`` at which the linearised test hands a motor on to the refits."""
 
 Bools = NDArray[np.bool_]
 
@@ -75,7 +82,7 @@ def predicted(problem: Problem, fitted: Fit, figure: NDArray[np.integer]) -> tup
     if peak.any():
         value[peak] = fitted.x[peak, K] + fitted.x[peak, IPK] + middle
         rows[np.ix_(peak, [K, IPK])] = 1.0
-    variance = np.einsum("np,npq,nq->n", rows, fitted.covariance, rows, optimize=True)
+    variance = (np.einsum("npq,nq->np", fitted.covariance, rows) * rows).sum(axis=1)
     variance[peak] += (PEAK_BAND[1] - middle) ** 2 / 3.0
     return value, np.sqrt(np.maximum(variance, 0.0))
 
@@ -98,20 +105,34 @@ def leave_out(problem: Problem, pairs: int = 20_000) -> LeftOut:
 
 
 def doubtful(problem: Problem, fitted: Fit) -> Bools:
-    """Motors worth the refits: a single figure could save enough, by the linearised test."""
+    """Motors worth the refits, by the linearised test: a single figure could save almost enough
+    and departs almost enough, or the whole fits too badly for a linearised test."""
     out = fitted.chi2 > GAIN
+    matrix, constant = linear_matrix(problem.readings)
     who = np.flatnonzero(out)
     for start in range(0, who.size, 2048):
         part = who[start : start + 2048]
         sub = problem.take(part)
-        matrix, constant = linear_matrix(problem.readings)
-        weight = sub.weights()
-        residual = sub.y - constant - fitted.x[part] @ matrix.T
-        spread = (matrix @ fitted.covariance[part]) * matrix
-        left = np.maximum(1.0 - weight * spread.sum(axis=2), 1e-9)
-        saved = np.where(sub.present, weight * residual**2 / left, 0.0)
+        variance = sub.sd() ** 2
+        own = Fit(fitted.x[part], fitted.covariance[part], fitted.chi2[part])
+        residual = sub.y - constant - product(matrix, own.x.T).T
+        spread = ((matrix @ own.covariance) * matrix).sum(axis=2)
+        for figure in CURVED:
+            if sub.present[:, figure].any():
+                value, sd = predicted(sub, own, np.full(part.size, figure))
+                residual[:, figure], spread[:, figure] = sub.y[:, figure] - value, sd**2
+        peak = INDEX["peak_torque"]
+        beyond = np.abs(residual[:, peak]) - (PEAK_BAND[1] - PEAK_BAND[0]) / 2.0
+        residual[:, peak] = np.maximum(beyond, 0.0)
+        # a figure's own row may hold it entirely: then it can't be told from here
+        free = np.clip(1.0 - spread / variance, 1e-9, 1.0)
+        saved = np.where(sub.present, residual**2 / (variance * free), 0.0)
+        ratio = np.abs(residual) / free
+        implied_sd = np.sqrt(spread / free)
+        far = np.expm1(np.minimum(ratio, 10.0)) > NEARLY * (DEPARTURE + 2.0 * implied_sd)
+        near = saved > NEARLY * GAIN
         freedom = sub.present.sum(axis=1)
-        out[part] = (saved.max(axis=1) > 0.6 * GAIN) | (fitted.chi2[part] > 2.0 * freedom)
+        out[part] = (near & far).any(axis=1) | (own.chi2 > 2.0 * freedom)
     return out
 
 
