@@ -20,6 +20,7 @@ from .store import Catalog, columns
 from .store.catalog import now
 from .store.corrections import Correction, corrected
 from .store.database import in_words
+from .store.revisions import OF_SOURCE
 from .store.write import AppliedCorrection, Writer
 
 if TYPE_CHECKING:
@@ -396,7 +397,7 @@ class _Store:
             "SELECT id FROM files WHERE sha256 = ? AND options = ?", wanted
         ).fetchall():
             replaced = connection.execute(
-                "SELECT EXISTS (SELECT 1 FROM motor m JOIN sources s ON s.id = m.source "
+                f"SELECT EXISTS (SELECT 1 FROM sources s JOIN motor m ON {OF_SOURCE} "
                 "WHERE s.file = ? AND m.replaced_by IS NOT NULL)",
                 (file_id,),
             ).fetchone()[0]
@@ -409,7 +410,7 @@ class _Store:
         assert self.writer is not None
         return bool(
             self.writer.connection.execute(
-                "SELECT EXISTS (SELECT 1 FROM motor m JOIN sources s ON s.id = m.source "
+                f"SELECT EXISTS (SELECT 1 FROM sources s JOIN motor m ON {OF_SOURCE} "
                 "JOIN imports i ON i.id = m.replaced_by WHERE i.files = 0 AND i.id <> ? "
                 "AND s.file = (SELECT max(id) FROM files WHERE file = ?))",
                 (self.writer.import_id, file),

@@ -69,12 +69,7 @@ def load(connection: sqlite3.Connection, names: Sequence[str]) -> dict[str, Floa
     """
     for name in names:
         _expression(name)
-    sources = [
-        row[0]
-        for row in connection.execute(
-            "SELECT DISTINCT source FROM motor INDEXED BY motor_of_source ORDER BY source"
-        )
-    ]
+    sources = [row[0] for row in connection.execute("SELECT id FROM sources ORDER BY first_motor")]
     wanted = [name for name in dict.fromkeys(names) if name != "id"]
     cached = [name for name in wanted if name in CACHED]
     held: dict[tuple[int, str], bytes] = {}
@@ -122,11 +117,14 @@ def rebuild(connection: sqlite3.Connection, sources: Iterable[int]) -> None:
 def select(connection: sqlite3.Connection, source: int, names: Sequence[str]) -> dict[str, Floats]:
     """The same columns from the rows of one source."""
     expressions = ", ".join(["m.id", "m.pattern", "m.kind", *map(_expression, names)])
+    span = connection.execute(
+        "SELECT first_motor, first_motor + motors - 1 FROM sources WHERE id = ?", (source,)
+    ).fetchone()
     rows = connection.execute(
         f"SELECT {expressions} FROM motor m JOIN kinds k ON k.id = m.kind "
         "JOIN constants c ON c.id = m.id JOIN figure_value v ON v.id = m.id "
-        "WHERE m.source = ? AND m.replaced_by IS NULL ORDER BY m.id",
-        (source,),
+        "WHERE m.id BETWEEN ? AND ? AND m.replaced_by IS NULL ORDER BY m.id",
+        span,
     ).fetchall()
     table = np.array(rows, dtype=np.float64).reshape(len(rows), len(names) + 3)
     columns = {name: np.ascontiguousarray(table[:, i + 3]) for i, name in enumerate(names)}

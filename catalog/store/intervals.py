@@ -17,8 +17,8 @@ NEAR = 1e-6
 
 def encode(
     figures: FigureColumn, factor: Floats
-) -> tuple[list[int | None], list[tuple[int, float, float]]]:
-    """Powers of ten of the last digits, and (entry, low, high) of the figures that need both.
+) -> tuple[list[float], list[tuple[int, float, float]]]:
+    """Powers of ten of the last digits (NaN: none), and (entry, low, high) where both are needed.
 
     factor: SI per printed unit, shape (N,).
     """
@@ -33,9 +33,7 @@ def encode(
     fits &= np.isfinite(exponent)
     given = ~np.isnan(value)
     exact = (low == value) & (high == value)
-    digits = [
-        int(e) if ok else None for e, ok in zip(exponent.tolist(), fits.tolist(), strict=True)
-    ]
+    digits = np.where(fits, exponent, np.nan).tolist()
     odd = np.flatnonzero(given & ~fits & ~exact).tolist()
     return digits, [(i, low[i].item(), high[i].item()) for i in odd]
 

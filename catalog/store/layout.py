@@ -199,7 +199,7 @@ def _layout_1(db: Database) -> None:
         pk="id",
         not_null={"source", "motor", "scope", "severity", "message"},
     )  # fmt: skip
-    make("finding_motors", {"finding": int, "motor": int}, pk=("finding", "motor"))
+    make("finding_motors", {"finding": int, "first": int, "last": int}, pk=("finding", "first"))
     make(
         "unread",
         {"id": int, "file": int, "part_number": str, "heading": str, "sheet": str, "page": int,
@@ -231,10 +231,8 @@ def _layout_1(db: Database) -> None:
     db.execute(
         "CREATE UNIQUE INDEX current_motor ON motor(part_number, maker) WHERE replaced_by IS NULL"
     )
-    db.table("motor").create_index(["source"], index_name="motor_of_source")
     for name in ("findings", "further_figures"):
         db.table(name).create_index(["motor"], index_name=f"{name}_of_motor")
-    db.table("finding_motors").create_index(["motor"], index_name="findings_by_motor")
     _guard_cache(db)
 
 

@@ -268,7 +268,8 @@ class _Loader:
         found: dict[int, list[Document]] = {i: [] for i in ids}
         pairs = self._rows(
             "SELECT motor, id FROM findings WHERE scope = 'motor' AND motor IN ({ids}) "
-            "UNION ALL SELECT motor, finding FROM finding_motors WHERE motor IN ({ids}) ORDER BY 2",
+            "UNION ALL SELECT m.id, f.finding FROM finding_motors f JOIN motor m "
+            "ON m.id BETWEEN f.first AND f.last WHERE m.id IN ({ids}) ORDER BY 2",
             ids,
         ).fetchall()
         documents = dict(findings(self.connection, sorted({pair["id"] for pair in pairs})))
@@ -283,8 +284,9 @@ def findings(connection: sqlite3.Connection, ids: Sequence[int]) -> Iterator[tup
         marks = ",".join(map(str, ids[start : start + CHUNK]))
         parts: dict[int, list[str]] = defaultdict(list)
         for number, part in connection.execute(
-            "SELECT n.finding, m.part_number FROM finding_motors n JOIN motor m ON m.id = n.motor "
-            f"WHERE n.finding IN ({marks}) ORDER BY n.finding, n.motor"
+            "SELECT n.finding, m.part_number FROM finding_motors n JOIN motor m "
+            f"ON m.id BETWEEN n.first AND n.last WHERE n.finding IN ({marks}) "
+            "ORDER BY n.finding, m.id"
         ):
             parts[number].append(part)
         cursor = connection.execute(
@@ -321,13 +323,14 @@ def finding_ids(connection: sqlite3.Connection, motors: Sequence[int] | None = N
     """Findings of these motors, or of all that are current; worst first."""
     where = (
         "(m.replaced_by IS NULL OR EXISTS (SELECT 1 FROM finding_motors f JOIN motor o "
-        "ON o.id = f.motor WHERE f.finding = n.id AND o.replaced_by IS NULL))"
+        "ON o.id BETWEEN f.first AND f.last WHERE f.finding = n.id AND o.replaced_by IS NULL))"
     )
     if motors is not None:
         marks = ",".join(map(str, motors))
         where = (
             f"(n.scope = 'motor' AND n.motor IN ({marks}) OR n.id IN "
-            f"(SELECT finding FROM finding_motors WHERE motor IN ({marks})))"
+            "(SELECT f.finding FROM finding_motors f JOIN motor o "
+            f"ON o.id BETWEEN f.first AND f.last WHERE o.id IN ({marks})))"
         )
     rank = "CASE n.severity WHEN 'error' THEN 0 WHEN 'warning' THEN 1 ELSE 2 END"
     return [

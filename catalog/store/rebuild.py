@@ -51,7 +51,7 @@ class _Rebuilder:
         self.motors = self._dicts(
             "SELECT m.*, k.commutation, k.commutation_basis, k.magnet, k.magnet_basis, "
             "k.reference_temperature, k.reference_temperature_basis FROM motor m "
-            f"JOIN kinds k ON k.id = m.kind WHERE m.source = {source_id} ORDER BY m.id"
+            f"JOIN kinds k ON k.id = m.kind WHERE m.id {self.range} ORDER BY m.id"
         )
         stored = self._dicts(f"SELECT * FROM headings WHERE source = {source_id} ORDER BY id")
         self.heading_base: int = stored[0]["id"] if stored else 0

@@ -7,6 +7,9 @@ from typing import Any
 
 from .load import Known
 
+OF_SOURCE = "m.id BETWEEN s.first_motor AND s.first_motor + s.motors - 1"
+"""The motors m of a source s: their ids follow one another, which saves an index."""
+
 
 @dataclass(frozen=True, slots=True)
 class Import:
@@ -64,7 +67,7 @@ def changed_motors(
         "SELECT (SELECT old.id FROM motor old WHERE old.replaced_by = ?1 "
         "AND old.part_number = m.part_number AND old.maker = m.maker "
         "ORDER BY old.id DESC LIMIT 1), "
-        "m.id FROM motor m JOIN sources s ON s.id = m.source JOIN files f ON f.id = s.file "
+        f"m.id FROM files f JOIN sources s ON s.file = f.id JOIN motor m ON {OF_SOURCE} "
         'WHERE f."import" = ?1 ORDER BY m.id',
         (import_id,),
     ).fetchall()
@@ -117,16 +120,17 @@ def _delete_source(connection: sqlite3.Connection, source: int, first: int, n: i
         connection.execute(f"DELETE FROM {table} WHERE id BETWEEN ? AND ?", span)
     for table in (
         "figure_intervals", "figure_places", "figure_qualifiers", "further_figures", "points",
-        "finding_motors",
         "applied_corrections",
     ):  # fmt: skip
         connection.execute(f"DELETE FROM {table} WHERE motor BETWEEN ? AND ?", span)
+    connection.execute("DELETE FROM finding_motors WHERE first BETWEEN ? AND ?", span)
     connection.execute("DELETE FROM findings WHERE source = ?", (source,))
     connection.execute(
-        "DELETE FROM patterns WHERE pattern IN (SELECT pattern FROM motor WHERE source = ?)",
-        (source,),
+        "DELETE FROM patterns WHERE pattern IN "
+        "(SELECT pattern FROM motor WHERE id BETWEEN ? AND ?)",
+        span,
     )
-    removed = connection.execute("DELETE FROM motor WHERE source = ?", (source,)).rowcount
+    removed = connection.execute("DELETE FROM motor WHERE id BETWEEN ? AND ?", span).rowcount
     for table, column in (("headings", "source"), ("column_cache", "source"), ("sources", "id")):
         connection.execute(f"DELETE FROM {table} WHERE {column} = ?", (source,))
     return removed

@@ -133,14 +133,14 @@ class Writer:
         for table, column in (
             ("figure_value", "id"), ("figure_digit", "id"), ("constants", "id"),
             ("figure_intervals", "motor"), ("applied_corrections", "motor"),
-            ("finding_motors", "motor"),
+            ("finding_motors", "first"),
         ):  # fmt: skip
             self.connection.execute(
                 f"DELETE FROM {table} WHERE {column} BETWEEN ? AND ?", (first, last)
             )
         self.connection.execute("DELETE FROM findings WHERE source = ?", (source_id,))
-        old = "SELECT pattern FROM motor WHERE source = ?"
-        self.connection.execute(f"DELETE FROM patterns WHERE pattern IN ({old})", (source_id,))
+        old = "SELECT pattern FROM motor WHERE id BETWEEN ? AND ?"
+        self.connection.execute(f"DELETE FROM patterns WHERE pattern IN ({old})", (first, last))
         row = self.connection.execute(
             "SELECT min(id) FROM headings WHERE source = ?", (source_id,)
         ).fetchone()
@@ -412,15 +412,24 @@ class Writer:
             for i, part in enumerate(reconciled.batch.part_number):
                 entries.setdefault(part, []).append(first + i)
         self.connection.executemany(
-            "INSERT OR IGNORE INTO finding_motors VALUES (?,?)",
+            "INSERT INTO finding_motors VALUES (?,?,?)",
             [
-                (number + i, motor)
-                for i, (finding, _) in enumerate(pairs)
+                (number + i, start, end)
+                for i, (finding, entry) in enumerate(pairs)
                 if finding.scope == "column"
-                for part in finding.part_numbers
-                for motor in entries.get(part, ())
+                for start, end in _runs(
+                    [first + entry, *(m for p in finding.part_numbers for m in entries.get(p, ()))]
+                )
             ],
         )
+
+
+def _runs(numbers: Sequence[int]) -> Iterator[tuple[int, int]]:
+    """Numbers that follow one another as (first, last): a finding of a whole column is one row."""
+    found = np.unique(numbers)
+    breaks = np.flatnonzero(np.diff(found) > 1)
+    starts, ends = np.append(0, breaks + 1), np.append(breaks, len(found) - 1)
+    yield from zip(found[starts].tolist(), found[ends].tolist(), strict=True)
 
 
 def _finding_row(f: Finding) -> tuple:

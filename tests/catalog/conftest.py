@@ -98,7 +98,7 @@ def batch() -> Batch:
     )  # fmt: skip
     torque.row[1] = 9  # a merged cell stands in another row
     temperature = column([125, 125, 155], ["257", "257", "≤ 311"], heading=4, at=7,
-                         low=[124.72222222] * 2 + [nan], high=[125.27777778] * 2 + [155])  # fmt: skip
+                         low=[124.72222] * 2 + [nan], high=[125.27778] * 2 + [155])  # fmt: skip
     temperature.qualifiers = {2: "at most"}
     price = column([0, 99.5, nan], ["0", "99.50", None], heading=5, at=8,
                    low=[0, 99.495, nan], high=[0, 99.505, nan])  # fmt: skip

@@ -262,7 +262,7 @@ def test_intervals_are_kept_by_the_last_digit():
         value, ["30.2", "24800", "5", "10…28", "≤ 0.5"], heading=0, at=1, low=low, high=high
     )
     digits, others = encode(figures, np.array([1e-3, 1.0, 1.0, 1.0, 1.0]))
-    assert digits == [-1, 2, None, None, None]
+    np.testing.assert_array_equal(digits, [-1, 2, np.nan, np.nan, np.nan])
     assert [entry for entry, _, _ in others] == [3, 4]
 
 
