@@ -26,8 +26,10 @@ if TYPE_CHECKING:
 
 Array = NDArray[np.float64]
 
-#: Ratios in the first, coarse look at a range over many motors, and around each motor's best one.
-_COARSE = 25
+#: Step and largest number of ratios in the first, coarse look at a range over many motors, and
+#: how many are tried around each motor's best one.
+_STEP = 1.25
+_MOST = 33
 _AROUND = 9
 #: Cases that the periodic winding temperature is worth at once; beyond, only where it may decide.
 _FEW = 60_000
@@ -244,7 +246,8 @@ def choose(judge_: Judge, machines: Machines) -> Judged:
     assert ratios.high is not None
     if len(machines) * GRID <= _FEW:
         return best_of(judge_, machines, ratio_grid(ratios.low, ratios.high), periodic=True)
-    grid = np.geomspace(ratios.low, ratios.high, _COARSE)
+    steps = int(np.ceil(np.log(ratios.high / ratios.low) / np.log(_STEP)))
+    grid = np.geomspace(ratios.low, ratios.high, min(max(steps, 2), _MOST - 1) + 1)
     found = best_of(judge_, machines, grid, periodic=False)
     largest = found.largest
     near = np.flatnonzero((found.verdict != Verdict.FEASIBLE) & (largest < _HOPELESS))

@@ -29,7 +29,7 @@ Array = NDArray[np.float64]
 
 #: Near misses shown, and how many of the nearest rejected motors are looked at for them.
 SHOWN = 5
-_POOL = 12
+_POOL = 8
 #: Farthest change that is still worth saying.
 _COLDEST = 0.0
 _LONGEST_REST = 100.0  # times the cycle's period
