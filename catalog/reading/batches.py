@@ -38,6 +38,8 @@ from .kind import (
     in_words,
     magnet_in,
     note_conventions,
+    note_temperature,
+    note_tolerance,
     notes_of,
     signature,
 )
@@ -46,7 +48,7 @@ from .layout import inherit
 from .lexicon import squeeze, symbol_form, tokens
 from .match import Match, Matcher
 from .model import Field, ReadOptions, Table, Unread
-from .phrase import conventions_of
+from .phrase import conventions_of, point_key
 
 CHUNK = 20_000
 _STYLE_ROWS = 2000
@@ -312,11 +314,12 @@ class TableReader:
             and not (m.units and m.units[0].marks & {"rms", "peak"})
         ):
             kept.pop("voltage")
-        if self.commutation is Commutation.BRUSHED:
-            kept.pop("between", None) if kept.get("between") == "lines" else None
         convention = base.with_(**kept, basis="stated") if kept else base
         if "temperature" in q.carries:
             t = _temperature_of(m)
+            for mark in m.field.label.marks:
+                if t is None and mark in self.notes.marked:
+                    t = note_temperature(self.notes.marked[mark])
             if t is None and m.role != "condition":
                 t = self.notes.temperature
             if t is not None:
@@ -464,7 +467,11 @@ class TableReader:
                 continue
             assert m.key is not None
             q = quantity(m.key)
-            tolerance = m.field.label.tolerance or self.notes.tolerance
+            marked = [self.notes.marked[x] for x in m.field.label.marks if x in self.notes.marked]
+            own = m.field.label.tolerance or next(
+                (t for n in marked if (t := note_tolerance(n))), None
+            )
+            tolerance = own or self.notes.tolerance
             if q.key in (
                 "nominal_voltage",
                 "mains_voltage",
@@ -474,7 +481,7 @@ class TableReader:
                 "pole_pairs",
                 "phases",
             ):
-                tolerance = m.field.label.tolerance
+                tolerance = own
             values = read_values(column, q, m.units, self.style, marks, tolerance)
             if q.key in ("nominal_voltage", "mains_voltage"):
                 plainly = [i for i in range(n) if i not in values.qualifiers]
@@ -737,9 +744,11 @@ class TableReader:
         self, points: dict[int, dict[str, Point]], i: int, section: str, generic: str,
         value: float, row: int,
     ) -> None:  # fmt: skip
-        mine = points.setdefault(i, {})
-        point = mine.setdefault(section, Point(section.replace("_", " "), {}, row))
-        point.figures.setdefault(generic, value)
+        key = point_key(section, generic)
+        if key is not None:
+            mine = points.setdefault(i, {})
+            point = mine.setdefault(section, Point(section.replace("_", " "), {}, row))
+            point.figures.setdefault(key, value)
 
     def _point_too(
         self, points: dict[int, dict[str, Point]], m: Match, values: Values, rows: Sequence[int]

@@ -42,10 +42,35 @@ _MARK = re.compile(
 )
 
 
+def _lines(text: str) -> list[str]:
+    """The notes of a text: its lines, where a new mark begins."""
+    clean = plain(text)
+    parts = re.split(r"\n(?=\s*(?:[*†‡§]|\^?\(?\d{1,2}\)|\(\d|\^\(?\d))", clean)
+    return [
+        q for p in parts for q in (p.split("\n") if len(parts) > 1 or p.count("\n") < 6 else [p])
+    ]
+
+
+def note_temperature(text: str) -> float | None:
+    """The temperature of the winding that a note states."""
+    found = re.search(r"(-?\d{1,3}(?:[.,]\d)?)\s*(?:°\s*C|℃)", text)
+    if found and (not _AMBIENT.search(text) or _WINDING.search(text)):
+        return float(found[1].replace(",", "."))
+    return None
+
+
+def note_tolerance(text: str) -> float | None:
+    """The tolerance that a note states, as a fraction."""
+    found = re.search(r"(?:±|\+/-)\s*(\d+(?:[.,]\d+)?)\s*%", text)
+    if found and not re.search(r"voltage|spannung|tension|supply", text, re.IGNORECASE):
+        return float(found[1].replace(",", ".")) / 100
+    return None
+
+
 def notes_of(texts: Sequence[str]) -> Notes:
     """The conventions, temperature and tolerance that notes state."""
     notes = Notes()
-    for text in texts:
+    for text in (line for t in texts for line in _lines(t)):
         clean = plain(text).replace("\n", " ")
         if not clean:
             continue
@@ -56,12 +81,9 @@ def notes_of(texts: Sequence[str]) -> Notes:
             notes.marked[core] = mark["t"]
             continue
         notes.conventions += clauses_of(clean)
-        found = re.search(r"(-?\d{1,3}(?:[.,]\d)?)\s*(?:°\s*C|℃)", clean)
-        if found and (not _AMBIENT.search(clean) or _WINDING.search(clean)):
-            notes.temperature = float(found[1].replace(",", "."))
-        tolerance = re.search(r"(?:±|\+/-)\s*(\d+(?:[.,]\d+)?)\s*%", clean)
-        if tolerance and not re.search(r"voltage|spannung|tension|supply", clean, re.I):
-            notes.tolerance = float(tolerance[1].replace(",", ".")) / 100
+        temperature, tolerance = note_temperature(clean), note_tolerance(clean)
+        notes.temperature = notes.temperature if temperature is None else temperature
+        notes.tolerance = notes.tolerance if tolerance is None else tolerance
     return notes
 
 

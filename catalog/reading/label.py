@@ -24,6 +24,10 @@ _TOLERANCE = re.compile(r"(?:±|\+/-|\+-)\s*(?P<tol>\d+(?:[.,]\d+)?)\s*%")
 _CONDITION = re.compile(
     r"(?:(?:@|at|bei|à|a|con|sous)\s+)?(?P<c>\b\d{1,3}(?:[.,]\d+)?\s*(?:k?V\s*(?:AC|DC)?|VAC|VDC|K)\b|\bS[1-9](?:[\s-]*\d+\s*%)?)"
 )
+_CONDITION_ONLY = re.compile(
+    r"(?:(?:@|at|bei|à)\s+)?(?:[^\W\d]{1,6}\s*=\s*)?\d{1,3}(?:[.,]\d+)?\s*(?:V\s*(?:AC|DC)?|VAC|VDC|K|°C|℃)"
+    r"|S[1-9](?:[\s-]*\d+\s*%)?"
+)
 _QUALIFIERS = {
     "max": "at most",
     "maximum": "at most",
@@ -33,10 +37,15 @@ _QUALIFIERS = {
 }
 _JOINERS = re.compile(r"\s+/\s+|\s*\|\s*|\n|\s*[;；]\s*|、")
 _POWER_OF_TEN = re.compile(r"\s*[×x*·]\s*10\s*\^?\s*(?P<p>[+-]?\d{1,2})$")
+_BRAKE_PAIR = re.compile(
+    r"[,;]?\s*\(?\b(?:without|w/o|ohne|sans|senza|sin)\s*[(/]\s*(?:with|mit|avec|con)\)?\s+"
+    r"(?:holding )?(?:brake|Bremse|Haltebremse|frein|freno)\)?",
+    re.IGNORECASE,
+)
 _TWO_SCRIPTS = re.compile(
     r"([^A-Za-z]*[\u3040-\u30ff\u3400-\u9fff][^A-Za-z]*?)\s+([A-Za-z][A-Za-z].*)$", re.S
 )
-_SYMBOL_EDGES = re.compile(r"[\s,:=–-]+")
+_SYMBOL_EDGES = re.compile(r"\s*[,:=]\s*|\s+[–-]\s+|\s+")
 
 
 @dataclass(frozen=True, slots=True)
@@ -104,7 +113,7 @@ def _groups(text: str) -> tuple[str, list[str]]:
         outside.append(current)
     else:
         outside.append(current)
-    joined = " ".join(part.strip() for part in outside if part.strip(" ,;:"))
+    joined = " ".join(part.strip(" ") for part in outside if part.strip(" ,;:\n"))
     return joined, [i for i in inside if i]
 
 
@@ -120,6 +129,7 @@ def parse_label(text: str) -> Label:
     label = Label(text)
     clean = plain(text)
     clean = re.sub(r"-\n\s*(?=[a-zà-ÿ])", "", clean)
+    clean = _BRAKE_PAIR.sub("", clean)
     if not clean:
         return label
     forced = re.match(r"([a-z][a-z_]+)(?=$|\s*[\[(])", clean)
@@ -249,7 +259,9 @@ def _core(label: Label, core: str) -> Label:
     parts = [p.strip(" ,:=") for p in _JOINERS.split(core) if p.strip(" ,:=")]
     if len(parts) > 1 and match_phrase(core).score < 0.95:
         for part in parts:
-            if _is_unit(part) and not (part == parts[0] and find_symbol(part)):
+            if _CONDITION_ONLY.fullmatch(part):
+                label = replace(label, conditions=(*label.conditions, part))
+            elif _is_unit(part) and not (part == parts[0] and find_symbol(part)):
                 label = replace(label, units=(*label.units, part))
             else:
                 label = _named(label, part)
@@ -266,15 +278,16 @@ def _named(label: Label, core: str) -> Label:
         return replace(label, names=(*label.names, phrase), other=label.other or phrase.other)
     best: tuple[float, Phrase, str, str] | None = None
     for name, symbol, unit in _splits(core):
+        only = symbol and name and conventions_of(name, whole=True)
         p = match_phrase(name) if name else Phrase(name)
         score = p.score if name else 0.0
-        if symbol and not name:
+        if symbol and (not name or only):
             hit = find_symbol(symbol)
             score = 0.9 * hit.surety if hit else 0.0
         if unit:
             score += 0.001 * len(unit) + 0.02
         if symbol:
-            score += 0.005
+            score -= 0.01
         if best is None or score > best[0] + 1e-9:
             best = (score, p, symbol, unit)
     assert best is not None
@@ -286,6 +299,8 @@ def _named(label: Label, core: str) -> Label:
         return label
     if score < 0.5 and "_" in core:
         return _named(label, core.replace("_", " "))
+    if symbol and phrase.text and (stated := conventions_of(phrase.text, whole=True)):
+        label, phrase = _with_convention(label, stated), Phrase("")
     if symbol:
         label = replace(label, symbols=(*label.symbols, symbol))
     if unit:

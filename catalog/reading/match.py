@@ -1,14 +1,15 @@
 """All headings of a table → quantities: one best assignment, with reasons and rivals."""
 
 import re
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 
 from ...schema.figure import FigureError, NumberStyle, read_figure
-from ...schema.units import Unit, UnitError, read_unit, unit_of
+from ...schema.signs import plain
+from ...schema.units import GD2_TO_INERTIA, Unit, UnitError, read_unit, unit_of
 from ...schema.vocabulary import Quantity, quantities, quantity
-from .lexicon import find_symbol, squeeze, symbol_form, tokens
+from .lexicon import find_symbol, lexicon, squeeze, symbol_form, tokens
 from .model import Field
 from .phrase import COMPOSED, EXACT, Phrase, guesses_for
 
@@ -212,7 +213,7 @@ class Matcher:
                     score, reason = named[key]
                     offer(key, score + 0.04, f'{reason}, and so does the symbol "{symbol}"')
                 elif not named:
-                    weight = 0.88 if not any(p.rest for p in f.label.names) else 0.72
+                    weight = _symbol_weight(f.label.names)
                     offer(key, weight * hit.surety, f'symbol "{symbol}"')
         if f.label.other and not any(s >= EXACT for s, _ in named.values()):
             self.refusals[i] = (f'"{f.label.other}" makes it none of the motor\'s figures', ())
@@ -249,7 +250,7 @@ class Matcher:
         f = self.fields[i]
         if q.text:
             measured = [u for u in f.units if (x := unit_of(u)) is not None and x.si != "1"]
-            if measured and q.key not in ("part_number",):
+            if measured:
                 return None
             return Candidate(q.key, score, reason)
         values = self.values[i]
@@ -277,6 +278,9 @@ class Matcher:
             if inside and not units and "1" not in q.accepts:
                 self.refusals.setdefault(i, (refused, (q.key,)))
                 return None
+        if q.key == "rotor_inertia" and units and _is_flywheel(f):
+            units = [replace(u, factor=u.factor * GD2_TO_INERTIA) for u in units]
+            reason += ", a flywheel effect GD², four times the inertia"
         unitless = not units
         if unitless and "1" in q.accepts:
             units, unitless = [Unit("", "1", 1.0, 0.0, "1")], False
@@ -511,6 +515,20 @@ class Matcher:
             if unit is not None and unit.si != "1":
                 return tuple(k for k, q in quantities().items() if unit.si in q.accepts)[:4]
         return ()
+
+
+def _is_flywheel(f: Field) -> bool:
+    """Whether the heading gives GD² instead of the inertia."""
+    texts = [f.label.text, *f.label.symbols, *(p.text for p in f.label.names)]
+    return any(re.search(r"GD\s*\^?2|flywheel|schwungmoment", plain(t), re.I) for t in texts)
+
+
+def _symbol_weight(names: tuple[Phrase, ...]) -> float:
+    """How far a symbol is trusted beside words that say nothing we know, or something else."""
+    rest = {t for p in names for t in p.rest if len(t) > 2}
+    if not rest:
+        return 0.88
+    return 0.5 if rest & lexicon().known else 0.72
 
 
 def when_of(f: Field) -> str:

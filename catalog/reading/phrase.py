@@ -35,6 +35,19 @@ COMPOSED: dict[tuple[str, str], str] = {
 }
 """Section and generic name → quantity; what a point gives beyond these stays with the point."""
 
+_POINT_FIGURES = {
+    "speed": "nominal_speed", "torque": "nominal_torque", "current": "nominal_current",
+    "power": "rated_power", "efficiency": "rated_efficiency", "voltage": "nominal_voltage",
+}  # fmt: skip
+
+
+def point_key(section: str, generic: str) -> str | None:
+    """The figure key under which an operating point keeps a figure; its name tells the point."""
+    if section in ("no_load", "stall", "maximum_efficiency", "maximum_power"):
+        return COMPOSED.get((section, generic)) or _POINT_FIGURES.get(generic)
+    return _POINT_FIGURES.get(generic)
+
+
 POINTS = ("no_load", "stall", "rated", "maximum_efficiency", "maximum_power")
 
 _CONVENTION_FIELDS: dict[str, dict[str, str]] = {

@@ -10,39 +10,65 @@ from .phrase import section_of
 
 def points_table(block: Block) -> Table | None:
     """One motor's points as a table of fields, if the block is such a matrix; else None."""
-    rows = block.rows
-    if len(rows) > 40 or len(rows) < 3 or block.width > 40:
+    if len(block.rows) > 40 or len(block.rows) < 3 or block.width > 40:
         return None
-    for r in range(min(3, len(rows) - 2)):
-        head = rows[r]
-        generics = [
-            c
-            for c in range(1, block.width)
-            if any(p.generic and not p.section for p in parse_label(head[c]).names)
-        ]
-        down = [i for i in range(r + 1, len(rows)) if section_of(rows[i][0])]
-        body = [i for i in range(r + 1, len(rows)) if any(is_figure(t) for t in rows[i][1:])]
-        if len(generics) >= 2 and len(down) >= 2 and len(down) >= 0.7 * len(body):
-            return _matrix(block, r, generics, down)
+    for layout, rows in (
+        ("rows", block.rows),
+        ("columns", [list(c) for c in zip(*block.rows, strict=True)]),
+    ):
+        for r in range(min(3, len(rows) - 1)):
+            head = rows[r]
+            generics = [
+                c
+                for c in range(1, len(head))
+                if any(p.generic and not p.section for p in parse_label(head[c]).names)
+            ]
+            down = [
+                i
+                for i in range(r + 1, len(rows))
+                if section_of(
+                    rows[i][generics[0] - 1] if layout == "columns" and generics else rows[i][0]
+                )
+            ]
+            body = [i for i in range(r + 1, len(rows)) if any(is_figure(t) for t in rows[i][1:])]
+            if len(generics) >= 2 and len(down) >= 2 and len(down) >= 0.7 * len(body):
+                return _matrix(block, layout, rows, r, generics, down)
     return None
 
 
-def _matrix(block: Block, head: int, columns: list[int], points: list[int]) -> Table:
-    table = Table("rows", [], [block.row_numbers[points[0]]])
-    rows = block.rows
-    table.titles = [" ".join(t for t in row if t) for row in rows[:head]]
-    between = range(head + 1, points[0])
+def _matrix(
+    block: Block,
+    layout: str,
+    rows: list[list[str]],
+    head: int,
+    columns: list[int],
+    points: list[int],
+) -> Table:
+    """The fields of a matrix whose points stand in `rows`, the block's rows or its columns."""
+    across = layout == "columns"
+    lines = block.column_numbers if across else block.row_numbers
+    others = block.row_numbers if across else block.column_numbers
+    table = Table(layout, [], [lines[points[0]]])
+    name_at = columns[0] - 1 if across else 0
+    between = [k for k in range(head + 1, points[0]) if not section_of(rows[k][name_at])]
     for i in points:
-        for c in range(1, block.width):
+        for c in range(name_at + 1, len(rows[head])):
             if not rows[i][c] or not rows[head][c]:
                 continue
-            cells: list[HeadCell] = [("caption", rows[i][0]), ("name", rows[head][c])]
+            cells: list[HeadCell] = [("caption", rows[i][name_at]), ("name", rows[head][c])]
             cells += [("unit", rows[k][c]) for k in between if rows[k][c]]
-            field = head_field(
-                cells, [rows[i][c]], block.row_numbers[i], block.column_numbers[c], joins=False
-            )
-            field.places = [block.row_numbers[i]]
+            place = (others[c], lines[head]) if across else (lines[head], others[c])
+            field = head_field(cells, [rows[i][c]], *place, joins=False)
+            field.places = [lines[i]]
             field.source = c
             table.fields.append(field)
-    table.notes = [" ".join(t for t in row if t) for row in rows[points[-1] + 1 :]]
+    if across:
+        table.titles = [_text(row) for row in block.rows[:name_at]]
+        return table
+    table.titles = [_text(row) for row in rows[:head]]
+    table.notes = [_text(row) for row in rows[points[-1] + 1 :]]
     return table
+
+
+def _text(row: list[str]) -> str:
+    return " ".join(t for t in row if t)

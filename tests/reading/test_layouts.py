@@ -61,7 +61,7 @@ MM-1 | 10000 | 0.1 | 8500 | 5.2 | 0.6 | 40 | 4.1
         "stall_torque": 0.04, "stall_current": 4.1,
     })
     point = next(p for p in s.batch.points[0] if p.name == "maximum efficiency")
-    assert point.figures == pytest.approx({"speed": 8500 * RPM, "torque": 0.0052, "current": 0.6})
+    assert point.figures == pytest.approx({"nominal_speed": 8500 * RPM, "nominal_torque": 0.0052, "nominal_current": 0.6})
 
 
 def test_captions_over_the_middle_of_their_groups():
