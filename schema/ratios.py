@@ -33,6 +33,8 @@ _HALVINGS = 20
 _GOLDEN = (np.sqrt(5) - 1) / 2
 #: Steps of the golden section: a minimum is found to 1e-5 of a grid step.
 _SECTIONS = 24
+#: Steps of it in the screening: to 1e-2 of a grid step.
+_FEW_SECTIONS = 10
 #: Cases of a grid that are held at once.
 _CASES = 1 << 18
 
@@ -101,37 +103,47 @@ def screen(
         near = np.arange(1 - _COARSE, _COARSE)
         around = grid[np.clip(at[:, None] + near, 0, grid.size - 1)]
         found = best_of(machines, demand, around, reserve, periodic=False)
-    peaks = np.flatnonzero(found.verdict != Verdict.REJECTED)
-    found.utilisations.put(
-        peaks, judge_cases(machines, demand, peaks, found.ratio[peaks], periodic=True)
-    )
+    if grid.size > 1:
+        _try_between(machines, demand, grid, reserve, found, periodic=False)
+    by_mean = found.verdict == Verdict.REJECTED
+    peaks = np.flatnonzero(~by_mean)
+    found.utilisations.put(peaks, judge_cases(machines, demand, peaks, found.ratio[peaks]))
     found.verdict = found.utilisations.verdict(reserve)
     if grid.size > 1:
-        _try_between(machines, demand, grid, reserve, found)
+        _try_between(machines, demand, grid, reserve, found, periodic=True, without=by_mean)
     return found
 
 
 def _try_between(
-    machines: Machines, demand: Demand, grid: Array, reserve: float, found: Choice
+    machines: Machines,
+    demand: Demand,
+    grid: Array,
+    reserve: float,
+    found: Choice,
+    *,
+    periodic: bool,
+    without: NDArray[np.bool_] | None = None,
 ) -> None:
-    """Give the motors that only just fail the least demanding ratio within a step of the grid."""
+    """Give the motors that only just fail a ratio within a step of the grid, if one will do."""
     step = grid[1] / grid[0]
     largest = found.utilisations.largest
     close = (found.verdict == Verdict.REJECTED) & (largest <= (1 - reserve) * _reach(step))
+    if without is not None:
+        close &= ~without
     which = np.flatnonzero(close)
     if which.size == 0:
         return
-    search = _Search(machines, demand, reserve, True)
+    search = _Search(machines, demand, reserve, periodic)
     centre = np.log(found.ratio[which])
     ends = (
         np.maximum(centre - np.log(step), np.log(grid[0])),
         np.minimum(centre + np.log(step), np.log(grid[-1])),
     )
-    x, y = _golden(lambda x: search.excess(which, np.exp(x)), *ends)
+    x, y = _golden(lambda x: search.excess(which, np.exp(x)), *ends, sections=_FEW_SECTIONS)
     which, x = which[y <= 0], x[y <= 0]
     found.ratio[which] = np.exp(x)
     found.utilisations.put(
-        which, judge_cases(machines, demand, which, found.ratio[which], periodic=True)
+        which, judge_cases(machines, demand, which, found.ratio[which], periodic=periodic)
     )
     found.verdict[which] = found.utilisations.take(which).verdict(reserve)
 
@@ -297,12 +309,14 @@ class _Search:
         return best
 
 
-def _golden(function, low: Array, high: Array) -> tuple[Array, Array]:
+def _golden(
+    function: Callable[[Array], Array], low: Array, high: Array, sections: int = _SECTIONS
+) -> tuple[Array, Array]:
     """Minimum between `low` and `high` by golden section, elementwise: where, and how low."""
     a, b = low.copy(), high.copy()
     c, d = b - _GOLDEN * (b - a), a + _GOLDEN * (b - a)
     at_c, at_d = function(c), function(d)
-    for _ in range(_SECTIONS):
+    for _ in range(sections):
         left = at_c < at_d
         a, b = np.where(left, a, c), np.where(left, d, b)
         probe = np.where(left, b - _GOLDEN * (b - a), a + _GOLDEN * (b - a))
