@@ -212,8 +212,8 @@ def main() -> None:
             slow = best(lambda: plain_python(some, cycle, ratios.tolist()), 1)
             whole = best(lambda: choose(Judge(cycle), fleet.machines), 1)
             print(
-                f"cycle of {len(TIMES) - 1} segments at 25 ratios: {vector / motors * 1e6:.1f} µs a "
-                f"motor, plain Python {slow / 200 * 1e6:.0f} µs, "
+                f"cycle of {len(TIMES) - 1} segments at 25 ratios: {vector / motors * 1e6:.1f} µs "
+                f"a motor, plain Python {slow / 200 * 1e6:.0f} µs, "
                 f"ratio {slow / 200 / (vector / motors):.0f} (at least 50)"
             )
             print(f"choice of the ratio, periodic temperatures too: {whole:.1f} s")

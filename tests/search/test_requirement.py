@@ -218,3 +218,13 @@ def test_toml_writes_what_it_reads(tmp_path: Path) -> None:
         "move": [{"angle": "1 rad", "there_and_back": True}, {"dwell": "1 s"}],
     }
     assert tomllib.loads(to_toml(document)) == document
+
+
+def test_every_key_is_documented() -> None:
+    page = (SAMPLES.parent / "docs" / "requirement.md").read_text(encoding="utf-8")
+    for section, fields in {**SECTIONS, **LISTS}.items():
+        head = f"### `[[{section}]]`" if section in LISTS else f"### `[{section}]`"
+        block = page.split(head)[1].split("###")[0]
+        for key, field in fields.items():
+            assert f"| `{key}` |" in block
+            assert field.doc in block
