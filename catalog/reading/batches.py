@@ -72,13 +72,15 @@ class TableReader:
         self.remarks: list[str] = list(table.remarks)
         self.notes: Notes = notes_of([*table.titles, *table.notes])
         self._ditto()
-        self.id_field = None if table.part_numbers else id_field(table)
+        self.id_field = None if table.part_numbers else self._told_ids() or id_field(table)
         self.style = self._style()
         self.matches = self._match()
         self._share_frame()
+        self._stated_voltage()
         self.why_not: list[str] = []
         figures = [m for m in self.matches if m.role in ("figure", "point")]
-        self.worthwhile = bool(figures) and table.count > 0
+        known = [m for m in self.matches if m.score >= 0.85 and m.guesses]
+        self.worthwhile = table.count > 0 and (bool(figures) or len(known) > 1)
         if not self.worthwhile:
             first = plain(table.fields[0].heading) if table.fields else ""
             self.why_not = [f'a table with "{first}" gives no figure of a motor, passed over']
@@ -89,6 +91,19 @@ class TableReader:
         self.headings = self._headings()
         self._unread_headings()
 
+    def _ids(self) -> list[str | None]:
+        if self.table.part_numbers or self.id_field is None:
+            return ids_of(self.table)
+        return [t or None for t in self.id_field.texts]
+
+    def _told_ids(self) -> Field | None:
+        """The field that the user names as the part numbers."""
+        for f in self.table.fields:
+            match = self._override(f)
+            if match is not None and match.key == "part_number":
+                return f
+        return None
+
     # --- preparation ----------------------------------------------------------------------------
 
     def _ditto(self) -> None:
@@ -96,6 +111,26 @@ class TableReader:
         for f in self.table.fields:
             if any(is_ditto(t) for t in set(f.texts[:_STYLE_ROWS]) if not t[:1].isdigit()):
                 f.texts = inherit(f.texts, ditto_only=True)
+
+    def _stated_voltage(self) -> None:
+        """The voltage of the whole table, where only a title or a note gives it: "at 12 V"."""
+        if any(m.key in ("nominal_voltage", "mains_voltage") for m in self.matches):
+            return
+        found: dict[str, str] = {}
+        for text in (*self.table.titles, *self.table.notes):
+            for at in re.finditer(
+                r"(?:\bat|\bbei|\bà|@)\s*(\d+(?:[.,]\d+)?\s*V)(?:\s*DC)?(?![\w/])", plain(text)
+            ):
+                found[at[1].replace(" ", "")] = text
+        if len(found) != 1:
+            return
+        (voltage, text), *_ = found.items()
+        n = self.table.count
+        field = Field(plain(text), parse_label("Nominal voltage [V]"), [voltage[:-1]] * n, 0, 0)
+        field.places, field.layout = [0] * n, "rows"
+        reason = "the voltage that the table is stated for, by its title or a note"
+        unit = read_unit("V", ("V",))
+        self.matches.append(Match(field, "figure", "nominal_voltage", 0.9, [unit], reason))
 
     def _share_frame(self) -> None:
         """A figure of the frame that stands once, at the first of its motors, holds for all.
@@ -168,6 +203,7 @@ class TableReader:
         if self.id_field is not None:
             own = Match(self.id_field, "text", "part_number", 1.0, [], "the part numbers")
             matches.insert(fields.index(self.id_field), own)
+        self._matched = matches
         for m in matches:
             self._repair(m, matcher)
         return matches
@@ -219,7 +255,9 @@ class TableReader:
             return
         size = float(np.median(np.abs(values))) * unit.factor
         lo, hi = q.plausible
-        if lo / 3 <= size <= hi * 3:
+        volts = [v for o in self._matched for v in _voltage_of(o, matcher)]
+        absurd = m.key == "back_emf_constant" and volts and max(volts) / size < 10  # rad/s
+        if lo / 3 <= size <= hi * 3 and not absurd:
             m.reason += "; as written, of a plausible size"
             return
         if m.key == "rotor_inertia":
@@ -377,7 +415,7 @@ class TableReader:
 
     def batch(self) -> Batch:
         """The table as one batch."""
-        ids = ids_of(self.table)
+        ids = self._ids()
         texts = [m.field.texts for m in self.matches]
         places = [m.field.places or self.table.places for m in self.matches]
         return self._build(ids, texts, places, self.unread)
@@ -387,7 +425,7 @@ class TableReader:
     ) -> Iterator[Batch]:
         """Batches of the head and of every chunk that follows; the headings are decided."""
         unread += self.unread
-        ids = ids_of(self.table)
+        ids = self._ids()
         sources = [m.field.source for m in self.matches]
         id_source = self.id_field.source if self.id_field is not None else None
         head = self.table.head
@@ -453,6 +491,7 @@ class TableReader:
             notes=list(self.notes.texts),
         )
         self._text_columns(batch, texts, places)
+        self._stated_connection(batch)
         marks = frozenset(self.notes.marked)
         points: dict[int, dict[str, Point]] = {}
         wants_points = any(m.role == "point" for m in self.matches)
@@ -529,7 +568,8 @@ class TableReader:
 
     def _places(self, f: Field, lines: list[int]) -> tuple[list[int], list[int]]:
         n = len(lines)
-        return (lines, [f.column] * n) if self.table.layout == "rows" else ([f.row] * n, lines)
+        rows = (f.layout or self.table.layout) == "rows"
+        return (lines, [f.column] * n) if rows else ([f.row] * n, lines)
 
     def _names(
         self, ids: Sequence[str | None], places: Sequence[int], unread: list[Unread]
@@ -631,6 +671,25 @@ class TableReader:
                     batch.commutation_basis[i] = basis
             if all(text is None for text in found.text):
                 del batch.texts[key]
+
+    def _stated_connection(self, batch: Batch) -> None:
+        """Star or delta, where a title or note says it of all windings."""
+        found = batch.texts.get("connection")
+        if found is not None:
+            found.text = [(in_words(t, "connections") or t) if t else None for t in found.text]
+            return
+        about = re.compile(
+            r"wind|connect|phase|schaltung|wickl|coupl|collega|conexi|結線|接", re.IGNORECASE
+        )
+        said = {
+            word
+            for t in self._texts_about()
+            if about.search(t) and (word := in_words(t, "connections"))
+        }
+        if len(said) == 1:
+            n = len(batch)
+            zeros = np.zeros(n, dtype=np.int32)
+            batch.texts["connection"] = TextColumn([said.pop()] * n, zeros, zeros.copy())
 
     def _cell_conventions(
         self, figure: FigureColumn, values: Values, q: Quantity, base: Convention
@@ -767,6 +826,12 @@ class TableReader:
                         int(rows[i]),
                     )
                 return
+
+
+def _voltage_of(m: Match, matcher: Matcher) -> list[float]:
+    if m.key != "nominal_voltage" or m.role != "figure" or not m.units:
+        return []
+    return [v * m.units[0].factor for v in matcher.sampled(m.field)]
 
 
 def _runs(texts: Sequence[str]) -> list[list[int]]:

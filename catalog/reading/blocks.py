@@ -4,7 +4,7 @@ from dataclasses import dataclass, field
 
 from ...schema.signs import plain
 from ..tables.grid import Grid
-from .cells import is_figure, strength
+from .cells import is_figure, is_unit, strength
 from .label import parse_label
 
 _ROWS_TRIED, _COLUMNS_TRIED = 80, 40
@@ -52,11 +52,52 @@ def blocks_of(grid: Grid) -> list[Block]:
                 grid.column_numbers,
                 filled={(r - start, c) for r, c in filled if start <= r < i},
             )
-            blocks += _side_by_side(part)
+            blocks += [side for piece in _stacked(part) for side in _side_by_side(piece)]
             start = None
     for block in blocks:
         block.kind, block.line = orientation(block)
     return _merged(blocks)
+
+
+def _stacked(block: Block) -> list[Block]:
+    """The blocks that stand on one another without a blank row: a new row of headings begins one."""
+    scores = row_scores(block)
+    cuts: list[int] = []
+    seen_figures = False
+    for r in range(1, len(scores)):
+        row = block.rows[r]
+        if scores[r] >= 2.9 and seen_figures and not is_data(row):
+            cut = r
+            above = {t for t in block.rows[r - 1] if t}
+            if (
+                len(above) >= 2
+                and not is_data(block.rows[r - 1])
+                and cut - 1 > (cuts[-1] if cuts else 0)
+            ):
+                cut -= 1
+            cuts.append(cut)
+            seen_figures = False
+        elif is_data(row):
+            seen_figures = True
+    borders = [0, *cuts, len(block.rows)]
+    return [
+        Block(
+            block.rows[a:b],
+            block.row_numbers[a:b],
+            block.column_numbers,
+            filled={(r - a, c) for r, c in block.filled if a <= r < b},
+        )
+        for a, b in zip(borders, borders[1:], strict=False)
+    ]
+
+
+def is_data(row: list[str]) -> bool:
+    """Whether a row holds figures, as a motor's row does."""
+    filled = [t for t in row if t]
+    figures = sum(1 for t in filled if is_figure(t) and not is_unit(t))
+    if not figures or sum(map(is_unit, filled)) > 0.5 * len(filled):
+        return False
+    return figures >= 2 or figures / len(filled) >= 0.3
 
 
 def _side_by_side(block: Block) -> list[Block]:

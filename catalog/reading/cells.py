@@ -1,6 +1,7 @@
 """Quick questions about one cell: is it a figure, a unit, a heading?"""
 
 import re
+from contextvars import ContextVar
 from functools import lru_cache
 
 from ...schema.figure import is_missing
@@ -52,9 +53,18 @@ def is_ditto(text: str) -> bool:
     )
 
 
-@lru_cache(maxsize=32768)
+TOLD: ContextVar[frozenset[str]] = ContextVar("told headings", default=frozenset())
+"""Headings that the user, or a kept reading, explains; squeezed."""
+
+
 def strength(text: str) -> float:
     """How surely a cell is the heading of a quantity: 0 … 1."""
+    told = TOLD.get()
+    return 1.0 if told and squeeze(tokens(text)) in told else _strength(text)
+
+
+@lru_cache(maxsize=32768)
+def _strength(text: str) -> float:
     clean = plain(text)
     if not clean or len(clean) > 120 or not _LETTER.search(clean):
         return 0.0

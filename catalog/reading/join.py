@@ -73,6 +73,25 @@ def ids_of(table: Table) -> list[str | None]:
     return [t or None for t in field.texts] if field else [None] * table.count
 
 
+def goes_with(home: Table, table: Table) -> bool:
+    """Whether a table without part numbers gives more figures of the one motor before it."""
+    return (
+        home.count == table.count == 1
+        and any(ids_of(home))
+        and not any(ids_of(table))
+        and any(f.label.strength >= 0.5 for f in table.fields)
+    )
+
+
+def take_in(home: Table, table: Table) -> None:
+    """The fields of a further table of the same one motor."""
+    for f in table.fields:
+        home.fields.append(
+            replace(f, layout=f.layout or table.layout, places=f.places or list(table.places))
+        )
+    home.notes += [*table.titles, *table.notes]
+
+
 def joined(tables: list[Table], remarks: list[str]) -> list[Table]:
     """Tables with motors in common made one; the others as they are."""
     out: list[Table] = []

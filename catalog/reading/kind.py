@@ -101,14 +101,18 @@ def clauses_of(text: str) -> list[tuple[str | None, dict[str, str]]]:
     "brushed DC motor") state nothing here.
     """
     found: list[tuple[str | None, dict[str, str]]] = []
-    for clause in re.split(r"[;；。]|[.,]\s|、|\s(?:and|und|et|e|y)\s", text):
-        stated = note_conventions(clause)
-        if not stated:
-            continue
-        subjects = [
-            s for s, words_ in _SUBJECTS.items() if re.search(words_, clause, re.IGNORECASE)
-        ]
-        found += [(s, stated) for s in subjects] or [(None, stated)]
+    for sentence in re.split(r"[;；。]|\.\s", text):
+        subjects: list[str] = []
+        said = False
+        for clause in re.split(r",\s|、|\s(?:and|und|et|e|y)\s", sentence):
+            named = [s for s, w in _SUBJECTS.items() if re.search(w, clause, re.IGNORECASE)]
+            stated = note_conventions(clause)
+            # "Resistance and inductance per phase" speaks of both; "currents rms, voltage peak"
+            # begins anew with the second.
+            subjects = [*(subjects if not (said and named) else []), *named]
+            if stated:
+                found += [(s, stated) for s in dict.fromkeys(subjects)] or [(None, stated)]
+                said = True
     return found
 
 

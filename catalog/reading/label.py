@@ -239,7 +239,7 @@ def _core(label: Label, core: str) -> Label:
     if not core:
         return label
     whole = match_phrase(core)
-    if whole.score >= 0.95 and not label.forced:
+    if whole.score >= 0.95 and not label.forced and not _is_rather_symbol(core, whole):
         return replace(label, names=(whole, *label.names), other=label.other or whole.other)
     if (found := conventions_of(core, whole=True)) and label.forced:
         return _with_convention(label, found)
@@ -269,12 +269,23 @@ def _core(label: Label, core: str) -> Label:
     return _named(label, core)
 
 
+def _is_rather_symbol(text: str, phrase: Phrase) -> bool:
+    """Whether a short text is a symbol (P_N) and only by chance the name of a text (p/n)."""
+    hit = find_symbol(text)
+    return (
+        hit is not None
+        and hit.surety > 0.95
+        and bool(phrase.keys)
+        and all(quantities()[k].text for k in phrase.keys)
+    )
+
+
 def _named(label: Label, core: str) -> Label:
     """A name with, perhaps, a symbol and a unit beside it."""
     if not core:
         return label
     phrase = match_phrase(core)
-    if phrase.score >= 0.95:
+    if phrase.score >= 0.95 and not _is_rather_symbol(core, phrase):
         return replace(label, names=(*label.names, phrase), other=label.other or phrase.other)
     best: tuple[float, Phrase, str, str] | None = None
     for name, symbol, unit in _splits(core):

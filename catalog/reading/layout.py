@@ -4,7 +4,7 @@ import re
 
 from ...schema.signs import plain
 from ...schema.vocabulary import quantity
-from .blocks import Block
+from .blocks import Block, is_data
 from .cells import is_caption, is_ditto, is_figure, is_role, is_symbol, is_unit, missing, strength
 from .heads import HeadCell, classify, context_of, head_field
 from .label import parse_label
@@ -17,15 +17,6 @@ _MOST_HEAD_ROWS = 7
 def _share(texts: list[str], test) -> float:
     filled = [t for t in texts if plain(t)]
     return sum(1 for t in filled if test(t)) / len(filled) if filled else 0.0
-
-
-def _is_data(row: list[str]) -> bool:
-    """Whether a row holds figures, as a motor's row does."""
-    filled = [t for t in row if t]
-    figures = sum(1 for t in filled if is_figure(t) and not is_unit(t))
-    if not figures or _share(row, is_unit) > 0.5:
-        return False
-    return figures >= 2 or figures / len(filled) >= 0.3
 
 
 def _kind_of_line(texts: list[str]) -> str:
@@ -47,7 +38,7 @@ def lay_out_rows(block: Block) -> Table:
     head = block.line
     rows = block.rows
     start = head + 1
-    while start < len(rows) and start - head < _MOST_HEAD_ROWS and not _is_data(rows[start]):
+    while start < len(rows) and start - head < _MOST_HEAD_ROWS and not is_data(rows[start]):
         start += 1
     if start >= len(rows) or start - head >= _MOST_HEAD_ROWS:
         start = head + 1
@@ -72,8 +63,12 @@ def lay_out_rows(block: Block) -> Table:
     for c in range(block.width):
         cells: list[HeadCell] = []
         row_of = block.row_numbers[min(head, len(block.row_numbers) - 1)]
+        named_at = head - top
+        own = any(rows[r][c] for r in range(top, head + 1))
         for r, kind in enumerate(kinds):
             text = head_rows[r][c] if c < len(head_rows[r]) else ""
+            if r == named_at and not own and any(h[c] for h in head_rows[r + 1 :]):
+                text = _left_of(head_rows[r], c)
             if text and not (cells and cells[-1][1] == text):
                 cells.append(classify(text, kind))
         texts = columns[c] if c < len(columns) else []
@@ -86,6 +81,11 @@ def lay_out_rows(block: Block) -> Table:
     if end_sections:
         table.remarks += end_sections
     return table
+
+
+def _left_of(row: list[str], c: int) -> str:
+    """The heading that a column without its own shares with its left neighbour (kg | lb)."""
+    return next((row[k] for k in range(c - 1, -1, -1) if row[k]), "")
 
 
 def _text_of(row: list[str]) -> str:
@@ -254,7 +254,11 @@ def lay_out_columns(block: Block) -> Table:
     roles = _roles(block, label_column)
     values = [c for c, role in enumerate(roles) if role == "value"]
     first = next((i for i, row in enumerate(rows) if _heads_quantity(row, label_column, values)), 0)
+    values = [c for c in values if any(row[c] for row in rows[first:])]
     id_row, condition_row = _header_rows(rows, first, label_column, values)
+    conditions = [rows[condition_row][c] for c in values] if condition_row is not None else None
+    if id_row is not None and conditions is None:
+        condition_row, conditions = _spread_conditions(rows, first, id_row, values)
     table = Table("columns", [], [block.column_numbers[c] for c in values])
     table.titles = [
         _text_of(row) for i, row in enumerate(rows[:first]) if i not in (id_row, condition_row)
@@ -306,8 +310,8 @@ def lay_out_columns(block: Block) -> Table:
         field.source = i
         table.fields.append(field)
     del pending_unit
-    if condition_row is not None:
-        _fold_conditions(table, [rows[condition_row][c] for c in values])
+    if conditions is not None:
+        _fold_conditions(table, conditions)
     return table
 
 
@@ -407,6 +411,24 @@ def _header_rows(
     if best is None and conditions:
         return conditions[0], None
     return best, conditions[0] if conditions else None
+
+
+def _spread_conditions(
+    rows: list[list[str]], first: int, id_row: int, values: list[int]
+) -> tuple[int | None, list[str] | None]:
+    """A row that tells apart columns with the same part number, its texts spread to the right."""
+    ids = [rows[id_row][c] for c in values]
+    if len(set(ids)) == len(ids):
+        return None, None
+    for i in range(first):
+        if i == id_row or not any(rows[i][c] for c in values):
+            continue
+        spread: list[str] = []
+        for c in values:
+            spread.append(rows[i][c] or (spread[-1] if spread else _left_of(rows[i], c)))
+        if len(set(zip(ids, spread, strict=True))) == len(ids):
+            return i, spread
+    return None, None
 
 
 def _id_rank(text: str) -> int:

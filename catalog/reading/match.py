@@ -215,7 +215,9 @@ class Matcher:
                 elif not named:
                     weight = _symbol_weight(f.label.names)
                     offer(key, weight * hit.surety, f'symbol "{symbol}"')
-        if f.label.other and not any(s >= EXACT for s, _ in named.values()):
+        if f.label.other and (
+            len(f.label.names) > 1 or not any(s >= EXACT for s, _ in named.values())
+        ):
             self.refusals[i] = (f'"{f.label.other}" makes it none of the motor\'s figures', ())
             return []
         found = [
@@ -238,7 +240,7 @@ class Matcher:
             elif (
                 not phrase.section
                 and phrase.keys
-                and section not in ("maximum_efficiency", "maximum_power")
+                and section in ("rated", "peak", "continuous_stall")
             ):
                 for key in phrase.keys:
                     offer(key, weight, phrase.how)
@@ -293,6 +295,8 @@ class Matcher:
         if sized < 0 and units:
             reason += ", though the values are of an unusual size"
         score += self._by_family(q.key, f, values, units)
+        if units and "ac" in units[0].marks and q.key == "nominal_voltage":
+            return self._with_unit(i, quantity("mains_voltage"), score, reason)
         if units and "ac" in units[0].marks:
             score += {"mains_voltage": 0.1, "nominal_voltage": -0.1}.get(q.key, 0.0)
         if units and "dc" in units[0].marks and q.key == "mains_voltage":

@@ -59,6 +59,7 @@ class Reading:
 class Field:
     """One heading with the cells of all motors under it (or beside it).
 
+    ``layout`` is that of its own table where it came from another one.
     ``texts`` has one text a motor; ``row`` and ``column`` are the heading's place in the file.
     In layout "rows" the motors' cells stand in ``column``, in layout "columns" in ``row``.
     """
@@ -77,6 +78,7 @@ class Field:
     line: int = 0
     source: int = 0
     places: list[int] | None = None
+    layout: str | None = None
 
 
 @dataclass(slots=True)
@@ -106,4 +108,5 @@ class Table:
     def place(self, field_: Field, motor: int) -> tuple[int, int]:
         """Row and column of a motor's cell in the file."""
         line = (field_.places or self.places)[motor]
-        return (line, field_.column) if self.layout == "rows" else (field_.row, line)
+        rows = (field_.layout or self.layout) == "rows"
+        return (line, field_.column) if rows else (field_.row, line)

@@ -1,5 +1,7 @@
 """Operating points laid out as a matrix: the points down (or across), the figures across (or down)."""
 
+from dataclasses import replace
+
 from .blocks import Block
 from .cells import is_figure
 from .heads import HeadCell, head_field
@@ -72,3 +74,32 @@ def _matrix(
 
 def _text(row: list[str]) -> str:
     return " ".join(t for t in row if t)
+
+
+def is_load_table(table: Table) -> bool:
+    """Whether a table lists measured points: speed, torque, current … and no motor's name."""
+    fields = [f for f in table.fields if any(f.texts)]
+    if table.layout != "rows" or table.part_numbers or not 2 <= table.count <= 200:
+        return False
+    generic = [f for f in fields if any(p.generic for p in f.label.names) and f.section is None]
+    return len(generic) >= 3 and len(generic) >= 0.8 * len(fields)
+
+
+def load_points(table: Table, home: Table | None) -> Table | None:
+    """The points of a load table as fields of the motor before it (None then), or of a new one."""
+    one = home is not None and home.count == 1
+    target = home if one and home is not None else Table("rows", [], [table.places[0]])
+    if not one:
+        target.titles, target.notes = table.titles, table.notes
+        target.sheet, target.page = table.sheet, table.page
+    else:
+        target.notes += [*table.titles, *table.notes]
+    for k, line in enumerate(table.places):
+        for f in table.fields:
+            if f.texts[k]:
+                target.fields.append(
+                    replace(
+                        f, texts=[f.texts[k]], section=f"load {k + 1}", places=[line], layout="rows"
+                    )
+                )
+    return None if one else target

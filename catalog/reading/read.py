@@ -6,10 +6,12 @@ from ...schema.batch import Batch, Heading
 from ..tables.grid import Grid, TableFile
 from .batches import TableReader
 from .blocks import Block, blocks_of
-from .join import joined
+from .join import goes_with, joined, take_in
+from .cells import TOLD
 from .layout import lay_out_columns, lay_out_rows
+from .lexicon import squeeze, tokens
 from .model import Reading, ReadingError, ReadOptions, Table, Unread
-from .points import points_table
+from .points import is_load_table, load_points, points_table
 
 
 def read(file: TableFile, options: ReadOptions) -> Reading:
@@ -28,12 +30,16 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
         raise ReadingError(f'{file.name}: has no sheet "{options.sheet}"; it has {names or "none"}')
     lazy = None
     lone: list[Table] = []
+    told = TOLD.set(
+        frozenset(squeeze(tokens(h)) for h in (*options.overrides, *options.kept)) - {""}
+    )
     for grid in grids:
         remarks += grid.remarks
         tables = _tables(grid)
         if not tables and grid.sheet:
             remarks.append(f"sheet {grid.sheet}: no motor table, skipped")
         lone += tables
+    TOLD.reset(told)
     stem = PurePath(file.name).stem
     found = [t for t in joined(lone, remarks)]
     for position, table in enumerate(found):
@@ -84,6 +90,13 @@ def _tables(grid: Grid) -> list[Table]:
         table.titles = [*loose, *table.titles]
         loose = []
         previous = tables[-1] if tables else None
+        if is_load_table(table):
+            table = load_points(table, previous)
+            if table is None:
+                continue
+        elif previous is not None and goes_with(previous, table):
+            take_in(previous, table)
+            continue
         if previous is not None and _same_heads(previous, table):
             _append_table(previous, table)
             continue
