@@ -145,6 +145,24 @@ def fit(problem: Problem, robust: bool = False) -> Fit:
     return out
 
 
+def relinearised(problem: Problem, at: Fit) -> Fit:
+    """The ordinary adjustment with all rows linearised at another fit: one step, its χ² as of the
+    linearised rows."""
+    n = len(problem)
+    out = Fit(np.empty((n, P)), np.empty((n, P, P)), np.empty(n))
+    for start in range(0, n, CHUNK):
+        part = slice(start, min(start + CHUNK, n))
+        equations = Equations(problem.take(part))
+        x = at.x[part].T.copy()
+        matrix, right = equations.normal(x)
+        inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
+        step = (inverse @ right.T[:, :, None])[:, :, 0].T
+        out.chi2[part] = equations.chi2(x) - (right * step).sum(axis=0)
+        x[equations.active] += step
+        out.x[part], out.covariance[part] = x.T, equations.covariance(inverse)
+    return out
+
+
 def _loglinear(equations: Equations) -> Floats:
     x = equations.start()
     matrix, right = equations.normal(x, typical=True)

@@ -9,7 +9,7 @@ import numpy as np
 from .batch import FigureColumn, Floats
 from .causes import causes_of, shape, static_scores
 from .convention import Commutation
-from .explain import Narrator, name, number
+from .explain import ROLES, Narrator, name, number
 from .families import DIRECT, groups, majority
 from .model import FIGURES, INDEX, LAW_SCATTER
 from .motor import Amount, Finding
@@ -23,6 +23,7 @@ from .relations import (
     RELATIONS,
     THERMAL,
     WITHIN_SCATTER,
+    Relation,
 )
 from .suspects import DEPARTURE
 from .vocabulary import quantity
@@ -30,8 +31,9 @@ from .vocabulary import quantity
 Found = list[tuple[int, Finding]]
 Doubted = dict[int, set[str]]
 
-OFF = 0.05
-"""A note on scatter wants a departure of so much beyond the printed digits."""
+OFF, WIDE = 0.05, 2.0
+"""A note on scatter wants a departure of so much, and of so many customary standard deviations,
+beyond the printed digits: at less a table of notes would tell nothing."""
 
 
 def _motor(narrator: Narrator, motor: int, severity: str, **fields: object) -> Finding:
@@ -225,9 +227,15 @@ def thermal(narrator: Narrator) -> Found:
     return [(m, finding)]
 
 
-def _customary(key: str) -> float:
-    about = quantity(key)
-    return LAW_SCATTER.get(key, about.scatter or about.scatter_points)
+def _customary(relation: Relation) -> float:
+    """Customary scatter of a relation: that of its law, or of its figures together."""
+    if relation.left in LAW_SCATTER:
+        return LAW_SCATTER[relation.left]
+    square = 0.0
+    for figure in relation.figures:
+        about = quantity(ROLES.get(figure, (figure,))[0])
+        square += (about.scatter or about.scatter_points) ** 2
+    return math.sqrt(square)
 
 
 def scatter(narrator: Narrator, skip: Callable[[int], bool]) -> Found:
@@ -262,7 +270,7 @@ def scatter(narrator: Narrator, skip: Callable[[int], bool]) -> Found:
         with np.errstate(all="ignore"):
             gap = np.abs(np.log(values[relation.left] / relation.right(values)))
             gap = gap - sum((width[f] for f in relation.figures), np.zeros(n))
-            gap = gap - max(OFF, 1.5 * _customary(relation.left))
+            gap = gap - max(OFF, WIDE * _customary(relation))
         gap = np.where(servo & (relation.left == "nominal_speed"), np.nan, gap)
         better = gap > worst
         worst = np.where(better, gap, worst)
@@ -274,7 +282,7 @@ def scatter(narrator: Narrator, skip: Callable[[int], bool]) -> Found:
         relation = RELATIONS[which[m]]
         roles: dict[str, str] = {}
         for role in relation.others:
-            options = {"K": CONSTANT_FIGURES, "R": ("terminal_resistance",)}.get(role, (role,))
+            options = ROLES.get(role, (role,))
             roles[role] = next(k for k in options if math.isfinite(narrator.dc(k, m)))
         equation, ratio = narrator.equation(m, relation, roles)
         figures = tuple(dict.fromkeys((relation.left, *roles.values())))

@@ -44,6 +44,15 @@ SENTENCES = {
 }
 """What each cause is, in a few words."""
 
+ROLES = {"K": CONSTANT_FIGURES, "R": ("terminal_resistance",)}
+"""The figures that may stand for a role of a relation."""
+
+BY_FIGURE: dict[str, list[Relation]] = {}
+for _relation in RELATIONS:
+    for _role in _relation.figures:
+        for _figure in ROLES.get(_role, (_role,)):
+            BY_FIGURE.setdefault(_figure, []).append(_relation)
+
 PLACES = {"row": "row", "column": "column"}
 
 
@@ -71,7 +80,8 @@ class Narrator:
 
     def __init__(self, batch: Batch) -> None:
         self.batch = batch
-        self._to_model: dict[str, np.ndarray] = {}
+        self._factor: dict[str, list[float]] = {}
+        self._dc: dict[str, list[float]] = {}
 
     def cell(self, motor: int, figure: str) -> Cell | None:
         """The place of a figure in the file."""
@@ -117,26 +127,29 @@ class Narrator:
 
     def dc_factor(self, figure: str, motor: int) -> float:
         """Value of the DC motor at the reference temperature over the published one."""
-        if figure not in self._to_model:
+        if figure not in self._factor:
             column = self.batch.figures[figure]
-            self._to_model[figure] = np.exp(to_model(figure, column, self.batch))
-        return float(self._to_model[figure][motor])
+            self._factor[figure] = np.exp(to_model(figure, column, self.batch)).tolist()
+        return self._factor[figure][motor]
 
     def dc(self, figure: str, motor: int) -> float:
         """A published figure as that of the DC motor, SI; NaN where not given."""
-        column = self.batch.figures.get(figure)
-        if column is None or not np.isfinite(column.value[motor]):
-            return math.nan
-        return float(column.value[motor]) * self.dc_factor(figure, motor)
+        if figure not in self._dc:
+            column = self.batch.figures.get(figure)
+            if column is None:
+                return math.nan
+            factor = np.exp(to_model(figure, column, self.batch))
+            self._dc[figure] = (column.value * factor).tolist()
+        return self._dc[figure][motor]
 
     def relation_of(self, motor: int, figure: str, doubted: frozenset[str]) -> tuple[
         Relation | None, dict[str, str]
     ]:  # fmt: skip
         """The first relation that ties the figure to published ones, and who stands for K, R."""
-        for relation in RELATIONS:
+        for relation in BY_FIGURE.get(figure, ()):
             roles: dict[str, str] = {}
             for role in relation.others:
-                options = {"K": CONSTANT_FIGURES, "R": ("terminal_resistance",)}.get(role, (role,))
+                options = ROLES.get(role, (role,))
                 given = [k for k in options if math.isfinite(self.dc(k, motor))]
                 better = [k for k in given if k == figure] or [k for k in given if k not in doubted]
                 if better:

@@ -19,6 +19,9 @@ TOLERANCE = np.array([0.05, 0.05, 0.05, 0.10])
 
 MAJORITY = 0.6
 
+MATTERS = 4.0
+"""Sum of squared standardised gaps below which a family can't bring a contradiction to light."""
+
 LEAST = 3
 """Windings that make a family."""
 
@@ -95,3 +98,13 @@ def observe_families(problem: Problem, base: Fit, unsure: NDArray[np.bool_],
     apart = ~np.isfinite(problem.family[:, 0])
     problem.family[apart] = np.nan
     problem.family_sd[apart] = np.inf
+
+
+def stands_off(problem: Problem, fitted: Fit) -> NDArray[np.bool_]:
+    """Motors whose constants depart from their family's enough to matter."""
+    total = np.zeros(len(problem))
+    for i, row in enumerate(family_matrix()):
+        value, sd = fitted.combination(row)
+        gap = np.nan_to_num(problem.family[:, i] - value)
+        total += gap**2 / (sd**2 + problem.family_sd[:, i] ** 2)
+    return total > MATTERS

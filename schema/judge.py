@@ -9,7 +9,7 @@ from .adjust import Problem, fit
 from .batch import Floats
 from .causes import causes_of
 from .evidence import Evidence
-from .suspects import Bools, LeftOut, Suspicion, contradicts, leave_out, own_sd
+from .suspects import Bools, LeftOut, Suspicion, contradicts, leave_out, own_sd, shortlist
 from .swaps import find_swaps
 
 NEAR = 16.0
@@ -46,7 +46,7 @@ def _rank(
 ) -> _Ranking:
     best = np.nanmin(np.where(bad, left.chi2, np.inf), axis=1, keepdims=True)
     with np.errstate(invalid="ignore"):
-        row, figure = np.nonzero((left.chi2 <= best + NEAR) & part.present)
+        row, figure = np.nonzero(left.chi2 <= best + NEAR)
     sd = own_sd(part, left)
     scores = evidence.scores(motors[row], figure, left.log_ratio[row, figure], sd[row, figure])
     chi2, total = np.full(left.chi2.shape, np.inf), np.full(left.chi2.shape, np.inf)
@@ -96,7 +96,7 @@ def _one_turn(
 ) -> NDArray[np.integer]:  # fmt: skip
     """Take the likeliest suspect out of every motor that still contradicts itself; those motors."""
     sub = part.take(active)
-    left = leave_out(sub)
+    left = leave_out(sub, shortlist(sub))
     bad = contradicts(chi2[active], left)
     go = np.flatnonzero(bad.any(axis=1))
     if not go.size:
@@ -126,7 +126,9 @@ def _reconsider(
     sub.present = sub.present.copy()
     sub.present[np.arange(len(pairs)), [s.figure for _, s in pairs]] = True
     before = fit(sub).chi2
-    left = leave_out(sub)
+    worth = shortlist(sub)
+    worth[np.arange(len(pairs)), [s.figure for _, s in pairs]] = True
+    left = leave_out(sub, worth)
     bad = contradicts(before, left)
     ranking = _rank(evidence, motors[locals_], sub, left, bad)
     for local in {local for local, _ in pairs}:

@@ -9,6 +9,7 @@ import math
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
 from . import checks
 from .adjust import Fit, Problem, fit
@@ -17,7 +18,7 @@ from .columns import ColumnFault, column_faults
 from .constants import constants, joined
 from .evidence import Evidence
 from .explain import Narrator
-from .families import groups, observe_families
+from .families import groups, observe_families, stands_off
 from .inference import Inferred, infer
 from .judge import judge
 from .merge import exchanged_neighbours, shared_causes, shared_faults
@@ -103,14 +104,25 @@ def _portion(batch: Batch, table: _Table) -> tuple[list[Suspicion], dict[str, Co
     base = fit(problem)
     unsure = doubtful(problem, base)
     observe_families(problem, base, unsure, groups(batch))
-    if np.isfinite(problem.family_sd).any():
-        judged = fit(problem)
-        unsure = doubtful(problem, judged)
-    else:
-        judged = base
+    judged, unsure = _with_family(problem, base, unsure)
     suspicions, removed = judge(Evidence(batch, problem, judged), np.flatnonzero(unsure))
     _refit(problem, base, removed)
     return suspicions, constants(batch, problem, base)
+
+
+def _with_family(
+    problem: Problem, base: Fit, unsure: NDArray[np.bool_]
+) -> tuple[Fit, NDArray[np.bool_]]:
+    """The fit that counts what the family shares, where that matters, and who is in doubt then."""
+    who = np.flatnonzero(unsure | stands_off(problem, base))
+    if not who.size or not np.isfinite(problem.family_sd).any():
+        return base, unsure
+    again = fit(problem.take(who))
+    judged = Fit(base.x.copy(), base.covariance.copy(), base.chi2.copy())
+    judged.x[who], judged.covariance[who], judged.chi2[who] = again.x, again.covariance, again.chi2
+    out = np.zeros_like(unsure)
+    out[who] = doubtful(problem.take(who), again)
+    return judged, out
 
 
 def _refit(problem: Problem, base: Fit, removed: np.ndarray) -> None:

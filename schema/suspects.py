@@ -10,16 +10,23 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from .adjust import Fit, Problem, fit
+from .adjust import Fit, Problem, fit, relinearised
 from .batch import Floats
 from .equations import product
-from .model import I0, INDEX, IPK, PEAK_BAND, F, K, R, U, linear_matrix
+from .model import I0, IN, INDEX, IPK, NN, PEAK_BAND, F, K, R, U, linear_matrix
 
 GAIN = 12.0
 """χ² that leaving a figure out must save before it counts as a contradiction."""
 
 DEPARTURE = 0.05
 """What the ratio must differ from 1, beyond twice the implied value's standard deviation."""
+
+WITHIN, PART, KEEP = 40.0, 0.1, 3
+"""A figure is refitted when its linearised χ² is this close to the best, or closer than this part
+of what the best saves; the best few always."""
+
+NOMINAL = [INDEX[k] for k in ("nominal_torque", "nominal_speed", "nominal_current")]
+"""The nominal point, whose laws bend most: if one is worth a refit, all are."""
 
 CURVED = (INDEX["maximum_efficiency"], INDEX["peak_torque"])
 """Figures whose rows aren't sums of logarithms."""
@@ -87,14 +94,14 @@ def predicted(problem: Problem, fitted: Fit, figure: NDArray[np.integer]) -> tup
     return value, np.sqrt(np.maximum(variance, 0.0))
 
 
-def leave_out(problem: Problem, pairs: int = 20_000) -> LeftOut:
-    """Refit without each figure in turn; at most about ``pairs`` fits are held at a time."""
+def leave_out(problem: Problem, which: Bools | None = None, pairs: int = 20_000) -> LeftOut:
+    """Refit without each figure in turn (of ``which`` where given, (n, F)); at most about
+    ``pairs`` fits are held at a time."""
     n = len(problem)
     out = LeftOut(*(np.full((n, F), np.nan) for _ in range(3)))
-    step = max(1, pairs // F)
-    for start in range(0, n, step):
-        motor, figure = np.nonzero(problem.present[start : start + step])
-        motor += start
+    motors, figures = np.nonzero(problem.present if which is None else which & problem.present)
+    for start in range(0, len(motors), pairs):
+        motor, figure = motors[start : start + pairs], figures[start : start + pairs]
         part = problem.take(motor).without(figure)
         fitted = fit(part)
         value, sd = predicted(part, fitted, figure)
@@ -102,6 +109,44 @@ def leave_out(problem: Problem, pairs: int = 20_000) -> LeftOut:
         out.log_ratio[motor, figure] = problem.y[motor, figure] - value
         out.implied_sd[motor, figure] = sd
     return out
+
+
+def shortlist(problem: Problem) -> Bools:
+    """The figures worth a refit, (n, F): linearised at the robust fit, leaving them out does
+    nearly as well as leaving out the best one.
+
+    At the robust fit a gross error hardly moves the slopes, so that the linearised saving is
+    close to the true one; the refits then decide.
+    """
+    robust = fit(problem, robust=True)
+    linear = relinearised(problem, robust)
+    matrix, constant = linear_matrix(problem.readings)
+    rest = np.full(problem.present.shape, np.inf)
+    weight = problem.weights()
+    gap = problem.y - constant - product(matrix, linear.x.T).T
+    spread = ((matrix @ linear.covariance) * matrix).sum(axis=2)
+    for figure in CURVED:
+        if problem.present[:, figure].any():
+            value, sd = predicted(problem, robust, np.full(len(problem), figure))
+            gap[:, figure], spread[:, figure] = problem.y[:, figure] - value, sd**2
+    free = np.clip(1.0 - weight * spread, 1e-6, 1.0)
+    rest = np.where(problem.present, linear.chi2[:, None] - weight * gap**2 / free, np.inf)
+    best = np.sort(rest, axis=1)[:, [0, min(KEEP, F) - 1]]
+    within = WITHIN + PART * np.maximum(linear.chi2[:, None] - best[:, :1], 0.0)
+    worth = (rest <= best[:, :1] + within) | (rest <= best[:, 1:])
+    worth[:, NOMINAL] |= worth[:, NOMINAL].any(axis=1, keepdims=True)
+    return worth | _steep(problem, robust)[:, None]
+
+
+def _steep(problem: Problem, fitted: Fit) -> Bools:
+    """Motors whose laws are far from linear where they stand, or at a bound: all figures count."""
+    x = fitted.x
+    with np.errstate(over="ignore"):
+        brake = x[:, R] + x[:, I0] - x[:, U] > np.log(0.2)
+        idle = (x[:, I0] - x[:, IN] > np.log(0.4)) & problem.bound[:, 2]
+        drop = (x[:, R] + x[:, IN] - x[:, U] > np.log(0.5)) & problem.bound[:, 3]
+    beyond = problem.servo & problem.bound[:, 3] & (x[:, NN] > x[:, U] - x[:, K])
+    return brake | idle | np.where(problem.servo, beyond, drop)
 
 
 def doubtful(problem: Problem, fitted: Fit) -> Bools:
