@@ -16,6 +16,7 @@ from ..schema.reconcile import reconcile
 from . import documents as doc
 from .batch_documents import finding_documents, motor_documents
 from .documents import Document
+from .duplicates import merged
 from .store import Catalog, columns
 from .store.catalog import now
 from .store.corrections import Correction, corrected
@@ -244,8 +245,10 @@ def _tables(
     corrections: Sequence[Correction],
     result: FileResult,
 ) -> Iterator[_Table]:
-    for chunk, published in enumerate(batches):
-        if len(published):
+    for chunk, read in enumerate(batches):
+        if len(read):
+            published, remarks = merged(read)
+            result.remarks += remarks
             batch, applied, remarks = corrected(published, corrections)
             result.remarks += remarks
             yield _Table(chunk, published, reconcile(batch), applied)
@@ -367,6 +370,11 @@ class _Store:
         )
         result.stored += stored.motors
         result.replaced += stored.motors - stored.new
+        if stored.again:
+            result.remarks.append(
+                f"{stored.again} of its motors stand in this call's files more than once: the "
+                "last one counts, the earlier are kept as revisions."
+            )
         self.touched |= stored.touched_sources
 
     def _start_file(self, writer: Writer, result: FileResult) -> int | None:

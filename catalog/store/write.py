@@ -37,6 +37,7 @@ class Stored:
 
     motors: int = 0
     new: int = 0
+    again: int = 0
     touched_sources: set[int] = field(default_factory=set)
 
 
@@ -99,7 +100,7 @@ class Writer:
         self._add_patterns(patterns, pattern_base, heading_base)
 
         identity = list(zip(batch.part_number, batch.maker, strict=True))
-        touched = self._replace(identity)
+        touched, again = self._replace(identity)
         ids = range(first, first + n)
         self.connection.executemany(
             "INSERT INTO motor(id, maker, part_number, series, source, pattern, kind, "
@@ -117,7 +118,7 @@ class Writer:
         self._add_constants(first, reconciled)
         self._add_findings(source_id, first, reconciled)
         replaced = sum(touched.values())
-        return Stored(n, n - replaced, set(touched) | {source_id})
+        return Stored(n, n - replaced, again, set(touched) | {source_id})
 
     def rewrite_table(
         self,
@@ -232,8 +233,9 @@ class Writer:
             self._kinds[key] = _row_id(cursor)
         return self._kinds[key]
 
-    def _replace(self, identity: Sequence[tuple[str, str]]) -> dict[int, int]:
-        """Mark the motors that the catalog has as replaced; source → how many of its motors."""
+    def _replace(self, identity: Sequence[tuple[str, str]]) -> tuple[dict[int, int], int]:
+        """Mark the motors that the catalog has as replaced: source → how many of its motors, and
+        how many of them this very import had stored."""
         touched: dict[int, int] = {}
         where = "part_number = ? AND maker = ? AND replaced_by IS NULL"
         for who in identity:
@@ -246,7 +248,13 @@ class Writer:
             self.connection.executemany(
                 f"UPDATE motor SET replaced_by = {self.import_id} WHERE {where}", identity
             )
-        return touched
+        sources = ",".join(map(str, touched))
+        own = self.connection.execute(
+            "SELECT s.id FROM sources s JOIN files f ON f.id = s.file "
+            f'WHERE f."import" = ? AND s.id IN ({sources})',
+            (self.import_id,),
+        ).fetchall()
+        return touched, sum(touched[source] for (source,) in own)
 
     # ---- figures
 
