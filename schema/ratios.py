@@ -13,12 +13,12 @@ from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
-from numpy.typing import ArrayLike, NDArray
+from numpy.typing import NDArray
 
 from .demand import Demand
-from .limits import Utilisations, Verdict
+from .limits import Utilisations
 from .machines import Machines
-from .operation import judge, judge_cases
+from .operation import judge_cases
 
 Array = NDArray[np.float64]
 Index = NDArray[np.intp]
@@ -26,15 +26,11 @@ Cases = Callable[[Index, Array], tuple[Array, Array]]
 
 #: Ratios in the grid over a range.
 GRID = 61
-#: The screening looks at each fourth of them first.
-_COARSE = 4
 #: Halvings of a grid step: an edge is found to 1e-7 of the range's logarithm.
 _HALVINGS = 20
 _GOLDEN = (np.sqrt(5) - 1) / 2
 #: Steps of the golden section: a minimum is found to 1e-5 of a grid step.
 _SECTIONS = 24
-#: Steps of it in the screening: to 1e-2 of a grid step.
-_FEW_SECTIONS = 10
 #: Cases of a grid that are held at once.
 _CASES = 1 << 18
 
@@ -42,110 +38,6 @@ _CASES = 1 << 18
 def ratio_grid(low: float, high: float) -> Array:
     """The ratios between two ends, both included, in geometric steps."""
     return np.geomspace(low, high, GRID) if high > low else np.array([low])
-
-
-@dataclass
-class Choice:
-    """For each of M motors the best of the ratios judged: a feasible one with the least copper
-    loss, else the one with the smallest largest utilisation (an undecided before a rejected)."""
-
-    ratio: Array
-    utilisations: Utilisations
-    verdict: NDArray[np.int8]
-
-
-def best_of(
-    machines: Machines,
-    demand: Demand,
-    ratios: ArrayLike,
-    reserve: float = 0.0,
-    *,
-    periodic: bool = True,
-) -> Choice:
-    """The best of some ratios, (R,) or (M, R), all of them judged, for every motor."""
-    grid = np.atleast_1d(np.asarray(ratios, float))
-    grid = np.broadcast_to(grid, (len(machines), grid.shape[-1]))
-    size = max(1, _CASES // grid.shape[1])
-    kept, chosen, verdicts = [], [], []
-    for begin in range(0, max(len(machines), 1), size):
-        some = machines.take(slice(begin, begin + size))
-        there = grid[begin : begin + size]
-        result = judge(some, demand, there, periodic=periodic)
-        verdict = result.verdict(reserve)
-        largest = np.nan_to_num(result.largest, nan=0.0)
-        within = np.where(verdict == Verdict.FEASIBLE, result.copper_loss, largest)
-        within = np.where(np.isnan(within), np.finfo(float).max, within)
-        first = verdict.min(axis=1, keepdims=True) if len(some) else verdict
-        best = np.where(verdict == first, within, np.inf).argmin(axis=1)
-        at = (np.arange(len(some)), best)
-        kept.append(result.take(at))
-        verdicts.append(verdict[at])
-        chosen.append(there[at])
-    return Choice(np.concatenate(chosen), Utilisations.joined(kept), np.concatenate(verdicts))
-
-
-def screen(
-    machines: Machines, demand: Demand, low: float, high: float, reserve: float = 0.0
-) -> Choice:
-    """The best ratio of a range for every motor, of the grid of `ratio_grid`.
-
-    Each fourth ratio first, then those around the best of them, by the temperature of the mean
-    loss. A motor that only just fails is tried between the ratios of the grid, too. Motors that
-    the mean loss does not reject are judged with the peak of the periodic state at their ratio;
-    for the others `thermal` is that of the mean, a lower bound.
-    """
-    grid = ratio_grid(low, high)
-    if grid.size == 1:
-        found = best_of(machines, demand, grid, reserve, periodic=False)
-    else:
-        coarse = best_of(machines, demand, grid[::_COARSE], reserve, periodic=False)
-        at = np.searchsorted(grid, coarse.ratio)
-        near = np.arange(1 - _COARSE, _COARSE)
-        around = grid[np.clip(at[:, None] + near, 0, grid.size - 1)]
-        found = best_of(machines, demand, around, reserve, periodic=False)
-    if grid.size > 1:
-        _try_between(machines, demand, grid, reserve, found, periodic=False)
-    by_mean = found.verdict == Verdict.REJECTED
-    peaks = np.flatnonzero(~by_mean)
-    found.utilisations.put(peaks, judge_cases(machines, demand, peaks, found.ratio[peaks]))
-    found.verdict = found.utilisations.verdict(reserve)
-    if grid.size > 1:
-        _try_between(machines, demand, grid, reserve, found, periodic=True, without=by_mean)
-    return found
-
-
-def _try_between(
-    machines: Machines,
-    demand: Demand,
-    grid: Array,
-    reserve: float,
-    found: Choice,
-    *,
-    periodic: bool,
-    without: NDArray[np.bool_] | None = None,
-) -> None:
-    """Give the motors that only just fail a ratio within a step of the grid, if one will do."""
-    step = grid[1] / grid[0]
-    largest = found.utilisations.largest
-    close = (found.verdict == Verdict.REJECTED) & (largest <= (1 - reserve) * _reach(step))
-    if without is not None:
-        close &= ~without
-    which = np.flatnonzero(close)
-    if which.size == 0:
-        return
-    search = _Search(machines, demand, reserve, periodic)
-    centre = np.log(found.ratio[which])
-    ends = (
-        np.maximum(centre - np.log(step), np.log(grid[0])),
-        np.minimum(centre + np.log(step), np.log(grid[-1])),
-    )
-    x, y = _golden(lambda x: search.excess(which, np.exp(x)), *ends, sections=_FEW_SECTIONS)
-    which, x = which[y <= 0], x[y <= 0]
-    found.ratio[which] = np.exp(x)
-    found.utilisations.put(
-        which, judge_cases(machines, demand, which, found.ratio[which], periodic=periodic)
-    )
-    found.verdict[which] = found.utilisations.take(which).verdict(reserve)
 
 
 def _reach(step: float) -> float:
@@ -247,10 +139,10 @@ class _Search:
         return found
 
     def with_extremes(self, grid: Array, excess: Array) -> tuple[Array, Array]:
-        """Grid points and, two for each motor, its refined lowest and highest point between them.
+        """Grid points, what they exceed by, and the like of the extremes between them.
 
-        Both (M, G + 2·n): n the largest number of local extremes of one motor that could cross
-        the limit between grid points.
+        Both (M, G + n), n the largest number of a motor's local extremes that could cross the
+        limit between grid points; a motor with fewer has its first grid point again.
         """
         M = len(excess)
         points = [np.tile(grid, (M, 1))]
@@ -309,14 +201,12 @@ class _Search:
         return best
 
 
-def _golden(
-    function: Callable[[Array], Array], low: Array, high: Array, sections: int = _SECTIONS
-) -> tuple[Array, Array]:
+def _golden(function: Callable[[Array], Array], low: Array, high: Array) -> tuple[Array, Array]:
     """Minimum between `low` and `high` by golden section, elementwise: where, and how low."""
     a, b = low.copy(), high.copy()
     c, d = b - _GOLDEN * (b - a), a + _GOLDEN * (b - a)
     at_c, at_d = function(c), function(d)
-    for _ in range(sections):
+    for _ in range(_SECTIONS):
         left = at_c < at_d
         a, b = np.where(left, a, c), np.where(left, d, b)
         probe = np.where(left, b - _GOLDEN * (b - a), a + _GOLDEN * (b - a))

@@ -274,3 +274,22 @@ def test_unknown_stays_unknown() -> None:
     servo = Machines.of(torque_constant=0.03, armature_resistance=1.2, commutation=2)
     assert np.isnan(only(judge(servo, Demand(cycle, supply=Supply(24.0))).voltage))
     assert only(judge(servo, Demand(cycle, supply=Supply(3.0))).voltage) > 1
+
+
+def test_voltage_peaks_inside_a_ramp() -> None:
+    """Speed falls while torque rises: p·ω·La·Ia is largest on the way. Against dense sampling of
+    U² = (Ra·Ia + Km·ω)² + (p·ω·La·Ia)²; the ends alone would pass a motor that the ramp stops."""
+    motor = Machines.of(
+        torque_constant=0.1,
+        armature_resistance=0.1,
+        armature_inductance=2e-3,
+        pole_pairs=5,
+        commutation=2,
+        rotor_inertia=0.0,
+    )
+    cycle = Cycle([1.0, 1.0], [400.0, 0.0], [0.0, 400.0], [0.1, 3.0], [3.0, 0.1])
+    s = np.linspace(0, 1, 100_001)
+    w, i = 400 * (1 - s), (0.1 + 2.9 * s) / 0.1
+    U = np.hypot(0.1 * i + 0.1 * w, 5 * w * 2e-3 * i)
+    assert U.max() > 1.3 * max(U[0], U[-1])
+    assert only(judge(motor, Demand(cycle)).peak_voltage) == pytest.approx(U.max(), rel=1e-8)

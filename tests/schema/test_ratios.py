@@ -9,14 +9,12 @@ from scipy.optimize import brentq, minimize_scalar
 from motorfolio.schema.operation import (
     Cycle,
     Demand,
-    Drive,
     Gearing,
     Machines,
-    Supply,
     Verdict,
     judge,
 )
-from motorfolio.schema.ratios import best_of, feasible_ratios, ratio_grid, screen
+from motorfolio.schema.ratios import feasible_ratios, ratio_grid
 
 from .made_up_motors import as_plain, demand, demand_plain, motors, segments
 from .plain_motor import judge_plain, largest
@@ -96,7 +94,6 @@ def test_interval_between_two_grid_ratios_is_found() -> None:
         found = feasible_ratios(one, asked, 1.0, 100.0, reserve)
         assert found.motor.size == 1
         assert found.low[0] <= at[i] <= found.high[0]
-        assert screen(one, asked, 1.0, 100.0, reserve).verdict[0] == Verdict.FEASIBLE
 
 
 def test_best_ratio_matches_inertias() -> None:
@@ -122,19 +119,6 @@ def test_best_ratio_matches_inertias() -> None:
     )
     assert torque.x == pytest.approx(ratio, rel=1e-3)
     assert torque.fun == pytest.approx(1.0, rel=1e-6)
-
-
-def test_screening_agrees_with_every_ratio_of_its_grid() -> None:
-    machines, asked = motors(3000, 8), demand(2, supply=Supply(12.0), drive=Drive(8.0))
-    whole = best_of(machines, asked, ratio_grid(1.0, 100.0), 0.2)
-    quick = screen(machines, asked, 1.0, 100.0, 0.2)
-    lost = (whole.verdict == Verdict.FEASIBLE) & (quick.verdict != Verdict.FEASIBLE)
-    assert not lost.any()
-    rejected = quick.verdict == Verdict.REJECTED
-    assert 100 < rejected.sum() < 2900
-    assert quick.utilisations.largest[rejected] == pytest.approx(
-        whole.utilisations.largest[rejected], rel=1e-9
-    )
 
 
 def test_fixed_ratio_is_an_interval_of_one() -> None:
