@@ -291,6 +291,8 @@ def _named(label: Label, core: str) -> Label:
     for name, symbol, unit in _splits(core):
         only = symbol and name and conventions_of(name, whole=True)
         p = match_phrase(name) if name else Phrase(name)
+        if name and _is_rather_symbol(name, p):
+            p = Phrase("")
         score = p.score if name else 0.0
         if symbol and (not name or only):
             hit = find_symbol(symbol)

@@ -101,6 +101,9 @@ def _tables(grid: Grid) -> list[Table]:
             _append_table(previous, table)
             continue
         tables.append(table)
+    for table in tables:
+        table.titles += [grid.sheet] if grid.sheet else []
+        table.notes += grid.notes
     return tables
 
 

@@ -43,6 +43,7 @@ def read_html(text: str, name: str) -> tuple[list[Grid], list[str]]:
             skipped.append(f"“{title}”: has no figures")
             continue
         grid.sheet = title
+        grid.notes = _beside(element)
         titles.add(title)
         grids.append(grid)
     if not grids:
@@ -105,6 +106,22 @@ def _title(element: etree._Element) -> str:
         if len(passed) > 4:
             break
     return ""
+
+
+def _beside(element: etree._Element) -> list[str]:
+    """The paragraphs before and behind a table, up to the next table or heading."""
+    texts: list[str] = []
+    for follow in (False, True):
+        item = element
+        for _ in range(8):
+            item = item.getnext() if follow else item.getprevious()
+            if item is None or item.tag in {"table", "dl", "h1", "h2", "h3", "h4", "h5", "h6"}:
+                break
+            if item.tag in {"p", "ul", "ol", "small", "footer"} and not _unseen(item):
+                text = clean(_shown(item))
+                if 0 < len(text) < 2000:
+                    texts.append(text)
+    return texts
 
 
 def _unique(title: str, taken: set[str]) -> str:
