@@ -25,6 +25,7 @@ COMMANDS: dict[str, tuple[str, str]] = {
     "compare": ("compare", "Put motors side by side."),
     "export": ("export", "Write the catalog as CSV, JSON, TOML or Parquet."),
     "convert": ("convert", "Convert a figure from one unit to another."),
+    "schema": ("schema", "Print the JSON Schema of a document."),
     "correct": ("correct", "Put a correction in place of a published figure, or revoke it."),
     "readings": ("readings", "List or remove the readings kept for a maker's headings."),
     "revisions": ("revisions", "List imports, or the earlier revisions of a motor."),
