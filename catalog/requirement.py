@@ -235,7 +235,8 @@ def _cycle(
         raise RequirementError(f"{given[0]} must be written as [[{given[0]}]].")
     tables = [reader.table(item, given[0], _of_kind(given[0], linear)) for item in items]
     if given == ["point"]:
-        return _points(tables, linear, reader), True
+        # one point without a duration lasts for ever: there is no cycle to rest in
+        return _points(tables, linear, reader), "duration" in tables[0]
     return _moves(tables, linear), True
 
 

@@ -12,6 +12,10 @@ from .requirement import Document, Requirement
 from .requirement_fields import LISTS, RequirementError
 
 
+#: What is shown of a search is no part of what the machine asks: an option may change it.
+_VIEW = ("limit", "order_by")
+
+
 def merged(file: Mapping[str, Any], options: Mapping[str, Any], folder: Path) -> Document:
     """A file's document with what options add; RequirementError where they contradict.
 
@@ -33,7 +37,7 @@ def merged(file: Mapping[str, Any], options: Mapping[str, Any], folder: Path) ->
         for key, value in added.items():
             if key == "where":
                 table[key] = [*table.get(key, []), *value]
-            elif key in table and table[key] != value:
+            elif key in table and table[key] != value and key not in _VIEW:
                 raise RequirementError(
                     f"The requirement file says {section}.{key} = {table[key]} and the options "
                     f"{value}; leave one of them."

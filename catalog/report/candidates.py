@@ -47,7 +47,8 @@ def _miss(miss: Document) -> str:
     use = miss["utilisation"].get(miss["limiting"])
     geared = f" with {miss['gear']['part_number']}" if "gear" in miss else ""
     over = f"{words(miss['limiting'])} {use:.0%}" if use is not None else words(miss["limiting"])
-    return plain(f"  {miss['part_number']}{geared} ({miss['maker']}): {over}. {miss['needs']}")
+    maker = f" ({miss['maker']})" if miss["maker"] else ""
+    return plain(f"  {miss['part_number']}{geared}{maker}: {over}. {miss['needs']}")
 
 
 def candidate_table(candidates: Sequence[Document]) -> Table:

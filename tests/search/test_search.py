@@ -10,12 +10,13 @@ import pytest
 
 from motorfolio.catalog import choice
 from motorfolio.catalog.candidate_documents import search_document
+from motorfolio.catalog.fleet import load_fleet
 from motorfolio.catalog.gears import Gear, read_gears, store_gears
 from motorfolio.catalog.near_misses import near_misses
 from motorfolio.catalog.requirement import read_requirement
 from motorfolio.catalog.requirement_fields import RequirementError
 from motorfolio.catalog.requirement_file import read_file
-from motorfolio.catalog.search import Found, search
+from motorfolio.catalog.search import Found, names_of, search
 from motorfolio.catalog.store import Catalog
 from motorfolio.catalog.tables import read_tables
 from motorfolio.schema.energy import draw
@@ -370,3 +371,40 @@ def test_power_balance_against_quadrature() -> None:
     assert found.peak_returned[0] == pytest.approx(-lowest, rel=1e-4)
     assert found.mean[0] == pytest.approx((drawn - returned) / cycle.period, rel=1e-7)
     assert 0 < found.stretch[0] <= found.returned[0]
+
+
+# ---- what must hold by sense
+
+
+def test_more_supply_or_drive_never_loses_a_motor(samples: Catalog) -> None:
+    """Without ripple, more voltage or current only admits."""
+    everything = {"limit": 64}
+    last: set = set()
+    for volts in (12, 24, 36, 48, 96):
+        document = {**BASE, "supply": {"voltage": f"{volts} V"}, "wanted": everything}
+        names = {s.name for s in of(document, samples).candidates}
+        assert last <= names
+        last = names
+    last = set()
+    for amperes in (2, 5, 10, 20, 50):
+        drive = {"peak_current": f"{amperes} A", "continuous_current": f"{amperes / 2} A"}
+        names = {
+            s.name for s in of({**BASE, "drive": drive, "wanted": everything}, samples).candidates
+        }
+        assert last <= names
+        last = names
+    assert last
+
+
+def test_an_empty_catalog_has_no_candidate(tmp_path: Path) -> None:
+    path = sample_catalog(tmp_path / "c.sqlite")
+    with Catalog.open(path, write=True) as catalog:
+        catalog.remove([f"{name.maker}/{name.part_number}" for name in _all_names(catalog)])
+        for gear in ({"ratio": "3..40"}, {"ratio": 5}, {"ratio": [3, 5]}):
+            found = of({**BASE, "gear": gear}, catalog)
+            assert (found.considered, found.feasible, found.candidates) == (0, 0, [])
+            assert near_misses(found, catalog) == []
+
+
+def _all_names(catalog: Catalog) -> list:
+    return names_of(catalog, load_fleet(catalog).ids)
