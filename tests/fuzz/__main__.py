@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import argparse
+import re
 import sys
 import time
 from collections import defaultdict
@@ -47,7 +48,8 @@ def main() -> int:
 def _show(faults: list[Fault]) -> None:
     kinds: dict[tuple[str, str], list[Fault]] = defaultdict(list)
     for fault in faults:
-        kinds[fault.kind, fault.detail.strip().splitlines()[-1][:60]].append(fault)
+        last = fault.detail.strip().splitlines()[-1]
+        kinds[fault.kind, re.sub(r"[\d'\"].*", "", last[:60])].append(fault)
     for (kind, _), found in sorted(kinds.items(), key=lambda x: -len(x[1]))[:20]:
         print(f"  {kind}: {len(found)}, seed {found[0].seed}\n    {found[0].detail[:1200]}")
 

@@ -40,8 +40,8 @@ OPTIONS = ["torque", "speed", "duration", "load-inertia", "ratio", "gear-efficie
 def random_text(rng: Random, parts: list[str], most: int = 8) -> str:
     """A text of a few parts, now and then of many or of any characters."""
     if rng.random() < 0.03:
-        return "".join(chr(rng.choice([rng.randrange(128), rng.randrange(0x3000),
-                       rng.randrange(0x10000, 0x1F000)])) for _ in range(rng.randrange(30)))  # fmt: skip
+        ranges = [(0, 128), (0, 0x3000), (0x10000, 0x1F000)]
+        return "".join(chr(rng.randrange(*rng.choice(ranges))) for _ in range(rng.randrange(30)))
     text = "".join(rng.choice(parts) for _ in range(rng.randint(1, most)))
     return text * rng.choice([50, 500]) if rng.random() < 0.002 else text
 
@@ -114,13 +114,11 @@ def _cycle(rng: Random) -> str:
     heads = ["time", "speed", "torque", "time [s]", "speed [rpm]", "torque [N·m]", "Zeit", ""]
     rows = [[rng.choice(heads) if rng.random() < 0.9 else random_text(rng, UNIT_PARTS)
              for _ in range(rng.randint(1, 4))]]  # fmt: skip
-    for _ in range(rng.randrange(5)):
-        rows.append(
-            [
-                rng.choice(["0", "1", "2.5", "-3", "0.1 s", random_text(rng, NUMBER_PARTS, 4)])
-                for _ in range(rng.randint(1, 4))
-            ]
-        )
+    cells = ["0", "1", "2.5", "-3", "0.1 s", "90°"]
+    rows += [
+        [rng.choice([*cells, random_text(rng, NUMBER_PARTS, 4)]) for _ in range(rng.randint(1, 4))]
+        for _ in range(rng.randrange(5))
+    ]
     try:
         from_rows(rows, rng.random() < 0.5)
     except RequirementError as error:

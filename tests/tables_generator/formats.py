@@ -266,12 +266,10 @@ def _json(page: Page) -> str:
 
 
 def _toml(page: Page) -> str:
+    def text(value: object) -> str:
+        return json.dumps(value, ensure_ascii=False)
+
     lines = []
     for record in page.records:
-        lines.append("[[motors]]")
-        for name, value in record.items():
-            lines.append(
-                f"{json.dumps(name, ensure_ascii=False)} = {json.dumps(value, ensure_ascii=False)}"
-            )  # noqa: E501
-        lines.append("")
+        lines += ["[[motors]]", *(f"{text(k)} = {text(v)}" for k, v in record.items()), ""]
     return "\n".join(lines)

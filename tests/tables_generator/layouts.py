@@ -573,8 +573,8 @@ def _columns_two_temperatures(sheet: Sheet, page: Page) -> None:
 
     def add(columns: list[Column]) -> None:
         for column in columns:
-            grid.append([Cell(column.label), Cell(column.unit_text),
-                         *[value_cell(sheet, column, i) for i in range(len(sheet.parts))]])  # fmt: skip
+            values = [value_cell(sheet, column, i) for i in range(len(sheet.parts))]
+            grid.append([Cell(column.label), Cell(column.unit_text), *values])
 
     add(common)
     for block, temperature in ((twice, 25), (hot, 125)):
