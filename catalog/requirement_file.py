@@ -11,7 +11,6 @@ from . import cycle_table
 from .requirement import Document, Requirement
 from .requirement_fields import LISTS, RequirementError
 
-
 #: What is shown of a search is no part of what the machine asks: an option may change it.
 _VIEW = ("limit", "order_by")
 
