@@ -322,9 +322,12 @@ def _between(
     rising = slope(loss[0], low, shell[:, :-1])
     falling = slope(loss.sum(axis=0), high, shell[:, 1:])
     inside = (rising > 0) & (falling < 0) & (h < _SHORT_CUT * C1 * to_housing)
-    s = np.where(inside, rising / np.where(inside, rising - falling, 1.0), 0.0)
-    cubic = low + s * s * (3 - 2 * s) * (high - low)
-    cubic += s * (1 - s) * ((1 - s) * rising - s * falling)
+    # low + rising·s + square·s² + cube·s³, highest where its slope falls through zero.
+    square = 3 * (high - low) - 2 * rising - falling
+    cube = rising + falling - 2 * (high - low)
+    root = np.sqrt(np.where(inside, square**2 - 3 * cube * rising, 0.0))
+    s = np.where(inside, rising / np.where(inside, root - square, 1.0), 0.0)
+    cubic = low + s * (rising + s * (square + s * cube))
     return np.where(inside, cubic, low).max(axis=1)
 
 
