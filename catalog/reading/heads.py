@@ -4,6 +4,7 @@ import re
 from dataclasses import replace
 
 from ...schema.signs import plain
+from ...schema.units import unit_of
 from .cells import is_caption, is_symbol, is_unit, strength
 from .label import Label, parse_label
 from .model import Field
@@ -37,12 +38,23 @@ def head_field(
         heading = f"{heading} {' '.join(extra)}".strip()
     if units:
         heading = f"{heading} [{_shown(units[0])}]" if _shown(units[0]) not in heading else heading
-    clean_units = tuple(_unit_text(u) for u in units)
+    printed = (*(_unit_text(u) for u in units), *label.units)
     return Field(
         heading, label, texts, row, column,
-        units=tuple(f"{label.factor}{u}" for u in (*clean_units, *label.units)), captions=tuple(captions), section=section,
+        units=tuple(f"{label.factor}{u}" for text in printed for u in unit_pair(text)), captions=tuple(captions), section=section,
         when=when, temperature=temperature, variant=variant,
     )  # fmt: skip
+
+
+def unit_pair(text: str) -> tuple[str, ...]:
+    """The two units of "N·m (oz-in)" or "mm / in", the one of any other text."""
+    pair = re.fullmatch(r"(.+?)\s*(?:\((.+)\)|\[(.+)\]|\{(.+)\}|\s/\s(.+))", text)
+    if pair:
+        first, second = pair[1], next(g for g in pair.groups()[1:] if g)
+        one, two = unit_of(first), unit_of(second)
+        if one is not None and two is not None and (not pair[5] or one.si == two.si):
+            return (first, second)
+    return (text,)
 
 
 def _shown(text: str) -> str:

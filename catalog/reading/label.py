@@ -42,6 +42,7 @@ _BRAKE_PAIR = re.compile(
     r"(?:holding )?(?:brake|Bremse|Haltebremse|frein|freno)\)?",
     re.IGNORECASE,
 )
+_INNER_MARK = re.compile(r"\s*\^(\d{1,2}|[a-z])\)(?=[\s,;:])")
 _TWO_SCRIPTS = re.compile(
     r"([^A-Za-z]*[\u3040-\u30ff\u3400-\u9fff][^A-Za-z]*?)\s+([A-Za-z][A-Za-z].*)$", re.S
 )
@@ -142,10 +143,13 @@ def parse_label(text: str) -> Label:
         if numbering and not _is_unit(rest):
             rest = rest[numbering.end() :]
     marks = _MARKS.search(rest)
-    balanced = marks and rest.count("(", 0, marks.start()) == rest.count(")", 0, marks.start())
-    if marks and balanced and marks.start() > 0 and not _is_unit(rest):
+    if marks and _balanced(rest, marks.start()) and marks.start() > 0 and not _is_unit(rest):
         label = replace(label, marks=tuple(re.findall(r"[*†‡§]+|\d{1,2}|[a-z]", marks.group())))
         rest = rest[: marks.start()]
+    inner = [m for m in _INNER_MARK.finditer(rest) if _balanced(rest, m.start())]
+    for m in reversed(inner):
+        label = replace(label, marks=(*label.marks, m[1]))
+        rest = rest[: m.start()] + rest[m.end() :]
     core, inside = _groups(rest)
     for content in inside:
         whole = match_phrase(f"{core} {content}") if not _is_unit(content) else Phrase("")
@@ -154,6 +158,11 @@ def parse_label(text: str) -> Label:
         else:
             label = _bracket(label, content)
     return _core(label, core)
+
+
+def _balanced(text: str, end: int) -> bool:
+    """Whether every bracket opened before `end` is closed there."""
+    return text.count("(", 0, end) == text.count(")", 0, end)
 
 
 def _with_convention(label: Label, changes: dict[str, str]) -> Label:
@@ -202,7 +211,7 @@ def _piece(label: Label, piece: str, alone: bool) -> Label:
         return replace(label, variant=variant_of(piece))
     symbol = find_symbol(piece)
     phrase = match_phrase(piece)
-    if phrase.score >= 0.9 and phrase.keys:
+    if phrase.score >= 0.9 and phrase.keys and not _is_rather_symbol(piece, phrase):
         return replace(label, names=(*label.names, replace(phrase, bracketed=True)))
     if symbol and symbol.surety > 0.85:
         return replace(label, symbols=(*label.symbols, piece))
@@ -239,7 +248,7 @@ def _core(label: Label, core: str) -> Label:
     if not core:
         return label
     whole = match_phrase(core)
-    if whole.score >= 0.95 and not label.forced and not _is_rather_symbol(core, whole):
+    if whole.score >= 0.99 and not label.forced and not _is_rather_symbol(core, whole):
         return replace(label, names=(whole, *label.names), other=label.other or whole.other)
     if (found := conventions_of(core, whole=True)) and label.forced:
         return _with_convention(label, found)
@@ -256,6 +265,11 @@ def _core(label: Label, core: str) -> Label:
     if at and at.start() > 0 and not find_symbol(core):
         label = replace(label, conditions=(*label.conditions, at["c"]))
         core = (core[: at.start()] + " " + core[at.end() :]).strip(" ,;@")
+    if "\n" in core:
+        # A name broken over lines is one name; names in two languages on two lines are two.
+        joined = _named(label, re.sub(r"\s*\n\s*", " ", core))
+        if any(p.score >= 0.95 for p in joined.names[len(label.names) :]):
+            return joined
     parts = [p.strip(" ,:=") for p in _JOINERS.split(core) if p.strip(" ,:=")]
     if len(parts) > 1 and match_phrase(core).score < 0.95:
         for part in parts:
@@ -285,7 +299,7 @@ def _named(label: Label, core: str) -> Label:
     if not core:
         return label
     phrase = match_phrase(core)
-    if phrase.score >= 0.95 and not _is_rather_symbol(core, phrase):
+    if phrase.score >= 0.99 and not _is_rather_symbol(core, phrase):
         return replace(label, names=(*label.names, phrase), other=label.other or phrase.other)
     best: tuple[float, Phrase, str, str] | None = None
     for name, symbol, unit in _splits(core):
@@ -362,7 +376,8 @@ def _name_and_symbol(text: str) -> list[tuple[str, str]]:
     last, first = pieces[-1], pieces[0]
     if find_symbol(last) and len(symbol_form(last)) <= 8:
         found.append((text[: text.rindex(last)].strip(" ,:=–-"), last))
-    if find_symbol(first):
+    leading = find_symbol(first)
+    if leading and leading.surety > 0.95:  # "No load" begins with no symbol
         found.append((text[text.index(first) + len(first) :].strip(" ,:=–-"), first))
     if len(pieces) > 2:
         two = text[text.rindex(pieces[-2]) :]
