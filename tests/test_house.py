@@ -53,11 +53,12 @@ def test_every_package_is_installed() -> None:
 @pytest.mark.parametrize("words", [["--help"], ["search", "--help"], ["import", "--help"]])
 def test_help_loads_nothing_heavy(words: list[str]) -> None:
     code = (
-        "import sys, runpy; sys.argv = ['motorfolio', *{words!r}]\n"
-        "try:\n    runpy.run_module('motorfolio.catalog.cli', run_name='__main__')\n"
+        f"import sys; sys.argv = ['motorfolio', *{words!r}]\n"
+        "from motorfolio.catalog.cli import main\n"
+        "try:\n    main()\n"
         "except SystemExit:\n    pass\n"
-        "print(sorted({heavy!r} & set(sys.modules)))"
-    ).format(words=words, heavy=HEAVY)
+        f"print(sorted({HEAVY!r} & set(sys.modules)))"
+    )
     out = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
     assert out.stdout.splitlines()[-1] == "[]"
     assert "Usage: motorfolio" in out.stdout
