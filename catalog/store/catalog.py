@@ -93,12 +93,15 @@ class Catalog:
 
     def begin(self) -> None:
         """Begin a transaction as the one writer; makes or upgrades the tables if need be."""
-        from .layout import bring_up_to_date
+        from .names import is_up_to_date
 
         with in_words(self.path):
             self.connection.execute("BEGIN IMMEDIATE")
             try:
-                bring_up_to_date(self.connection)
+                if not is_up_to_date(self.connection):
+                    from .layout import bring_up_to_date
+
+                    bring_up_to_date(self.connection)
             except BaseException:
                 self.rollback()
                 raise

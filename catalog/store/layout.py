@@ -6,7 +6,6 @@ Where a figure stood, under which heading and convention, is nearly always the s
 table, so it is kept once a pattern in `patterns`; the exceptions are in `figure_places`.
 """
 
-import re
 import sqlite3
 from collections.abc import Callable
 
@@ -16,42 +15,7 @@ from ...schema.motor import CANONICAL
 from ...schema.vocabulary import quantities
 from .database import APPLICATION_ID, VERSION, layout_version
 from .intervals import half_digit_sql
-
-IDENTITY = ("part_number", "maker", "series")
-"""Text quantities that stand in `motor` itself."""
-
-_SUFFIXES = {
-    "Ω": "ohm",
-    "N·m": "Nm",
-    "N·m/A": "Nm_per_A",
-    "V·s/rad": "Vs_per_rad",
-    "rad/s": "rad_per_s",
-    "rad/(s·V)": "rad_per_s_V",
-    "rad/(s·N·m)": "rad_per_s_Nm",
-    "N·m/√W": "Nm_per_sqrtW",
-    "N·m·s/rad": "Nms_per_rad",
-    "kg·m²": "kgm2",
-    "K/W": "K_per_W",
-    "°C": "degC",
-    "1": "",
-    "currency": "",
-}
-
-
-def with_unit(key: str, unit: str) -> str:
-    """A column name that says the unit: torque_constant_Nm_per_A."""
-    suffix = _SUFFIXES.get(unit, re.sub(r"\W+", "_", unit, flags=re.ASCII).strip("_"))
-    return f"{key}_{suffix}" if suffix else key
-
-
-def figure_keys() -> list[str]:
-    """Quantities that are numbers, in the vocabulary's order."""
-    return [key for key, q in quantities().items() if not q.text]
-
-
-def text_keys() -> list[str]:
-    """Quantities that are text, but for those that stand in `motor`."""
-    return [key for key, q in quantities().items() if q.text and key not in IDENTITY]
+from .names import figure_keys, text_keys, wanted_quantities, with_unit
 
 
 def bring_up_to_date(connection: sqlite3.Connection) -> None:
@@ -59,33 +23,13 @@ def bring_up_to_date(connection: sqlite3.Connection) -> None:
 
     Runs inside the caller's transaction.
     """
-    version = layout_version(connection)
-    if version < VERSION or _quantities_differ(connection):
-        db = Database(connection, execute_plugins=False)
-        for upgrade in MIGRATIONS[version:]:
-            upgrade(db)
-        _add_quantities(db)
-        _make_views(db)
-        connection.execute(f"PRAGMA application_id = {APPLICATION_ID}")
-        connection.execute(f"PRAGMA user_version = {VERSION}")
-
-
-def is_current(connection: sqlite3.Connection) -> bool:
-    """Whether nothing has to be upgraded before reading."""
-    return layout_version(connection) == VERSION
-
-
-def _wanted_quantities() -> set[tuple[str, str, str]]:
-    return (
-        {("figure", key, quantities()[key].unit) for key in figure_keys()}
-        | {("text", key, "") for key in text_keys()}
-        | {("constant", key, unit) for key, unit in CANONICAL.items()}
-    )
-
-
-def _quantities_differ(connection: sqlite3.Connection) -> bool:
-    stored = set(connection.execute("SELECT kind, key, unit FROM quantities"))
-    return not _wanted_quantities() <= stored
+    db = Database(connection, execute_plugins=False)
+    for upgrade in MIGRATIONS[layout_version(connection) :]:
+        upgrade(db)
+    _add_quantities(db)
+    _make_views(db)
+    connection.execute(f"PRAGMA application_id = {APPLICATION_ID}")
+    connection.execute(f"PRAGMA user_version = {VERSION}")
 
 
 # ---- layout 1
@@ -270,12 +214,7 @@ def _guard_cache(db: Database) -> None:
 
 def _add_quantities(db: Database) -> None:
     """Columns for quantities that the vocabulary has gained since the catalog was made."""
-    wanted = [
-        *(("figure", key, quantities()[key].unit) for key in figure_keys()),
-        *(("text", key, "") for key in text_keys()),
-        *(("constant", key, unit) for key, unit in CANONICAL.items()),
-    ]
-    for position, (kind, key, unit) in enumerate(wanted):
+    for position, (kind, key, unit) in enumerate(wanted_quantities()):
         db.execute(
             "INSERT INTO quantities(kind, key, unit, position) VALUES (?,?,?,?) "
             "ON CONFLICT DO UPDATE SET unit = excluded.unit, position = excluded.position",
@@ -285,6 +224,11 @@ def _add_quantities(db: Database) -> None:
         "figure_text": dict.fromkeys([*figure_keys(), *text_keys()], "TEXT"),
         "figure_value": dict.fromkeys(figure_keys(), "REAL"),
         "figure_digit": dict.fromkeys(figure_keys(), "INTEGER"),
+        "constants": {
+            name: "INTEGER" if name.endswith("_by") else "REAL"
+            for key in CANONICAL
+            for name in (key, f"{key}_low", f"{key}_high", f"{key}_by")
+        },
     }
     for table, wanted_columns in columns.items():
         present = {row[1] for row in db.execute(f"PRAGMA table_info({table})")}

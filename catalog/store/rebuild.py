@@ -21,8 +21,8 @@ from ...schema.batch import (
 )
 from ...schema.convention import Commutation, Convention
 from .intervals import half_digit
-from .layout import figure_keys, text_keys
 from .load import lines
+from .names import figure_keys, text_keys
 
 
 def batch_of_source(connection: sqlite3.Connection, source_id: int) -> tuple[Batch, int]:

@@ -14,7 +14,7 @@ from ...schema.batch import MODEL_BASES, Batch, FigureColumn, Heading, Ints
 from ...schema.convention import Commutation, Convention
 from ...schema.motor import CONSTANT_BASES, Finding, Reconciled
 from .intervals import encode
-from .layout import figure_keys, text_keys
+from .names import figure_keys, text_keys
 from .patterns import Pattern, places_of, usual_places
 
 
