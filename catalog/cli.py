@@ -8,6 +8,7 @@ import importlib
 import os
 import sys
 from collections.abc import Sequence
+from pathlib import Path
 from typing import TextIO
 
 import click
@@ -23,6 +24,8 @@ COMMANDS: dict[str, tuple[str, str]] = {
     "operate": ("operate", "Show a motor at work, under voltage or current control."),
     "gears": ("gears", "Read tables of gears, or list those of the catalog."),
     "compare": ("compare", "Put motors side by side."),
+    "plot": ("plot", "Draw a motor, its figures or a search as SVG or PNG."),
+    "page": ("page", "Write one HTML file of a catalog or a search that opens offline."),
     "export": ("export", "Write the catalog as CSV, JSON, TOML or Parquet."),
     "convert": ("convert", "Convert a figure from one unit to another."),
     "schema": ("schema", "Print the JSON Schema of a document."),
@@ -60,8 +63,9 @@ class LazyGroup(click.Group):
     context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100},
     epilog="Example: motorfolio import sheets/*.csv, then motorfolio check.",
 )
+@click.option("--catalog", type=click.Path(path_type=Path), metavar="FILE", help="The catalog.")
 @click.version_option(package_name="motorfolio", message="motorfolio %(version)s")
-def group() -> None:
+def group(catalog: Path | None) -> None:
     """Read electric motors' datasheet tables, bring them to the same SI constants, catch what
     contradicts itself, and find the motor that does the job.
 

@@ -11,6 +11,14 @@ import click
 Function = Callable[..., Any]
 
 
+def _before_the_command(context: click.Context, parameter: click.Parameter, value: Path) -> Path:
+    """--catalog may also stand before the command's name: motorfolio --catalog FILE check."""
+    given = context.get_parameter_source(parameter.name or "")
+    if given is click.core.ParameterSource.COMMANDLINE:
+        return value
+    return context.find_root().params.get("catalog") or value
+
+
 def catalog_option(function: Function) -> Function:
     """Adds --catalog; the command gets a Path."""
     return click.option(
@@ -20,6 +28,7 @@ def catalog_option(function: Function) -> Function:
         default=Path("motorfolio.sqlite"),
         show_default="MOTORFOLIO_CATALOG, else motorfolio.sqlite",
         metavar="FILE",
+        callback=_before_the_command,
         help="The catalog.",
     )(function)
 
