@@ -95,7 +95,10 @@ def test_lines_differ_without_colour(catalog):
     ("call", "said"),
     [
         (("figures", "PIKA-3", "-o", "x.pdf"), ".svg or .png"),
-        (("ratios", "DACHS-24", "--torque", "1 mN·m", "--speed", "1 rpm", "-o", "x.svg"), "--ratio"),
+        (
+            ("ratios", "DACHS-24", "--torque", "1 mN·m", "--speed", "1 rpm", "-o", "x.svg"),
+            "--ratio",
+        ),
         (("plane", "NONE-1", "-o", "x.svg"), "NONE-1"),
         (("figures", "PIKA-3", "-o", "no/such/folder/x.svg"), "no/such/folder"),
     ],

@@ -1,0 +1,133 @@
+"""A motor's document in few bytes: what its card on the page shows, repeated texts by number."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterable, Sequence
+from typing import Any
+
+from ...documents import Document
+from .. import plain as p
+from ..implied import Implied
+
+Packed = dict[str, Any]
+
+
+class Strings:
+    """Texts that stand once in the page; what refers to them holds their number."""
+
+    def __init__(self) -> None:
+        self.texts: list[str] = []
+        self._numbers: dict[str, int] = {}
+
+    def __call__(self, text: str) -> int:
+        number = self._numbers.get(text)
+        if number is None:
+            number = self._numbers[text] = len(self.texts)
+            self.texts.append(text)
+        return number
+
+
+def rounded(value: float | None, digits: int = 6) -> float | None:
+    """To significant digits; None where there is no finite number."""
+    if value is None or not math.isfinite(value):
+        return None
+    return float(f"{value:.{digits}g}")
+
+
+def pack_card(motor: Document, implied: Sequence[Implied], strings: Strings) -> Packed:
+    """The card of a MOTOR; every text made safe for the eye (no control characters)."""
+    kind = motor["model"]
+    about = [f"{kind['commutation']['value']} commutation ({kind['commutation']['basis']})"]
+    if kind["magnet"]["value"] != "unknown":
+        about.append(f"{kind['magnet']['value']} magnets ({kind['magnet']['basis']})")
+    description = motor["figures"].get("description", {}).get("value")
+    conditions = [
+        [f"When {p.plain(c['when'])}", list(_figures(c["figures"].items(), strings))]
+        for c in motor.get("conditions", ())
+    ]
+    again = [(key, f) for key, found in motor.get("repeats", {}).items() for f in found]
+    if again:
+        conditions.append(["Given again", list(_figures(again, strings))])
+    conditions += [
+        [f"Point {p.plain(point['name'])}", list(_points(point["figures"], strings))]
+        for point in motor.get("points", ())
+    ]
+    return {
+        "name": p.plain(motor["part_number"]),
+        "maker": p.plain(motor["maker"] or ""),
+        "series": p.plain(motor["series"] or ""),
+        "kind": ", ".join(about),
+        "description": p.plain(description) if isinstance(description, str) else "",
+        "source": _source(motor),
+        "constants": [
+            [
+                strings(key), strings(c["unit"]), rounded(c["value"]), rounded(c["low"]),
+                rounded(c["high"]), strings(_basis(c)),
+            ]
+            for key, c in motor["constants"].items()
+        ],
+        "figures": list(_figures(motor["figures"].items(), strings)),
+        "conditions": conditions,
+        "findings": [_finding(f, strings) for f in motor["findings"]],
+        "implied": [
+            [
+                strings(f.key), rounded(f.ratio, 5), rounded(f.low, 5), rounded(f.high, 5),
+                rounded(f.sd, 3), None if f.severity is None else strings(f.severity),
+            ]
+            for f in implied
+        ],
+    }  # fmt: skip
+
+
+def _finding(f: Document, strings: Strings) -> list[Any]:
+    """[severity, message, doubted figures]."""
+    doubted = [] if f["severity"] == "note" else [f["suspect"]] if f["suspect"] else f["figures"]
+    return [strings(f["severity"]), p.plain(f["message"]), [strings(key) for key in doubted]]
+
+
+def _basis(constant: Document) -> str:
+    sources = constant["from"]
+    if not sources:
+        return constant["basis"]
+    if len(sources) == 1:
+        return f"{constant['basis']} from {p.words(sources[0])}"
+    return f"{constant['basis']}, {len(sources)} figures"
+
+
+def _figures(figures: Iterable[tuple[str, Document]], strings: Strings) -> Iterable[list[Any]]:
+    """[key, printed, unit, value, convention, cell] and, if there is one, the correction."""
+    for key, f in figures:
+        value, unit = f["value"], f.get("unit", "")
+        printed = " ".join(filter(None, (f["text"], f.get("printed_unit"))))
+        corrected = f.get("corrected")
+        if corrected:
+            value, unit = corrected["value"], corrected["unit"]
+        packed = [
+            strings(key), p.plain(printed), strings(unit),
+            None if isinstance(value, str) else rounded(value),
+            strings(p.plain(p.convention(f.get("convention")))), strings(_place(f.get("cell"))),
+        ]  # fmt: skip
+        if corrected:
+            packed.append([p.plain(corrected["text"]), p.plain(corrected["reason"])])
+        yield packed
+
+
+def _points(figures: Document, strings: Strings) -> Iterable[list[Any]]:
+    blank = strings("")
+    for key, f in figures.items():
+        yield [strings(key), "", strings(f["unit"]), rounded(f["value"]), blank, blank]
+
+
+def _place(cell: Document | None) -> str:
+    """Row and column, R10 C3."""
+    cell = cell or {}
+    return " ".join(
+        f"{sign}{cell[key]}" for sign, key in (("R", "row"), ("C", "column")) if cell.get(key)
+    )
+
+
+def _source(motor: Document) -> str:
+    source = motor["source"]
+    page = f"page {source['page']}" if source["page"] else None
+    return "From " + p.plain(", ".join(filter(None, (source["file"], source["sheet"], page))))
