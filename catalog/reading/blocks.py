@@ -1,5 +1,6 @@
 """A grid → its blocks: merged cells filled, parted at blank rows and columns, laid out by evidence."""
 
+import re
 from dataclasses import dataclass, field
 
 from ...schema.signs import plain
@@ -7,6 +8,9 @@ from ..tables.grid import Grid
 from .cells import is_figure, is_unit, strength
 from .label import parse_label
 
+_CONDITION = re.compile(
+    r"(?:at |bei |à |@ ?)?\d{1,3}(?:[.,]\d+)?\s*(?:V ?AC|V ?DC|VAC|VDC|V|K|°C)(?: ?(?:AC|DC))?"
+)
 _ROWS_TRIED, _COLUMNS_TRIED = 80, 40
 
 
@@ -94,7 +98,10 @@ def _stacked(block: Block) -> list[Block]:
 def is_data(row: list[str]) -> bool:
     """Whether a row holds figures, as a motor's row does."""
     filled = [t for t in row if t]
-    figures = sum(1 for t in filled if is_figure(t) and not is_unit(t))
+    found = [t for t in filled if is_figure(t) and not is_unit(t)]
+    figures = len(found)
+    if found and all(_CONDITION.fullmatch(plain(t)) for t in found):
+        return False  # captions: "230 VAC", "ΔT = 100 K"
     if not figures or sum(map(is_unit, filled)) > 0.5 * len(filled):
         return False
     return figures >= 2 or figures / len(filled) >= 0.3
@@ -178,6 +185,8 @@ def column_scores(block: Block) -> list[float]:
 
 def orientation(block: Block) -> tuple[str, int]:
     """("rows", heading row), ("columns", label column) or ("text", 0), by where the headings are."""
+    if all(len({t for t in row if t}) < 2 for row in block.rows[:50]):
+        return "text", 0
     rows, columns = row_scores(block), column_scores(block)
     best_row, best_column = max(rows, default=0.0), max(columns, default=0.0)
     if max(best_row, best_column) < 0.5:

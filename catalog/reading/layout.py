@@ -210,6 +210,11 @@ def _fit(captions: list[str], keys: list[set]) -> int:
     return -faults
 
 
+def is_short_figure(text: str) -> bool:
+    """Whether a lone cell is a figure rather than a note that begins with a number."""
+    return is_figure(text) and len(text) < 20 and not re.match(r"\S{1,4}\)", text)
+
+
 def _body(block: Block, start: int, head_rows: list[list[str]]):
     """The motors' rows, their places, and the texts that stand between and below."""
     heads = {tuple(r) for r in head_rows} | {
@@ -226,13 +231,9 @@ def _body(block: Block, start: int, head_rows: list[list[str]]):
             texts = {t for t in row if t}
             if not texts:
                 continue
-            if (len(texts) == 1 and not any(is_figure(t) for t in texts)) or (
-                filled <= 2 and not any(is_figure(t) and len(t) < 20 for t in texts) and filled < 2
-            ):
-                text = _text_of(row)
-                if filled == 1 and block.width > 1:
-                    notes.append(text)
-                    continue
+            if len(texts) == 1 and block.width > 1 and not is_short_figure(*texts):
+                notes.append(_text_of(row))
+                continue
         if tuple(row) in heads:
             remarks.append(f"row {block.row_numbers[r]}: the heading again, passed over")
             continue
