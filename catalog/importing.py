@@ -17,6 +17,7 @@ from . import documents as doc
 from .batch_documents import finding_documents, motor_documents
 from .documents import Document
 from .duplicates import merged
+from .overrides import check, check_used
 from .store import Catalog, columns
 from .store.catalog import now
 from .store.corrections import Correction, corrected
@@ -148,6 +149,7 @@ def import_files(
     with_documents: give the motors' documents too (a dry run needs them, and --json).
     Raises MotorfolioError, with nothing stored, when a file can't be used or holds no motor.
     """
+    check(options.overrides)
     kept: list[tuple[str, str, str]] = []
     corrections: list[Correction] = []
     if catalog.exists() and catalog.stat().st_size:
@@ -171,6 +173,7 @@ def import_files(
             result.unread = [unread_document(u) for u in reading.unread]
             if not result.motors:
                 raise MotorfolioError(_no_motor(result))
+        check_used(options.overrides, (h for result in results for h in result.headings))
         refused = options.strict and any(r.unread or r.severities["error"] for r in results)
         store.finish(results, wanted=not (refused or options.dry_run))
     return ImportResult(results, refused)

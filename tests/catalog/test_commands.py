@@ -159,6 +159,22 @@ def test_a_heading_is_read_as_told(run, tmp_path):
     assert json.loads(out)["files"][0]["motors"][0]["figures"]["mass"]["value"] == 0.21
 
 
+@pytest.mark.parametrize(
+    ("reading", "words"),
+    [
+        ("Mass [g]=masss:g", "did you mean mass"),
+        ("Mass [g]=mass:V", "kg would do"),
+        ("Mass [g]=mass:g:sideways", "no convention"),
+        ("Weight=mass:g", "no file has such a heading"),
+    ],
+)
+def test_a_reading_that_cannot_be_is_refused(run, sheet, catalog_file, reading, words):
+    status, out, err = run("import", sheet, "--set", reading)
+    assert (status, out) == (2, "")
+    assert words in err
+    assert not catalog_file.exists()
+
+
 def test_a_reading_is_kept_for_the_maker(run, tmp_path):
     first, second = tmp_path / "1.csv", tmp_path / "2.csv"
     first.write_text(TABLE.replace("Mass [g]", "Wibble"), encoding="utf-8")

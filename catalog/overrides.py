@@ -1,0 +1,48 @@
+"""Readings of headings that a person tells: "quantity[:unit[:convention]]"."""
+
+import difflib
+from collections.abc import Iterable, Mapping
+
+from ..schema.batch import Heading
+from ..schema.errors import MotorfolioError
+from ..schema.units import read_unit
+from ..schema.vocabulary import quantities
+
+CONVENTIONS = ("dc", "peak", "rms", "lines", "phase", "star", "delta")
+SAID = "set by --set"
+"""How a heading's reason begins when it was read as told."""
+
+
+def check(overrides: Mapping[str, str]) -> None:
+    """Raise MotorfolioError, naming what would do, for a reading that can't be."""
+    for heading, reading in overrides.items():
+        key, _, rest = reading.partition(":")
+        unit, _, convention = rest.partition(":")
+        where = f'--set "{heading}={reading}"'
+        quantity = quantities().get(key.strip())
+        if quantity is None:
+            near = difflib.get_close_matches(key.strip(), quantities(), 3, 0.5)
+            hint = f"; did you mean {' or '.join(near)}?" if near else "."
+            raise MotorfolioError(f'{where}: there is no quantity "{key.strip()}"{hint}')
+        if unit.strip() and not quantity.text:
+            try:
+                read_unit(unit.strip(), quantity.accepts)
+            except MotorfolioError as error:
+                raise MotorfolioError(f"{where}: {error}.") from None
+        for word in filter(None, map(str.strip, convention.split("+"))):
+            if word not in CONVENTIONS:
+                raise MotorfolioError(
+                    f'{where}: "{word}" is no convention; there are {", ".join(CONVENTIONS)}.'
+                )
+
+
+def check_used(overrides: Mapping[str, str], headings: Iterable[Heading]) -> None:
+    """Raise MotorfolioError for a reading whose heading stands in none of the files."""
+    found = list(headings)
+    used = {h.quantity for h in found if h.reason.startswith(SAID)}
+    for heading, reading in overrides.items():
+        if reading.partition(":")[0].strip() not in used:
+            listed = ", ".join(dict.fromkeys(f'"{h.text}"' for h in found))
+            raise MotorfolioError(
+                f'--set "{heading}={reading}": no file has such a heading; they have {listed}.'
+            )
