@@ -166,7 +166,17 @@ class TableReader:
                     return _runs(
                         [t if k == 0 or t != texts[k - 1] else "" for k, t in enumerate(texts)]
                     )
-        return [list(range(n))] if 1 < n <= 200 else []
+        if self.table.layout == "rows" or not 1 < n <= 200:
+            return []
+        once = [
+            m
+            for m in self.matches
+            if m.role == "figure" and m.field.texts[0] and not any(m.field.texts[1:])
+        ]
+        frames = [m for m in once if m.key and quantity(m.key).frame]
+        # One lone figure may be a gap in the others; two of the frame are a habit of the sheet.
+        sure = len(frames) == len(once) and (len(frames) > 1 or n > 3)
+        return [list(range(n))] if sure else []
 
     def _style(self) -> NumberStyle:
         texts = [
@@ -201,7 +211,9 @@ class TableReader:
             overridden[i] if i in overridden else next(found) for i in range(len(plain_fields))
         ]
         if self.id_field is not None:
-            own = Match(self.id_field, "text", "part_number", 1.0, [], "the part numbers")
+            told = self._override(self.id_field)
+            reason = told.reason if told is not None else "the part numbers"
+            own = Match(self.id_field, "text", "part_number", 1.0, [], reason)
             matches.insert(fields.index(self.id_field), own)
         self._matched = matches
         for m in matches:

@@ -4,6 +4,7 @@ import re
 from dataclasses import dataclass, field
 
 from ...schema.signs import plain
+from ...schema.vocabulary import quantity
 from ..tables.grid import Grid
 from .cells import is_figure, is_unit, strength
 from .label import parse_label
@@ -95,12 +96,20 @@ def _stacked(block: Block) -> list[Block]:
     ]
 
 
+def _names_measured(text: str) -> bool:
+    """Whether a cell is the heading of something that is measured."""
+    return strength(text) >= 0.9 and any(
+        not quantity(k).text for p in parse_label(text).names for k in p.keys
+    )
+
+
 def is_data(row: list[str]) -> bool:
     """Whether a row holds figures, as a motor's row does."""
     filled = [t for t in row if t]
     found = [t for t in filled if is_figure(t) and not is_unit(t)]
     figures = len(found)
-    if found and all(_CONDITION.fullmatch(plain(t)) for t in found):
+    conditions = all(_CONDITION.fullmatch(plain(t)) for t in found)
+    if found and conditions and not any(map(_names_measured, filled)):
         return False  # captions: "230 VAC", "ΔT = 100 K"
     if not figures or sum(map(is_unit, filled)) > 0.5 * len(filled):
         return False

@@ -48,7 +48,7 @@ def head_field(
 
 def unit_pair(text: str) -> tuple[str, ...]:
     """The two units of "N·m (oz-in)" or "mm / in", the one of any other text."""
-    pair = re.fullmatch(r"(.+?)\s*(?:\((.+)\)|\[(.+)\]|\{(.+)\}|\s/\s(.+))", text)
+    pair = re.fullmatch(r"(.+)\s*(?:\((.+)\)|\[(.+)\]|\{(.+)\}|\s/\s(.+))", text)
     if pair:
         first, second = pair[1], next(g for g in pair.groups()[1:] if g)
         one, two = unit_of(first), unit_of(second)

@@ -67,6 +67,11 @@ def note_tolerance(text: str) -> float | None:
     return None
 
 
+def is_marked(text: str) -> bool:
+    """Whether a note begins with a footnote mark."""
+    return _MARK.match(plain(text)) is not None
+
+
 def notes_of(texts: Sequence[str]) -> Notes:
     """The conventions, temperature and tolerance that notes state."""
     notes = Notes()

@@ -14,7 +14,7 @@ from .phrase import Phrase, conventions_of, match_phrase, variant_of
 _OPENING, _CLOSING = "([{<【", ")]}>】"
 _NUMBERING = re.compile(r"\(?\d{1,2}[.)]?\s+(?=[^\W\d_]{2})|\(\d{1,2}\)\s*")
 _MARKS = re.compile(
-    r"(?:\s*(?:[*†‡§]+\)?|\^\(?(?:\d{1,2}|[a-z])\)|\^\(?[1456789a-z]\)?|(?<=\w)\s+\d\)))+$"
+    r"(?:\s*(?:[*†‡§]+\)?|\^\(?(?:\d{1,2}|[a-z])\)|\^\(?[1456789a-z]\)?|(?<=\w)\s+\d\)|(?<=[^\W\d])\d{1,2}\)))+$"
 )
 _TEMPERATURE = re.compile(
     r"(?:(?:@|at|bei|à|a|T(?:amb|ref|w|_?0)?\s*=|ϑ\s*=|θ\s*=|,)\s*)?"
@@ -311,6 +311,8 @@ def _named(label: Label, core: str) -> Label:
         if symbol and (not name or only):
             hit = find_symbol(symbol)
             score = 0.9 * hit.surety if hit else 0.0
+        if p.generic and not p.keys:
+            score -= 0.05
         if unit:
             score += 0.001 * len(unit) + 0.02
         if symbol:

@@ -266,7 +266,7 @@ def lay_out_columns(block: Block) -> Table:
     ]
     table.columns = values
     caption: list[str] = []
-    pending_unit = ""
+    captioned = -2
     for i, row in enumerate(rows):
         if i in (id_row, condition_row):
             if i == id_row:
@@ -289,7 +289,7 @@ def lay_out_columns(block: Block) -> Table:
             measured = any(not quantity(k).text for k in keys)
             if measured and not spanning and not section_of(label) and not is_caption(label):
                 continue
-            caption = [label]
+            caption, captioned = [label], i
             continue
         if not any(texts):
             continue
@@ -306,11 +306,16 @@ def lay_out_columns(block: Block) -> Table:
         if not label and not [k for k, _ in cells if k in ("name", "symbol")]:
             cells.append(("name", ""))
         field = head_field(
-            cells, texts, block.row_numbers[i], block.column_numbers[label_column], joins=False
+            cells,
+            texts,
+            block.row_numbers[i],
+            block.column_numbers[label_column],
+            joins=captioned == i - 1,
         )
+        if caption and caption[0] not in field.captions:
+            caption = []  # it was the first line of this very name
         field.source = i
         table.fields.append(field)
-    del pending_unit
     if conditions is not None:
         _fold_conditions(table, conditions)
     return table

@@ -8,6 +8,7 @@ from .batches import TableReader
 from .blocks import Block, blocks_of
 from .join import goes_with, joined, take_in
 from .cells import TOLD
+from .kind import is_marked
 from .layout import lay_out_columns, lay_out_rows
 from .lexicon import squeeze, tokens
 from .model import Reading, ReadingError, ReadOptions, Table, Unread
@@ -30,18 +31,22 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
         raise ReadingError(f'{file.name}: has no sheet "{options.sheet}"; it has {names or "none"}')
     lazy = None
     lone: list[Table] = []
+    loose: list[str] = []
     told = TOLD.set(
         frozenset(squeeze(tokens(h)) for h in (*options.overrides, *options.kept)) - {""}
     )
     for grid in grids:
         remarks += grid.remarks
         tables = _tables(grid)
+        if not tables:
+            loose += [_line(row) for row in grid.rows[:50]]
         if not tables and grid.sheet:
             remarks.append(f"sheet {grid.sheet}: no motor table, skipped")
         lone += tables
     TOLD.reset(told)
     stem = PurePath(file.name).stem
     found = [t for t in joined(lone, remarks)]
+    _share_notes(found, loose, everywhere=file.format == "text")
     for position, table in enumerate(found):
         reader = TableReader(table, file, options, stem, position if len(found) > 1 else None)
         if not reader.worthwhile:
@@ -67,6 +72,14 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
     return Reading(
         layout or "rows", headings, lazy if lazy is not None else batches, unread, remarks
     )
+
+
+def _share_notes(tables: list[Table], loose: list[str], everywhere: bool) -> None:
+    """Notes with a mark, and texts that belong to no table, hold for all tables of a file;
+    in a text of paragraphs every note does."""
+    shared = [n for t in tables for n in t.notes if everywhere or is_marked(n)]
+    for table in tables:
+        table.notes += [n for n in (*loose, *shared) if n and n not in table.notes]
 
 
 def _tables(grid: Grid) -> list[Table]:
