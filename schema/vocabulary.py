@@ -46,7 +46,8 @@ def _quantity(key: str, fields: dict) -> Quantity:
 @cache
 def quantities() -> Mapping[str, Quantity]:
     """All quantities by key, in the order of vocabulary.toml."""
-    text = resources.files("motorfolio.schema").joinpath("vocabulary.toml").read_text(encoding="utf-8")
+    file = resources.files("motorfolio.schema").joinpath("vocabulary.toml")
+    text = file.read_text(encoding="utf-8")
     return MappingProxyType({key: _quantity(key, f) for key, f in tomllib.loads(text).items()})
 
 

@@ -1,7 +1,8 @@
-"""A grid → its blocks: merged cells filled, parted at blank rows and columns, laid out by evidence."""
+"""A grid → its blocks: merged cells filled, parted at blank lines, laid out by evidence."""
 
 import re
 from dataclasses import dataclass, field
+from itertools import pairwise
 
 from ...schema.signs import plain
 from ...schema.vocabulary import quantity
@@ -65,7 +66,7 @@ def blocks_of(grid: Grid) -> list[Block]:
 
 
 def _stacked(block: Block) -> list[Block]:
-    """The blocks that stand on one another without a blank row: a new row of headings begins one."""
+    """The blocks that stand on one another: a new row of headings begins one."""
     scores = row_scores(block)
     cuts: list[int] = []
     seen_figures = False
@@ -92,7 +93,7 @@ def _stacked(block: Block) -> list[Block]:
             block.column_numbers,
             filled={(r - a, c) for r, c in block.filled if a <= r < b},
         )
-        for a, b in zip(borders, borders[1:], strict=False)
+        for a, b in pairwise(borders)
     ]
 
 
@@ -193,7 +194,7 @@ def column_scores(block: Block) -> list[float]:
 
 
 def orientation(block: Block) -> tuple[str, int]:
-    """("rows", heading row), ("columns", label column) or ("text", 0), by where the headings are."""
+    """("rows", heading row), ("columns", label column) or ("text", 0): where headings are."""
     if all(len({t for t in row if t}) < 2 for row in block.rows[:50]):
         return "text", 0
     rows, columns = row_scores(block), column_scores(block)

@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from ...schema.batch import FigureColumn, Floats
-from ...schema.figure import NumberStyle, read_column
+from ...schema.figure import ColumnFigures, NumberStyle, read_column
 from ...schema.signs import plain
 from ...schema.units import Unit, UnitError, read_unit, unit_of
 from ...schema.vocabulary import Quantity
@@ -45,7 +45,7 @@ class Values:
 
 
 def read_values(
-    texts: Sequence[str],
+    texts: list[str],
     q: Quantity,
     units: Sequence[Unit],
     style: NumberStyle,
@@ -76,11 +76,11 @@ def read_values(
         for i in column.figures:
             if column.figures[i].unit:
                 bare[i] = False
-        for i in np.flatnonzero(bare):
-            _refuse(out, int(i), texts[i], "no unit is given")
+        for i in np.flatnonzero(bare).tolist():
+            _refuse(out, i, texts[i], "no unit is given")
     _impossible(out, texts, q)
     if tolerance:
-        for i in np.flatnonzero(~np.isnan(out.value)):
+        for i in np.flatnonzero(~np.isnan(out.value)).tolist():
             if int(i) not in out.qualifiers:
                 out.qualifiers[int(i)] = "tolerance"
                 spread = abs(out.value[i]) * tolerance
@@ -94,27 +94,27 @@ def _refuse(out: Values, i: int, text: str, reason: str, guesses: tuple[str, ...
     out.failures.append(Failure(i, text, reason, guesses))
 
 
-def _impossible(out: Values, texts: Sequence[str], q: Quantity) -> None:
+def _impossible(out: Values, texts: list[str], q: Quantity) -> None:
     """Zero and negative figures where there can be none."""
     if not q.zero:
-        for i in np.flatnonzero(out.value == 0):
+        for i in np.flatnonzero(out.value == 0).tolist():
             _refuse(
                 out, int(i), texts[i], f"zero is no {q.key.replace('_', ' ')}: perhaps not given"
             )
     if q.unit != "°C":
-        for i in np.flatnonzero(out.value < 0):
-            _refuse(out, int(i), texts[i], "negative")
+        for i in np.flatnonzero(out.value < 0).tolist():
+            _refuse(out, i, texts[i], "negative")
     if q.unit == "1" and "efficiency" in q.key:
-        for i in np.flatnonzero(out.value > 1):
-            _refuse(out, int(i), texts[i], "an efficiency above 1")
+        for i in np.flatnonzero(out.value > 1).tolist():
+            _refuse(out, i, texts[i], "an efficiency above 1")
     if q.key in ("poles", "pole_pairs", "phases"):
         whole = np.isnan(out.value) | (out.value == np.round(out.value))
-        for i in np.flatnonzero(~whole):
-            _refuse(out, int(i), texts[i], "not a whole number")
+        for i in np.flatnonzero(~whole).tolist():
+            _refuse(out, i, texts[i], "not a whole number")
 
 
 def _cells_with_more(
-    out: Values, column, texts: Sequence[str], q: Quantity, units: Sequence[Unit]
+    out: Values, column: ColumnFigures, texts: list[str], q: Quantity, units: Sequence[Unit]
 ) -> None:
     """Cells that carry a qualifier, a unit of their own, a mark or a second figure."""
     second: dict[int, tuple[float, float, float]] = {}

@@ -31,7 +31,8 @@ def head_field(
         found = tuple(s for s in symbols if s not in label.symbols)
         label = replace(label, symbols=(*label.symbols, *found))
     section, when, temperature, variant = context_of(captions)
-    shown = " › ".join([*(_shown(c) for c in captions if not is_caption(c)), _shown(text)])
+    telling = [c for c in captions if not is_caption(c)]
+    shown = " › ".join(map(_shown, (*telling, text)))
     heading = shown.strip(" ›") or (symbols[0] if symbols else units[0] if units else "")
     extra = [s for s in symbols if s not in heading]
     if extra:
@@ -41,8 +42,9 @@ def head_field(
     printed = (*(_unit_text(u) for u in units), *label.units)
     return Field(
         heading, label, texts, row, column,
-        units=tuple(f"{label.factor}{u}" for text in printed for u in unit_pair(text)), captions=tuple(captions), section=section,
-        when=when, temperature=temperature, variant=variant,
+        units=tuple(f"{label.factor}{u}" for text in printed for u in unit_pair(text)),
+        captions=tuple(captions), section=section, when=when,
+        temperature=temperature, variant=variant,
     )  # fmt: skip
 
 

@@ -130,8 +130,7 @@ def _join(home: Table, table: Table, remarks: list[str]) -> None:
             position.setdefault(normal_id(text), k)
     known = {normal_id(i): k for k, i in enumerate(here) if i}
     extra = [k for k, text in enumerate(there) if text and normal_id(text) not in known]
-    for k in extra:
-        remarks.append(f'"{there[k]}" stands only in the second part of the table')
+    remarks += [f'"{there[k]}" stands only in the second part of the table' for k in extra]
     missing = [i for i in here if i and normal_id(i) not in position]
     remarks += [f'"{i}" stands only in the first part of the table' for i in missing]
     old = len(here)

@@ -93,8 +93,10 @@ def notes_of(texts: Sequence[str]) -> Notes:
 
 
 _SUBJECTS = {
-    "current": r"current|strom|ströme|courant|corrent|corrient|intensit|電流|电流|amp[eè]re|torque constant|momentenkonstante|drehmomentkonst",
-    "voltage": r"volt|emf|spannung|tension|tensi[oó]n|emk|f\.?c\.?[eé]\.?m|電圧|电压|电势|电动势|起電力",
+    "current": r"current|strom|ströme|courant|corrent|corrient|intensit|電流|电流|amp[eè]re"
+    r"|torque constant|momentenkonstante|drehmomentkonst",
+    "voltage": r"volt|emf|spannung|tension|tensi[oó]n|emk|f\.?c\.?[eé]\.?m"
+    r"|電圧|电压|电势|电动势|起電力",
     "winding": r"resist|résist|widerst|induct|indukt|indutt|抵抗|インダクタンス|电阻|电感",
 }
 
@@ -131,13 +133,15 @@ def note_conventions(text: str) -> dict[str, str]:
             stated = {k: v for k, v in stated.items() if v != "dc"}
         if stated.get("between") == "phase" and not re.search(
             r"per phase|phase (?:value|resist|induct|quant)|line to neutral|l-n|pro phase|je phase|"
-            r"strang|par phase|per fase|por fase|valeurs? (?:de|par) phase|每相|相あたり|相当り|相值|相値|of one phase|phase-neutr",
+            r"strang|par phase|per fase|por fase|valeurs? (?:de|par) phase"
+            r"|每相|相あたり|相当り|相值|相値|of one phase|phase-neutr",
             low,
         ):
             stated.pop("between")
         if stated.get("current") == "peak" and not re.search(
-            r"peak[- ]values?|amplitude|scheitel|spitzenwert|crête|crest|cresta|valor(?:es)? de pico|valori di picco|"
-            r"a\s?(?:pk|peak)|v\s?(?:pk|peak)|波高値|峰值|ピーク値|peak of|are peak|is peak|in peak|peak line|peak, ",
+            r"peak[- ]values?|amplitude|scheitel|spitzenwert|crête|crest|cresta|"
+            r"valor(?:es|i)? d[ei] picc?o|a\s?(?:pk|peak)|v\s?(?:pk|peak)|波高値|峰值|ピーク値|"
+            r"peak of|are peak|is peak|in peak|peak line|peak, ",
             low,
         ):
             stated = {k: v for k, v in stated.items() if v != "peak"}

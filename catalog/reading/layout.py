@@ -173,9 +173,7 @@ def _resection(table: Table) -> None:
 
 def _partitions(start: int, end: int, groups: int, captions: list[str], order: list[str]):
     """Borders of the groups, each of which holds the cell where its caption was printed."""
-    anchors = []
-    for caption in order:
-        anchors.append(captions.index(caption))
+    anchors = [captions.index(caption) for caption in order]
     if groups > 6:
         return
 

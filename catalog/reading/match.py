@@ -1,7 +1,8 @@
 """All headings of a table → quantities: one best assignment, with reasons and rivals."""
 
 import re
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, replace
+from dataclasses import field as made
 
 import numpy as np
 
@@ -37,7 +38,7 @@ class Candidate:
     key: str
     score: float
     reason: str
-    units: list[Unit] = field(default_factory=list)
+    units: list[Unit] = made(default_factory=list)
     unitless: bool = False
 
 
@@ -53,7 +54,7 @@ class Match:
     role: str
     key: str | None = None
     score: float = 0.0
-    units: list[Unit] = field(default_factory=list)
+    units: list[Unit] = made(default_factory=list)
     reason: str = ""
     guesses: tuple[str, ...] = ()
     when: str = ""

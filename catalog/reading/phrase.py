@@ -1,4 +1,4 @@
-"""A phrase → the quantities that it names, once words about conventions and sections are set aside."""
+"""A phrase → the quantities that it names, words on conventions and sections set aside."""
 
 import re
 from dataclasses import dataclass, field
@@ -286,7 +286,8 @@ def _cjk_stripped(text: str) -> Phrase | None:
         attempt = run.replace(f, "")
         if attempt != run and (attempt in lex.names or attempt in lex.generic):
             return Phrase(
-                text, tuple(sorted(lex.names.get(attempt, ()))), SHORTENED, lex.generic.get(attempt),
+                text, tuple(sorted(lex.names.get(attempt, ()))), SHORTENED,
+                lex.generic.get(attempt),
                 conventions=tuple(cjk_conventions(text).items()), how=f'"{text}" names it',
             )  # fmt: skip
     return None

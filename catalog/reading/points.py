@@ -1,4 +1,4 @@
-"""Operating points laid out as a matrix: the points down (or across), the figures across (or down)."""
+"""Operating points as a matrix of points and figures, and as lists of measured loads."""
 
 from dataclasses import replace
 

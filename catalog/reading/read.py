@@ -6,8 +6,8 @@ from ...schema.batch import Batch, Heading
 from ..tables.grid import Grid, TableFile
 from .batches import TableReader
 from .blocks import Block, blocks_of
-from .join import goes_with, joined, take_in
 from .cells import TOLD
+from .join import goes_with, joined, take_in
 from .kind import is_marked
 from .layout import lay_out_columns, lay_out_rows
 from .lexicon import squeeze, tokens
@@ -45,7 +45,7 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
         lone += tables
     TOLD.reset(told)
     stem = PurePath(file.name).stem
-    found = [t for t in joined(lone, remarks)]
+    found = joined(lone, remarks)
     _share_notes(found, loose, everywhere=file.format == "text")
     for position, table in enumerate(found):
         reader = TableReader(table, file, options, stem, position if len(found) > 1 else None)

@@ -42,14 +42,16 @@ class Sheet:
 
 
 def grid(text: str, spans: list[Span] | None = None) -> Grid:
-    rows = [[c.strip().replace("\\n", "\n") for c in line.split("|")] for line in text.strip("\n").split("\n")]
+    lines = text.strip("\n").split("\n")
+    rows = [[c.strip().replace("\\n", "\n") for c in line.split("|")] for line in lines]
     width = max(map(len, rows))
     rows = [row + [""] * (width - len(row)) for row in rows]
     return Grid(rows, list(range(1, len(rows) + 1)), list(range(1, width + 1)), spans=spans or [])
 
 
 def sheet(text: str, spans: list[Span] | None = None, **options) -> Sheet:
-    reading = read(TableFile("plate.csv", "0" * 64, "csv", [grid(text, spans)]), ReadOptions(**options))
+    file = TableFile("plate.csv", "0" * 64, "csv", [grid(text, spans)])
+    reading = read(file, ReadOptions(**options))
     batches = list(reading.batches)
     reading.batches = batches
     return Sheet(reading, batches)

@@ -1,5 +1,7 @@
 """One invented motor in seven languages: the same figures."""
 
+# ruff: noqa: E501
+
 import pytest
 
 from .sheets import RPM, sheet

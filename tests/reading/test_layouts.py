@@ -1,5 +1,7 @@
 """Every layout pattern of motor sheets; all motors and figures are invented."""
 
+# ruff: noqa: E501
+
 import math
 
 import pytest
@@ -124,7 +126,8 @@ B | 24 ±10 % | max. 0.4 | n/a | 0.2
     assert (volts.low[0], volts.value[0], volts.high[0]) == (12, 18, 24)
     assert volts.low[1] == pytest.approx(21.6)
     current = s.batch.figures["no_load_current"]
-    assert current.qualifiers == {0: "at most", 1: "at most"} and current.high[1] == 0.4
+    assert current.qualifiers == {0: "at most", 1: "at most"}
+    assert current.high[1] == 0.4
     assert "mass" not in s.motors()["A"]
     assert s.motors()["A"]["cogging_torque"] == 0
     assert not s.reading.unread

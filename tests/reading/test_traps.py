@@ -1,5 +1,7 @@
 """Signs and words that mean different things on different sheets; all figures are invented."""
 
+# ruff: noqa: E501
+
 import pytest
 
 from .sheets import RPM, sheet

@@ -1,0 +1,357 @@
+"""One table → what is decided once for all its motors: headings, units, kind, conventions."""
+
+import re
+from collections.abc import Sequence
+from dataclasses import replace
+
+import numpy as np
+
+from ...schema.batch import MAGNETS, Heading, Source
+from ...schema.convention import Commutation
+from ...schema.figure import NumberStyle, number_style
+from ...schema.signs import plain
+from ...schema.units import Unit, UnitError, read_unit
+from ...schema.vocabulary import Quantity, quantities, quantity
+from ..tables.grid import TableFile
+from .cells import is_ditto, missing
+from .join import id_field, ids_of
+from .kind import (
+    ASSUMED,
+    INFERRED,
+    STATED,
+    TOLD,
+    Notes,
+    commutation_in,
+    magnet_in,
+    notes_of,
+    signature,
+)
+from .label import parse_label
+from .layout import inherit
+from .lexicon import squeeze, tokens
+from .match import Match, Matcher
+from .model import Field, ReadOptions, Table, Unread
+from .said import convention_of, temperature_of
+
+STYLE_ROWS = 2000
+"""Rows that are looked at to find the table's decimal sign."""
+
+
+class Decisions:
+    """Everything about one table that does not differ from motor to motor."""
+
+    def __init__(
+        self, table: Table, file: TableFile, options: ReadOptions, stem: str, position: int | None
+    ) -> None:
+        self.table = table
+        self.options = options
+        self.stem = stem if position is None else f"{stem} {position + 1}"
+        self.source = Source(file.name, file.sha256, table.sheet, table.page, table.layout)
+        self.unread: list[Unread] = []
+        self.remarks: list[str] = list(table.remarks)
+        self.notes: Notes = notes_of([*table.titles, *table.notes])
+        self._ditto()
+        self.id_field = None if table.part_numbers else self._told_ids() or id_field(table)
+        self.style = self._style()
+        self.matches = self._match()
+        self._share_frame()
+        self._stated_voltage()
+        self.why_not: list[str] = []
+        figures = [m for m in self.matches if m.role in ("figure", "point")]
+        known = [m for m in self.matches if m.score >= 0.85 and m.guesses]
+        self.worthwhile = table.count > 0 and (bool(figures) or len(known) > 1)
+        if not self.worthwhile:
+            first = plain(table.fields[0].heading) if table.fields else ""
+            self.why_not = [f'a table with "{first}" gives no figure of a motor, passed over']
+        self.commutation, self.commutation_basis = self._commutation()
+        self.magnet, self.magnet_basis = self._magnet()
+        self.reference, self.reference_basis = self._reference()
+        self.conventions = [convention_of(m, self.commutation, self.notes) for m in self.matches]
+        self.headings = self._headings()
+        self._unread_headings()
+
+    def _ids(self) -> list[str | None]:
+        if self.table.part_numbers or self.id_field is None:
+            return ids_of(self.table)
+        return [t or None for t in self.id_field.texts]
+
+    def _told_ids(self) -> Field | None:
+        """The field that the user names as the part numbers."""
+        for f in self.table.fields:
+            match = self._override(f)
+            if match is not None and match.key == "part_number":
+                return f
+        return None
+
+    def _ditto(self) -> None:
+        """Cells that say "as above" or "as left" take that text; frame figures too where blank."""
+        for f in self.table.fields:
+            if any(is_ditto(t) for t in set(f.texts[:STYLE_ROWS]) if not t[:1].isdigit()):
+                f.texts = inherit(f.texts, ditto_only=True)
+
+    def _stated_voltage(self) -> None:
+        """The voltage of the whole table, where only a title or a note gives it: "at 12 V"."""
+        if any(m.key in ("nominal_voltage", "mains_voltage") for m in self.matches):
+            return
+        found: dict[str, str] = {}
+        for text in (*self.table.titles, *self.table.notes):
+            for at in re.finditer(
+                r"(?:\bat|\bbei|\bà|@)\s*(\d+(?:[.,]\d+)?\s*V)(?:\s*DC)?(?![\w/])", plain(text)
+            ):
+                found[at[1].replace(" ", "")] = text
+        if len(found) != 1:
+            return
+        (voltage, text), *_ = found.items()
+        n = self.table.count
+        field = Field(plain(text), parse_label("Nominal voltage [V]"), [voltage[:-1]] * n, 0, 0)
+        field.places, field.layout = [0] * n, "rows"
+        reason = "the voltage that the table is stated for, by its title or a note"
+        unit = read_unit("V", ("V",))
+        self.matches.append(Match(field, "figure", "nominal_voltage", 0.9, [unit], reason))
+
+    def _share_frame(self) -> None:
+        """A figure of the frame that stands once, at the first of its motors, holds for all.
+
+        Where a column names the frame (a model printed once, its windings below), it holds
+        down to the next model; without one only if no other motor has the figure.
+        """
+        groups = self._frame_groups()
+        for m in self.matches:
+            if m.role != "figure" or m.key is None or not quantity(m.key).frame:
+                continue
+            f = m.field
+            shared = False
+            texts = list(f.texts)
+            places = list(f.places or self.table.places)
+            for group in groups:
+                if len(group) > 1 and texts[group[0]] and not any(texts[k] for k in group[1:]):
+                    for k in group[1:]:
+                        texts[k], places[k] = texts[group[0]], places[group[0]]
+                    shared = True
+            if shared:
+                f.texts, f.places = texts, places
+                m.reason += "; printed once for the motors of a frame"
+
+    def _frame_groups(self) -> list[list[int]]:
+        n = self.table.count
+        for m in self.matches:
+            if m.key in ("series", "part_number") and m.field is not self.id_field:
+                texts = m.field.texts
+                if texts and texts[0] and not all(texts):
+                    return _runs(texts)
+                if m.key == "series" and all(texts):
+                    return _runs(
+                        [t if k == 0 or t != texts[k - 1] else "" for k, t in enumerate(texts)]
+                    )
+        if self.table.layout == "rows" or not 1 < n <= 200:
+            return []
+        once = [
+            m
+            for m in self.matches
+            if m.role == "figure" and m.field.texts[0] and not any(m.field.texts[1:])
+        ]
+        frames = [m for m in once if m.key and quantity(m.key).frame]
+        # One lone figure may be a gap in the others; two of the frame are a habit of the sheet.
+        sure = len(frames) == len(once) and (len(frames) > 1 or n > 3)
+        return [list(range(n))] if sure else []
+
+    def _style(self) -> NumberStyle:
+        texts = [
+            t
+            for f in self.table.fields
+            if f is not self.id_field
+            for t in f.texts[:STYLE_ROWS]
+            if t
+        ]
+        style = number_style(texts)
+        if style.conflicts:
+            cells = ", ".join(f'"{texts[i]}"' for i in style.conflicts[:5])
+            self.remarks.append(
+                f"decimal sign {style.decimal or 'undecided'} by {style.evidence}; "
+                f"against it: {cells}"
+            )
+        return style
+
+    def _match(self) -> list[Match]:
+        fields = self.table.fields
+        plain_fields = [f for f in fields if f is not self.id_field]
+        overridden: dict[int, Match] = {}
+        for i, f in enumerate(plain_fields):
+            match = self._override(f)
+            if match is not None:
+                overridden[i] = match
+        rest = [f for i, f in enumerate(plain_fields) if i not in overridden]
+        taken = {m.key for m in overridden.values()}
+        matcher = Matcher(rest, self.style, frozenset(k for k in taken if k))
+        self.family = matcher.family
+        found = iter(matcher.assign())
+        matches = [
+            overridden[i] if i in overridden else next(found) for i in range(len(plain_fields))
+        ]
+        if self.id_field is not None:
+            told = self._override(self.id_field)
+            reason = told.reason if told is not None else "the part numbers"
+            own = Match(self.id_field, "text", "part_number", 1.0, [], reason)
+            matches.insert(fields.index(self.id_field), own)
+        self._matched = matches
+        for m in matches:
+            self._repair(m, matcher)
+        return matches
+
+    def _override(self, f: Field) -> Match | None:
+        names = {squeeze(tokens(t)) for t in (f.heading, f.label.text, *f.label.symbols) if t}
+        for table, said in (
+            (self.options.overrides, "set by --set"),
+            (self.options.kept, "kept for this maker"),
+        ):
+            for heading, meaning in table.items():
+                if squeeze(tokens(heading)) not in names and plain(heading) != plain(f.heading):
+                    continue
+                key, _, rest = meaning.partition(":")
+                unit_text, _, words_ = rest.partition(":")
+                q = quantities().get(key.strip())
+                if q is None:
+                    return None
+                if q.text:
+                    return Match(f, "text", q.key, 1.0, [], said)
+                texts = [unit_text] if unit_text else list(f.units)
+                units: list[Unit] = []
+                for text in texts:
+                    try:
+                        units.append(read_unit(text, q.accepts))
+                    except UnitError as error:
+                        if unit_text:
+                            return Match(
+                                f, "unread", None, 0.0, [], f"{said}, but {error}", (q.key,)
+                            )
+                if not units and "1" in q.accepts:
+                    units = [Unit("", "1", 1.0, 0.0, "1")]
+                forced = tuple(w.strip() for w in words_.split("+") if w.strip())
+                return Match(f, "figure", q.key, 1.0, units, said, forced_convention=forced)
+        return None
+
+    def _repair(self, m: Match, matcher: Matcher) -> None:
+        """Units of which some sheets mean something else: decided by size, else not read."""
+        if m.role not in ("figure", "repeat", "condition") or not m.units or m.key is None:
+            return
+        unit = m.units[0]
+        if not re.search(r"\bmay\b", unit.remark):  # the unit's own doubt about its meaning
+            if unit.remark:
+                m.reason += f"; {unit.remark}"
+            return
+        q = quantity(m.key)
+        values = [v for v in matcher.sampled(m.field) if v]
+        if not values:
+            return
+        size = float(np.median(np.abs(values))) * unit.factor
+        lo, hi = q.plausible
+        volts = [v for o in self._matched for v in _voltage_of(o, matcher)]
+        absurd = m.key == "back_emf_constant" and volts and max(volts) / size < 10  # rad/s
+        if lo / 3 <= size <= hi * 3 and not absurd:
+            m.reason += "; as written, of a plausible size"
+            return
+        if m.key == "rotor_inertia":
+            base = _without_power(unit.text, q)
+            if base is not None:
+                inverse = base.factor**2 / unit.factor
+                if lo / 3 <= size / unit.factor * inverse <= hi * 3:
+                    m.units[0] = replace(unit, factor=inverse)
+                    m.reason += (
+                        "; the power of ten is taken as multiplied into the figures, "
+                        "since they are else of an impossible size"
+                    )
+                    return
+        m.role, m.reason = (
+            "unread",
+            f"{m.key} in {unit.text} would be of an impossible size: {unit.remark}",
+        )
+        m.guesses = (m.key,)
+
+    def _texts_about(self) -> list[str]:
+        captions = {c for f in self.table.fields for c in f.captions}
+        return [*self.table.titles, *self.table.notes, *captions]
+
+    def _commutation(self) -> tuple[Commutation, int]:
+        if self.options.commutation:
+            return Commutation[self.options.commutation.upper()], TOLD
+        stated = commutation_in(self._texts_about())
+        if stated is not None:
+            return stated, STATED
+        betrayed = signature(self.matches, self.family)
+        if betrayed is not None:
+            return betrayed, INFERRED
+        return Commutation.BRUSHED, ASSUMED
+
+    def _magnet(self) -> tuple[str, int]:
+        stated = magnet_in(self._texts_about())
+        return (stated, STATED) if stated in MAGNETS else ("unknown", ASSUMED)
+
+    def _reference(self) -> tuple[float, int]:
+        if self.notes.temperature is not None:
+            return self.notes.temperature, STATED
+        for key in ("terminal_resistance", "torque_constant", "back_emf_constant"):
+            for m in self.matches:
+                if m.key == key and m.role == "figure":
+                    t = temperature_of(m)
+                    if t is not None:
+                        return t, STATED
+        return 25.0, ASSUMED
+
+    def _headings(self) -> list[Heading]:
+        out = []
+        for m, c in zip(self.matches, self.conventions, strict=True):
+            unit = m.units[0] if m.units else None
+            out.append(
+                Heading(
+                    m.field.heading,
+                    m.key if m.role != "unread" else None,
+                    unit.text if unit else "",
+                    c,
+                    round(max(0.0, min(m.score, 1.0)), 3),
+                    m.reason,
+                    unit.factor if unit else 1.0,
+                    unit.offset if unit else 0.0,
+                )
+            )
+        return out
+
+    def _unread_headings(self) -> None:
+        for m in self.matches:
+            if m.role != "unread":
+                continue
+            f = m.field
+            first = next((k for k, t in enumerate(f.texts) if t and not missing(t)), None)
+            if first is None:
+                continue
+            row, column = self.table.place(f, first)
+            self.unread.append(
+                Unread(
+                    None, f.heading, self.table.sheet, self.table.page, row, column,
+                    f.texts[first], m.reason, m.guesses,
+                )
+            )  # fmt: skip
+
+
+def _voltage_of(m: Match, matcher: Matcher) -> list[float]:
+    if m.key != "nominal_voltage" or m.role != "figure" or not m.units:
+        return []
+    return [v * m.units[0].factor for v in matcher.sampled(m.field)]
+
+
+def _runs(texts: Sequence[str]) -> list[list[int]]:
+    """Indices in groups, a new one at every text."""
+    groups: list[list[int]] = []
+    for k, text in enumerate(texts):
+        if text or not groups:
+            groups.append([k])
+        else:
+            groups[-1].append(k)
+    return groups
+
+
+def _without_power(text: str, q: Quantity) -> Unit | None:
+    bare = re.sub(r"[×x*·]?\s*10\s*\^?\s*[+-]?\d+\s*[×x*·]?\s*", "", plain(text)).strip()
+    try:
+        return read_unit(bare, q.accepts)
+    except UnitError:
+        return None
