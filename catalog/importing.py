@@ -350,11 +350,12 @@ class _Store:
         self.catalog = Catalog.open(self.path, create=True)
         self.catalog.begin()
         connection = self.catalog.connection
-        cursor = connection.execute(
-            "INSERT INTO imports(at, files, motors) VALUES (?, 0, 0)", (now(),)
-        )
-        assert cursor.lastrowid is not None
-        return Writer(connection, cursor.lastrowid)
+        with in_words(self.path):
+            cursor = connection.execute(
+                "INSERT INTO imports(at, files, motors) VALUES (?, 0, 0)", (now(),)
+            )
+            assert cursor.lastrowid is not None
+            return Writer(connection, cursor.lastrowid)
 
     def _flush(self) -> None:
         writer = self.writer = self.writer or self._begin()

@@ -89,7 +89,7 @@ def connect(path: Path, *, create: bool = False, write: bool = False) -> sqlite3
 def _open(path: Path, *, create: bool, write: bool) -> sqlite3.Connection:
     # a reader too opens for writing where it may: a journal that a killed writer left behind can
     # be rolled back only by someone who may write
-    writable = create or os.access(path, os.W_OK)
+    writable = os.access(path, os.W_OK) or (create and not path.exists())
     if write and not writable:
         raise CatalogError(
             f"The catalog {path} can't be written (read-only file); nothing was changed."

@@ -1,0 +1,1 @@
+"""Kills, crowds, full disks, earlier layouts: what no call may do to a catalog."""

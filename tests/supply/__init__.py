@@ -1,0 +1,1 @@
+"""What is shipped: bounds of the dependencies, the wheel, the bill of materials."""

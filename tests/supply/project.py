@@ -1,0 +1,66 @@
+"""The project as it would be shipped: the files that git knows, built away from the work tree."""
+
+from __future__ import annotations
+
+import os
+import shutil
+import subprocess
+import tomllib
+from pathlib import Path
+
+ROOT = Path(__file__).parent.parent.parent
+SAMPLES = (
+    "brindlewick_10.csv",
+    "brindlewick_22.csv",
+    "quasselbach.csv",
+    "gopher_notch.tsv",
+    "grisoulette.csv",
+    "wobbleton.csv",
+    "tanuki_hollow.html",
+)
+EPOCH = "1735689600"  # 2025-01-01: any fixed time will do
+TYPE_TOOLS = ("basedpyright", "ruff", "playwright")
+
+
+def run(*command: str | Path, cwd: Path | None = None, **environment: str) -> str:
+    """Run a command; its output, or RuntimeError with all it said."""
+    done = subprocess.run(
+        [str(word) for word in command],
+        cwd=cwd, env={**os.environ, **environment}, capture_output=True, text=True, check=False,
+    )  # fmt: skip
+    if done.returncode:
+        words = " ".join(str(word) for word in command[:6])
+        raise RuntimeError(f"{words} … ended with {done.returncode}:\n{done.stdout}{done.stderr}")
+    return done.stdout
+
+
+def copy_of_project(folder: Path) -> Path:
+    """The files that git tracks, as they are now, in a new folder."""
+    names = run("git", "ls-files", "-z", cwd=ROOT).split("\0")
+    for name in filter(None, names):
+        if (ROOT / name).is_file():
+            (folder / name).parent.mkdir(parents=True, exist_ok=True)
+            shutil.copy2(ROOT / name, folder / name)
+    return folder
+
+
+def build(tool: Path, project: Path, out: Path) -> list[Path]:
+    """sdist and wheel, the wheel built from the sdist; ``tool`` is a Python that has ``build``."""
+    run(tool, "-m", "build", "--outdir", out, project, SOURCE_DATE_EPOCH=EPOCH)
+    return sorted(out.iterdir())
+
+
+def environment(folder: Path, python: str, *packages: str) -> Path:
+    """A new virtual environment with these packages, by plain pip; its Python."""
+    run(python, "-m", "venv", "--clear", folder)
+    inside = folder / "bin" / "python"
+    if packages:
+        run(inside, "-m", "pip", "install", "--quiet", *packages)
+    return inside
+
+
+def test_tools() -> list[str]:
+    """The development group but for what only checks style and types."""
+    text = (ROOT / "pyproject.toml").read_text(encoding="utf-8")
+    group = tomllib.loads(text)["dependency-groups"]["dev"]
+    return [name for name in group if "-stubs" not in name and not name.startswith(TYPE_TOOLS)]
