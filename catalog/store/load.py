@@ -5,11 +5,11 @@ import sqlite3
 from collections import defaultdict
 from collections.abc import Iterable, Iterator, Sequence
 from itertools import islice
-from typing import NamedTuple
+from typing import Any, NamedTuple
 
-from ...schema.convention import Convention
 from .. import documents as doc
 from ..documents import Document
+from .chunk import Chunk, Palettes, rows
 from .database import CatalogError
 
 CHUNK = 400
@@ -79,104 +79,16 @@ def motors(connection: sqlite3.Connection, ids: Iterable[int]) -> Iterator[Docum
 class _Loader:
     def __init__(self, connection: sqlite3.Connection) -> None:
         self.connection = connection
-        kinds: dict[str, dict[str, str]] = {"figure": {}, "text": {}, "constant": {}}
-        for kind, key, unit in connection.execute(
-            "SELECT kind, key, unit FROM quantities ORDER BY position"
-        ):
-            kinds[kind][key] = unit
-        self.figures, self.texts, self.constants = kinds["figure"], kinds["text"], kinds["constant"]
-        self.conventions = {
-            row[0]: Convention(*row[1:]) for row in connection.execute("SELECT * FROM conventions")
-        }
-        self.derivations = {
-            number: (basis, figures.split())
-            for number, basis, figures in connection.execute("SELECT * FROM derivations")
-        }
-
-    def _rows(self, sql: str, ids: Sequence[int]) -> sqlite3.Cursor:
-        cursor = self.connection.execute(sql.format(ids=",".join(map(str, ids))))
-        cursor.row_factory = sqlite3.Row
-        return cursor
-
-    def _by_id(self, table: str, ids: Sequence[int]) -> dict[int, sqlite3.Row]:
-        return {r["id"]: r for r in self._rows(f"SELECT * FROM {table} WHERE id IN ({{ids}})", ids)}
+        self.palettes = Palettes(connection)
 
     def load(self, ids: Sequence[int]) -> Iterator[Document]:
         """The documents of up to CHUNK motors."""
-        heads = {
-            r["id"]: r
-            for r in self._rows(
-                "SELECT m.*, k.commutation, k.commutation_basis, k.magnet, k.magnet_basis, "
-                "k.reference_temperature, k.reference_temperature_basis, f.file, f.sha256, "
-                "s.sheet, s.page FROM motor m JOIN kinds k ON k.id = m.kind "
-                "JOIN sources s ON s.id = m.source JOIN files f ON f.id = s.file "
-                "WHERE m.id IN ({ids})",
-                ids,
-            )
-        }
-        parts = {part: self._by_id(f"figure_{part}", ids) for part in ("text", "value", "digit")}
-        intervals = {
-            (r["motor"], r["quantity"]): (r["low"], r["high"])
-            for r in self._rows("SELECT * FROM figure_intervals WHERE motor IN ({ids})", ids)
-        }
-        constants = self._by_id("constants", ids)
-        patterns = self._patterns(heads.values())
-        places = {
-            (r["motor"], r["quantity"]): (r["row"], r["column"])
-            for r in self._rows("SELECT * FROM figure_places WHERE motor IN ({ids})", ids)
-        }
-        qualifiers = {
-            (r["motor"], r["quantity"]): r["qualifier"]
-            for r in self._rows("SELECT * FROM figure_qualifiers WHERE motor IN ({ids})", ids)
-        }
-        corrections = {
-            (r["motor"], r["quantity"]): r
-            for r in self._rows(
-                "SELECT a.*, k.text, k.reason FROM applied_corrections a "
-                "JOIN corrections k ON k.id = a.correction WHERE a.motor IN ({ids})",
-                ids,
-            )
-        }
-        further = self._further(ids, heads)
+        chunk = Chunk(self.connection, self.palettes, ids)
+        further = self._further(ids, chunk.heads)
         points = self._points(ids)
         findings = self._findings(ids)
         for i in ids:
-            head = heads[i]
-            figures: dict[str, Document] = {}
-            texts, values = parts["text"][i], parts["value"][i]
-            for key in self.figures:
-                if values[key] is None:
-                    continue
-                place = patterns[head["pattern"]].get(key)
-                row, column = places.get((i, key), (None, None))
-                low, high = intervals.get((i, key)) or _interval(
-                    values[key], parts["digit"][i][key], place
-                )
-                figure = doc.figure(
-                    texts[key], values[key], self._unit(key, place), low, high,
-                    self.conventions.get(place["convention"]) if place else None,
-                    qualifier=qualifiers.get((i, key)),
-                    heading=place["text"] if place else None,
-                    printed_unit=place["unit"] if place else None,
-                    place=_cell(head, place, row, column),
-                )  # fmt: skip
-                if (i, key) in corrections:
-                    c = corrections[(i, key)]
-                    published = {
-                        part: doc.number(c[f"published_{part}"])
-                        for part in ("value", "low", "high")
-                    }
-                    figure = doc.correction(figure, published, c["text"], c["reason"])
-                figures[key] = figure
-            for key in self.texts:
-                if texts[key] is not None:
-                    place = patterns[head["pattern"]].get(key)
-                    row, column = places.get((i, key), (None, None))
-                    figures[key] = doc.text_figure(
-                        texts[key],
-                        place["text"] if place else None,
-                        _cell(head, place, row, column),
-                    )
+            head = chunk.heads[i]
             repeats, conditions = further[i]
             yield doc.motor(
                 part_number=head["part_number"],
@@ -188,8 +100,8 @@ class _Loader:
                     head["reference_temperature"],
                     head["reference_temperature_basis"],
                 ),
-                figures=figures,
-                constants=self._constants(constants[i]),
+                figures=chunk.figures(i),
+                constants=chunk.constants(i),
                 findings=[doc.with_motor(f, head["part_number"]) for f in findings[i]],
                 repeats=repeats,
                 conditions=conditions,
@@ -197,51 +109,24 @@ class _Loader:
                 source={"file": head["file"], "sheet": head["sheet"], "page": head["page"]},
             )
 
-    def _unit(self, key: str, place: sqlite3.Row | None) -> str:
-        unit = self.figures.get(key, "")
-        if unit == "currency" and place is not None and place["unit"]:
-            return place["unit"]
-        return unit
-
-    def _patterns(self, heads: Iterable[sqlite3.Row]) -> dict[int, dict[str, sqlite3.Row]]:
-        numbers = sorted({head["pattern"] for head in heads})
-        found: dict[int, dict[str, sqlite3.Row]] = {number: {} for number in numbers}
-        for r in self._rows(
-            "SELECT p.*, h.text, h.unit, h.factor FROM patterns p "
-            "LEFT JOIN headings h ON h.id = p.heading "
-            "WHERE p.pattern IN ({ids})",
-            numbers,
-        ):
-            found[r["pattern"]][r["quantity"]] = r
-        return found
-
-    def _constants(self, row: sqlite3.Row) -> dict[str, Document]:
-        found: dict[str, Document] = {}
-        for key, unit in self.constants.items():
-            if row[key] is not None:
-                basis, sources = self.derivations[row[f"{key}_by"]]
-                found[key] = doc.constant(
-                    row[key], unit, row[f"{key}_low"], row[f"{key}_high"], basis, sources
-                )
-        return found
-
     def _further(
-        self, ids: Sequence[int], heads: dict[int, sqlite3.Row]
+        self, ids: Sequence[int], heads: dict[int, dict[str, Any]]
     ) -> dict[int, tuple[dict[str, list[Document]], dict[str, dict[str, Document]]]]:
         found: dict[int, tuple[dict[str, list[Document]], dict[str, dict[str, Document]]]] = {
             i: ({}, {}) for i in ids
         }
-        for r in self._rows(
+        for r in rows(
+            self.connection,
             "SELECT f.*, h.text AS heading_text, h.unit AS heading_unit FROM further_figures f "
             "LEFT JOIN headings h ON h.id = f.heading WHERE f.motor IN ({ids}) ORDER BY f.id",
             ids,
         ):
             key, printed = r["quantity"], r["unit"] or r["heading_unit"]
-            unit = self.figures[key]
+            unit = self.palettes.figures[key]
             head = heads[r["motor"]]
             document = doc.figure(
                 r["text"], r["value"], (printed or unit) if unit == "currency" else unit,
-                r["low"], r["high"], self.conventions.get(r["convention"]),
+                r["low"], r["high"], self.palettes.conventions.get(r["convention"]),
                 qualifier=r["qualifier"], heading=r["heading_text"], printed_unit=printed,
                 place=doc.cell(head["sheet"], head["page"], r["row"], r["column"]),
             )  # fmt: skip
@@ -254,24 +139,27 @@ class _Loader:
 
     def _points(self, ids: Sequence[int]) -> dict[int, list[Document]]:
         found: dict[int, dict[int, Document]] = {i: {} for i in ids}
-        for r in self._rows(
-            "SELECT * FROM points WHERE motor IN ({ids}) ORDER BY motor, number", ids
+        for r in rows(
+            self.connection,
+            "SELECT * FROM points WHERE motor IN ({ids}) ORDER BY motor, number",
+            ids,
         ):
             blank = {"name": r["name"], "figures": {}, "row": r["row"]}
             point = found[r["motor"]].setdefault(r["number"], blank)
             point["figures"][r["quantity"]] = doc.amount(
-                r["value"], self.figures.get(r["quantity"], "")
+                r["value"], self.palettes.figures.get(r["quantity"], "")
             )
         return {i: list(points.values()) for i, points in found.items()}
 
     def _findings(self, ids: Sequence[int]) -> dict[int, list[Document]]:
         found: dict[int, list[Document]] = {i: [] for i in ids}
-        pairs = self._rows(
+        pairs = rows(
+            self.connection,
             "SELECT motor, id FROM findings WHERE scope = 'motor' AND motor IN ({ids}) "
             "UNION ALL SELECT m.id, f.finding FROM finding_motors f JOIN motor m "
             "ON m.id BETWEEN f.first AND f.last WHERE m.id IN ({ids}) ORDER BY 2",
             ids,
-        ).fetchall()
+        )
         documents = dict(findings(self.connection, sorted({pair["id"] for pair in pairs})))
         for pair in pairs:
             found[pair["motor"]].append(documents[pair["id"]])
@@ -340,23 +228,6 @@ def finding_ids(connection: sqlite3.Connection, motors: Sequence[int] | None = N
             f"ORDER BY {rank}, n.id"
         )
     ]
-
-
-def _cell(
-    head: sqlite3.Row, place: sqlite3.Row | None, row: int | None, column: int | None
-) -> Document:
-    row = row or (place["row"] if place else None) or head["row"]
-    column = column or (place["column"] if place else None) or head["column"]
-    return doc.cell(head["sheet"], head["page"], row, column)
-
-
-def _interval(value: float, digit: int | None, place: sqlite3.Row | None) -> tuple[float, float]:
-    """Half of the last printed digit on either side; see intervals.py."""
-    if digit is None:
-        return value, value
-    factor = place["factor"] if place is not None else None
-    half = 0.5 * 10.0**digit * abs(1.0 if factor is None else factor)
-    return value - half, value + half
 
 
 def lines(stored: str | None) -> list[str]:
