@@ -156,7 +156,7 @@ class _Loader:
         pairs = rows(
             self.connection,
             "SELECT motor, id FROM findings WHERE scope = 'motor' AND motor IN ({ids}) "
-            "UNION ALL SELECT m.id, f.finding FROM finding_motors f JOIN motor m "
+            "UNION ALL SELECT m.id, f.finding FROM motor m CROSS JOIN finding_motors f "
             "ON m.id BETWEEN f.first AND f.last WHERE m.id IN ({ids}) ORDER BY 2",
             ids,
         )
@@ -217,7 +217,7 @@ def finding_ids(connection: sqlite3.Connection, motors: Sequence[int] | None = N
         marks = ",".join(map(str, motors))
         where = (
             f"(n.scope = 'motor' AND n.motor IN ({marks}) OR n.id IN "
-            "(SELECT f.finding FROM finding_motors f JOIN motor o "
+            "(SELECT f.finding FROM motor o CROSS JOIN finding_motors f "
             f"ON o.id BETWEEN f.first AND f.last WHERE o.id IN ({marks})))"
         )
     rank = "CASE n.severity WHEN 'error' THEN 0 WHEN 'warning' THEN 1 ELSE 2 END"
