@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
@@ -14,6 +14,7 @@ from ...schema.model import FIGURES, INDEX
 from ...schema.observed import observe
 from ...schema.suspects import leave_out, own_sd, predicted
 from ...schema.table import readings, sample, scale
+from ..documents import Document
 
 if TYPE_CHECKING:
     from ...schema.batch import Batch
@@ -43,43 +44,37 @@ class Implied:
     severity: str | None
 
 
-def implied_figures(catalog: Catalog, ids: Sequence[int]) -> dict[int, list[Implied]]:
-    """By motor's id, its figures in the order of the vocabulary.
+def implied_figures(catalog: Catalog, motors: Mapping[int, Document]) -> dict[int, list[Implied]]:
+    """By motor's id, its figures in the order of the vocabulary; ``motors`` are documents by id.
 
     Each figure is left out of the adjustment once; figures that a finding names as wrong stay out
     of the adjustment for all others, so that they alone stand apart.
     """
-    if not ids:
-        return {}
-    wanted = set(ids)
+    members: dict[int, list[int]] = {}
+    for number, source in catalog.connection.execute("SELECT id, source FROM motor ORDER BY id"):
+        members.setdefault(source, []).append(number)
     found: dict[int, list[Implied]] = {}
-    rows = catalog.connection.execute("SELECT id, source FROM motor ORDER BY id").fetchall()
-    sources = dict.fromkeys(source for number, source in rows if number in wanted)
-    for source in sources:
-        members = [number for number, s in rows if s == source]
-        entries = np.array([i for i, number in enumerate(members) if number in wanted])
-        batch = catalog.batch(source)
-        doubts = _doubts(catalog, [members[i] for i in entries])
-        for entry, figures in zip(entries, _of_batch(batch, entries, doubts), strict=True):
-            found[members[entry]] = figures
+    for source, numbers in members.items():
+        entries = np.array([i for i, number in enumerate(numbers) if number in motors], np.intp)
+        if not entries.size:
+            continue
+        doubts = [_doubts(motors[numbers[i]]) for i in entries]
+        of_entries = _of_batch(catalog.batch(source), entries, doubts)
+        for entry, figures in zip(entries, of_entries, strict=True):
+            found[numbers[entry]] = figures
     return found
 
 
-def _doubts(catalog: Catalog, ids: Sequence[int]) -> list[dict[str, tuple[str, bool]]]:
-    """Of each motor the doubted figures: worst severity, and whether it is named as wrong."""
-    from ..store import load
-
-    doubts: list[dict[str, tuple[str, bool]]] = []
-    for document in load.motors(catalog.connection, ids):
-        mine: dict[str, tuple[str, bool]] = {}
-        for f in document["findings"]:
-            if f["severity"] == "note":
-                continue
-            swapped = f["cause"] == "figures-swapped"
-            named = f["figures"][:2] if swapped else [f["suspect"]] if f["suspect"] else []
-            for key in named or f["figures"][:2]:
-                mine.setdefault(key, (f["severity"], key in named))
-        doubts.append(mine)
+def _doubts(motor: Document) -> dict[str, tuple[str, bool]]:
+    """The doubted figures of a motor: worst severity, and whether each is named as wrong."""
+    doubts: dict[str, tuple[str, bool]] = {}
+    for f in motor["findings"]:
+        if f["severity"] == "note":
+            continue
+        swapped = f["cause"] == "figures-swapped"
+        named = f["figures"][:2] if swapped else [f["suspect"]] if f["suspect"] else []
+        for key in named or f["figures"][:2]:
+            doubts.setdefault(key, (f["severity"], key in named))
     return doubts
 
 

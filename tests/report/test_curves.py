@@ -90,7 +90,8 @@ def test_only_the_planted_figure_stands_apart(catalog):
     # sample_entries/planted.json: PIKA-3's stall torque is printed in mN·m under oz-in
     with Catalog.open(catalog) as opened:
         known = opened.find("PIKA-3")
-        found = {f.key: f for f in implied_figures(opened, [known.id])[known.id]}
+        motors = {known.id: opened.motor("PIKA-3")}
+        found = {f.key: f for f in implied_figures(opened, motors)[known.id]}
     outlier = found.pop("stall_torque")
     assert outlier.ratio == pytest.approx(7.0616, rel=0.03)
     assert outlier.severity == "error"

@@ -53,6 +53,7 @@ def pack_card(motor: Document, implied: Sequence[Implied], strings: Strings) -> 
         [f"Point {p.plain(point['name'])}", list(_points(point["figures"], strings))]
         for point in motor.get("points", ())
     ]
+    # printed numbers stand as they are: few of them repeat
     return {
         "name": p.plain(motor["part_number"]),
         "maker": p.plain(motor["maker"] or ""),
@@ -72,8 +73,9 @@ def pack_card(motor: Document, implied: Sequence[Implied], strings: Strings) -> 
         "findings": [_finding(f, strings) for f in motor["findings"]],
         "implied": [
             [
-                strings(f.key), rounded(f.ratio, 5), rounded(f.low, 5), rounded(f.high, 5),
-                rounded(f.sd, 3), None if f.severity is None else strings(f.severity),
+                strings(f.key), rounded(f.ratio, 5), rounded(f.low / f.ratio, 4),
+                rounded(f.high / f.ratio, 4), rounded(f.sd, 3),
+                None if f.severity is None else strings(f.severity),
             ]
             for f in implied
         ],
@@ -83,7 +85,11 @@ def pack_card(motor: Document, implied: Sequence[Implied], strings: Strings) -> 
 def _finding(f: Document, strings: Strings) -> list[Any]:
     """[severity, message, doubted figures]."""
     doubted = [] if f["severity"] == "note" else [f["suspect"]] if f["suspect"] else f["figures"]
-    return [strings(f["severity"]), p.plain(f["message"]), [strings(key) for key in doubted]]
+    return [
+        strings(f["severity"]),
+        strings(p.plain(f["message"])),
+        [strings(key) for key in doubted],
+    ]
 
 
 def _basis(constant: Document) -> str:
@@ -96,7 +102,7 @@ def _basis(constant: Document) -> str:
 
 
 def _figures(figures: Iterable[tuple[str, Document]], strings: Strings) -> Iterable[list[Any]]:
-    """[key, printed, unit, value, convention, cell] and, if there is one, the correction."""
+    """[key, printed, unit, value, convention, row, column] and, if there is one, the correction."""
     for key, f in figures:
         value, unit = f["value"], f.get("unit", "")
         printed = " ".join(filter(None, (f["text"], f.get("printed_unit"))))
@@ -106,7 +112,7 @@ def _figures(figures: Iterable[tuple[str, Document]], strings: Strings) -> Itera
         packed = [
             strings(key), p.plain(printed), strings(unit),
             None if isinstance(value, str) else rounded(value),
-            strings(p.plain(p.convention(f.get("convention")))), strings(_place(f.get("cell"))),
+            strings(p.plain(p.convention(f.get("convention")))), *_place(f.get("cell")),
         ]  # fmt: skip
         if corrected:
             packed.append([p.plain(corrected["text"]), p.plain(corrected["reason"])])
@@ -116,15 +122,13 @@ def _figures(figures: Iterable[tuple[str, Document]], strings: Strings) -> Itera
 def _points(figures: Document, strings: Strings) -> Iterable[list[Any]]:
     blank = strings("")
     for key, f in figures.items():
-        yield [strings(key), "", strings(f["unit"]), rounded(f["value"]), blank, blank]
+        yield [strings(key), "", strings(f["unit"]), rounded(f["value"]), blank, 0, 0]
 
 
-def _place(cell: Document | None) -> str:
-    """Row and column, R10 C3."""
+def _place(cell: Document | None) -> tuple[int, int]:
+    """Row and column, 0 where unknown."""
     cell = cell or {}
-    return " ".join(
-        f"{sign}{cell[key]}" for sign, key in (("R", "row"), ("C", "column")) if cell.get(key)
-    )
+    return cell.get("row") or 0, cell.get("column") or 0
 
 
 def _source(motor: Document) -> str:

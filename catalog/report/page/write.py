@@ -24,7 +24,7 @@ from ..implied import implied_figures
 from ..screen import SAFETY
 from . import columns
 from . import requirement as asked
-from .cards import Strings, pack_card
+from .cards import Strings, pack_card, rounded
 
 if TYPE_CHECKING:
     from ...requirement import Requirement
@@ -97,11 +97,12 @@ def _motors(
 
     ids = fleet.ids[order].tolist()
     strings = Strings()
-    implied = implied_figures(catalog, ids)
+    motors = dict(zip(ids, load.motors(catalog.connection, ids), strict=True))
+    implied = implied_figures(catalog, motors)
     cards, search, doubts = [], [], {key: [] for key in ("error", "warning", "note")}
     names: dict[str, list[str]] = {"part": [], "maker": []}
     series, kinds = [], []
-    for number, motor in zip(ids, load.motors(catalog.connection, ids), strict=True):
+    for number, motor in motors.items():
         card = pack_card(motor, implied.get(number, ()), strings)
         cards.append(card)
         names["part"].append(card["name"])
@@ -142,21 +143,31 @@ def _motors(
             "size": "mass" if "mass" in keys else "motor_constant",
             "against": "motor_constant" if "mass" in keys else "rotor_inertia",
         },
+        # a table that is judged anew needs every digit
         "machines": {
-            name: [None if np.isnan(v) else v for v in values.tolist()]
-            for name, values in machines.items()
+            name: _numbers(values, None if beside else 7) for name, values in machines.items()
         },
-        "nominal_voltage": [None if np.isnan(v) else v for v in nominal.tolist()],
+        "nominal_voltage": _numbers(nominal, 7),
         "cards": cards,
         "strings": strings.texts,
     }
+
+
+def _numbers(values: np.ndarray, digits: int | None) -> list[float | None] | None:
+    """As JSON has them; None for a column of gaps."""
+    if np.isnan(values).all():
+        return None
+    if digits is None:
+        return [None if np.isnan(v) else v for v in values.tolist()]
+    return [rounded(v, digits) for v in values.tolist()]
 
 
 # ---- putting it together
 
 
 def _asset(name: str) -> str:
-    return resources.files("motorfolio.catalog.report.page").joinpath(*name.split("/")).read_text(encoding="utf-8")
+    folder = resources.files("motorfolio.catalog.report.page")
+    return folder.joinpath(*name.split("/")).read_text(encoding="utf-8")
 
 
 def as_json(document: Any) -> str:

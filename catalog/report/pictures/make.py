@@ -105,7 +105,7 @@ def ratios_of(catalog: Catalog, part: str, requirement: Requirement) -> Figure:
 def figures_of(catalog: Catalog, part: str) -> Figure:
     """Published against implied figures of a motor."""
     known = catalog.find(part)
-    found = implied_figures(catalog, [known.id])[known.id]
+    found = implied_figures(catalog, {known.id: catalog.motor(part)})[known.id]
     if not found:
         raise MotorfolioError(
             f"{known.name} has no figure that its other figures imply: there is nothing to compare."

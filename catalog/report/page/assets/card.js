@@ -22,14 +22,20 @@ const card = (() => {
 
   function figures(list, doubts, caption) {
     return table(caption, ["Figure", "Printed", "In SI", "Convention", "Cell"], list.map(f => {
-      const [key, printed, unit, value, convention, place, corrected] = f;
+      const [key, printed, unit, value, convention, row, column, corrected] = f;
       const severity = doubts.get(text(key));
       const name = make("span", {}, words(text(key)));
       if (severity) name.prepend(make("span", {className: severity, title: severity}, `${SIGNS[severity]} `));
       let note = text(convention);
       if (corrected) note = `corrected to ${corrected[0]}: ${corrected[1]}`;
-      return [name, printed, value === null ? "" : quantity(value, text(unit)), note, text(place)];
+      return [name, printed, value === null ? "" : quantity(value, text(unit)), note, [row && `R${row}`, column && `C${column}`].filter(Boolean).join(" ")];
     }));
+  }
+
+  function departure(ratio) {
+    if (Math.abs(Math.log(ratio)) > 0.3) return ratio > 1 ? `×${number(ratio, 3)}` : `÷${number(1 / ratio, 3)}`;
+    const size = Math.abs((ratio - 1) * 100).toFixed(1);
+    return `${size === "0.0" ? "" : ratio > 1 ? "+" : "−"}${size} %`;
   }
 
   // Printed over implied: fine near 1, logarithmic far off.
@@ -43,7 +49,8 @@ const card = (() => {
       for (const [name, value] of Object.entries(attributes)) node.setAttribute(name, value);
       return node;
     };
-    for (const [key, ratio, low, high, sd, severity] of rows) {
+    for (const [key, ratio, below, above, sd, severity] of rows) {
+      const low = ratio * below, high = ratio * above;
       const svg = svgNode("svg", {viewBox: "0 0 200 18", preserveAspectRatio: "none", "aria-hidden": "true"});
       const left = x(-2 * sd), right = x(2 * sd), at = x(Math.log(ratio));
       svg.append(svgNode("rect", {class: "band", x: left, y: 2, width: right - left, height: 14}),
@@ -52,10 +59,9 @@ const card = (() => {
       if (severity === null) svg.append(svgNode("rect", {class: "mark", x: at - 1.2, y: 4, width: 2.4, height: 10}));
       else svg.append(svgNode("path", {class: "wrong", d: `M${at - 3} 3L${at + 3} 15M${at - 3} 15L${at + 3} 3`}));
       const name = words(text(key)), word = severity === null ? "" : ` (${text(severity)})`;
-      const off = Math.abs(Math.log(ratio)) > 0.3 ? (ratio > 1 ? `×${number(ratio, 3)}` : `÷${number(1 / ratio, 3)}`)
-        : `${ratio >= 1 ? "+" : "−"}${Math.abs((ratio - 1) * 100).toFixed(1)} %`;
+      const off = departure(ratio);
       const title = svgNode("title", {});
-      title.textContent = `${name}: printed is ${off} of what the others imply`;
+      title.textContent = `${name}: printed is ${off} against what the others imply`;
       svg.append(title);
       grid.append(make("span", {role: "listitem", className: severity === null ? "" : "error"}, name + word), svg, make("span", {}, off));
     }
@@ -78,7 +84,7 @@ const card = (() => {
     const doubts = new Map();
     for (const f of c.findings) for (const key of f[2]) if (!doubts.has(text(key))) doubts.set(text(key), text(f[0]));
     parts.push(c.findings.length
-      ? make("ul", {}, ...c.findings.map(f => make("li", {}, make("span", {className: text(f[0])}, `${SIGNS[text(f[0])]} ${text(f[0])}: `), f[1])))
+      ? make("ul", {}, ...c.findings.map(f => make("li", {}, make("span", {className: text(f[0])}, `${SIGNS[text(f[0])]} ${text(f[0])}: `), text(f[1]))))
       : make("p", {}, "None: the printed figures agree with one another."));
     const planePlace = make("div"), ratioPlace = make("div");
     parts.push(make("h3", {}, "Torque over speed"), planePlace);

@@ -54,6 +54,8 @@ const charts = (() => {
     hover.setAttribute("aria-hidden", "true");
     const chart = make("div", {className: "chart"});
     place.replaceChildren(chart, legend, hover);
+    chart.setAttribute("role", "img");
+    chart.setAttribute("aria-label", `${yLabel} over ${xLabel}: ${[...series.map(s => s.label), ...extra].join(", ")}`);
     series.forEach((s, i) => legend.append(make("li", {}, swatch(s.look || LOOKS[i % LOOKS.length]), s.label)));
     extra.forEach(text => legend.append(make("li", {}, text)));
     const options = () => ({
@@ -122,6 +124,7 @@ const charts = (() => {
   function drawCycle(u, cycle, factor) {
     const pen = u.ctx;
     pen.save();
+    pen.setLineDash([]);
     pen.strokeStyle = pen.fillStyle = colour("--line-3");
     pen.lineWidth = 1.5 * devicePixelRatio;
     for (const ends of cycle) {
@@ -152,7 +155,7 @@ const charts = (() => {
         const a = u.valToPos(x[i - 1], "x", true), b = u.valToPos(x[i], "x", true);
         pen.fillRect(a, u.bbox.top, b - a + 1, u.bbox.height);
       });
-      pen.strokeStyle = colour("--ink"); pen.lineWidth = 1;
+      pen.setLineDash([]); pen.strokeStyle = colour("--ink"); pen.lineWidth = 1;
       pen.beginPath(); pen.moveTo(u.bbox.left, y); pen.lineTo(u.bbox.left + u.bbox.width, y); pen.stroke();
       pen.restore();
     }]};
@@ -172,6 +175,8 @@ const charts = (() => {
     const columns = [order.map(i => x[i]), ...groups.map((_, g) => order.map(i => group(i) === g ? y[i] : null))];
     if (!order.length) { place.replaceChildren(make("p", {className: "note"}, "No motor has both figures.")); return; }
     let nearest = null;
+    place.setAttribute("role", "img");
+    place.setAttribute("aria-label", `${yLabel} over ${xLabel}; the table has the same figures`);
     const options = () => ({
       height: 300, legend: {show: false}, cursor: {drag: {x: false, y: false}, points: {show: false}},
       scales: {x: {time: false, distr: 3}, y: yRange ? {range: yRange} : {distr: 3}},
@@ -183,7 +188,7 @@ const charts = (() => {
       hooks: {
         drawClear: line === undefined ? [] : [u => {
           const at = u.valToPos(line(), "y", true);
-          u.ctx.save(); u.ctx.strokeStyle = colour("--ink");
+          u.ctx.save(); u.ctx.setLineDash([]); u.ctx.strokeStyle = colour("--ink");
           u.ctx.beginPath(); u.ctx.moveTo(u.bbox.left, at); u.ctx.lineTo(u.bbox.left + u.bbox.width, at); u.ctx.stroke();
           u.ctx.restore();
         }],

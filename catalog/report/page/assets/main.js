@@ -164,7 +164,7 @@ const page = (() => {
   }
   function planeSetting(i) {
     if (searching || setting.supply !== null) return setting;
-    const U = data.nominal_voltage[i];
+    const U = data.nominal_voltage ? data.nominal_voltage[i] : null;
     return {...setting, supply: U};
   }
   function close() {

@@ -3,7 +3,8 @@
 const model = (() => {
   const parse = id => JSON.parse(document.getElementById(id).textContent);
   const data = parse("data"), strings = data.strings, chunks = new Map();
-  const nan = list => Float64Array.from(list, x => x === null ? NaN : x);
+  const nan = list => list === null ? new Float64Array(data.count).fill(NaN)
+    : Float64Array.from(list, x => x === null ? NaN : x);
   for (const column of data.columns) {
     if (column.number) column.values = nan(column.values).map(x => x * column.scale);
   }
@@ -20,7 +21,8 @@ const model = (() => {
     const size = Math.abs(x);
     if (size < 1e-4 || size >= 1e7) {
       const [mantissa, power] = x.toExponential(digits - 1).split("e");
-      return `${Number(mantissa)}·10^${Number(power)}`;
+      const raised = [...String(Number(power))].map(c => c === "-" ? "⁻" : "⁰¹²³⁴⁵⁶⁷⁸⁹"[c]).join("");
+      return `${Number(mantissa)}·10${raised}`;
     }
     return String(Number(x.toPrecision(digits))).replace("-", "−");
   }
