@@ -17,7 +17,6 @@ import tempfile
 from pathlib import Path
 
 from .project import (
-    ROOT,
     SAMPLES,
     build,
     copy_of_project,
@@ -44,13 +43,13 @@ def rounded(value: object) -> object:
     return value
 
 
-def documents(python: Path, folder: Path) -> object:
+def documents(python: Path, project: Path, folder: Path) -> object:
     """All documents of a catalog of the samples, and what one search gives."""
     program, catalog = python.parent / "motorfolio", folder / "c.sqlite"
-    files = [ROOT / "sample_entries" / name for name in SAMPLES]
+    files = [project / "sample_entries" / name for name in SAMPLES]
     run(program, "import", *files, "--catalog", catalog)
     exported = run(program, "export", "--format", "json", "--catalog", catalog)
-    machine = ROOT / "sample_entries" / "machines" / "lift_axis.toml"
+    machine = project / "sample_entries" / "machines" / "lift_axis.toml"
     found = run(program, "search", "--requirement", machine, "--json", "--catalog", catalog)
     return rounded([json.loads(exported), json.loads(found)])
 
@@ -79,7 +78,7 @@ def main() -> int:
             versions = dict(line.split("==") for line in frozen.splitlines() if "==" in line)
             title = f"Python {run(inside, '--version').split()[1]}, {resolution}"
             print(title + ":", ", ".join(f"{d} {versions[d]}" for d in DIRECT), flush=True)
-            outcome.append((title, documents(inside, here)))
+            outcome.append((title, documents(inside, copy, here)))
             tests = subprocess.run(
                 [inside, "-m", "pytest", "-q", "-p", "no:cacheprovider", *QUICK],
                 cwd=copy, capture_output=True, text=True, check=False,

@@ -1,4 +1,4 @@
-"""The project as it would be shipped: the files that git knows, built away from the work tree."""
+"""The project as it would be shipped: the last commit, built away from the work tree."""
 
 from __future__ import annotations
 
@@ -35,12 +35,11 @@ def run(*command: str | Path, cwd: Path | None = None, **environment: str) -> st
 
 
 def copy_of_project(folder: Path) -> Path:
-    """The files that git tracks, as they are now, in a new folder."""
-    names = run("git", "ls-files", "-z", cwd=ROOT).split("\0")
-    for name in filter(None, names):
-        if (ROOT / name).is_file():
-            (folder / name).parent.mkdir(parents=True, exist_ok=True)
-            shutil.copy2(ROOT / name, folder / name)
+    """The last commit, in a new folder."""
+    folder.mkdir(parents=True)
+    packed = folder.with_suffix(".tar")
+    run("git", "archive", "--output", packed, "HEAD", cwd=ROOT)
+    shutil.unpack_archive(packed, folder)
     return folder
 
 

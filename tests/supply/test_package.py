@@ -25,10 +25,16 @@ FORBIDDEN_MODULES = {
     # other programs
     "subprocess", "pty", "multiprocessing", "ctypes",
 }  # fmt: skip
-FORBIDDEN_CALLS = {"eval", "exec", "compile", "__import__", "system", "popen", "enable_load_extension",
-                   "load_extension", "read_pickle", "to_pickle", "urlopen", "breakpoint"}  # fmt: skip
+FORBIDDEN_CALLS = {
+    "eval", "exec", "compile", "__import__", "system", "popen", "enable_load_extension",
+    "load_extension", "read_pickle", "to_pickle", "urlopen", "breakpoint",
+}  # fmt: skip
 METHODS_ALLOWED = {"compile"}
 """``re.compile`` and the like: only the built-in of that name makes code from text."""
+
+ALLOWED = {"catalog/tables/workbook.py": ["imports subprocess"]}
+"""Old binary workbooks are opened in a child that may die: this Python, a file of this package,
+the bytes on its standard input."""
 
 
 def wrongs(tree: ast.AST) -> list[str]:
@@ -63,7 +69,8 @@ def wrongs(tree: ast.AST) -> list[str]:
 @pytest.mark.parametrize("path", MODULES, ids=lambda p: str(p.relative_to(ROOT)))
 def test_nothing_is_unpickled_evaluated_or_fetched(path: Path) -> None:
     """A datasheet may come from anywhere: no text in it may become code, an address or a call."""
-    assert wrongs(ast.parse(path.read_text(encoding="utf-8"))) == []
+    found = wrongs(ast.parse(path.read_text(encoding="utf-8")))
+    assert found == ALLOWED.get(path.relative_to(ROOT).as_posix(), [])
 
 
 @pytest.mark.parametrize(
