@@ -23,13 +23,15 @@ def build_page(recipe: Recipe) -> Page:
     _lose_cells(sheet)
     _add_distractors(sheet)
     _BUILDERS[recipe.layout](sheet, page)
-    page.settle(sheet, stored=recipe.layout == "number formats")
+    page.settle(sheet)
     return page
 
 
 def _state_conventions(sheet: Sheet, page: Page) -> None:
     recipe = sheet.recipe
     rng = recipe.random("conventions")
+    if recipe.layout == "flat list":
+        return  # it has no place for notes
     if sheet.title:
         page.before.append(sheet.title)
     if recipe.has("note temperature"):

@@ -20,6 +20,8 @@ def flat_list(sheet: Sheet, page: Page) -> None:
             if printed is None:
                 continue
             stored = bare and printed.plain and printed.text[-1].isdigit()
+            if stored:
+                page.stored.add(printed.text)
             record[heading(sheet, column)] = _as_number(printed.number) if stored else printed.text
         record |= {label: texts[place] for label, texts in sheet.others}
         page.records.append(record)
@@ -43,6 +45,7 @@ def number_formats(sheet: Sheet, page: Page) -> None:
             if printed is None or not printed.plain or "²" in column.unit_text:
                 row.append(value_cell(sheet, column, place, style == "unit in format"))
                 continue
+            page.stored.add(printed.text)
             decimals = max(0, -int(printed.number.as_tuple().exponent))
             shape = "0." + "0" * decimals if decimals else "0"
             stored = float(printed.number)

@@ -36,7 +36,7 @@ def add_noise(page: Page) -> None:
 def noisy(recipe: Recipe, text: str, rng: Random) -> str:
     """One text with the recipe's noise."""
     noise = recipe.noise
-    if "lost superscripts" in noise:
+    if "lost superscripts" in noise and "⁾" not in text:
         for sign, plain in LOST.items():
             text = text.replace(sign, plain)
     if "middle dots" in noise:

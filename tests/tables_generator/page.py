@@ -54,6 +54,7 @@ class Page:
     conditioned: dict[str, dict[str, list[float]]] = field(default_factory=dict)
     labels: dict[str, list[str]] = field(default_factory=dict)
     numbers: list[str] = field(default_factory=list)
+    stored: set[str] = field(default_factory=set)
     allowed: set[str] = field(default_factory=set)
     other_numbers: bool = False
     reference_temperature: float | None = None
@@ -87,11 +88,15 @@ class Page:
                     self.expect(part, column, cell)
                     self.numbers.append(cell.text)
 
-    def settle(self, sheet: Sheet, stored: bool) -> None:
-        """Marks as doubtful what no reader can decide: '1,234' in a table without evidence."""
-        if stored or any(tells_decimal_sign(text, sheet.style) for text in self.numbers):
+    def settle(self, sheet: Sheet) -> None:
+        """Marks as doubtful what no reader can decide: '1,234' in a table without evidence.
+
+        Numbers that are stored as such ("stored") are certain, and are no evidence for texts.
+        """
+        texts = [text for text in self.numbers if text not in self.stored]
+        if any(tells_decimal_sign(text, sheet.style) for text in texts):
             return
         for figures in self.figures.values():
             for wanted in figures.values():
-                if is_ambiguous(wanted.text):
+                if is_ambiguous(wanted.text) and wanted.text not in self.stored:
                     wanted.doubtful = True

@@ -107,6 +107,10 @@ def rows_grouped(sheet: Sheet, page: Page) -> None:
     page.expect_sheet(sheet)
     for column in sheet.columns:
         page.labels[column.key].append(column.group_label)
+        if centred and column.group_label != column.label:  # where a group begins is open
+            for part in sheet.parts:
+                if column.key in page.figures[part]:
+                    page.figures[part][column.key].doubtful = True
 
 
 def rows_points(sheet: Sheet, page: Page) -> None:
