@@ -15,7 +15,7 @@ from . import plain as p
 from .screen import console, paged
 
 if TYPE_CHECKING:
-    from ..importing import FileResult, ImportResult
+    from ..import_result import FileResult, ImportResult
     from ..store.revisions import Import
 
 MOST_UNREAD = 40

@@ -5,17 +5,18 @@ Everything here runs inside the caller's transaction.
 
 import json
 import sqlite3
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field
 
 import numpy as np
 
 from ...schema.batch import MODEL_BASES, Batch, FigureColumn, Heading, Ints
 from ...schema.convention import Commutation, Convention
-from ...schema.motor import CONSTANT_BASES, Finding, Reconciled
+from ...schema.motor import Reconciled
 from .intervals import encode
 from .names import figure_keys, text_keys
 from .patterns import Pattern, places_of, usual_places
+from .write_results import ResultWriter, row_id
 
 
 @dataclass(frozen=True, slots=True)
@@ -41,21 +42,18 @@ class Stored:
     touched_sources: set[int] = field(default_factory=set)
 
 
-class Writer:
+class Writer(ResultWriter):
     """Writes the tables of one import; holds the small palettes that rows point into."""
 
     def __init__(self, connection: sqlite3.Connection, import_id: int = 0) -> None:
-        self.connection = connection
+        super().__init__(connection)
         self.import_id = import_id
         self._conventions: dict[Convention, int] = {}
         self._kinds: dict[tuple, int] = {}
-        self._derivations: dict[tuple[str, str], int] = {}
         for row in connection.execute("SELECT * FROM conventions"):
             self._conventions[Convention(*row[1:])] = row[0]
         for row in connection.execute("SELECT * FROM kinds"):
             self._kinds[tuple(row[1:])] = row[0]
-        for number, basis, figures in connection.execute("SELECT * FROM derivations"):
-            self._derivations[(basis, figures)] = number
 
     def add_file(
         self,
@@ -73,7 +71,7 @@ class Writer:
             "VALUES (?,?,?,?,?,?,?)",
             (self.import_id, file, sha256, format, layout, options, _lines(remarks)),
         )
-        return _row_id(cursor)
+        return row_id(cursor)
 
     def add_table(
         self,
@@ -91,12 +89,12 @@ class Writer:
         """
         batch = reconciled.batch
         n = len(batch)
-        first = self._next("motor")
+        first = self.next_id("motor")
         source_id = self._add_source(file_id, chunk, batch, first)
         heading_base = self._add_headings(source_id, batch.headings)
         row, column = usual_places(batch)
         pattern_of, patterns = places_of(published, batch, row, column)
-        pattern_base = self._next("patterns", "pattern")
+        pattern_base = self.next_id("patterns", "pattern")
         self._add_patterns(patterns, pattern_base, heading_base)
 
         identity = list(zip(batch.part_number, batch.maker, strict=True))
@@ -115,8 +113,8 @@ class Writer:
         self._add_numbers(first, batch, applied)
         self._add_exceptions(first, batch, row, column, pattern_of, patterns)
         self._add_further(first, batch, heading_base)
-        self._add_constants(first, reconciled)
-        self._add_findings(source_id, first, reconciled)
+        self.add_constants(first, reconciled)
+        self.add_findings(source_id, first, reconciled)
         replaced = sum(touched.values())
         return Stored(n, n - replaced, again, set(touched) | {source_id})
 
@@ -146,22 +144,17 @@ class Writer:
             "SELECT min(id) FROM headings WHERE source = ?", (source_id,)
         ).fetchone()
         pattern_of, patterns = places_of(published, batch, *usual_places(batch))
-        base = self._next("patterns", "pattern")
+        base = self.next_id("patterns", "pattern")
         self._add_patterns(patterns, base, row[0] or 0)
         self.connection.executemany(
             "UPDATE motor SET pattern = ? WHERE id = ?",
             zip((pattern_of + base).tolist(), range(first, last + 1), strict=True),
         )
         self._add_numbers(first, batch, applied)
-        self._add_constants(first, reconciled)
-        self._add_findings(source_id, first, reconciled)
+        self.add_constants(first, reconciled)
+        self.add_findings(source_id, first, reconciled)
 
     # ---- who and where
-
-    def _next(self, table: str, column: str = "id") -> int:
-        return self.connection.execute(
-            f"SELECT ifnull(max({column}), 0) + 1 FROM {table}"
-        ).fetchone()[0]
 
     def _add_source(self, file_id: int, chunk: int, batch: Batch, first: int) -> int:
         source = batch.source
@@ -171,10 +164,10 @@ class Writer:
             (file_id, chunk, source.sheet, source.page, source.layout, _lines(batch.notes),
              first, len(batch)),
         )  # fmt: skip
-        return _row_id(cursor)
+        return row_id(cursor)
 
     def _add_headings(self, source_id: int, headings: Sequence[Heading]) -> int:
-        base = self._next("headings")
+        base = self.next_id("headings")
         self.connection.executemany(
             "INSERT INTO headings VALUES (?,?,?,?,?,?,?,?,?,?)",
             [
@@ -209,7 +202,7 @@ class Writer:
                 "shape, basis) VALUES (?,?,?,?,?,?,?)",
                 (c.current, c.voltage, c.between, c.connection, c.temperature, c.shape, c.basis),
             )
-            number = self._conventions[convention] = _row_id(cursor)
+            number = self._conventions[convention] = row_id(cursor)
         return number
 
     def _kind_ids(self, batch: Batch) -> list[int]:
@@ -230,7 +223,7 @@ class Writer:
                 "reference_temperature, reference_temperature_basis) VALUES (?,?,?,?,?,?)",
                 key,
             )
-            self._kinds[key] = _row_id(cursor)
+            self._kinds[key] = row_id(cursor)
         return self._kinds[key]
 
     def _replace(self, identity: Sequence[tuple[str, str]]) -> tuple[dict[int, int], int]:
@@ -268,7 +261,7 @@ class Writer:
         for key in text_keys():
             if key in batch.texts:
                 texts[key] = batch.texts[key].text
-        self._insert("figure_text", list(texts), ids, list(texts.values()))
+        self.insert("figure_text", list(texts), ids, list(texts.values()))
 
     def _add_numbers(self, first: int, batch: Batch, applied: Sequence[AppliedCorrection]) -> None:
         """Values in use and their intervals; what a correction replaced stands beside it."""
@@ -276,7 +269,7 @@ class Writer:
         numbers = [key for key in figure_keys() if key in batch.figures]
         # SQLite keeps a NaN as NULL
         values = [batch.figures[key].value.tolist() for key in numbers]
-        self._insert("figure_value", numbers, ids, values)
+        self.insert("figure_value", numbers, ids, values)
         factors = np.array([h.factor for h in batch.headings] or [1.0])
         digits = []
         for key in numbers:
@@ -287,19 +280,10 @@ class Writer:
                 "INSERT INTO figure_intervals VALUES (?,?,?,?)",
                 [(first + i, key, low, high) for i, low, high in others],
             )
-        self._insert("figure_digit", numbers, ids, digits)
+        self.insert("figure_digit", numbers, ids, digits)
         self.connection.executemany(
             "INSERT INTO applied_corrections VALUES (?,?,?,?,?,?)",
             [(first + a.entry, a.quantity, a.correction, a.value, a.low, a.high) for a in applied],
-        )
-
-    def _insert(
-        self, table: str, keys: Sequence[str], ids: Iterable[int], columns: Sequence[Iterable]
-    ) -> None:
-        names = "".join(f', "{key}"' for key in keys)
-        marks = ",?" * len(keys)
-        self.connection.executemany(
-            f"INSERT INTO {table}(id{names}) VALUES (?{marks})", zip(ids, *columns, strict=True)
         )
 
     def _add_exceptions(
@@ -376,78 +360,6 @@ class Writer:
                         p.row or None, p.column or None,
                     )  # fmt: skip
 
-    # ---- what follows from the figures
-
-    def _add_constants(self, first: int, reconciled: Reconciled) -> None:
-        names: list[str] = []
-        columns: list[list] = []
-        for key, c in reconciled.constants.items():
-            names += [key, f"{key}_low", f"{key}_high", f"{key}_by"]
-            by = np.where(np.isnan(c.value), -1, c.source * 4 + c.basis)
-            codes = {
-                code: self._derivation(CONSTANT_BASES[code % 4], c.sources[code // 4])
-                for code in np.unique(by[by >= 0]).tolist()
-            }
-            columns += [
-                c.value.tolist(), c.low.tolist(), c.high.tolist(),
-                [codes.get(code) for code in by.tolist()],
-            ]  # fmt: skip
-        ids = range(first, first + len(reconciled.batch))
-        self._insert("constants", names, ids, columns)
-
-    def _derivation(self, basis: str, figures: Sequence[str]) -> int:
-        key = (basis, " ".join(figures))
-        if key not in self._derivations:
-            cursor = self.connection.execute(
-                "INSERT INTO derivations(basis, figures) VALUES (?,?)", key
-            )
-            self._derivations[key] = _row_id(cursor)
-        return self._derivations[key]
-
-    def _add_findings(self, source_id: int, first: int, reconciled: Reconciled) -> None:
-        """The findings of a table whose first motor has the id ``first``."""
-        number = self._next("findings")
-        pairs = list(zip(reconciled.findings, reconciled.finding_motor, strict=True))
-        self.connection.executemany(
-            f"INSERT INTO findings VALUES ({','.join('?' * 16)})",
-            [
-                (number + i, source_id, first + entry, *_finding_row(finding))
-                for i, (finding, entry) in enumerate(pairs)
-            ],
-        )
-        entries: dict[str, list[int]] = {}
-        if any(finding.scope == "column" for finding, _ in pairs):
-            for i, part in enumerate(reconciled.batch.part_number):
-                entries.setdefault(part, []).append(first + i)
-        self.connection.executemany(
-            "INSERT INTO finding_motors VALUES (?,?,?)",
-            [
-                (number + i, start, end)
-                for i, (finding, entry) in enumerate(pairs)
-                if finding.scope == "column"
-                for start, end in _runs(
-                    [first + entry, *(m for p in finding.part_numbers for m in entries.get(p, ()))]
-                )
-            ],
-        )
-
-
-def _runs(numbers: Sequence[int]) -> Iterator[tuple[int, int]]:
-    """Numbers that follow one another as (first, last): a finding of a whole column is one row."""
-    found = np.unique(numbers)
-    breaks = np.flatnonzero(np.diff(found) > 1)
-    starts, ends = np.append(0, breaks + 1), np.append(breaks, len(found) - 1)
-    yield from zip(found[starts].tolist(), found[ends].tolist(), strict=True)
-
-
-def _finding_row(f: Finding) -> tuple:
-    return (
-        f.scope, f.severity, f.relation, " ".join(f.figures), f.suspect, f.ratio, f.cause,
-        " ".join(f.other_causes), f.implied.value if f.implied else None,
-        f.implied.unit if f.implied else None, f.cell.row if f.cell else None,
-        f.cell.column if f.cell else None, f.message,
-    )  # fmt: skip
-
 
 def _heading(figures: FigureColumn, entry: int, batch: Batch, base: int) -> int | None:
     number = int(figures.heading[entry])
@@ -460,8 +372,3 @@ def _places(numbers: Ints) -> list[int | None]:
 
 def _lines(texts: Sequence[str]) -> str | None:
     return json.dumps(list(texts), ensure_ascii=False) if texts else None
-
-
-def _row_id(cursor: sqlite3.Cursor) -> int:
-    assert cursor.lastrowid is not None
-    return cursor.lastrowid

@@ -1,0 +1,105 @@
+"""What a call of import is told, and what it gives: options, and the result of each file."""
+
+import hashlib
+import json
+from collections import Counter
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
+
+from ..schema.batch import Heading
+from .documents import Document
+
+MOST_FINDINGS = 1000
+"""So many findings of a file are kept to be printed; all of them are stored."""
+
+
+@dataclass(frozen=True, slots=True)
+class Options:
+    """What a call tells about its files.
+
+    overrides: heading as printed → "quantity[:unit[:convention]]"; keep: use them for the
+    maker's further files too.
+    """
+
+    maker: str | None = None
+    series: str | None = None
+    sheet: str | None = None
+    format: str | None = None
+    commutation: str | None = None
+    overrides: Mapping[str, str] = field(default_factory=dict)
+    keep: bool = False
+    strict: bool = False
+    dry_run: bool = False
+
+    def fingerprint(self, headings: Sequence[Heading]) -> str:
+        """How a file was read, as text: the same bytes with the same fingerprint say the same."""
+        told = [self.maker, self.series, self.sheet, self.commutation]
+        read = [
+            [h.text, h.quantity, h.unit, h.convention.as_json() if h.convention else None]
+            for h in headings
+        ]
+        digest = hashlib.sha256(json.dumps(read, ensure_ascii=False).encode()).hexdigest()
+        return json.dumps([*told, digest], ensure_ascii=False)
+
+
+@dataclass(slots=True)
+class FileResult:
+    """What one file gave: how its headings were read, what was not, its motors, the findings.
+
+    ``severities`` counts all findings; ``findings`` and ``documents`` hold all of them when
+    documents were asked for, else the first MOST_FINDINGS that are more than notes, and none.
+    """
+
+    file: str
+    sha256: str
+    format: str
+    layout: str = "rows"
+    headings: list[Heading] = field(default_factory=list)
+    remarks: list[str] = field(default_factory=list)
+    unread: list[Document] = field(default_factory=list)
+    findings: list[Document] = field(default_factory=list)
+    documents: list[Document] = field(default_factory=list)
+    makers: set[str] = field(default_factory=set)
+    severities: Counter[str] = field(default_factory=Counter)
+    motors: int = 0
+    stored: int = 0
+    replaced: int = 0
+    unchanged: bool = False
+
+    def as_json(self) -> Document:
+        """The file's part of the document that ``import --json`` prints."""
+        return {
+            "file": self.file,
+            "sha256": self.sha256,
+            "layout": self.layout,
+            "reading": [
+                {
+                    "heading": h.text,
+                    "quantity": h.quantity,
+                    "unit": h.unit or None,
+                    "convention": (h.convention.as_json() or None) if h.convention else None,
+                    "score": round(h.score, 3),
+                    "reason": h.reason,
+                }
+                for h in self.headings
+            ],
+            "unread": self.unread,
+            "remarks": self.remarks,
+            "motors": self.documents,
+            "findings": self.findings,
+            "stored": self.stored,
+            "replaced": self.replaced,
+            "unchanged": self.unchanged,
+        }
+
+
+@dataclass(slots=True)
+class ImportResult:
+    """All files of a call; ``refused`` where --strict stored nothing."""
+
+    files: list[FileResult]
+    refused: bool = False
+
+    def as_json(self) -> Document:
+        """The document that ``import --json`` prints."""
+        return {"files": [file.as_json() for file in self.files]}
