@@ -1,11 +1,12 @@
 # make demo   set up, import the samples, show the reading and the findings, run a search
 # make test   set up with the test tools, then lint, types and all tests
+# make docs   renew what README and docs/ show of the program
 # make bench  the benchmarks, as ratios against a baseline in the same run
 
 PYTHON ?= python3
 BIN = .venv/bin
 
-.PHONY: demo test lint types bench clean
+.PHONY: demo test lint types docs bench clean
 
 demo: .venv/installed
 	@PATH="$(CURDIR)/$(BIN):$$PATH" sh sample_entries/demo.sh
@@ -19,6 +20,9 @@ lint: .venv/tools
 
 types: .venv/tools
 	$(BIN)/basedpyright
+
+docs: .venv/tools
+	$(BIN)/python -m tests.docs --write
 
 bench: .venv/tools
 	$(BIN)/python -m tests.benchmarks
