@@ -12,6 +12,7 @@ from ...schema.batch import (
     Batch,
     Condition,
     FigureColumn,
+    Ints,
     PlacedFigure,
     Point,
     TextColumn,
@@ -204,10 +205,12 @@ class TableReader(Decisions):
         batch.points = {i: list(p.values()) for i, p in points.items()}
         return batch
 
-    def _places(self, f: Field, lines: list[int]) -> tuple[list[int], list[int]]:
-        n = len(lines)
-        rows = (f.layout or self.table.layout) == "rows"
-        return (lines, [f.column] * n) if rows else ([f.row] * n, lines)
+    def _places(self, f: Field, lines: list[int]) -> tuple[Ints, Ints]:
+        """Rows and columns of the motors' cells under a heading."""
+        along = np.asarray(lines, dtype=np.int32)
+        if (f.layout or self.table.layout) == "rows":
+            return along, np.full(len(lines), f.column, dtype=np.int32)
+        return np.full(len(lines), f.row, dtype=np.int32), along
 
     def _names(
         self, ids: Sequence[str | None], places: Sequence[int], unread: list[Unread]
@@ -377,7 +380,7 @@ class TableReader(Decisions):
 
     def _to_condition(
         self, conditions: dict[str, Condition], m: Match, values: Values,
-        texts: Sequence[str], rows: Sequence[int], columns: Sequence[int], convention: Convention,
+        texts: Sequence[str], rows: Ints, columns: Ints, convention: Convention,
     ) -> None:  # fmt: skip
         condition = conditions.setdefault(m.when, Condition(m.when))
         assert m.key is not None
@@ -391,8 +394,8 @@ class TableReader(Decisions):
 
     def _to_points(
         self, points: dict[int, dict[str, Point]], m: Match, texts: list[str],
-        rows: Sequence[int], marks: frozenset[str], unread: list[Unread], names: list[str],
-        columns: Sequence[int],
+        rows: Ints, marks: frozenset[str], unread: list[Unread], names: list[str],
+        columns: Ints,
     ) -> None:  # fmt: skip
         assert m.point is not None
         section, generic = m.point
@@ -423,7 +426,7 @@ class TableReader(Decisions):
             point.figures.setdefault(key, value)
 
     def _point_too(
-        self, points: dict[int, dict[str, Point]], m: Match, values: Values, rows: Sequence[int]
+        self, points: dict[int, dict[str, Point]], m: Match, values: Values, rows: Ints
     ) -> None:
         """A figure that belongs to an operating point stands there as well."""
         for phrase in m.field.label.names:

@@ -177,16 +177,17 @@ def row_scores(block: Block) -> list[float]:
 
 
 def column_scores(block: Block) -> list[float]:
-    """For each of the first columns, how many headings it holds."""
+    """For each of the first columns, how many different headings it holds."""
     scores = []
     for c in range(min(block.width, _COLUMNS_TRIED)):
-        total, previous, filled = 0.0, "", 0
+        total, filled = 0.0, 0
+        seen: set[str] = set()
         for row in block.rows[:400]:
             cell = row[c]
-            if cell and cell != previous:
+            if cell and cell not in seen:
+                seen.add(cell)
                 total += _worth(cell)
                 filled += 1
-            previous = cell
             if filled > 40 and total < 0.15 * filled:
                 break
         scores.append(total if total >= 0.2 * filled else min(total, 1.0))

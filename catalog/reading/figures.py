@@ -6,7 +6,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from ...schema.batch import FigureColumn, Floats
+from ...schema.batch import FigureColumn, Floats, Ints
 from ...schema.figure import ColumnFigures, NumberStyle, read_column
 from ...schema.signs import plain
 from ...schema.units import Unit, UnitError, read_unit, unit_of
@@ -200,20 +200,22 @@ def _swapped(first: float, second: float, one: Unit, two: Unit) -> bool:
 
 
 def as_column(
-    values: Values, texts: Sequence[str], heading: int, rows: Sequence[int], columns: Sequence[int]
+    values: Values, texts: Sequence[str], heading: int, rows: Ints, columns: Ints
 ) -> FigureColumn:
     """A figure column without conventions yet."""
     n = len(texts)
-    there = ~np.isnan(values.value)
+    printed: list[str | None] = list(texts)
+    for i in np.flatnonzero(np.isnan(values.value)).tolist():
+        printed[i] = None
     return FigureColumn(
         values.value,
         values.low,
         values.high,
-        [t if ok else None for t, ok in zip(texts, there.tolist(), strict=True)],
+        printed,
         [],
         np.zeros(n, dtype=np.int32),
         np.full(n, heading, dtype=np.int32),
-        np.asarray(rows, dtype=np.int32),
-        np.asarray(columns, dtype=np.int32),
+        rows,
+        columns,
         dict(values.qualifiers),
     )

@@ -4,6 +4,7 @@ from collections import Counter
 from dataclasses import replace
 
 from ...schema.signs import plain
+from .label import names_part
 from .model import Field, Table
 
 
@@ -14,7 +15,7 @@ def normal_id(text: str) -> str:
 
 def id_field(table: Table) -> Field | None:
     """The field that holds the part numbers, by its heading: the one whose texts differ most."""
-    named = [f for f in table.fields if any("part_number" in p.keys for p in f.label.names)]
+    named = [f for f in table.fields if names_part(f.label)]
     named = [f for f in named if any(f.texts) and not f.units]
     if not named and table.layout == "rows" and table.fields:
         first = table.fields[0]

@@ -388,6 +388,12 @@ def _name_and_symbol(text: str) -> list[tuple[str, str]]:
     return [(n, s) for n, s in found if n]
 
 
+def names_part(label: Label) -> bool:
+    """Whether a heading names the motors themselves, and nothing that is measured."""
+    keys = {k for p in label.names for k in p.keys}
+    return "part_number" in keys and all(quantities()[k].text for k in keys)
+
+
 def roles_of(text: str) -> set[str]:
     """The roles a column may have by its heading: unit, symbol, label, remark, number, value."""
     return lexicon().roles.get("".join(tokens(text)), set())

@@ -7,7 +7,7 @@ from ...schema.vocabulary import quantity
 from .blocks import Block, is_data
 from .cells import is_caption, is_ditto, is_figure, is_role, is_symbol, is_unit, missing, strength
 from .heads import HeadCell, classify, context_of, head_field
-from .label import parse_label
+from .label import names_part, parse_label
 from .model import Field, Table
 from .phrase import conventions_of, section_of, variant_of
 
@@ -290,6 +290,8 @@ def lay_out_columns(block: Block) -> Table:
             caption, captioned = [label], i
             continue
         if not any(texts):
+            if any(row):  # a text beside the labels
+                table.notes.append(_text_of(row))
             continue
         cells: list[HeadCell] = [("caption", c) for c in [*caption, *groups]]
         for c, role in enumerate(roles):
@@ -391,9 +393,7 @@ def _header_rows(
         texts = [row[c] for c in values if row[c]]
         if not texts:
             continue
-        label = parse_label(row[label_column])
-        keys = {k for p in label.names for k in p.keys}
-        if "part_number" in keys:
+        if names_part(parse_label(row[label_column])):
             if i > first and named:
                 continue
             named.append(i)

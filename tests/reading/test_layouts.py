@@ -343,3 +343,72 @@ def test_every_cell_can_be_traced():
     column = s.batch.figures["terminal_resistance"]
     assert (int(column.row[1]), int(column.column[1]), column.text[1]) == (3, 4, "4.8")
     assert not math.isnan(column.low[1])
+
+
+def test_a_load_table_is_points_of_the_one_motor_above():
+    s = sheet("""
+Part number | LT-42
+Rated voltage | 24 V DC
+Load table |
+Torque [mNm] | Speed [rpm] | Current [A]
+20 | 6030 | 0.83
+40 | 5900 | 1.38
+60 | 5770 | 1.92
+""")
+    assert s.motors() == {"LT-42": {"nominal_voltage": 24}}
+    points = s.batch.points[0]
+    assert [p.figures["nominal_torque"] for p in points] == pytest.approx([0.02, 0.04, 0.06])
+    assert points[2].row == 7
+
+
+def test_duty_types_side_by_side_are_conditions_and_not_motors():
+    s = sheet("""
+ | | S1 (continuous) | | S3 25 % |
+Type | Unit | DU-1 | DU-2 | DU-1 | DU-2
+Rated torque | Nm | 7.67 | 16.8 | 13.1 | 28.6
+Mass | kg | 5.6 | 11.2 | 5.6 | 11.2
+""")
+    assert s.motors()["DU-2"] == {"nominal_torque": 16.8, "mass": 11.2}
+    (condition,) = s.batch.conditions
+    assert condition.when.startswith("S3")
+    assert condition.figures[0]["nominal_torque"].value == 13.1
+
+
+def test_a_note_speaks_of_what_it_names():
+    s = sheet("""
+Item | Unit | FR-1
+Continuous stall torque | Nm | 4.6
+Continuous stall current | A | 5.1
+Back-EMF constant | V·s/rad | 0.60
+Resistance | Ω | 0.95
+Notes | |
+All currents are peak values. | |
+Back-EMF constant and resistance are given per phase; the back-EMF is a peak value. | |
+""")
+    assert s.convention("continuous_stall_current").current == "peak"
+    assert s.convention("back_emf_constant").voltage == "peak"
+    assert s.convention("back_emf_constant").between == "phase"
+    assert s.convention("terminal_resistance").between == "phase"
+
+
+def test_the_voltage_of_a_table_may_stand_in_its_title():
+    s = sheet("""
+Motors at 12 V unless noted; all values ±10 %
+Model | Stall torque [Ncm] | No-load speed [rpm]
+P-1 | 6.86 | 10300
+""")
+    assert s.motors()["P-1"]["nominal_voltage"] == 12
+    speed = s.batch.figures["no_load_speed"]
+    assert (speed.low[0], speed.high[0]) == pytest.approx((9270 * RPM, 11330 * RPM))
+
+
+def test_a_second_unit_column_without_its_own_name():
+    s = sheet("""
+Model | Rated torque | | Weight |
+ | N·m | oz-in | kg | lb
+MI-42 | 0.116 | 16.4 | 0.45 | 0.99
+MI-57 | 0.308 | 43.6 | 0.82 | 1.81
+""")
+    assert s.motors()["MI-57"] == {"nominal_torque": 0.308, "mass": 0.82}
+    assert set(s.batch.repeats) == {"nominal_torque", "mass"}
+    assert not s.reading.unread
