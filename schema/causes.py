@@ -165,7 +165,7 @@ def shape(figure: str, commutation: int, unit: str) -> Shape:
         c.add("peak-vs-rms", math.sqrt(2), 0.05)
         c.add("line-vs-phase", math.sqrt(3), 0.03)
     if figure in ("no_load_speed", "nominal_speed", "maximum_speed"):
-        c.add("poles-vs-pole-pairs", 2.0, 0.08 if brushless else 0.01)
+        c.add("poles-vs-pole-pairs", 2.0, 0.08 if brushless else 0.003)
     if figure in ("terminal_resistance", "terminal_inductance") and brushless:
         c.add("line-vs-phase", 2.0, 0.30)
         c.add("line-vs-phase", 1.5, 0.15)

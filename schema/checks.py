@@ -25,7 +25,7 @@ from .relations import (
     WITHIN_SCATTER,
     Relation,
 )
-from .suspects import DEPARTURE
+from .suspects import DEPARTURE, Bools
 from .vocabulary import quantity
 
 Found = list[tuple[int, Finding]]
@@ -98,22 +98,24 @@ def poles(narrator: Narrator) -> Found:
     return out
 
 
-def frames(narrator: Narrator) -> Found:
-    """Frame figures that stand off the majority of their family."""
+def frames(narrator: Narrator, family: Bools) -> Found:
+    """Frame figures that stand off the majority of their family; family (N,) who is in one."""
     batch, out = narrator.batch, []
-    group = None
+    if not family.any():
+        return out
+    group = groups(batch)
     for key in DIRECT:
         column = batch.figures.get(key)
         if column is None:
             continue
-        group = groups(batch) if group is None else group
         with np.errstate(invalid="ignore", divide="ignore"):
-            value = np.log(np.where(column.value > 0, column.value, np.nan))
-        median = majority(value, group, DEPARTURE).median[group]
+            value = np.log(np.where(family & (column.value > 0), column.value, np.nan))
+        custom = max(quantity(key).scatter, 0.02)
+        median = majority(value, group, max(DEPARTURE, 1.5 * custom)).median[group]
         gap = value - median
-        sd = np.hypot(printed_sd(key, column), 0.02)
+        sd = np.hypot(printed_sd(key, column), 1.2 * custom)  # with that of the median
         with np.errstate(invalid="ignore"):
-            off = np.flatnonzero(np.abs(np.expm1(np.abs(gap))) > DEPARTURE + 3.0 * sd)
+            off = np.flatnonzero(np.abs(np.expm1(np.abs(gap))) > DEPARTURE + 3.5 * sd)
         for m in off.tolist():
             scores = static_scores(
                 shape(key, int(batch.commutation[m]), narrator.unit(key, m)[0]),

@@ -1,5 +1,6 @@
 """A mistake that a whole column shares: one factor for all motors, found and reported once."""
 
+import math
 from dataclasses import dataclass
 
 import numpy as np
@@ -8,7 +9,7 @@ from .adjust import Problem, fit
 from .batch import Floats
 from .causes import causes_of
 from .evidence import Evidence
-from .judge import CLEAR_ALL, CLEAR_FIT
+from .judge import CLEAR_ALL, CLEAR_FIT, IMPLAUSIBLE
 from .model import F
 from .suspects import DEPARTURE, GAIN, leave_out, own_sd
 
@@ -17,6 +18,9 @@ LEAST = 3
 
 SHARE = 0.7
 """The part of a column's motors that must share the factor."""
+
+COMMON = 0.012
+"""What a whole table may be off alike without a mistake: rounding of factors, gross for net."""
 
 CAP = 40.0
 """What one motor counts at most: a motor with a fault of its own decides nothing."""
@@ -60,6 +64,7 @@ def _worst(evidence: Evidence, motors: np.ndarray, part: Problem) -> ColumnFault
         return None
     left = leave_out(part)
     sd = own_sd(part, left)
+    odd = IMPLAUSIBLE * evidence.implausible(part, left)
     before = float(_capped(base.chi2).sum())
     fits, totals = np.full(F, np.inf), np.full(F, np.inf)
     shifts, spreads, faulty = np.zeros(F), np.zeros(F), np.zeros(F, dtype=bool)
@@ -73,13 +78,13 @@ def _worst(evidence: Evidence, motors: np.ndarray, part: Problem) -> ColumnFault
         share = (np.abs(ratio - shift) < 3.0 * spread + 0.02).mean()
         rest = base.chi2.copy()
         rest[known] = left.chi2[known, f] + ((ratio - shift) / spread) ** 2
-        fits[f] = float(_capped(rest).sum())
+        fits[f] = float(_capped(rest).sum()) + float(odd[known, f].sum())
         shifts[f] = shift
         spreads[f] = float(np.median(spread)) / np.sqrt(known.sum()) + 0.002
         departs = abs(np.expm1(abs(shift))) > DEPARTURE + 2.0 * np.median(left.implied_sd[known, f])
         saves = before - fits[f] > GAIN + 0.3 * GAIN * known.sum()
         faulty[f] = share >= SHARE and departs and saves
-        scores[f] = evidence.column_scores(f, motors[known], shift, max(spreads[f], 0.004))
+        scores[f] = evidence.column_scores(f, motors[known], shift, math.hypot(spreads[f], COMMON))
         totals[f] = fits[f] - 2.0 * float(np.logaddexp.reduce(scores[f]))
     if not faulty.any():
         return None
@@ -92,6 +97,6 @@ def _worst(evidence: Evidence, motors: np.ndarray, part: Problem) -> ColumnFault
         tuple(sorted(np.flatnonzero(rival).tolist(), key=lambda f: totals[f])),
         float(shifts[best]),
         float(np.nanmedian(left.implied_sd[:, best])),
-        float(spreads[best]),
+        math.hypot(float(spreads[best]), COMMON),
         causes_of(scores[best]),
     )

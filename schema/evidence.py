@@ -147,14 +147,14 @@ class Evidence:
 
         swaps = transpositions(self.text(m, f))
         for factor in swaps:
-            offer("digits-transposed", factor, 0.15 / len(swaps))
+            offer("digits-transposed", factor, 0.08 / len(swaps))
         if key not in SHARED:
             self._neighbour(row, m, f)
         x = self.base.x[m]
         if key in ("torque_constant", "nominal_torque"):
-            idle = math.exp(min(x[I0] - x[IN], -0.02))
+            idle = math.exp(min(self._idle(m), -0.02))
             factor = math.log1p(-idle)
-            offer("friction-ignored", factor if key == "torque_constant" else -factor, 0.08, 0.005)
+            offer("friction-ignored", factor if key == "torque_constant" else -factor, 0.10, 0.01)
         elif key == "stall_torque":
             idle = math.exp(min(x[I0] + x[R] - x[U], -0.02))
             offer("friction-ignored", -math.log1p(-idle), 0.08, 0.005)
@@ -173,6 +173,13 @@ class Evidence:
                     factor = math.log1p(float(self.slope[m]) * (hot - reference))
                 if abs(factor) > 0.02:
                     offer("hot-vs-cold", factor, 0.15, 0.02)
+
+    def _idle(self, m: int) -> float:
+        """Logarithm of I0/I_N, as printed where both are: a wrong Kt does not move that."""
+        current, idle = INDEX["nominal_current"], INDEX["no_load_current"]
+        if self.problem.present[m, current] and self.problem.present[m, idle]:
+            return float(self.problem.y[m, idle] - self.problem.y[m, current])
+        return float(self.base.x[m, I0] - self.base.x[m, IN])
 
     def _neighbour(self, row: Floats, m: int, f: int) -> None:
         """The value of the next winding: printed alike, though the motors are not."""

@@ -19,6 +19,9 @@ TOLERANCE = np.array([0.05, 0.05, 0.05, 0.10])
 
 MAJORITY = 0.6
 
+UNNAMED = 0.8
+"""The same where no series name makes the rows a family, of at least four rows."""
+
 MATTERS = 4.0
 """Sum of squared standardised gaps below which a family can't bring a contradiction to light."""
 
@@ -48,8 +51,11 @@ class Shared:
     count: NDArray[np.int64]
 
 
-def majority(value: Floats, group: NDArray[np.int64], tolerance: float) -> Shared:
-    """The median (n_groups,) of logarithms by group, where most of at least three agree."""
+def majority(
+    value: Floats, group: NDArray[np.int64], tolerance: float, part: Floats | float = MAJORITY
+) -> Shared:
+    """The median (n_groups,) of logarithms by group, where most of at least three agree; part
+    (n_groups,) how many."""
     n = int(group.max(initial=-1)) + 1
     known = np.isfinite(value)
     v, g = value[known], group[known]
@@ -63,19 +69,30 @@ def majority(value: Floats, group: NDArray[np.int64], tolerance: float) -> Share
     median[have] = (v[low[have]] + v[high[have]]) / 2.0
     near = np.abs(value - median[group]) < np.log1p(tolerance)
     agree = np.bincount(group[near & known], minlength=n)
-    family = (agree >= MAJORITY * np.maximum(count, 1)) & (agree >= LEAST - (count == LEAST))
+    family = (agree >= part * np.maximum(count, 1)) & (agree >= LEAST - (count == LEAST))
     family &= count >= LEAST
     square = np.where(near & known, (value - median[group]) ** 2, 0.0)
     spread = np.sqrt(np.bincount(group, square, minlength=n) / np.maximum(agree - 1, 1))
     return Shared(np.where(family, median, np.nan), spread, agree)
 
 
-def observe_families(problem: Problem, base: Fit, unsure: NDArray[np.bool_],
-                     group: NDArray[np.int64]) -> None:  # fmt: skip
-    """Fill in what each motor's family shares, from the adjusted motors (robustly where unsure)."""
+def observe_families(
+    problem: Problem,
+    base: Fit,
+    unsure: NDArray[np.bool_],
+    group: NDArray[np.int64],
+    named: NDArray[np.bool_],
+) -> NDArray[np.bool_]:
+    """Fill in what each motor's family shares, from the adjusted motors (robustly where unsure).
+
+    Returns true for the motors that are of a family, (n,).
+    """
     size = np.bincount(group)
+    has_name = np.zeros(size.size, dtype=bool)
+    has_name[group[named]] = True
+    part = np.where(has_name, MAJORITY, np.where(size >= LEAST + 1, UNNAMED, 2.0))
     if size.max(initial=0) < LEAST:
-        return
+        return np.zeros(len(group), dtype=bool)
     x, covariance = base.x, base.covariance
     who = np.flatnonzero(unsure & (size[group] >= LEAST))
     if who.size:
@@ -87,7 +104,7 @@ def observe_families(problem: Problem, base: Fit, unsure: NDArray[np.bool_],
         value, sd = robust.combination(row)
         tolerance = float(TOLERANCE[i])
         usable = np.where(sd < tolerance, value, np.nan)
-        shared = majority(usable, group, tolerance)
+        shared = majority(usable, group, tolerance, part)
         least = 0.3 * tolerance
         spread = np.clip(1.2 * shared.spread, least, 0.6 * tolerance)
         spread = spread * np.sqrt(1.0 + 1.5 / np.maximum(shared.count, 1))
@@ -98,6 +115,7 @@ def observe_families(problem: Problem, base: Fit, unsure: NDArray[np.bool_],
     apart = ~np.isfinite(problem.family[:, 0])
     problem.family[apart] = np.nan
     problem.family_sd[apart] = np.inf
+    return ~apart
 
 
 def stands_off(problem: Problem, fitted: Fit) -> NDArray[np.bool_]:

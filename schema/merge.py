@@ -3,9 +3,16 @@
 import numpy as np
 
 from .batch import Batch
+from .causes import TORQUES
 from .columns import SHARE, ColumnFault
 from .model import FIGURES, INDEX
 from .suspects import Suspicion
+
+CHANCE = {"unexplained", "digits-transposed", "continuous-stall", "neighbouring-column"}
+"""Causes that one ratio in two torque figures makes unlikely."""
+
+GEARED = 0.8
+"""The least logarithm of a gear's ratio."""
 
 Merged = list[tuple[ColumnFault, np.ndarray]]
 
@@ -39,11 +46,11 @@ def shared_causes(suspicions: list[Suspicion]) -> None:
         if len(stall) == 2 and all("continuous-stall" in s.causes for s in stall):
             for s in stall:
                 _lead(s, "continuous-stall")
-        geared = [s for s in several if "gear-output-side" in s.causes]
+        geared = [s for s in several if FIGURES[s.figure] in TORQUES and s.log_ratio > GEARED]
         ratios = [s.log_ratio for s in geared]
         if len(geared) >= 2 and np.ptp(ratios) < 3.0 * max(s.sd for s in geared) + 0.02:
             for s in geared:
-                if s.causes[0] == "unexplained":
+                if s.causes[0] in CHANCE:
                     _lead(s, "gear-output-side")
 
 

@@ -83,8 +83,8 @@ FAMILY_ROWS: tuple[tuple[str, dict[int, float]], ...] = (
 
 LAW_SCATTER = {
     # customary scatter of the laws, one standard deviation (common practice, no source); that of
-    # the nominal torque is from scatter of 5 % of T_N and some of I_N
-    "no_load_speed": 0.025, "stall_torque": 0.02, "nominal_torque": 0.06, "nominal_speed": 0.025,
+    # the nominal torque is from scatter of 5 % of T_N and as much of I_N
+    "no_load_speed": 0.025, "stall_torque": 0.02, "nominal_torque": 0.07, "nominal_speed": 0.025,
     "friction_torque": 0.10,
 }  # fmt: skip
 
@@ -106,6 +106,9 @@ UNPUBLISHED_I0_SERVO = (np.log(0.025), np.log(2.0))
 HOT_RESISTANCE = 1.0 + 0.00385 * 75.0
 """Ra at 100 °C over Ra at 25 °C: the "hot" reading of a nominal speed where no temperature is
 printed (common practice, no source)."""
+
+HOT_SPREAD = 0.08
+"""Standard deviation of the logarithm of that ratio."""
 
 PEAK_BAND = (np.log(0.5), np.log(1.05))
 """Peak torque over Km times peak current: saturation lowers it, nothing raises it."""
@@ -214,7 +217,10 @@ def nonlinear_rows(
         drop = np.where(servo, 0.0, drop)
         slope = drop / (1.0 - drop)
         residual = u - k + np.log1p(-drop) - x[:, NN]
-        w = np.where(servo & ((residual > 0.0) | typical), 0.0, laws[:, 3])
+        w = laws[:, 3]
+        if readings.nominal_speed_hot:
+            w = w / (1.0 + w * (HOT_SPREAD * slope) ** 2)
+        w = np.where(servo & ((residual > 0.0) | typical), 0.0, w)
         yield residual, w, [(NN, 1.0), (U, -1.0 - slope), (K, 1.0), (R, slope), (IN, slope)]
 
     # Km·I0 = T_c + b·n0, b = 0 unless published

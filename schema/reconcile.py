@@ -62,16 +62,18 @@ def reconcile(batch: Batch) -> Reconciled:
     for inferred in table.inferred:
         _add(out, int(inferred.entries[0]), narrator.inference(inferred))
     suspicions: list[Suspicion] = []
+    families: list[NDArray[np.bool_]] = []
     for start in range(0, len(batch), PORTION):
         part = portion(batch, start, start + PORTION)
-        found, columns = _portion(part, table)
+        found, columns, of_family = _portion(part, table)
         parts.append(columns)
+        families.append(of_family)
         for s in found:
             s.motor += start
         suspicions += found
     out.constants = joined(parts)
     _points(out)
-    _report(out, narrator, table, suspicions)
+    _report(out, narrator, table, suspicions, np.concatenate(families))
     return out
 
 
@@ -92,22 +94,26 @@ def _whole(batch: Batch) -> tuple[Batch, _Table]:
     if faults:
         some.present = some.present.copy()
         some.present[:, [f.figure for f in faults]] = False
+        some.readings = problem.readings = readings(some)
         some.scale = np.array([scale(some)])
     return batch, _Table(problem.readings, float(some.scale[0]), faults, inferred)
 
 
-def _portion(batch: Batch, table: _Table) -> tuple[list[Suspicion], dict[str, ConstantColumn]]:
+def _portion(
+    batch: Batch, table: _Table
+) -> tuple[list[Suspicion], dict[str, ConstantColumn], NDArray[np.bool_]]:
     problem = observe(batch, table.readings)
     problem.scale = np.array([table.scale])
     for fault in table.faults:
         problem.present[:, fault.figure] = False
     base = fit(problem)
     unsure = doubtful(problem, base)
-    observe_families(problem, base, unsure, groups(batch))
+    named = np.array([name is not None for name in batch.series])
+    family = observe_families(problem, base, unsure, groups(batch), named)
     judged, unsure = _with_family(problem, base, unsure)
     suspicions, removed = judge(Evidence(batch, problem, judged), np.flatnonzero(unsure))
     _refit(problem, base, removed)
-    return suspicions, constants(batch, problem, base)
+    return suspicions, constants(batch, problem, base), family
 
 
 def _with_family(
@@ -170,7 +176,11 @@ def severity(log_ratio: float, sd: float, cause: str) -> str:
 
 
 def _report(
-    out: Reconciled, narrator: Narrator, table: _Table, suspicions: list[Suspicion]
+    out: Reconciled,
+    narrator: Narrator,
+    table: _Table,
+    suspicions: list[Suspicion],
+    family: NDArray[np.bool_],
 ) -> None:
     exchanged_neighbours(out.batch, suspicions)
     shared_causes(suspicions)
@@ -199,7 +209,7 @@ def _report(
     for motor, finding in (
         checks.bounds(narrator, everyone)
         + checks.poles(narrator)
-        + checks.frames(narrator)
+        + checks.frames(narrator, family)
         + checks.repeats(narrator)
         + checks.thermal(narrator)
         + checks.scatter(narrator, lambda m: bool(shared) or m in doubted)

@@ -15,7 +15,9 @@ from numpy.typing import NDArray
 from .adjust import Problem, fit
 from .batch import Floats
 from .evidence import Evidence
+from .model import FIGURES
 from .suspects import Suspicion, predicted
+from .vocabulary import quantity
 
 FAULT = -4.0
 """Log prior that a given figure is wrong."""
@@ -25,6 +27,9 @@ SWAP = -5.0
 
 BESIDE = math.log(4.0)
 """How much likelier cells next to each other are exchanged, in log."""
+
+UNLIKE = -2.0
+"""The same for cells of unlike quantities, which a hand seldom exchanges."""
 
 PAIRS = 4000
 """Exchanges refitted at a time."""
@@ -99,7 +104,11 @@ def _prior(evidence: Evidence, part: Problem, local: int, motor: int, a: int, b:
     n = int(evidence.problem.present[motor].sum())
     places = [evidence.place(motor, f) for f in (a, b)]
     beside = abs(places[0][0] - places[1][0]) + abs(places[0][1] - places[1][1]) == 1
-    return SWAP - math.log(max(n * (n - 1) / 2, 1)) + (BESIDE if beside else 0.0)
+    alike = quantity(FIGURES[a]).unit == quantity(FIGURES[b]).unit or {FIGURES[a], FIGURES[b]} in (
+        {"torque_constant", "speed_constant"}, {"terminal_resistance", "terminal_inductance"},
+    )  # fmt: skip
+    closeness = (BESIDE if beside else 0.0) + (BESIDE if alike else UNLIKE)
+    return SWAP - math.log(max(n * (n - 1) / 2, 1)) + closeness
 
 
 def _verdict(

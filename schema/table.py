@@ -6,12 +6,19 @@ from dataclasses import replace
 import numpy as np
 
 from .adjust import Problem, fit
-from .model import INDEX, LAW_SCATTER, Readings
+from .model import INDEX, LAW_BINDS, LAW_SCATTER, Readings
 
 SAMPLE = 240
 """Motors of a table that decide what concerns the whole table."""
 
-SCALES = np.array([0.2, 0.35, 0.5, 0.7, 0.85, 1.0])
+CAP, CLEARLY = 5.0, 2.0
+"""What one motor says at most for a reading, and what another reading must be better by."""
+
+SCALES = np.array([0.2, 0.35, 0.5, 0.7, 0.85, 1.0, 1.2, 1.45])
+
+CAUCHY_MEAN = 0.8741
+"""Mean Cauchy loss, cut at 3, of a standard normal deviate (by quadrature): what the robust loss
+of clean figures falls short of their sum of squares."""
 
 SCALE_PRIOR = 0.7
 """Standard deviation of the logarithm of the scale before the figures are seen."""
@@ -23,20 +30,21 @@ def sample(n: int, size: int = SAMPLE) -> np.ndarray:
 
 
 def readings(problem: Problem) -> Readings:
-    """The reading of stall torque, nominal speed and maximum power that fits the median motor.
+    """The reading of stall torque, nominal speed and maximum power that fits the table.
 
-    One reading per table: the one with the smaller robust loss of the median motor; the
-    customary one unless another fits better.
+    One reading per table: the one with the smaller robust loss, of which no motor counts for
+    much; the customary one unless another fits clearly better.
     """
     plain = ~problem.servo
     chosen = problem.readings
-    trials: list[tuple[str, str]] = [
-        ("stall_torque", "stall_torque_net"),
-        ("maximum_power", "maximum_power_electrical"),
-        ("nominal_speed", "nominal_speed_hot"),
+    trials: list[tuple[tuple[str, ...], str]] = [
+        (("stall_torque",), "stall_torque_net"),
+        (("maximum_power",), "maximum_power_electrical"),
+        (LAW_BINDS["nominal_speed"], "nominal_speed_hot"),
     ]
-    for figure, field in trials:
-        who = np.flatnonzero(plain & problem.present[:, INDEX[figure]])
+    for figures, field in trials:
+        given = problem.present[:, [INDEX[key] for key in figures]].any(axis=1)
+        who = np.flatnonzero(plain & given)
         if not who.size:
             continue
         part = problem.take(who)
@@ -44,14 +52,14 @@ def readings(problem: Problem) -> Readings:
         losses = []
         for reading in (chosen, other):
             part.readings = reading
-            losses.append(float(np.median(fit(part, robust=True).chi2)))
-        if losses[1] < losses[0] - 1.0:
+            losses.append(fit(part, robust=True).chi2)
+        if np.clip(losses[0] - losses[1], -CAP, CAP).sum() > CLEARLY:
             chosen = other
     return chosen
 
 
 def scale(problem: Problem) -> float:
-    """How much of the customary scatter the motors of a table show, at most all of it.
+    """How much of the customary scatter the motors of a table show (1: all of it).
 
     The mean of its square under the marginal likelihood of the robust residuals over ``SCALES``,
     with a weak prior at 1: a sheet computed from its constants holds to its printed digits, and
@@ -61,13 +69,15 @@ def scale(problem: Problem) -> float:
     count = SCALES.size
     stacked = problem.take(np.tile(np.arange(n), count))
     stacked.scale = np.repeat(SCALES, n)
+    stacked.present = stacked.present.copy()
+    stacked.present[:, INDEX["peak_torque"]] = False  # inside its band it tells nothing
     fitted = fit(stacked, robust=True)
     sign, log_det = np.linalg.slogdet(fitted.covariance)
     variance = np.where(stacked.present, 2.0 * np.log(stacked.sd()), 0.0).sum(axis=1)
     laws = stacked.bound.copy()
     laws[:, list(LAW_SCATTER).index("nominal_speed")] &= ~stacked.servo
     variance += (laws * 2.0 * np.log(stacked.scale)[:, None]).sum(axis=1)
-    cost = fitted.chi2 + variance - np.where(sign > 0, log_det, 0.0)
+    cost = fitted.chi2 / CAUCHY_MEAN + variance - np.where(sign > 0, log_det, 0.0)
     total = cost.reshape(count, n).sum(axis=1) + (np.log(SCALES) / SCALE_PRIOR) ** 2
     share = np.exp(-0.5 * (total - total.min()))
     return float(np.sqrt((share * SCALES**2).sum() / share.sum()))
