@@ -14,7 +14,6 @@ _CHUNK = 1 << 20
 _HEAD = 1 << 16
 _SAMPLE = 1 << 17
 _CONTROL_BYTES = bytes(b for b in range(32) if b not in (0, 9, 10, 13)) + b"\x7f"
-_HIGH_LINE = re.compile(rb"[^\r\n]*[\x80-\xff][^\r\n]*")
 _C1_UTF8 = re.compile(rb"\xc2[\x80-\x84\x86-\x9f]|\xef\xbb\xbf")
 _INERT = re.compile(rb"'[=+\-@]")
 
@@ -132,10 +131,11 @@ def _survey(file: BinaryIO) -> Survey:
                 chunk
             )
             if len(high) < _SAMPLE:
-                for match in _HIGH_LINE.finditer(chunk):
-                    high += match[0][:4096] + b"\n"
-                    if len(high) >= _SAMPLE:
-                        break
+                for line in chunk.splitlines():
+                    if not line.isascii():
+                        high += line[:4096] + b"\n"
+                        if len(high) >= _SAMPLE:
+                            break
         first, last = chunk.find(b"\n"), chunk.rfind(b"\n")
         if first < 0:
             first, last = chunk.find(b"\r"), chunk.rfind(b"\r")

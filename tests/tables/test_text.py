@@ -1,8 +1,10 @@
 """Pasted text: columns by blanks, pairs of label and value, labels over two lines."""
 
+import time
 from pathlib import Path
 
 from motorfolio.catalog.tables import read_tables
+from motorfolio.catalog.tables.source import open_source
 
 from .files import check, one, read
 
@@ -145,3 +147,11 @@ def test_wide_east_asian_signs_take_two_places(tmp_path: Path) -> None:
     )
     grid = one(read(tmp_path / "a.txt", text))
     assert grid.rows[2] == ["B", "", "2000"]
+
+
+def test_one_long_line_before_a_foreign_letter_is_surveyed_at_once():
+    """The look for lines in another encoding takes time by their length, not by its square."""
+    start = time.process_time()
+    survey = open_source(None, b"x" * 100_000 + b"\n\xe9\n").survey
+    assert time.process_time() - start < 1
+    assert survey.high_lines == b"\xe9\n"
