@@ -24,6 +24,7 @@ run motorfolio search --torque "50 mN·m" --speed "3000 rpm" --supply "24 V" --c
 for machine in lift_axis rotary_table hand_tool; do
     run motorfolio search --requirement "sample_entries/machines/$machine.toml"
 done
+run motorfolio page --requirement sample_entries/machines/lift_axis.toml --output demo/page.html
 
 printf '\nThe catalog: %s (any SQLite browser opens it; the view "motors" is the wide table).\n' \
     "demo/catalog.sqlite"

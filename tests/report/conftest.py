@@ -19,4 +19,5 @@ def catalog(tmp_path_factory: pytest.TempPathFactory) -> Path:
     path = tmp_path_factory.mktemp("report") / "motors.sqlite"
     files = [str(SAMPLES / name) for name in TABLES]
     assert main(["import", *files, "--catalog", str(path)]) == 0
+    assert main(["gears", str(SAMPLES / "gears.csv"), "--catalog", str(path)]) == 0
     return path

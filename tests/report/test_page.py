@@ -15,6 +15,7 @@ from motorfolio.catalog.report.implied import implied_figures
 from motorfolio.catalog.report.page.write import as_json, catalog_page
 
 from .browser import opened
+from .conftest import SAMPLES
 from .many import table
 
 EVIL = (
@@ -84,6 +85,31 @@ def test_the_same_catalog_gives_the_same_page(catalog: Path, catalog_html: Path)
 
     with Catalog.open(catalog) as store:
         assert catalog_page(store, "Motor catalog") == catalog_html.read_text(encoding="utf-8")
+
+
+@pytest.mark.parametrize(
+    "call",
+    [
+        ["--torque", "900 N·m", "--speed", "9000 rpm", "--supply", "3 V"],
+        ["--torque", "1 mN·m", "--speed", "10 rpm", "--where", "mass < 1 mg"],
+    ],
+)
+def test_a_search_that_finds_none_has_a_page_too(
+    catalog: Path, tmp_path: Path, call: list[str]
+) -> None:
+    path = tmp_path / "none.html"
+    assert main(["page", *call, "-o", str(path), "--catalog", str(catalog)]) == 0
+    with opened(path) as page:
+        assert page.locator("#claim").inner_text().startswith("0 of ")
+
+
+def test_an_empty_catalog_has_a_page_too(tmp_path: Path) -> None:
+    store, path = tmp_path / "empty.sqlite", tmp_path / "empty.html"
+    assert main(["gears", str(SAMPLES / "gears.csv"), "--catalog", str(store)]) == 0
+    for call in ([], ["--torque", "1 mN·m", "--speed", "10 rpm"]):
+        assert main(["page", *call, "-o", str(path), "--catalog", str(store)]) == 0
+        with opened(path) as page:
+            assert page.locator("#rows tr").count() == 0
 
 
 def test_json_can_not_end_its_element() -> None:

@@ -11,10 +11,11 @@ from pathlib import Path
 import numpy as np
 import pytest
 
-from motorfolio.catalog.choice import Judge
+from motorfolio.catalog.choice import Judge, behind
 from motorfolio.catalog.commands.requirement_options import requirement_of
 from motorfolio.catalog.commands.search import command as search
 from motorfolio.catalog.fleet import load_fleet
+from motorfolio.catalog.gears import gear_utilisations, load_gears
 from motorfolio.catalog.report.page.write import search_page
 from motorfolio.catalog.search import _tolerance
 from motorfolio.catalog.store import Catalog
@@ -124,6 +125,45 @@ def test_page_and_python_agree(catalog: Path, tmp_path: Path, name: str) -> None
                 checked["yes"] += theirs["verdict"] == "yes"
     assert checked["numbers"] > 100
     assert checked["yes"] > 0
+
+
+def test_motors_behind_gears_of_the_catalog(catalog: Path, tmp_path: Path) -> None:
+    call = ["--torque", "2 N·m", "--speed", "150 rpm", "--supply", "24 V", "--gears"]
+    requirement = requirement_of(search.make_context("search", call).params)
+    path = tmp_path / "page.html"
+    setting = {"supply": 20.0, "ambient": 40.0, "reserve": 0.1}
+    with Catalog.open(catalog) as store:
+        html = search_page(store, requirement, "Test")
+        fleet = load_fleet(store, requirement)
+        data = data_of(html)
+        ids = [store.find(part).id for part in data["names"]["part"]]
+        gears = {gear.part_number: gear for gear in load_gears(store, requirement)}
+    path.write_text(html, encoding="utf-8")
+    with opened(path) as page:
+        theirs = page.evaluate(
+            """s => Array.from({length: model.count}, (_, i) => {
+                const f = judging.judge(model.machine(i), model.data.demand, s);
+                return {gear: model.card(i).gear, thermal: f.use.thermal, voltage: f.use.voltage,
+                    fixed: model.machine(i).fixed, rms: f.rms};
+            })""",
+            setting,
+        )
+    own = requirement.with_supply(setting["supply"])
+    own = own.with_demand(surroundings=replace(own.demand.surroundings, ambient=40.0))
+    for i, (number, found) in enumerate(zip(ids, theirs, strict=True)):
+        gear = gears[found["gear"]]
+        assert data["judged"]["ratio"][i] == pytest.approx(gear.ratio)
+        at = np.flatnonzero(fleet.ids == number)
+        ratio = np.array([[data["judged"]["ratio"][i]]])
+        judged = Judge(behind(own, gear)).cases(fleet.machines.take(at), ratio, at, True)
+        for limit in ("thermal", "voltage"):
+            ours = float(judged.utilisation(limit)[0])
+            if not math.isnan(ours):
+                assert found[limit] == pytest.approx(ours, rel=1e-3)
+        assert found["rms"] == pytest.approx(float(judged.use.rms_current[0]), rel=1e-3)
+        limits = gear_utilisations([gear], requirement)
+        assert found["fixed"].keys() == limits.keys() != set()
+    assert len({found["gear"] for found in theirs}) > 1
 
 
 def test_the_plane_s_limits_agree(catalog: Path, tmp_path: Path) -> None:

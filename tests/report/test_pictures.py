@@ -91,6 +91,16 @@ def test_lines_differ_without_colour(catalog):
         assert len(set(looks)) == len(looks) > 1
 
 
+def test_an_empty_catalog_is_one_sentence(tmp_path, capsys):
+    from .conftest import SAMPLES
+
+    store = str(tmp_path / "empty.sqlite")
+    assert main(["gears", str(SAMPLES / "gears.csv"), "--catalog", store]) == 0
+    out = str(tmp_path / "x.svg")
+    assert main(["plot", *KINDS["candidates"], "-o", out, "--catalog", store]) == 2
+    assert "no motors" in capsys.readouterr().err
+
+
 @pytest.mark.parametrize(
     ("call", "said"),
     [

@@ -77,11 +77,14 @@ def search_page(catalog: Catalog, requirement: Requirement, title: str) -> str:
     for number, miss in enumerate(misses, start=len(found.candidates)):
         data["cards"][number]["needs"] = miss.sentence
     rejected = sum(found.rejected.values())
-    best = f"; by {requirement.order_by} {found.candidates[0].name.part_number} comes first"
+    best = ""
+    if found.candidates:
+        first = p.plain(found.candidates[0].name.part_number)
+        best = f"; by {requirement.order_by} {first} comes first"
     data |= {
         "kind": "search",
         "claim": f"{found.feasible} of {found.considered} motors do it, {rejected} do not, "
-        f"{found.unknown} are not known{p.plain(best) if found.candidates else ''}.",
+        f"{found.unknown} are not known{best}.",
         "demand": asked.demand_numbers(requirement, shown),
         "judged": asked.judged_numbers(found, shown, len(found.candidates)),
         "requirement": asked.in_words(requirement_document(requirement)),

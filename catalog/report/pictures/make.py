@@ -52,6 +52,10 @@ def plane_of(catalog: Catalog, part: str, requirement: Requirement, *, cycle: bo
 def candidates_of(catalog: Catalog, requirement: Requirement) -> Figure:
     """Size against limiting utilisation of all motors that a search looks at."""
     found = search(catalog, requirement)
+    if not found.considered:
+        raise MotorfolioError(
+            f"{catalog.path} has no motors; read a table first: motorfolio import FILE."
+        )
     verdict = found.judged.verdict.copy()
     verdict[found.passed.unknown & (verdict == Verdict.FEASIBLE)] = Verdict.UNKNOWN
     verdict[found.passed.rejected] = Verdict.REJECTED

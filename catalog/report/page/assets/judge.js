@@ -400,7 +400,7 @@ const judging = (() => {
     if (d.current_limit !== null || d.power_limit !== null) {
       const hot = Number.isNaN(found.temperature) ? s.ambient : found.temperature;
       const power = found.runaway ? NaN : peakPower(m, atMotor(m, d), hot, d.bridge_drop);
-      if (d.current_limit !== null) use.supply_current = power / s.supply / d.current_limit;
+      if (d.current_limit !== null) use.supply_current = s.supply === null ? NaN : power / s.supply / d.current_limit;
       if (d.power_limit !== null) use.supply_power = power / d.power_limit;
       needed.push(...["supply_current", "supply_power"].filter(name => name in use));
     }

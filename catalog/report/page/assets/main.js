@@ -23,6 +23,11 @@ const page = (() => {
       : `Now ${doing} of these ${all.length} motors do it; as asked ${before}.`;
   }
 
+  function limiting(i) {
+    const {runaway, limiting: name, largest} = found[i];
+    return runaway ? "thermal runaway" : name === null ? "–" : `${words(name)} ${percent(largest)}`;
+  }
+
   // ---- columns
 
   const columns = [];
@@ -40,7 +45,7 @@ const page = (() => {
     if (searching) {
       addColumn("ratio", "Gear ratio", "", i => data.judged.ratio[i], v => number(v));
       addColumn("largest", "Limiting", "", i => found[i].largest, null,
-        {cell: i => `${found[i].limiting === null ? "–" : words(found[i].limiting)} ${percent(found[i].largest)}`});
+        {cell: limiting});
       for (const name of data.judged.limits) {
         const label = words(name);
         addColumn(`use-${name}`, label[0].toUpperCase() + label.slice(1), "of its limit", i => found[i].use[name], percent, {limit: name, detail: true});
@@ -188,7 +193,7 @@ const page = (() => {
       charts.scatter(place, get("overview-hover"), {
         x: size.values, y, group: i => ["yes", "unknown", "no"].indexOf(found[i].verdict),
         groups: [{label: "does it", colour: "--strong", size: 10, filled: true}, {label: "not known", colour: "--doubt", size: 9}, {label: "does not", colour: "--line-2", size: 6}],
-        names: i => `${names(i)}: ${number(size.values[i])} ${size.unit}, ${found[i].limiting === null ? "" : words(found[i].limiting)} ${percent(found[i].largest)}, ${VERDICTS[found[i].verdict]}`,
+        names: i => `${names(i)}: ${number(size.values[i])} ${size.unit}, ${limiting(i)}, ${VERDICTS[found[i].verdict]}`,
         xLabel: size.label + unit, yLabel: "limiting utilisation, %", yRange: [0, top * 1.04], line: () => (1 - setting.reserve) * 100, choose,
       });
       return;

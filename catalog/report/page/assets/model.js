@@ -41,7 +41,7 @@ const model = (() => {
     return number(x / factor) + (shown && shown !== "1" ? ` ${shown}` : "");
   }
 
-  const percent = x => x === null || Number.isNaN(x) ? "–" : Number.isFinite(x) ? `${Math.round(x * 100)} %` : "runaway";
+  const percent = x => x === null || Number.isNaN(x) ? "–" : Number.isFinite(x) ? `${Math.round(x * 100)} %` : "∞";
 
   function machine(index) {
     const m = {};
