@@ -6,13 +6,14 @@ Everything here raises MotorfolioError, one sentence, for whatever can't be used
 import json
 import os
 from collections.abc import Mapping, Sequence
+from dataclasses import replace
 from pathlib import Path
 from types import TracebackType
-from typing import TYPE_CHECKING, Any, Self
+from typing import TYPE_CHECKING, Any, Self, TypedDict, Unpack
 
 from ..schema.entry import Entry, Motor, MotorFinding
 from ..schema.errors import MotorfolioError
-from .importing import STANDARD_INPUT, FileResult, Options, import_files
+from .importing import STANDARD_INPUT, FileResult, ImportResult, Options, import_files
 from .requirement import Requirement
 from .results import Judgement, MotorTable, SearchResult, Sheet, Table
 from .store import Catalog
@@ -27,6 +28,17 @@ NO_CATALOG = Path(os.devnull)
 
 Asked = Requirement | Mapping[str, Any] | str | Path
 """A requirement, or what ``read_requirement`` takes."""
+
+
+class Told(TypedDict, total=False):
+    """What a call may tell about its files, see ``read_table``."""
+
+    maker: str
+    series: str
+    sheet: str
+    format: str
+    commutation: str
+    overrides: Mapping[str, str]
 
 
 def read_table(
@@ -69,17 +81,13 @@ def normalise(entry: Mapping[str, Any] | Entry, *, commutation: str | None = Non
     return sheet.motors[0]
 
 
-def _entries(entries: Sequence[Mapping[str, Any] | Entry], options: Options) -> Any:
+def _entries(entries: Sequence[Mapping[str, Any] | Entry], options: Options) -> ImportResult:
     flat = [e.model_dump(exclude_none=True) if isinstance(e, Entry) else dict(e) for e in entries]
     data = json.dumps(flat, ensure_ascii=False).encode()
-    told = Options(**{**_fields(options), "format": "json"})
     return import_files(
-        NO_CATALOG, [STANDARD_INPUT], told, with_documents=True, standard_input=lambda: data
-    )
-
-
-def _fields(options: Options) -> dict[str, Any]:
-    return {name: getattr(options, name) for name in Options.__dataclass_fields__}
+        NO_CATALOG, [STANDARD_INPUT], replace(options, format="json"), with_documents=True,
+        standard_input=lambda: data,
+    )  # fmt: skip
 
 
 def _sheet(file: FileResult) -> Sheet:
@@ -156,9 +164,9 @@ class MotorCatalog:
             self._store.close()
             self._store = None
 
-    def add(self, *files: str | Path, **told: Any) -> list[Sheet]:
+    def add(self, *files: str | Path, **told: Unpack[Told]) -> list[Sheet]:
         """Import files, all of them or none; keywords as ``read_table`` has them."""
-        options = Options(**{**told, "overrides": told.get("overrides") or {}})
+        options = Options(**told)
         self.close()  # the import is the one writer
         result = import_files(self.path, [str(f) for f in files], options, with_documents=True)
         return [_sheet(file) for file in result.files]
