@@ -51,7 +51,7 @@ CYCLE = {
     "gear": {"ratio": "3..40", "efficiency": "90 %"},
     "ambient": {"temperature": "40 °C"},
 }
-_SQL = """
+SQL = """
 WITH m AS (
   SELECT motor.id, c.torque_constant K, c.armature_resistance * (1 + (40 - 25) / 259.5) R,
     c.armature_inductance L, k.commutation, c.no_load_current i0, v.mass, v.pole_pairs p,
@@ -199,7 +199,7 @@ def main() -> None:
         path = made(Path(folder) / "c.sqlite", motors)
         point, cycle = read_requirement(POINT), read_requirement(CYCLE)
         with Catalog.open(path) as catalog:
-            sql = best(lambda: catalog.connection.execute(_SQL, {"w": 100 * math.pi}).fetchall())
+            sql = best(lambda: catalog.connection.execute(SQL, {"w": 100 * math.pi}).fetchall())
             at_point = best(lambda: search(catalog, point))
             print(
                 f"point, {motors} motors: search {at_point:.3f} s, SQL {sql:.3f} s, "
