@@ -37,7 +37,9 @@ NAMESAKE = {
 INFLUENCE = 0.03
 """A figure counts as a source when a change of it moves the constant by this share of it."""
 
-Z95 = 1.959964
+Z95 = 2.04
+"""Deviations of a 95 % interval: Student's t of 30 degrees of freedom, which is about what a table
+of a few motors has to estimate its scatter from."""
 
 
 def constants(batch: Batch, problem: Problem, fitted: Fit) -> dict[str, ConstantColumn]:

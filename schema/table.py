@@ -20,7 +20,7 @@ CAUCHY_MEAN = 0.8741
 """Mean Cauchy loss, cut at 3, of a standard normal deviate (by quadrature): what the robust loss
 of clean figures falls short of their sum of squares."""
 
-SCALE_PRIOR = 0.7
+SCALE_PRIOR = 0.3
 """Standard deviation of the logarithm of the scale before the figures are seen."""
 
 

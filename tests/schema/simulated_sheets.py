@@ -28,8 +28,10 @@ UNITS = {
     "rotor_inertia": ("g·cm²", 1e-7), "friction_torque": ("mNm", 1e-3),
     "continuous_stall_torque": ("Nm", 1.0), "continuous_stall_current": ("A", 1.0),
     "peak_torque": ("Nm", 1.0), "peak_current": ("A", 1.0), "mass": ("g", 1e-3),
+    "poles": ("", 1.0), "pole_pairs": ("", 1.0),
 }  # fmt: skip
 FULL = tuple(k for k in UNITS if k not in (
+    "poles", "pole_pairs",
     "continuous_stall_torque", "continuous_stall_current", "peak_torque", "peak_current",
     "rated_efficiency", "friction_torque", "maximum_power", "rated_power"))  # fmt: skip
 SERVO = ("nominal_voltage", "nominal_speed", "nominal_torque", "nominal_current", "rated_power",
@@ -78,6 +80,19 @@ def put(batch: Batch, key: str, row: int, value_si: float, digits: int = 3) -> N
     column.text[row] = f"{printed:.{max(0, -math.floor(math.log10(half * 2)))}f}"
 
 
+def single(kind: Commutation = Commutation.BRUSHED, n: int = 1) -> Batch:
+    """A batch of n motors with no figures yet."""
+    batch = blank_batch([f"X{i}" for i in range(n)], maker="Invented", commutation=kind)
+    batch.series = [None] * n
+    return batch
+
+
+def restate(batch: Batch, key: str, **changes: str | float | None) -> None:
+    """Change the convention that a column states."""
+    column = batch.figures[key]
+    column.conventions = [c.with_(**changes) for c in column.conventions]
+
+
 def make(
     rng: np.random.Generator,
     n: int = 6,
@@ -91,7 +106,7 @@ def make(
     batch.series = ["X"] * n
     servo = kind is Commutation.SINUSOIDAL
     size = math.exp(rng.uniform(math.log(0.003), math.log(0.3)))  # Km/√Ra
-    inertia = 2e-4 * size**2 * math.exp(rng.normal(0, 0.3))
+    inertia = 8e-3 * size**2 * math.exp(rng.normal(0, 0.3))
     tau_e = math.exp(rng.uniform(math.log(1e-4), math.log(2e-3)))
     mass = 1.5 * size**0.8
     u0 = float(rng.choice([6, 12, 24, 48])) if not servo else 325.0
