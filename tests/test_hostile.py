@@ -111,11 +111,11 @@ def good_workbook() -> bytes:
 
 
 def zip_bomb() -> bytes:
-    """A workbook whose sheet unpacks to 3 GB."""
+    """A workbook whose sheet unpacks to 800 MB."""
     out = io.BytesIO()
     with (
         zipfile.ZipFile(io.BytesIO(good_workbook())) as source,
-        zipfile.ZipFile(out, "w", zipfile.ZIP_DEFLATED, compresslevel=9) as target,
+        zipfile.ZipFile(out, "w", zipfile.ZIP_DEFLATED, compresslevel=1) as target,
     ):
         for name in source.namelist():
             if not name.startswith("xl/worksheets/"):
@@ -124,7 +124,7 @@ def zip_bomb() -> bytes:
             sheet.write(b'<?xml version="1.0"?><worksheet xmlns="http://schemas.openxmlformats.org/'
                         b'spreadsheetml/2006/main"><sheetData>')  # fmt: skip
             chunk = b'<row><c t="inlineStr"><is><t>aaaaaaaa</t></is></c></row>' * 20_000
-            for _ in range(3_000_000_000 // len(chunk)):
+            for _ in range(800_000_000 // len(chunk)):
                 sheet.write(chunk)
             sheet.write(b"</sheetData></worksheet>")
     return out.getvalue()

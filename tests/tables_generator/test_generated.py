@@ -1,7 +1,7 @@
 """Generated tables: what is printed is read, and what is not read is listed; nothing is wrong.
 
 The long run is ``python -m tests.tables_generator``; every fault it found that was mended stands
-in ``cases.jsonl`` as the plainest recipe that showed it.
+in ``cases.jsonl`` as a plain recipe of its kind.
 """
 
 from __future__ import annotations
