@@ -210,9 +210,8 @@ def _figures(motor: Document) -> Iterator[tuple[str, Document, str]]:
     for key in ("commutation", "magnet"):
         fact = motor["model"][key]
         if key not in figures and fact["value"] != "unknown":
-            # what the sheet did not state is not stated by its export either
-            known = "" if fact["basis"] in ("told", "stated") else f" ({fact['basis']})"
-            figures[key] = {"value": f"{fact['value']}{known}"}
+            # no text of the sheet, so its basis goes with it
+            figures[key] = {"value": f"{fact['value']} ({fact['basis']})"}
     for key, figure in figures.items():
         yield key, figure, ""
     for key, repeats in motor.get("repeats", {}).items():
@@ -281,11 +280,12 @@ def _convention(found: dict[str, Any] | None) -> Convention:
 
 def _convention_words(found: dict[str, Any] | None) -> str:
     """What a heading says; what was merely assumed is assumed again by whoever reads it."""
-    if not found or found.get("basis") == "assumed":
+    if not found:
         return ""
-    words = dict.fromkeys(
-        found[key] for key in ("current", "voltage", "between", "connection") if key in found
-    )
+    kinds = ("current", "voltage", "between", "connection")
+    assumed = found.get("basis") == "assumed"
+    words = {} if assumed else dict.fromkeys(found[key] for key in kinds if key in found)
+    # a temperature is never assumed: it stands there because the sheet says it
     if "temperature" in found:
         words[f"{found['temperature']:g} °C"] = None
     return ", ".join(words)

@@ -31,11 +31,25 @@ from .model import Field, Unread
 from .phrase import point_key
 from .said import cell_conventions
 
-_EXPORTED_FACT = re.compile(r"\((inferred|assumed)\)$")
-"""What an export says of a fact that no sheet states: it is known as before, and no text."""
+_EXPORTED_FACT = re.compile(r"\((told|stated|inferred|assumed)\)$")
+"""What an export says of a fact that no text figure gives: known as before, and no figure."""
 
 CHUNK = 20_000
 """Motors in one batch of a long table."""
+
+
+_NO_CONDITION = re.compile(r"-?[\d.]+ °C|otherwise")
+"""A temperature is a convention of the figure: where a motor has it at that one alone, it is its
+figure; else the others are those of a condition."""
+
+
+def _fill_gaps(batch: Batch, key: str, figure: FigureColumn, values: Values) -> None:
+    """Let motors that lack the figure have this one, and take it out of ``values``."""
+    first = batch.figures.setdefault(key, empty_figures(len(batch)))
+    gaps = np.isnan(first.value) & ~np.isnan(figure.value)
+    if gaps.any():
+        _fill(first, figure, gaps)
+        values.value = np.where(gaps, np.nan, values.value)
 
 
 class TableReader(Decisions):
@@ -182,6 +196,11 @@ class TableReader(Decisions):
             ]
             convention = self.conventions[index] or Convention()
             if m.role == "condition":
+                if _NO_CONDITION.fullmatch(m.when):
+                    figure = as_column(values, column, index, rows, columns)
+                    figure.conventions = [convention]
+                    cell_conventions(figure, values, q, convention, self.notes)
+                    _fill_gaps(batch, q.key, figure, values)
                 self._to_condition(conditions, m, values, column, rows, columns, convention)
                 continue
             figure = as_column(values, column, index, rows, columns)

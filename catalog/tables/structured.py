@@ -209,9 +209,8 @@ def _exported(motor: _Object, number: int, remarks: list[str]) -> list[tuple[str
             told = model.get(key)
             basis = told.get("basis") if isinstance(told, _Object) else None
             if key not in figures and isinstance(told, _Object) and told.get("value") != "unknown":
-                # what the sheet did not state is not stated by its export either
-                known = "" if basis in ("told", "stated") else f" ({_scalar(basis)})"
-                pairs.append((key, f"{_scalar(told.get('value'))}{known}"))
+                # no text of the sheet, so its basis goes with it
+                pairs.append((key, f"{_scalar(told.get('value'))} ({_scalar(basis)})"))
     for condition in motor.get("conditions") or []:
         if isinstance(condition, _Object) and isinstance(condition.get("figures"), _Object):
             when = _scalar(condition.get("when"))
@@ -275,13 +274,15 @@ def _number(value: Any) -> float | None:
 
 def _convention_words(convention: Any) -> str:
     """'rms, lines, star, 25 °C': what a heading says; what was merely assumed is left out."""
-    if not isinstance(convention, _Object) or convention.get("basis") == "assumed":
+    if not isinstance(convention, _Object):
         return ""
     words: list[str] = []
-    for key in ("current", "voltage", "between", "connection"):
-        word = convention.get(key)
-        if isinstance(word, str) and word not in words:
-            words.append(word)
+    if convention.get("basis") != "assumed":
+        for key in ("current", "voltage", "between", "connection"):
+            word = convention.get(key)
+            if isinstance(word, str) and word not in words:
+                words.append(word)
+    # a temperature is never assumed: it stands there because the sheet says it
     temperature = convention.get("temperature")
     if temperature is not None:
         words.append(f"{_scalar(temperature)} °C")

@@ -132,7 +132,7 @@ def test_an_export_is_handed_over(tmp_path: Path) -> None:
         "terminal_resistance [Ω]": "2.45 ± 0.005",
         "maximum_efficiency": "0.848",
         "description": "quiet",
-        "commutation": "block",
+        "commutation": "block (told)",
         "magnet": "ferrite (assumed)",
     }
     assert grid.rows[0][:3] == ["part_number", "maker", "series"]
