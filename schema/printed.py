@@ -54,7 +54,7 @@ _QUALIFIERS = {
     "typical": "typical|typisch|typique|typ|標準|典型值|典型",
 }
 _PREFIX = [
-    (name, re.compile(rf"(?:{words})(?![^\W\d_])\.?\s*[:=]?\s*", re.IGNORECASE))
+    (name, re.compile(rf"(?:{words})(?![^\W\d_])(?:(?<=[^\W\d_])\.)?\s*[:=]?\s*", re.I))
     for name, words in _QUALIFIERS.items()
 ]
 # "min" behind a number is a minute, so "at least" has fewer words here.

@@ -265,6 +265,8 @@ def _core(label: Label, core: str) -> Label:
     if at and at.start() > 0 and not find_symbol(core):
         label = replace(label, conditions=(*label.conditions, at["c"]))
         core = (core[: at.start()] + " " + core[at.end() :]).strip(" ,;@")
+    if re.search(r"\s/\s", core):  # the slash parts the languages, not the line break
+        core = re.sub(r"\s*\n\s*", " ", core)
     if "\n" in core:
         # A name broken over lines is one name; names in two languages on two lines are two.
         joined = _named(label, re.sub(r"\s*\n\s*", " ", core))

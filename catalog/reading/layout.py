@@ -9,8 +9,9 @@ from .cells import is_caption, is_ditto, is_figure, is_role, is_symbol, is_unit,
 from .heads import HeadCell, classify, context_of, head_field
 from .label import names_part, parse_label
 from .model import Field, Table
-from .phrase import conventions_of, section_of, variant_of
+from .phrase import conventions_of, match_phrase, section_of, variant_of
 
+_LABEL_AND_FIGURE = re.compile(r"([^\d:]{3,40}?)\s+([<>≤≥~]?\s?\d[\d.,]*\s?\S.*)$")
 _MOST_HEAD_ROWS = 7
 
 
@@ -270,10 +271,14 @@ def lay_out_columns(block: Block) -> Table:
             if i == id_row:
                 table.part_numbers = _ids(row, values, block, i)
             continue
-        if i < first:
+        if i < first and not (row[label_column] and any(is_figure(row[c]) for c in values)):
             continue
         texts = [row[c] for c in values]
         label = row[label_column]
+        pair = _LABEL_AND_FIGURE.match(plain(label)) if len(values) == 1 else None
+        if pair and not any(texts) and match_phrase(pair[1]).score >= 0.95:
+            label, texts = pair[1], [pair[2]]
+            row = [*row[:label_column], label, *row[label_column + 1 :]]
         groups = [row[c] for c, role in enumerate(roles) if role == "group" and row[c]]
         spanning = len({t for t in row if t}) == 1 and sum(1 for t in row if t) > 1
         if (spanning or not any(texts)) and label:

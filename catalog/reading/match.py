@@ -296,6 +296,8 @@ class Matcher:
         if sized < 0 and units:
             reason += ", though the values are of an unusual size"
         score += self._by_family(q.key, f, values, units)
+        if units and "peak" in units[0].marks and q.key == "rated_power":
+            return self._with_unit(i, quantity("maximum_power"), score, reason)
         if units and "ac" in units[0].marks and q.key == "nominal_voltage":
             return self._with_unit(i, quantity("mains_voltage"), score, reason)
         if units and "ac" in units[0].marks:

@@ -150,7 +150,8 @@ def _same_heads(a: Table, b: Table) -> bool:
     """Whether a later table repeats the headings of the one before."""
     return (
         a.layout == b.layout == "rows"
-        and [f.heading for f in a.fields] == [f.heading for f in b.fields]
+        and [squeeze(tokens(f.heading)) for f in a.fields]
+        == [squeeze(tokens(f.heading)) for f in b.fields]
         and [f.column for f in a.fields] == [f.column for f in b.fields]
     )
 
