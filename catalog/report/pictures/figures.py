@@ -49,7 +49,7 @@ def draw_figures(figures: Sequence[Implied], claim: str, below: str) -> Figure:
     for tick in reversed(_TICKS):
         at = math.log(tick)
         last = _place(math.log(near[-1])) if near else math.inf
-        if at <= reach and last - _place(at) > 0.13 * _place(reach):
+        if at <= reach and last - _place(at) > 0.17 * _place(reach):
             near.append(tick)
     near.reverse()
     ticks = [-math.log(t) for t in reversed(near)] + [0.0] + [math.log(t) for t in near]

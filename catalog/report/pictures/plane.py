@@ -22,7 +22,7 @@ _LINES = {
 
 def draw_plane(found: Plane, claim: str, below: str) -> Figure:
     """The plane with its limits; `claim` and `below` are the title and what it rests on."""
-    made, axes = s.figure()
+    made, axes = s.figure(7.2, 5.2)
     top, bottom = _span(found)
     factor, unit = s.torque_unit(top)
     rpm = found.speed * s.RPM
@@ -62,7 +62,7 @@ def draw_plane(found: Plane, claim: str, below: str) -> Figure:
     braking = " (negative: braking)" if bottom < 0 else ""
     axes.set_ylabel(f"Torque of the shaft in {unit}{braking}")
     s.title(made, axes, claim, below)
-    axes.legend(loc="upper right")
+    axes.legend(loc="upper left", bbox_to_anchor=(0, -0.13), ncols=2)
     return made
 
 
