@@ -27,7 +27,7 @@ def command(output: Path, title: str | None, catalog: Path, **options: Any) -> N
     The page holds all it needs and asks nothing of any network.
     """
     from ..report.page.write import catalog_page, search_page
-    from ..report.screen import SAFETY
+    from ..report.safety import SAFETY
     from ..store import Catalog
 
     with Catalog.open(catalog) as opened:

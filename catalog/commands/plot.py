@@ -95,7 +95,7 @@ def figures(part: str, output: Path, catalog: Path) -> None:
 
 def _write(figure: "Figure", output: Path) -> None:
     from ..report.pictures.style import save
-    from ..report.screen import SAFETY
+    from ..report.safety import SAFETY
 
     save(figure, output)
     say(f"Drawn: {output}")

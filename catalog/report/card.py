@@ -10,7 +10,7 @@ from rich.text import Text
 
 from ..documents import Document
 from . import plain as p
-from .screen import SAFETY
+from .safety import SAFETY
 
 SIGNS = {"error": "✗", "warning": "!", "note": "·"}
 STYLES = {"error": "bold red", "warning": "yellow", "note": "dim"}
@@ -99,29 +99,21 @@ def _constants(constants: Mapping[str, Document]) -> RenderableType:
     table = _table("Constants at 25 °C", "Value", "95 % interval", "Basis")
     table.columns[2].no_wrap = True
     for key, c in constants.items():
-        value, low, high, unit = scaled(c["value"], c["low"], c["high"], c["unit"])
+        _, low, high, _ = scaled(c["value"], c["low"], c["high"], c["unit"])
         table.add_row(
-            *_cells((p.words(key), p.quantity(value, unit), p.interval(low, high),
+            *_cells((p.words(key), p.quantity(c["value"], c["unit"]), p.interval(low, high),
                      c["basis"] + _from(c["from"])))
         )  # fmt: skip
     return table
 
 
-_PREFIXES = ((1.0, ""), (1e-3, "m"), (1e-6, "µ"), (1e-9, "n"))
-_PREFIXED = frozenset({
-    "A", "V", "Ω", "H", "N·m", "N·m/A", "V·s/rad", "N·m/√W", "N·m·s/rad", "s", "W", "m",
-})  # fmt: skip
-
-
 def scaled(
     value: float | None, low: float | None, high: float | None, unit: str
 ) -> tuple[float | None, float | None, float | None, str]:
-    """The same with a prefix of the unit that leaves 1 … 999 before the decimal point."""
-    if value is None or unit not in _PREFIXED or value == 0 or abs(value) >= 0.1:
-        return value, low, high, unit
-    factor, prefix = next((f for f in _PREFIXES if abs(value) >= f[0]), _PREFIXES[-1])
-    low, high = (None if end is None else end / factor for end in (low, high))
-    return value / factor, low, high, prefix + unit
+    """The same with a prefix of the unit that leaves a readable number."""
+    factor, prefixed = p.scale(value, unit)
+    value, low, high = (None if end is None else end / factor for end in (value, low, high))
+    return value, low, high, prefixed
 
 
 def _from(keys: Sequence[str]) -> str:
@@ -150,16 +142,11 @@ def _figures(figures: Mapping[str, Document], marks: Mapping[str, str], title: s
         if "corrected" in f:
             value, unit = f["corrected"]["value"], f["corrected"]["unit"]
             note = f"corrected to {p.plain(f['corrected']['text'])}: {f['corrected']['reason']}"
-        si = "" if isinstance(value, str) else p.quantity(*_in_prefix(value, unit))
+        si = "" if isinstance(value, str) else p.quantity(value, unit)
         severity = marks.get(key)
         sign = Text(SIGNS[severity], style=STYLES[severity]) if severity else ""
         table.add_row(*_cells((sign, p.words(key), _printed(f), si, p.plain(note), _place(f))))
     return table
-
-
-def _in_prefix(value: float | None, unit: str) -> tuple[float | None, str]:
-    shown, _, _, prefixed = scaled(value, None, None, unit)
-    return shown, prefixed
 
 
 def _printed(f: Document) -> str:

@@ -9,8 +9,8 @@ from rich.text import Text
 
 from ..documents import Document
 from . import plain as p
-from .card import SIGNS, STYLES, scaled
-from .screen import SAFETY
+from .card import SIGNS, STYLES
+from .safety import SAFETY
 
 MORE_IS_BETTER = frozenset({
     "motor_constant", "nominal_torque", "continuous_stall_torque", "stall_torque", "peak_torque",
@@ -76,8 +76,7 @@ def _row(
     units = {a["unit"] for a in amounts if a}
     factor, unit = 1.0, ""
     if len(units) == 1:
-        one, _, _, unit = scaled(smallest, None, None, units.pop())
-        factor = one / smallest if one is not None and smallest else 1.0
+        factor, unit = p.scale(smallest, units.pop())
     name = Text(p.words(key) + again)
     name.append(f"  {unit}" if unit not in ("", "1") else "", style="dim")
     yield name
@@ -86,7 +85,11 @@ def _row(
         if found is None or amount is None:
             yield Text("–" if found is None else p.plain(str(found["value"])))
             continue
-        text = Text(p.quantity(amount["value"] * factor, "1" if unit else amount["unit"]))
+        text = Text(
+            p.number(amount["value"] / factor)
+            if unit
+            else p.quantity(amount["value"], amount["unit"])
+        )
         if amount["doubted"]:
             text.append(f" {SIGNS['error']}", style=STYLES["error"])
         if motor is not motors[0] and reference is not None:
@@ -134,7 +137,7 @@ def _difference(amount: Document, reference: Document) -> str:
     if reference["value"] == 0 or amount["value"] / reference["value"] <= 0:
         return ""
     ratio = amount["value"] / reference["value"]
-    return f"×{p.number(ratio, 3)}" if ratio >= 10 else f"{ratio - 1:+.0%}".replace("%", " %")
+    return f"×{p.number(ratio, 3)}" if ratio >= 10 else p.percent(ratio - 1, signed=True)
 
 
 def _best(key: str, amounts: Sequence[Document | None]) -> int | None:

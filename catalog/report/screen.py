@@ -8,11 +8,6 @@ from rich.console import Console
 
 NARROWEST = 80
 
-SAFETY = (
-    "A screening aid: verify against the maker's current datasheet, and follow local codes and "
-    "licensed practice."
-)
-
 
 def console() -> Console:
     """Standard output, at least 80 columns wide; no colour without a terminal or with NO_COLOR.

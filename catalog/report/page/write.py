@@ -21,7 +21,7 @@ import numpy as np
 from ...fleet import Fleet, load_fleet
 from .. import plain as p
 from ..implied import implied_figures
-from ..screen import SAFETY
+from ..safety import SAFETY
 from . import columns
 from . import requirement as asked
 from .cards import Strings, pack_card, rounded
