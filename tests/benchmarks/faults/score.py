@@ -236,7 +236,7 @@ def _column(t: Tally, rng: np.random.Generator) -> None:
     seen = [judge(s, Planted(i, p.keys, p.cause, p.factor)) for i in range(len(s.motors))]
     if not all(v.detectable and v.identifiable for v in seen):
         return
-    findings = [f for f in reconcile(batch_of(s)).findings if f.severity != "note"]
+    findings = [f for f in reconcile(batch_of(s, stated=True)).findings if f.severity != "note"]
     t.n["columns"] += 1
     hits = [f for f in findings if f.suspect in p.keys or set(f.figures) & set(p.keys)]
     if not hits:

@@ -9,8 +9,12 @@ from motorfolio.schema.vocabulary import quantity
 from .sheets import Sheet
 
 
-def batch_of(sheet: Sheet) -> Batch:
-    """The sheet as the reading would hand it on: printed numbers in SI with their digits."""
+def batch_of(sheet: Sheet, *, stated: bool = False) -> Batch:
+    """The sheet as the reading would hand it on: printed numbers in SI with their digits.
+
+    stated: the sheet says its conventions, so that a whole column in another one is a fault
+    and not a convention to be inferred.
+    """
     commutation = Commutation[sheet.kind.upper()]
     batch = blank_batch(
         sheet.part_numbers, maker="Invented", source=Source("sheet.csv"), commutation=commutation
@@ -27,6 +31,8 @@ def batch_of(sheet: Sheet) -> Batch:
         if key == "nominal_voltage":
             step[:] = 0
         convention = default_convention(key, quantity(key).carries, commutation)
+        if stated:
+            convention = convention.with_(basis="stated")
         batch.headings.append(Heading(key, key, unit, convention, factor=factor))
         batch.figures[key] = FigureColumn(
             value=value * factor,
