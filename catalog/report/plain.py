@@ -1,7 +1,22 @@
 """Text from a datasheet as it may go to a terminal, and numbers as a person reads them."""
 
-import math
 import re
+
+from ...schema.written import in_words, number, percent, quantity, scale
+
+__all__ = [
+    "cell",
+    "convention",
+    "interval",
+    "number",
+    "percent",
+    "plain",
+    "quantity",
+    "scale",
+    "words",
+]
+
+words = in_words
 
 # C0 and C1 controls, and the marks that turn the direction of writing
 _UNSAFE = re.compile("[\x00-\x1f\x7f-\x9f\u061c\u200e\u200f\u2028-\u202e\u2066-\u2069\ufeff]")
@@ -10,19 +25,6 @@ _UNSAFE = re.compile("[\x00-\x1f\x7f-\x9f\u061c\u200e\u200f\u2028-\u202e\u2066-\
 def plain(text: str) -> str:
     """The text with control characters made visible, so that a sheet can't steer the terminal."""
     return _UNSAFE.sub(lambda sign: " " if sign[0] in "\n\t\r" else f"\\x{ord(sign[0]):02x}", text)
-
-
-def number(value: float | None, digits: int = 4) -> str:
-    """A number to so many significant digits; '–' where there is none."""
-    if value is None or not math.isfinite(value):
-        return "–"
-    return f"{value:.{digits}g}"
-
-
-def quantity(value: float | None, unit: str, digits: int = 4) -> str:
-    """A number with its unit; a pure number stands bare."""
-    shown = number(value, digits)
-    return shown if unit in ("1", "") or shown == "–" else f"{shown} {unit}"
 
 
 def interval(low: float | None, high: float | None, digits: int = 4) -> str:
@@ -34,11 +36,6 @@ def interval(low: float | None, high: float | None, digits: int = 4) -> str:
     if high is None:
         return f"≥ {number(low, digits)}"
     return "exact" if low == high else f"{number(low, digits)} … {number(high, digits)}"
-
-
-def words(key: str) -> str:
-    """A quantity's key as words."""
-    return key.replace("_", " ")
 
 
 def convention(found: dict | None) -> str:
