@@ -63,7 +63,7 @@ def pack_card(motor: Document, implied: Sequence[Implied], strings: Strings) -> 
         "source": _source(motor),
         "constants": [
             [
-                strings(key), strings(c["unit"]), rounded(c["value"]), rounded(c["low"]),
+                strings(p.words(key)), strings(c["unit"]), rounded(c["value"]), rounded(c["low"]),
                 rounded(c["high"]), strings(_basis(c)),
             ]
             for key, c in motor["constants"].items()
@@ -73,7 +73,7 @@ def pack_card(motor: Document, implied: Sequence[Implied], strings: Strings) -> 
         "findings": [_finding(f, strings) for f in motor["findings"]],
         "implied": [
             [
-                strings(f.key), rounded(f.ratio, 5), rounded(f.low / f.ratio, 4),
+                strings(p.words(f.key)), rounded(f.ratio, 5), rounded(f.low / f.ratio, 4),
                 rounded(f.high / f.ratio, 4), rounded(f.sd, 3),
                 None if f.severity is None else strings(f.severity),
             ]
@@ -88,7 +88,7 @@ def _finding(f: Document, strings: Strings) -> list[Any]:
     return [
         strings(f["severity"]),
         strings(p.plain(f["message"])),
-        [strings(key) for key in doubted],
+        [strings(p.words(key)) for key in doubted],
     ]
 
 
@@ -110,7 +110,7 @@ def _figures(figures: Iterable[tuple[str, Document]], strings: Strings) -> Itera
         if corrected:
             value, unit = corrected["value"], corrected["unit"]
         packed = [
-            strings(key), p.plain(printed), strings(unit),
+            strings(p.words(key)), p.plain(printed), strings(unit),
             None if isinstance(value, str) else rounded(value),
             strings(p.plain(p.convention(f.get("convention")))), *_place(f.get("cell")),
         ]  # fmt: skip
@@ -122,7 +122,7 @@ def _figures(figures: Iterable[tuple[str, Document]], strings: Strings) -> Itera
 def _points(figures: Document, strings: Strings) -> Iterable[list[Any]]:
     blank = strings("")
     for key, f in figures.items():
-        yield [strings(key), "", strings(f["unit"]), rounded(f["value"]), blank, 0, 0]
+        yield [strings(p.words(key)), "", strings(f["unit"]), rounded(f["value"]), blank, 0, 0]
 
 
 def _place(cell: Document | None) -> tuple[int, int]:
