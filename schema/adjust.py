@@ -18,6 +18,8 @@ from .model import (
     LAW_SCATTER,
     UNPUBLISHED_I0,
     UNPUBLISHED_I0_SERVO,
+    UNPUBLISHED_IN,
+    UNPUBLISHED_NN_SERVO,
     P,
     Readings,
 )
@@ -35,7 +37,7 @@ this change of any logarithm; none longer than this."""
 ROBUST_CUTS = (30.0, 10.0, 5.0, 3.0, 3.0, 3.0, 3.0)
 """The cut of the robust fit, step by step, in standard deviations."""
 
-LAWS = len(LAW_SCATTER) + 1
+LAWS = len(LAW_SCATTER) + 3
 
 
 @dataclass(slots=True)
@@ -90,13 +92,18 @@ class Problem:
         return np.where(self.present, 1.0 / self.sd() ** 2, 0.0)
 
     def law_weights(self) -> Floats:
-        """1/variance of the laws and of the prior on an unpublished no-load current."""
+        """1/variance of the laws and of the priors on what isn't published: I0, I_N, n_N."""
         laws = np.empty((len(self), LAWS))
         scatter = np.array(list(LAW_SCATTER.values()))
-        laws[:, :-1] = self.bound / (self.scale[:, None] * scatter) ** 2
-        unpublished = ~self.present[:, INDEX["no_load_current"]]
+        laws[:, :-3] = self.bound / (self.scale[:, None] * scatter) ** 2
+        missing = ~self.present
         prior = np.where(self.servo, UNPUBLISHED_I0_SERVO[1], UNPUBLISHED_I0[1]) ** -2.0
-        laws[:, -1] = np.where(unpublished, prior, 0.0)
+        laws[:, -3] = missing[:, INDEX["no_load_current"]] * prior
+        rated = self.bound[:, 2] | self.bound[:, 3]
+        who = missing[:, INDEX["nominal_current"]] & rated & ~self.servo
+        laws[:, -2] = who * UNPUBLISHED_IN[1] ** -2.0
+        who = missing[:, INDEX["nominal_speed"]] & self.bound[:, 3] & self.servo
+        laws[:, -1] = who * UNPUBLISHED_NN_SERVO[1] ** -2.0
         return laws
 
 

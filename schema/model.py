@@ -103,6 +103,14 @@ UNPUBLISHED_I0 = (np.log(0.015), 1.0)
 UNPUBLISHED_I0_SERVO = (np.log(0.025), np.log(2.0))
 """I0/I_N of a sinusoidal motor whose no-load current isn't published."""
 
+UNPUBLISHED_IN = (np.log(0.13), 0.6)
+"""Ra·I_N/U of a brushed or block motor whose nominal current isn't published: a motor isn't rated
+near its stall (common practice, no source)."""
+
+UNPUBLISHED_NN_SERVO = (np.log(0.65), 0.5)
+"""Km·n_N/U of a sinusoidal motor whose nominal speed isn't published: the maker's choice, yet not
+far below what its bus allows (common practice, no source)."""
+
 HOT_RESISTANCE = 1.0 + 0.00385 * 75.0
 """Ra at 100 °C over Ra at 25 °C: the "hot" reading of a nominal speed where no temperature is
 printed (common practice, no source)."""
@@ -178,8 +186,8 @@ def nonlinear_rows(
     """Residual, weight and slopes of the model for the rows that aren't sums of logarithms.
 
     x (n, P) unknowns; y (n, F) logarithms of the figures; weight (n, F) their weights; laws
-    (n, 6) weights of the laws of ``LAW_SCATTER`` and of the prior on an unpublished I0. With
-    ``typical`` the small corrections take typical values: the log-linear start.
+    (n, 8) weights of the laws of ``LAW_SCATTER`` and of the priors on unpublished I0, I_N and n_N.
+    With ``typical`` the small corrections take typical values: the log-linear start.
     """
     k, r, u, i0, i_n = x[:, K], x[:, R], x[:, U], x[:, I0], x[:, IN]
     brake = 0.015 if typical else np.minimum(np.exp(np.minimum(r + i0 - u, 0.0)), CLIP)
@@ -240,6 +248,16 @@ def nonlinear_rows(
         residual = np.where(servo, servo_mean - i0 + i_n, mean - i0 - r + u)
         r_slope, n_slope = np.where(servo, 0.0, 1.0), np.where(servo, -1.0, 0.0)
         yield residual, laws[:, 5], [(I0, 1.0), (R, r_slope), (U, -r_slope), (IN, n_slope)]
+
+    # I_N where it isn't published
+    if laws[:, 6].any():
+        residual = UNPUBLISHED_IN[0] - r - i_n + u
+        yield residual, laws[:, 6], [(R, 1.0), (IN, 1.0), (U, -1.0)]
+
+    # n_N of a servo motor where it isn't published
+    if laws[:, 7].any():
+        residual = UNPUBLISHED_NN_SERVO[0] + u - k - x[:, NN]
+        yield residual, laws[:, 7], [(NN, 1.0), (K, 1.0), (U, -1.0)]
 
     # η_max = (1 − √(I0/I_s))²
     i = INDEX["maximum_efficiency"]
