@@ -2,6 +2,9 @@
 # make test   set up with the test tools, then lint, types and all tests
 # make docs   renew what README and docs/ show of the program
 # make bench  the benchmarks, as ratios against a baseline in the same run
+# make bounds the quick tests with the lowest and the newest dependencies, on each of PYTHONS
+# make dist   sdist and wheel, built twice and compared, used from outside; bill of materials
+# make shake  the long runs: a thousand kills, a minute of a crowd at one catalog
 
 PYTHON ?= python3
 BIN = .venv/bin
@@ -26,6 +29,17 @@ docs: .venv/tools
 
 bench: .venv/tools
 	$(BIN)/python -m tests.benchmarks
+
+PYTHONS ?= $(PYTHON)
+bounds: .venv/tools
+	$(BIN)/python -m tests.supply.bounds $(PYTHONS)
+
+dist: .venv/tools
+	$(BIN)/python -m tests.supply.wheel --dist dist --bom dist/bom.json
+
+shake: .venv/tools
+	OPENBLAS_NUM_THREADS=1 $(BIN)/python -m tests.robustness.kills --kills 1000
+	OPENBLAS_NUM_THREADS=1 $(BIN)/python -m tests.robustness.crowd --seconds 60
 
 .venv/installed: pyproject.toml
 	@$(PYTHON) -c 'import sys; sys.exit(sys.version_info < (3, 11))' \

@@ -37,15 +37,17 @@ from .search import CYCLE, POINT, SQL, best, made, plain_python
 from .sheets import columns, sheet
 
 ROOT = Path(__file__).parent.parent.parent
-WITH_MEMORY = """\
-import atexit, os
+FIRST = """\
+import atexit, os, sys
+sys.modules['pandas'] = None
 def memory():
     with open('/proc/self/status') as told, open(os.environ['MEMORY_TO'], 'w') as out:
         out.write(next(line.split()[1] for line in told if line.startswith('VmHWM')))
 atexit.register(memory)
 """
-"""What a child runs first, to tell its own largest resident size: what the parent is told by the
-system (ru_maxrss) counts the parent's pages too."""
+"""What a child runs first. It tells its own largest resident size, as what the system tells the
+parent (ru_maxrss) counts the parent's pages too; and it hides pandas, a tool of the tests here,
+which sqlite-utils would load: a second more for either side."""
 PROGRAM = "import sys; from motorfolio.catalog.cli import main; sys.exit(main(sys.argv[1:]))"
 BARE_CLICK = (
     "import sys, click\n"
@@ -86,7 +88,7 @@ def process(code: str, *words: object, rounds: int = 3) -> Run:
     with tempfile.TemporaryDirectory() as folder:
         told = Path(folder) / "memory"
         surroundings = {**os.environ, "MEMORY_TO": str(told)}
-        command = [sys.executable, "-c", WITH_MEMORY + code, *map(str, words)]
+        command = [sys.executable, "-c", FIRST + code, *map(str, words)]
         null = os.open(os.devnull, os.O_RDWR)
         files = [(os.POSIX_SPAWN_DUP2, null, stream) for stream in (0, 1, 2)]
         for _ in range(rounds):

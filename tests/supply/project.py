@@ -2,9 +2,12 @@
 
 from __future__ import annotations
 
+import gzip
+import io
 import os
 import shutil
 import subprocess
+import tarfile
 import tomllib
 from pathlib import Path
 
@@ -44,9 +47,27 @@ def copy_of_project(folder: Path) -> Path:
 
 
 def build(tool: Path, project: Path, out: Path) -> list[Path]:
-    """sdist and wheel, the wheel built from the sdist; ``tool`` is a Python that has ``build``."""
+    """sdist and wheel, the wheel built from the sdist; ``tool`` is a Python that has ``build``.
+
+    The wheel takes its times from SOURCE_DATE_EPOCH; setuptools' sdist does not, so it is packed
+    anew: names in order, one time, no owner.
+    """
     run(tool, "-m", "build", "--outdir", out, project, SOURCE_DATE_EPOCH=EPOCH)
+    for sdist in out.glob("*.tar.gz"):
+        sdist.write_bytes(_packed_anew(sdist))
     return sorted(out.iterdir())
+
+
+def _packed_anew(sdist: Path) -> bytes:
+    packed = io.BytesIO()
+    with tarfile.open(sdist) as old, tarfile.open(fileobj=packed, mode="w") as new:
+        for member in sorted(old.getmembers(), key=lambda m: m.name):
+            member.mtime, member.uid, member.gid = int(EPOCH), 0, 0
+            member.uname = member.gname = ""
+            member.mode = 0o755 if member.isdir() or member.mode & 0o100 else 0o644
+            member.pax_headers = {}
+            new.addfile(member, old.extractfile(member) if member.isfile() else None)
+    return gzip.compress(packed.getvalue(), mtime=int(EPOCH))
 
 
 def environment(folder: Path, python: str, *packages: str) -> Path:

@@ -1,11 +1,11 @@
 """Builds what is shipped twice, compares it byte by byte, installs it, and uses it from outside.
 
-    python -m tests.supply.wheel [--bom FILE]
+    python -m tests.supply.wheel [--dist FOLDER] [--bom FILE]
 
 The wheel is built from the sdist; the second time under another folder and another clock. In a
 clean environment the installed program imports the samples, and a type checker reads a script
 that uses the library as a user would: it must find no fault, and must find a planted one.
-``--bom`` writes the bill of materials (CycloneDX, JSON) of that environment.
+``--dist`` keeps what was built; ``--bom`` writes the bill of materials (CycloneDX, JSON) of that environment.
 """
 
 from __future__ import annotations
@@ -14,6 +14,7 @@ import argparse
 import hashlib
 import json
 import os
+import shutil
 import sys
 import tempfile
 from pathlib import Path
@@ -47,21 +48,28 @@ def typed(checker: Path, python: Path, folder: Path, text: str) -> int:
 
 def main() -> int:
     parser = argparse.ArgumentParser(description=__doc__.splitlines()[0])
+    parser.add_argument("--dist", type=Path)
     parser.add_argument("--bom", type=Path)
     told = parser.parse_args()
     with tempfile.TemporaryDirectory() as name:
         folder = Path(name)
         tools = ["build", "basedpyright", *(["cyclonedx-bom"] if told.bom else [])]
         tool = environment(folder / "tools", sys.executable, *tools)
-        hashes = []
+        commit, hashes = copy_of_project(folder / "commit"), []
         for number in ("1", "2"):
-            project = copy_of_project(folder / number / ("x" * int(number)))
+            project = folder / number / ("x" * int(number))
+            shutil.copytree(commit, project)
             for path in project.rglob("*"):
                 os.utime(path, (1.7e9 + int(number), 1.7e9 + int(number)))
             built = build(tool, project, folder / number / "dist")
             hashes.append({p.name: hashlib.sha256(p.read_bytes()).hexdigest() for p in built})
         for file, digest in hashes[0].items():
-            print(f"{file}: {digest[:16]}…", "the same twice" * (hashes[1][file] == digest))
+            print(
+                f"{file}: {digest[:16]}…",
+                "the same twice" if hashes[1][file] == digest else "ANOTHER the second time",
+            )
+        if told.dist:
+            shutil.copytree(built[0].parent, told.dist, dirs_exist_ok=True)
         wheel = next(p for p in built if p.suffix == ".whl")
         clean = environment(folder / "clean", sys.executable, str(wheel))
         samples = [project / "sample_entries" / sample for sample in SAMPLES]
