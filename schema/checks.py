@@ -9,7 +9,7 @@ import numpy as np
 from .batch import FigureColumn, Floats
 from .causes import causes_of, shape, static_scores
 from .convention import Commutation
-from .explain import ROLES, Narrator, name, number
+from .explain import ROLES, Narrator, capital, name, number
 from .families import DIRECT, groups, majority
 from .model import FIGURES, INDEX, LAW_SCATTER
 from .motor import Amount, Finding
@@ -55,7 +55,7 @@ def bounds(narrator: Narrator, doubted: Doubted) -> Found:
             if doubted.get(m, set()) & {small, great}:
                 continue
             text = (
-                f"{name(small).capitalize()} {narrator.printed(small, m)}"
+                f"{capital(name(small))} {narrator.printed(small, m)}"
                 f"{narrator.place(m, small)} is greater than {name(great)} "
                 f"{narrator.printed(great, m)}{narrator.place(m, great)}; one of them is wrong."
             )
@@ -70,7 +70,7 @@ def bounds(narrator: Narrator, doubted: Doubted) -> Found:
             wrong = np.flatnonzero(column.value > 1.0)
         for m in wrong.tolist():
             if key not in doubted.get(m, set()):
-                text = f"{name(key).capitalize()} {narrator.printed(key, m)}" \
+                text = f"{capital(name(key))} {narrator.printed(key, m)}" \
                     f"{narrator.place(m, key)} is above 100 %."  # fmt: skip
                 out.append((m, _motor(narrator, m, "error", relation="efficiency-below-one",
                                       figures=(key,), suspect=key, ratio=None,
@@ -126,7 +126,7 @@ def frames(narrator: Narrator, family: Bools) -> Found:
             departure = abs(math.expm1(abs(float(gap[m]))))
             severe = cause != "unexplained" or departure > max(0.15, 5.0 * float(sd[m]))
             text = (
-                f"{name(key).capitalize()} {narrator.printed(key, m)}{narrator.place(m, key)} is "
+                f"{capital(name(key))} {narrator.printed(key, m)}{narrator.place(m, key)} is "
                 f"{number(math.exp(gap[m]))} times that of the other windings of this size "
                 f"({narrator.amount(key, m, implied)}). {narrator.because(cause, others)}"
             )
@@ -164,7 +164,7 @@ def repeats(narrator: Narrator) -> Found:
                 )[0]  # fmt: skip
                 cause, *others = causes_of(scores)
                 text = (
-                    f"{name(key).capitalize()} is given twice: {narrator.printed(key, m)}"
+                    f"{capital(name(key))} is given twice: {narrator.printed(key, m)}"
                     f"{narrator.place(m, key)} and {second.text[m]} (row {second.row[m]}, column "
                     f"{second.column[m]}), a ratio of {number(math.exp(gap[m]))}; the first "
                     f"stands. {narrator.because(cause, others)}"

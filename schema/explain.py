@@ -13,6 +13,8 @@ from .observed import to_model
 from .relations import CONSTANT_FIGURES, CONVENTION, RELATIONS, Relation, own_relation
 from .suspects import Suspicion
 from .vocabulary import quantity
+from .written import in_words as name
+from .written import number as _number
 
 SENTENCES = {
     "power-of-ten": "a slipped decimal point or prefix",
@@ -57,18 +59,13 @@ PLACES = {"row": "row", "column": "column"}
 
 
 def number(value: float, digits: int = 3) -> str:
-    """A value to so many significant digits, without an exponent where that is readable."""
-    if not math.isfinite(value) or value == 0.0:
-        return f"{value:g}"
-    size = math.floor(math.log10(abs(value)))
-    if -4 < size < 6:
-        return f"{round(value, digits - 1 - size):.{max(0, digits - 1 - size)}f}"
-    return f"{value:.{digits - 1}e}"
+    """A value as the sentences of a finding give it."""
+    return _number(value, digits)
 
 
-def name(figure: str) -> str:
-    """A figure's name in words."""
-    return figure.replace("_", " ").replace("back emf", "back-EMF")
+def capital(text: str) -> str:
+    """The text with its first letter a capital, the others as they are."""
+    return text[:1].upper() + text[1:]
 
 
 def _times(ratio: float) -> str:
@@ -200,9 +197,7 @@ class Narrator:
         cause, *others = suspicion.causes
         others = [o for o in others if o != "unexplained"]
         amount = self.amount(figure, motor, implied)
-        text = (
-            f"{name(figure).capitalize()} {self.printed(figure, motor)}{self.place(motor, figure)}"
-        )
+        text = f"{capital(name(figure))} {self.printed(figure, motor)}{self.place(motor, figure)}"
         if partner:
             text += (
                 f" and {name(partner[0])} {self.printed(partner[0], motor)}"
@@ -257,7 +252,7 @@ class Narrator:
         )
         told = f' under the heading "{heading}"' if heading else ""
         text = (
-            f"{name(figure).capitalize()}{told} is {_times(ratio)} what the other figures imply, "
+            f"{capital(name(figure))}{told} is {_times(ratio)} what the other figures imply, "
             f"alike for {len(motors)} motors: {self.batch.part_number[first]} has "
             f"{self.printed(figure, first)}{self.place(first, figure)}, implied is "
             f"{self.amount(figure, first, implied)}"

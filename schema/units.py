@@ -342,22 +342,35 @@ def quantity(text: str, accepts: tuple[str, ...]) -> float:
     return value * read.factor + read.offset
 
 
+_CONSTANTS, _SPEED_CONSTANT = ("N·m/A", "V·s/rad"), ("rad/(s·V)",)
+_RECIPROCALS = {_CONSTANTS: _SPEED_CONSTANT, _SPEED_CONSTANT: _CONSTANTS}
+
+
 def convert(text: str, target: str) -> Converted:
     """A number with its unit in another unit: ("4.3 V/krpm", "N·m/A") → 0.0411 N·m/A.
 
-    A torque constant and a back-EMF constant are the same SI number and convert to each other.
-    Raises FigureError or UnitError.
+    A torque constant and a back-EMF constant are the same SI number and convert to each other; a
+    speed constant is their reciprocal, and the remark says so. Raises FigureError or UnitError.
     """
     wanted = unit_of(target)
     if wanted is None:
         raise UnitError(target, "not understood as a unit to convert to")
-    accepts = ("N·m/A", "V·s/rad") if wanted.si in ("N·m/A", "V·s/rad") else (wanted.si,)
     value, unit = _number_and_unit(text)
+    reciprocal = next((_RECIPROCALS[k] for k in _RECIPROCALS if wanted.si in k), ())
+    accepts = next((k for k in _RECIPROCALS if wanted.si in k), (wanted.si,))
     if not unit and wanted.si != "1":
         raise UnitError(text, f"a number without a unit; {_or(accepts)} would do")
-    source = read_unit(unit, accepts)
+    known = unit_of(unit) if reciprocal else None
+    turned = known is not None and known.si in reciprocal
+    source = read_unit(unit, reciprocal if turned else accepts)
     si = value * source.factor + source.offset
-    remark = "; ".join(r for r in (source.remark, wanted.remark) if r)
+    said = [source.remark, wanted.remark]
+    if turned:
+        if si == 0:
+            raise UnitError(unit, "a constant of zero has no reciprocal")
+        si = 1 / si
+        said.append(f"the reciprocal: 1/({text.strip()})")
+    remark = "; ".join(r for r in said if r)
     return Converted((si - wanted.offset) / wanted.factor, target, remark)
 
 

@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from functools import cache
 from importlib import resources
 from types import MappingProxyType
+from typing import Any
 
 
 @dataclass(frozen=True, slots=True)
@@ -92,4 +93,5 @@ def words() -> Words:
                 merged.setdefault(group, {}).setdefault(key, []).extend(texts)
     groups = {g: {k: tuple(t) for k, t in entries.items()} for g, entries in merged.items()}
     lists = {g: groups.pop(g, {}).get("words", ()) for g in _LISTS}
-    return Words(**{g: MappingProxyType(e) for g, e in groups.items()}, **lists)
+    fields: dict[str, Any] = {g: MappingProxyType(e) for g, e in groups.items()}
+    return Words(**fields, **lists)

@@ -12,6 +12,8 @@ _SPELLINGS = (
 )
 _SUPERSCRIPTS = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
 _SMALLEST_PLAIN, _LARGEST_PLAIN = -4, 7
+_VANISHING = 1e-100
+"""No figure of a motor is as small: what is left of a difference."""
 
 
 def in_words(key: str) -> str:
@@ -28,7 +30,7 @@ def number(value: float | None, digits: int = 4) -> str:
     if value is None or not math.isfinite(value):
         return "–"
     rounded = float(f"{value:.{digits - 1}e}")
-    if rounded == 0:
+    if abs(rounded) < _VANISHING:
         return "0"
     size = math.floor(math.log10(abs(rounded)))
     if _SMALLEST_PLAIN < size < _LARGEST_PLAIN:

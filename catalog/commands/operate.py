@@ -5,7 +5,7 @@ from typing import Any
 
 import click
 
-from .common import catalog_option, json_option, print_json, say
+from .common import catalog_option, json_option, print_json
 
 # option → SI units; speeds and angles as everywhere
 _ACCEPTS: dict[str, tuple[str, ...]] = {
@@ -77,5 +77,5 @@ def command(
 
     for line in lines(document):
         click.echo(line)
-    say(SAFETY)
+    click.echo(SAFETY)
     return 0

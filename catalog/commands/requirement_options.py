@@ -9,7 +9,7 @@ from . import search
 if TYPE_CHECKING:
     from ..requirement import Requirement
 
-_OWN = ("catalog", "as_json", "explain", "save_requirement", "schema")
+_OWN = ("catalog", "as_json", "explain", "save_requirement")
 _LOAD = ("torque", "speed", "cycle", "requirement")
 
 

@@ -96,7 +96,6 @@ _KEYS = {
     metavar="FILE",
     help="Write the requirement as TOML, too.",
 )
-@click.option("--schema", is_flag=True, help="Print the JSON Schema of a requirement file.")
 @catalog_option
 @json_option
 def command(catalog: Path, as_json: bool, **options: Any) -> int:
@@ -105,11 +104,6 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
     Every quantity is text with its unit; ratio, efficiency, duty and reserve are pure numbers or
     per cent. Positive torque is what the motor must give in the direction of positive speed.
     """
-    if options["schema"]:
-        from ..requirement_fields import json_schema
-
-        print_json(json_schema())
-        return 0
     requirement = _requirement(options)
     if options["save_requirement"] is not None:
         from ..requirement_file import saved
@@ -135,8 +129,6 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
     with Catalog.open(catalog) as opened:
         found = search(opened, requirement)
         document = search_document(found, near_misses(found, opened), opened)
-    from ..report.safety import SAFETY
-
     if as_json:
         print_json(document)
     else:
@@ -146,7 +138,6 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
         paged(lambda out: print_search(document, out))
     if not document["candidates"]:
         say(_why_none(document))
-    say(SAFETY)
     return 0 if document["candidates"] else 1
 
 
@@ -159,6 +150,10 @@ def _requirement(options: dict[str, Any]) -> Any:
     path = options["requirement"]
     if path is None:
         return read_requirement(given, origin)
+    # what no option gave stands in the file, under the file's name for it
+    origin = {(section, key): option for (section, key), option in origin.items()
+              if key in (given.get(section) or {}) or (section == "point" and given.get(section))
+              or (not section and key in given)}  # fmt: skip
     return read_requirement(merged(read_file(path), given, path.parent), origin, path.parent)
 
 
@@ -206,6 +201,8 @@ def _points(options: dict[str, Any]) -> list[dict[str, str]]:
 
 def _why_none(document: dict[str, Any]) -> str:
     """Why no motor was found, and what would do."""
+    from ...schema.written import in_words
+
     counts = document["counts"]
     if not counts["considered"]:
         return "The catalog has no motors; read a table first: motorfolio import FILE."
@@ -217,7 +214,7 @@ def _why_none(document: dict[str, Any]) -> str:
             "inertia_ratio": "the rotor's inertia",
             "where": "the figures that --where asks for",
             "gear": "efficiency, inertia and torque of the gears",
-        }.get(most, most.replace("_", " "))
+        }.get(most, in_words(most))
         return (
             f"No motor is known to do it; {counts['unknown']} are unknown, most for lack of "
             f"{figures}."

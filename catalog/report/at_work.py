@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from typing import Any
 
-from .plain import number, plain, words
+from .plain import number, percent, plain, quantity, words
 
 Document = Mapping[str, Any]
 
@@ -15,6 +15,24 @@ _TITLES = {
     "current_control": "Current control",
     "braking": "Braking",
 }
+
+_NAMES = {
+    "stall_torque": "torque at this current, standing",
+    "torque_at_speed": "torque at this current and speed",
+    "acceleration": "acceleration from standstill",
+    "time_to_speed": "time to this speed",
+    "time_with_voltage_limit": "time to it within the supply",
+    "duty_for_speed": "duty cycle for that speed",
+    "voltage_for_speed": "voltage for that speed",
+    "speed": "speed under this load",
+    "current": "armature current",
+    "frequency_of_tenth_ripple": "PWM frequency for 10 % ripple",
+    "ripple_peak_to_peak": "current ripple, peak to peak",
+    "largest_ripple": "largest ripple, at 50 % duty",
+    "returned_power": "power returned",
+    "voltage": "terminal voltage",
+}
+"""What a key is called here, where its own words would not say it."""
 
 
 def lines(document: Document) -> Iterator[str]:
@@ -26,18 +44,17 @@ def lines(document: Document) -> Iterator[str]:
         if key in document:
             yield f"{title}:"
             for name, found in document[key].items():
-                yield f"  {words(name):<26} {_value(found)}"
+                yield f"  {_NAMES.get(name) or words(name):<32} {_value(found)}"
     for note in document["notes"]:
         yield f"Note: {note}."
 
 
 def _value(found: Any) -> str:
     if not isinstance(found, Mapping):
-        return f"{found:.1%}"
+        return percent(found, 1)
     value, unit = found["value"], found["unit"]
     if value is None:
         return "never"
     if unit == "rad/s":
         return f"{number(value)} rad/s ({number(value * _RPM)} rpm)"
-    shown = f"{value:.0f}" if 1e4 <= abs(value) < 1e7 else number(value + 0.0)
-    return f"{shown} {unit}"
+    return quantity(value, unit)

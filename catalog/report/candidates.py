@@ -6,10 +6,12 @@ from collections.abc import Mapping, Sequence
 from typing import Any
 
 from rich.console import Console
+from rich.padding import Padding
 from rich.table import Table
 from rich.text import Text
 
-from .plain import number, plain, words
+from .plain import number, percent, plain, quantity, words
+from .safety import SAFETY
 
 Document = Mapping[str, Any]
 
@@ -17,12 +19,13 @@ _RPM = 60 / (2 * 3.141592653589793)
 
 
 def print_search(document: Document, console: Console) -> None:
-    """Counts, candidates, near misses."""
+    """Counts, candidates, near misses, the safety line."""
     counts, candidates = document["counts"], document["candidates"]
     rejected = sum(counts["rejected"].values())
+    feasible, unknown = counts["feasible"], counts["unknown"]
     console.print(
-        f"{counts['considered']} motors: {counts['feasible']} do it, {rejected} do not, "
-        f"{counts['unknown']} unknown."
+        f"{_many(counts['considered'], 'motor')}: {feasible} {_verb(feasible, 'does')} it, "
+        f"{rejected} {_verb(rejected, 'does')} not, {unknown} {_verb(unknown, 'is')} unknown."
     )
     if candidates:
         console.print(candidate_table(candidates))
@@ -40,15 +43,26 @@ def print_search(document: Document, console: Console) -> None:
         console.print()
         console.print("Near misses:")
         for miss in document["near_misses"]:
-            console.print(Text(_miss(miss)))
+            console.print(Padding(Text(_miss(miss)), (0, 0, 0, 2)))
+    console.print(Text(SAFETY, style="dim"))
+
+
+def _many(n: int, noun: str) -> str:
+    return f"{n} {noun}{'s' * (n != 1)}"
+
+
+def _verb(n: int, single: str) -> str:
+    return single if n == 1 else {"does": "do", "is": "are"}[single]
 
 
 def _miss(miss: Document) -> str:
     use = miss["utilisation"].get(miss["limiting"])
     geared = f" with {miss['gear']['part_number']}" if "gear" in miss else ""
-    over = f"{words(miss['limiting'])} {use:.0%}" if use is not None else words(miss["limiting"])
+    over = (
+        f"{words(miss['limiting'])} {percent(use)}" if use is not None else words(miss["limiting"])
+    )
     maker = f" ({miss['maker']})" if miss["maker"] else ""
-    return plain(f"  {miss['part_number']}{geared}{maker}: {over}. {miss['needs']}")
+    return plain(f"{miss['part_number']}{geared}{maker}: {over}. {miss['needs']}")
 
 
 def candidate_table(candidates: Sequence[Document]) -> Table:
@@ -72,15 +86,15 @@ def candidate_table(candidates: Sequence[Document]) -> Table:
             number(c["peak_current"]["value"], 3),
             number(c["rms_current"]["value"], 3),
             number(c["winding_temperature"]["value"], 3),
-            "–" if use is None else f"{words(c['limiting'])} {use:.0%}",
+            "–" if use is None else f"{words(c['limiting'])} {percent(use)}",
         )
     return table
 
 
 def _ratio(c: Document) -> str:
     pairs = c["ratio_intervals"]
-    spans = ", ".join(f"{low:.3g}–{high:.3g}" for low, high in pairs)
-    return f"{c['ratio']:.4g}" + (f" ({spans})" if spans else "")
+    spans = ", ".join(f"{number(low, 3)}–{number(high, 3)}" for low, high in pairs)
+    return number(c["ratio"]) + (f" ({spans})" if spans else "")
 
 
 def _notes(candidates: Sequence[Document]) -> list[str]:
@@ -104,27 +118,21 @@ def _notes(candidates: Sequence[Document]) -> list[str]:
 
 def _supply(c: Document) -> str:
     s = c["supply"]
-    said = (
-        f"draws {number(s['mean_power']['value'], 3)} W on average and "
-        f"{number(s['peak_power']['value'], 3)} W at most, "
-        f"{number(s['energy_per_cycle']['value'], 3)} J a cycle"
-    )
+    mean, peak = _si(s["mean_power"], 3), _si(s["peak_power"], 3)
+    said = f"draws {mean}"
+    if peak != mean:
+        said += f" on average and {peak} at most, {_si(s['energy_per_cycle'], 3)} a cycle"
     if s["energy_returned"]["value"]:
-        said += f", and returns {number(s['energy_returned']['value'], 3)} J"
+        said += f", and returns {_si(s['energy_returned'], 3)}"
     if "bus_capacitance" in s:
         said += (
-            f" (a bus that may rise {s['bus_rise']:.0%}: "
-            f"{_farads(s['bus_capacitance']['value'])}, or a brake resistor of at most "
-            f"{number(s['brake_resistor']['value'], 3)} Ω for "
-            f"{number(s['brake_power']['value'], 3)} W)"
+            f" (a bus that may rise {percent(s['bus_rise'])}: "
+            f"{quantity(s['bus_capacitance']['value'], 'F', 3)}, or a brake resistor of at most "
+            f"{_si(s['brake_resistor'], 3)} for {_si(s['brake_power'], 3)})"
         )
     if c["inertia_ratio"] is not None and c["inertia_ratio"] > 0:
         said += f"; load to rotor inertia {number(c['inertia_ratio'], 3)}"
     return said
-
-
-def _farads(value: float) -> str:
-    return f"{number(value * 1e6, 3)} µF" if value < 1e-3 else f"{number(value * 1e3, 3)} mF"
 
 
 def print_requirement(document: Document, console: Console) -> None:
@@ -162,34 +170,34 @@ def print_requirement(document: Document, console: Console) -> None:
                 key = "continuous_current_convention" if "cont" in name else "current_convention"
                 convention = {"dc": " (armature)"}.get(document[key], f" {document[key]}")
             console.print(f"  {words(name)}: {_si(document[name])}{convention}")
+    efficiency = percent(document["gear_efficiency"])
     if "ratio_range" in document:
         low, high = document["ratio_range"]
-        console.print(
-            f"  gear ratio: {low:g} to {high:g}, efficiency {document['gear_efficiency']:.0%}"
-        )
+        console.print(f"  gear ratio: {number(low)} to {number(high)}, efficiency {efficiency}")
     elif document["gears"]:
         console.print("  gears: those of the catalog")
     else:
-        ratios = ", ".join(f"{r:g}" for r in document["ratios"])
-        console.print(f"  gear ratio: {ratios}, efficiency {document['gear_efficiency']:.0%}")
+        ratios = ", ".join(number(r) for r in document["ratios"])
+        console.print(f"  gear ratio: {ratios}, efficiency {efficiency}")
     if document["permissible_rise"] < 1:
         console.print(
-            f"  altitude {_si(document['altitude'])}: {document['permissible_rise']:.1%} of the "
-            "permissible temperature rise (IEC 60034-1's rule, from memory)"
+            f"  altitude {_si(document['altitude'])}: "
+            f"{percent(document['permissible_rise'], 1)} of the permissible temperature rise (IEC "
+            "60034-1's rule, from memory)"
         )
     for name in ("largest_inertia_ratio", "worst_case"):
         if document[name]:
             console.print(f"  {words(name)}: {document[name]}")
     console.print(
-        f"  reserve {document['reserve']:.0%}, ordered by {document['order_by']}, "
+        f"  reserve {percent(document['reserve'])}, ordered by {document['order_by']}, "
         f"at most {document['limit']} shown"
     )
     for limit in document["where"]:
         console.print(Text(f"  where {plain(limit)}"))
 
 
-def _si(found: Document) -> str:
-    return f"{number(found['value'])} {found['unit']}"
+def _si(found: Document, digits: int = 4) -> str:
+    return quantity(found["value"], found["unit"], digits)
 
 
 def _span(pair: Sequence[Document], factor: float = 1.0) -> str:
