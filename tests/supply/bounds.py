@@ -27,8 +27,10 @@ from .project import (
 
 DIRECT = ("click", "lxml", "numpy", "pint", "pydantic", "pypdfium2", "python-calamine",
           "rapidfuzz", "rich", "sqlite-utils")  # fmt: skip
-QUICK = ("tests/schema", "tests/catalog", "tests/tables", "tests/search", "tests/report",
-         "tests/test_api.py")  # fmt: skip
+QUICK = (
+    "tests/schema/test_units.py", "tests/schema/test_figure.py", "tests/schema/test_thermal.py",
+    "tests/tables", "tests/catalog", "tests/search/test_commands.py", "tests/test_api.py",
+)  # fmt: skip
 DIGITS = 12
 
 

@@ -5,7 +5,8 @@
 The wheel is built from the sdist; the second time under another folder and another clock. In a
 clean environment the installed program imports the samples, and a type checker reads a script
 that uses the library as a user would: it must find no fault, and must find a planted one.
-``--dist`` keeps what was built; ``--bom`` writes the bill of materials (CycloneDX, JSON) of that environment.
+``--dist`` keeps what was built; ``--bom`` writes the bill of materials (CycloneDX, JSON) of that
+environment.
 """
 
 from __future__ import annotations
