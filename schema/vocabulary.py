@@ -92,6 +92,6 @@ def words() -> Words:
             for key, texts in entries.items():
                 merged.setdefault(group, {}).setdefault(key, []).extend(texts)
     groups = {g: {k: tuple(t) for k, t in entries.items()} for g, entries in merged.items()}
-    lists = {g: groups.pop(g, {}).get("words", ()) for g in _LISTS}
-    fields: dict[str, Any] = {g: MappingProxyType(e) for g, e in groups.items()}
-    return Words(**fields, **lists)
+    fields: dict[str, Any] = {g: groups.pop(g, {}).get("words", ()) for g in _LISTS}
+    fields |= {g: MappingProxyType(e) for g, e in groups.items()}
+    return Words(**fields)
