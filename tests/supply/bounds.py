@@ -26,7 +26,7 @@ from .project import (
 )  # fmt: skip
 
 DIRECT = ("click", "lxml", "numpy", "pint", "pydantic", "pypdfium2", "python-calamine",
-          "rapidfuzz", "rich", "sqlite-utils")  # fmt: skip
+          "rapidfuzz", "rich", "sqlite-utils", "matplotlib", "pyarrow")  # fmt: skip
 QUICK = (
     "tests/schema/test_units.py", "tests/schema/test_figure.py", "tests/schema/test_thermal.py",
     "tests/tables", "tests/catalog", "tests/search/test_commands.py", "tests/test_api.py",
@@ -70,7 +70,7 @@ def main() -> int:
             here = folder / str(number)
             inside = environment(here / "venv", python)
             pip = (tool.parent / "uv", "pip")
-            wanted = ("--resolution", resolution, "-r", copy / "pyproject.toml")
+            wanted = ("--all-extras", "--resolution", resolution, "-r", copy / "pyproject.toml")
             run(*pip, "install", "--python", inside, *wanted)
             run(*pip, "install", "--python", inside, "--no-deps", wheel)
             kept = here / "kept.txt"
@@ -88,7 +88,7 @@ def main() -> int:
             print("  " + (tests.stdout.splitlines() or ["no output"])[-1], flush=True)
             if tests.returncode:
                 failed = True
-                print(tests.stdout[-6000:], tests.stderr[-2000:])
+                print(tests.stdout[-4000:], tests.stderr[-2000:])
     for title, documents_of in outcome[1:]:
         same = documents_of == outcome[0][1]
         failed |= not same

@@ -99,6 +99,10 @@ def test_every_data_file_is_shipped() -> None:
 
 
 def test_every_dependency_has_both_bounds() -> None:
-    for wanted in PROJECT["project"]["dependencies"]:
+    extras = PROJECT["project"]["optional-dependencies"].values()
+    for wanted in [
+        *PROJECT["project"]["dependencies"],
+        *(name for extra in extras for name in extra),
+    ]:
         assert ">=" in wanted, wanted
         assert ",<" in wanted, wanted
