@@ -233,7 +233,4 @@ def causes_of(scores: Floats, within: float = 4.6) -> tuple[str, ...]:
     """The causes by likelihood: all that are within a factor of 100 of the likeliest."""
     order = np.argsort(-scores)
     best = scores[order[0]]
-    names = tuple(CAUSES[c] for c in order.tolist() if scores[c] > best - within)
-    if names[0] != "unexplained" and "unexplained" in names:
-        names = (*(n for n in names if n != "unexplained"), "unexplained")
-    return names
+    return tuple(CAUSES[c] for c in order.tolist() if scores[c] > best - within)

@@ -134,7 +134,7 @@ def frames(narrator: Narrator, family: Bools) -> Found:
                 narrator, m, "error" if severe else "warning",
                 relation=FAMILY + key.replace("_", "-"), figures=(key,), suspect=key,
                 ratio=math.exp(gap[m]), cause=cause,
-                other_causes=tuple(o for o in others if o != "unexplained"),
+                other_causes=tuple(others),
                 implied=Amount(value=implied, unit=quantity(key).unit),
                 cell=narrator.cell(m, key), message=text,
             )))  # fmt: skip
@@ -173,7 +173,7 @@ def repeats(narrator: Narrator) -> Found:
                 out.append((m, _motor(
                     narrator, m, "error" if large and cause != "unexplained" else "warning",
                     relation=GIVEN_TWICE, figures=(key,), ratio=math.exp(gap[m]), cause=cause,
-                    other_causes=tuple(o for o in others if o != "unexplained"),
+                    other_causes=tuple(others),
                     implied=Amount(value=float(second.value[m]), unit=quantity(key).unit),
                     cell=narrator.cell(m, key), message=text,
                 )))  # fmt: skip
@@ -184,8 +184,9 @@ def _digits(key: str, column: FigureColumn) -> Floats:
     return np.where(np.isfinite(column.value), printed_sd(key, column), 0.0)
 
 
-def thermal(narrator: Narrator) -> Found:
-    """T_max − T_amb = (Rth1 + Rth2)·I_N²·Ra(T_max): a note where the rating isn't of this kind."""
+def thermal(narrator: Narrator, doubted: Doubted) -> Found:
+    """T_max − T_amb = (Rth1 + Rth2)·I_N²·Ra(T_max): a note where the rating isn't of this kind and
+    no finding doubts a figure that tells so."""
     batch = narrator.batch
     needed = ("nominal_current", "terminal_resistance", "maximum_winding_temperature")
     if not set(needed) <= set(batch.figures):
@@ -205,19 +206,20 @@ def thermal(narrator: Narrator) -> Found:
     ratio = total * current**2 * hot / (hottest - ambient)
     with np.errstate(invalid="ignore"):
         off = np.flatnonzero((ratio > 1.5) | (ratio < 1 / 1.5))
-    if not off.size:
-        return []
-    m = int(off[0])
     figures = tuple(k for k in (
         "nominal_current", "thermal_resistance_winding_housing",
         "thermal_resistance_housing_ambient", "thermal_resistance", "terminal_resistance",
         "maximum_winding_temperature") if k in batch.figures)  # fmt: skip
+    off = off[[not doubted.get(i, set()) & {*figures} for i in off.tolist()]]
+    if not off.size:
+        return []
+    m = int(off[0])
     text = (
         "The rated current does not follow from the thermal resistances: T_max − T_amb = "
         f"(Rth1 + Rth2)·I_N²·Ra(T_max) would be {number(ratio[m] * (hottest[m] - ambient[m]))} K "
-        f"where {number(hottest[m] - ambient[m])} K are permitted ({batch.part_number[m]}"
-        + (f", and {off.size - 1} more" if off.size > 1 else "")
-        + "). The rating may be that on a cooling plate."
+        f"where {number(hottest[m] - ambient[m])} K are permitted"
+        + (f" ({batch.part_number[m]}, and {off.size - 1} more)" if off.size > 1 else "")
+        + ". The rating may be that on a cooling plate."
     )
     finding = Finding(
         part_number=batch.part_number[m] if off.size == 1 else None,

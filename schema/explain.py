@@ -195,7 +195,6 @@ class Narrator:
         column = self.batch.figures[figure]
         implied = float(column.value[motor]) / ratio
         cause, *others = suspicion.causes
-        others = [o for o in others if o != "unexplained"]
         amount = self.amount(figure, motor, implied)
         text = f"{capital(name(figure))} {self.printed(figure, motor)}{self.place(motor, figure)}"
         if partner:
@@ -246,7 +245,6 @@ class Narrator:
         ratio = math.exp(fault.log_ratio)
         implied = float(column.value[first]) / ratio
         cause, *others = fault.causes
-        others = [o for o in others if o != "unexplained"]
         heading = (
             self.batch.headings[int(column.heading[first])].text if self.batch.headings else ""
         )
@@ -325,6 +323,7 @@ class Narrator:
             text = "None of the usual mistakes explains the ratio"
         else:
             text = f"Likely {SENTENCES[cause]}"
-        if others:
-            text += "; also possible: " + ", ".join(SENTENCES[o] for o in others[:3])
+        usual = [SENTENCES[o] for o in others if o != "unexplained"]
+        if usual:
+            text += "; also possible: " + ", ".join(usual[:3])
         return text + "."
