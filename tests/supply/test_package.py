@@ -5,6 +5,7 @@ from __future__ import annotations
 import ast
 import tomllib
 from fnmatch import fnmatch
+from itertools import chain
 from pathlib import Path
 
 import pytest
@@ -99,10 +100,7 @@ def test_every_data_file_is_shipped() -> None:
 
 
 def test_every_dependency_has_both_bounds() -> None:
-    extras = PROJECT["project"]["optional-dependencies"].values()
-    for wanted in [
-        *PROJECT["project"]["dependencies"],
-        *(name for extra in extras for name in extra),
-    ]:
+    extras = PROJECT["project"]["optional-dependencies"]
+    for wanted in [*PROJECT["project"]["dependencies"], *chain.from_iterable(extras.values())]:
         assert ">=" in wanted, wanted
         assert ",<" in wanted, wanted
