@@ -211,7 +211,7 @@ def _report(
         + checks.poles(narrator)
         + checks.frames(narrator, family)
         + checks.repeats(narrator)
-        + checks.thermal(narrator)
+        + checks.thermal(narrator, everyone)
         + checks.scatter(narrator, lambda m: bool(shared) or m in doubted)
     ):
         _add(out, motor, finding)

@@ -34,6 +34,9 @@ from .said import cell_conventions
 _EXPORTED_FACT = re.compile(r"\((told|stated|inferred|assumed)\)$")
 """What an export says of a fact that no text figure gives: known as before, and no figure."""
 
+_SENTENCE_END = re.compile(r"[;；。]|(?:(?<=[a-z]{4})|(?<=\)))\.\s+(?=\w)")
+"""Where a name in a title line ends; "Co." and "Corp." end none."""
+
 CHUNK = 20_000
 """Motors in one batch of a long table."""
 
@@ -261,14 +264,14 @@ class TableReader(Decisions):
         return out
 
     def _titled(self, key: str) -> str | None:
-        """What a title line says of all motors: "Maker: …", "Series: …"."""
-        for title in self.table.titles:
+        """What a line about the table says of all motors: "Maker: …", "Series: …"."""
+        for title in (*self.table.titles, *self.table.notes):
             for line in title.split("\n"):
                 heading, colon, text = plain(line).partition(":")
                 if not colon or len(heading) > 40 or not text.strip():
                     continue
                 if any(key in p.keys for p in parse_label(heading).names):
-                    return text.strip()
+                    return _SENTENCE_END.split(text.strip())[0].strip()
         return None
 
     def _title_name(self) -> str | None:

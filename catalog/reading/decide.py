@@ -31,6 +31,7 @@ from .layout import inherit
 from .lexicon import squeeze, tokens
 from .match import Match, Matcher
 from .model import Field, ReadOptions, Table, Unread
+from .purpose import is_of_gears, tells_of_a_motor
 from .said import convention_of, temperature_of
 
 STYLE_ROWS = 2000
@@ -57,10 +58,15 @@ class Decisions:
         self._share_frame()
         self._stated_voltage()
         self.why_not: list[str] = []
-        figures = [m for m in self.matches if m.role in ("figure", "point")]
+        figures = [m for m in self.matches if tells_of_a_motor(m)]
         known = [m for m in self.matches if m.score >= 0.85 and m.guesses]
-        self.worthwhile = table.count > 0 and (bool(figures) or len(known) > 1)
-        if not self.worthwhile:
+        self.of_gears = is_of_gears(self.matches)
+        self.worthwhile = (
+            table.count > 0 and not self.of_gears and (bool(figures) or len(known) > 1)
+        )
+        if self.of_gears:
+            self.why_not = ["a table of gears, passed over: motorfolio gears reads it"]
+        elif not self.worthwhile:
             first = plain(table.fields[0].heading) if table.fields else ""
             self.why_not = [f'a table with "{first}" gives no figure of a motor, passed over']
         self.commutation, self.commutation_basis = self._commutation()

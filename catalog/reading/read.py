@@ -29,7 +29,7 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
     if not grids:
         names = ", ".join(str(g.sheet) for g in file.grids if g.sheet)
         raise ReadingError(f'{file.name}: has no sheet "{options.sheet}"; it has {names or "none"}')
-    lazy = None
+    lazy, gears = None, False
     lone: list[Table] = []
     loose: list[str] = []
     told = TOLD.set(
@@ -49,6 +49,7 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
     _share_notes(found, loose, everywhere=file.format == "text")
     for position, table in enumerate(found):
         reader = TableReader(table, file, options, stem, position if len(found) > 1 else None)
+        gears = gears or reader.of_gears
         if not reader.worthwhile:
             remarks += reader.why_not
             unread += reader.unread
@@ -65,6 +66,11 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
         remarks += reader.remarks
         batches.append(batch)
     if not batches and lazy is None:
+        if gears:
+            raise ReadingError(
+                f"{file.name}: a table of gears, not of motors; read it with: motorfolio gears "
+                f"{file.name}"
+            )
         raise ReadingError(
             f"{file.name}: no motor is found in it; a table of motors has headings such as "
             '"Nominal voltage [V]" over or beside figures'

@@ -7,8 +7,10 @@ import pytest
 from scipy.optimize import least_squares
 
 from motorfolio.schema.adjust import fit
-from motorfolio.schema.batch import Point
+from motorfolio.schema.batch import Point, empty_figures
+from motorfolio.schema.checks import thermal
 from motorfolio.schema.convention import Commutation
+from motorfolio.schema.explain import Narrator
 from motorfolio.schema.model import INDEX
 from motorfolio.schema.observed import observe
 from motorfolio.schema.reconcile import reconcile
@@ -324,3 +326,23 @@ def test_nothing_published_gives_nothing_and_no_fault():
     assert result.findings == []
     assert np.isnan(result.constants["torque_constant"].value).all()
     assert reconcile(single(n=0)).findings == []
+
+
+def test_thermal_rating_is_noted_without_a_doubted_figure_and_names_no_lone_motor():
+    """0.5 A² · 2 Ω · 1.39 · 20 K/W is 14 K where 100 K are permitted."""
+    given = {
+        "nominal_current": 0.5,
+        "terminal_resistance": 2.0,
+        "maximum_winding_temperature": 125.0,
+        "thermal_resistance": 20.0,
+    }
+    batch = single()
+    for key, value in given.items():
+        batch.figures[key] = empty_figures(1)
+        for part in ("value", "low", "high"):
+            getattr(batch.figures[key], part)[0] = value
+    ((_, note),) = thermal(Narrator(batch), {})
+    assert note.part_number is not None
+    assert note.part_number not in note.message
+    assert thermal(Narrator(batch), {0: {"terminal_resistance"}}) == []
+    assert thermal(Narrator(batch), {0: {"mass"}})

@@ -1,0 +1,46 @@
+"""Whether a table is one of motors: of gears it is not, and of housings alone neither."""
+
+import re
+from collections.abc import Sequence
+
+from ...schema.signs import plain
+from .match import Match
+
+_BODY = re.compile(
+    r"thermal_|(?:ambient|maximum_winding)_temperature|rated_temperature_rise|rotor_inertia|"
+    r"pole|phases|mass|diameter|length|_load$|price"
+)
+"""Figures that gears, housings and price lists have too."""
+
+_ELECTRICAL = re.compile(
+    r"voltage|current|terminal_|(?:torque|back_emf|speed|motor|electrical_time)_constant|gradient|"
+    r"no_load|stall"
+)
+"""Figures that no gear has."""
+
+_RATIO = re.compile(
+    r"\bratio\b|reduction|übersetzung|untersetzung|réduction|rapporto|riduzione|relación|reducción|"
+    r"減速比|减速比|速比|^i$",
+    re.IGNORECASE,
+)
+_OF_A_GEAR = re.compile(
+    r"\bstages?\b|stufe|étage|stadi|etapa|段数|级数|backlash|spiel|\bjeu\b|gioco|juego|バックラッシ|背隙|"
+    r"efficiency|wirkungsgrad|rendement|rendimento|rendimiento|効率|效率|η|"
+    r"torque|drehmoment|couple|coppia|\bpar\b|トルク|转矩|扭矩",
+    re.IGNORECASE,
+)
+
+
+def is_of_gears(matches: Sequence[Match]) -> bool:
+    """Whether the headings are a gear's: a ratio, what else a gear has, nothing electrical."""
+    if any(m.key and _ELECTRICAL.search(m.key) for m in matches):
+        return False
+    headings = [plain(m.field.heading) for m in matches]
+    return any(_RATIO.search(h) for h in headings) and any(_OF_A_GEAR.search(h) for h in headings)
+
+
+def tells_of_a_motor(match: Match) -> bool:
+    """Whether a heading gives voltage, speed, current, torque, power, a constant, a resistance."""
+    if match.role == "point":
+        return True
+    return match.role == "figure" and match.key is not None and not _BODY.search(match.key)
