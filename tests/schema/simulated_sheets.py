@@ -29,9 +29,10 @@ UNITS = {
     "continuous_stall_torque": ("Nm", 1.0), "continuous_stall_current": ("A", 1.0),
     "peak_torque": ("Nm", 1.0), "peak_current": ("A", 1.0), "mass": ("g", 1e-3),
     "poles": ("", 1.0), "pole_pairs": ("", 1.0),
+    "thermal_resistance": ("K/W", 1.0), "maximum_winding_temperature": ("°C", 1.0),
 }  # fmt: skip
 FULL = tuple(k for k in UNITS if k not in (
-    "poles", "pole_pairs",
+    "poles", "pole_pairs", "thermal_resistance", "maximum_winding_temperature",
     "continuous_stall_torque", "continuous_stall_current", "peak_torque", "peak_current",
     "rated_efficiency", "friction_torque", "maximum_power", "rated_power"))  # fmt: skip
 SERVO = ("nominal_voltage", "nominal_speed", "nominal_torque", "nominal_current", "rated_power",
