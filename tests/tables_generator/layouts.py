@@ -51,6 +51,7 @@ def _state_conventions(sheet: Sheet, page: Page) -> None:
             if key in columns:
                 columns[key].label += f" ({sheet.word(between)})"
                 columns[key].convention["between"] = between
+                columns[key].symbol = columns[key].symbol[:1]  # R_tt would say "lines"
     mark = rng.choice(["1)", "¹⁾", "*"])
     if recipe.has("footnote label") and "terminal_resistance" in columns:
         columns["terminal_resistance"].label += rng.choice(["", " "]) + mark
@@ -72,6 +73,9 @@ def _lose_cells(sheet: Sheet) -> None:
             rng = sheet.recipe.random(f"missing {column.key} {place}")
             if rng.random() < 0.12 and column.key not in ANCHORS[sheet.kind]:
                 column.cells[place] = None
+        first, *rest = column.cells
+        if column.quantity.shared and first and not any(rest):
+            column.cells = [first] * len(column.cells)  # else it would read as shared by all
 
 
 def _add_distractors(sheet: Sheet) -> None:
