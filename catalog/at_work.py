@@ -8,7 +8,8 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from ..schema.drive import (
+from ..schema.errors import MotorfolioError
+from ..schema.operation.drive import (
     DriveError,
     Motor,
     acceleration_at_current,
@@ -25,8 +26,7 @@ from ..schema.drive import (
     time_at_voltage,
     torque_at_current,
 )
-from ..schema.errors import MotorfolioError
-from ..schema.machines import Commutation, Machines
+from ..schema.operation.machines import Commutation, Machines
 from .documents import amount
 from .fleet import load_fleet
 

@@ -7,10 +7,10 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from ..schema.cycle import Cycle
-from ..schema.energy import draw
-from ..schema.limits import Verdict
-from ..schema.machines import Commutation, Machines
+from ..schema.operation.cycle import Cycle
+from ..schema.operation.energy import draw
+from ..schema.operation.limits import Verdict
+from ..schema.operation.machines import Commutation, Machines
 from .choice import Judge, behind, true_drop
 from .documents import amount, number
 from .near_misses import Miss

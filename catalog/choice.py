@@ -13,12 +13,12 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ..schema.demand import Gearing
-from ..schema.energy import draw
-from ..schema.limits import LIMITS, Utilisations, Verdict
-from ..schema.machines import Machines
-from ..schema.operation import judge, judge_worst
-from ..schema.ratios import GRID, ratio_grid
+from ..schema.operation.demand import Gearing
+from ..schema.operation.energy import draw
+from ..schema.operation.judge import judge, judge_worst
+from ..schema.operation.limits import LIMITS, Utilisations, Verdict
+from ..schema.operation.machines import Machines
+from ..schema.operation.ratios import GRID, ratio_grid
 from .requirement import Requirement
 
 if TYPE_CHECKING:

@@ -3,9 +3,9 @@
 import math
 
 from ..schema.errors import MotorfolioError
-from ..schema.figure import POINT, read_figure
-from ..schema.reconcile import reconcile
-from ..schema.units import read_unit
+from ..schema.figure.read import POINT, read_figure
+from ..schema.reconcile.run import reconcile
+from ..schema.units.read import read_unit
 from ..schema.vocabulary import quantities
 from .documents import Document
 from .store import Catalog, columns, corrections

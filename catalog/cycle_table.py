@@ -7,9 +7,9 @@ import re
 from collections.abc import Sequence
 from pathlib import Path
 
-from ..schema.cycle import Cycle
 from ..schema.errors import MotorfolioError
-from ..schema.units import quantity, read_unit
+from ..schema.operation.cycle import Cycle
+from ..schema.units.read import quantity, read_unit
 from .requirement_fields import RequirementError
 
 _NAMES = {

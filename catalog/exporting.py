@@ -12,7 +12,7 @@ from typing import Any, TextIO
 
 from ..schema.convention import Commutation, Convention, to_dc
 from ..schema.errors import MotorfolioError
-from ..schema.units import Unit, read_unit
+from ..schema.units.read import Unit, read_unit
 from ..schema.vocabulary import quantities
 from .documents import Document
 from .store import Catalog

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ..schema.machines import Machines, coulomb_torque
+from ..schema.operation.machines import Machines, coulomb_torque
 from .requirement import Requirement, RequirementError
 from .where import columns_of
 

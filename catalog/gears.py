@@ -11,8 +11,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..schema.errors import MotorfolioError
-from ..schema.figure import POINT, read_figure
-from ..schema.units import read_unit
+from ..schema.figure.read import POINT, read_figure
+from ..schema.units.read import read_unit
 from .requirement_fields import Ratios, RequirementError
 
 if TYPE_CHECKING:

@@ -5,9 +5,14 @@ import json
 from collections import Counter
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
+from typing import NamedTuple
 
 from ..schema.batch import Heading
+from ..schema.motor import Reconciled
 from .documents import Document
+
+MOST_SHOWN = 8
+"""So many motors of a file are shown with their constants after an import."""
 
 MOST_FINDINGS = 1000
 """So many findings of a file are kept to be printed; all of them are stored."""
@@ -42,6 +47,23 @@ class Options:
         return json.dumps([*told, digest], ensure_ascii=False)
 
 
+class Constants(NamedTuple):
+    """A motor's constants in SI as an import shows them; NaN where unknown."""
+
+    part_number: str
+    torque_constant: float
+    armature_resistance: float
+    rotor_inertia: float
+    motor_constant: float
+
+
+def first_constants(reconciled: Reconciled, most: int) -> list[Constants]:
+    """Those of the first motors of a table."""
+    n = min(most, len(reconciled.batch))
+    columns = [reconciled.constants[key].value[:n].tolist() for key in Constants._fields[1:]]
+    return [*map(Constants, reconciled.batch.part_number[:n], *columns)]
+
+
 @dataclass(slots=True)
 class FileResult:
     """What one file gave: how its headings were read, what was not, its motors, the findings.
@@ -61,6 +83,7 @@ class FileResult:
     documents: list[Document] = field(default_factory=list)
     makers: set[str] = field(default_factory=set)
     severities: Counter[str] = field(default_factory=Counter)
+    constants: list[Constants] = field(default_factory=list)
     motors: int = 0
     stored: int = 0
     replaced: int = 0

@@ -6,12 +6,19 @@ from typing import TYPE_CHECKING
 
 from ..schema.batch import Batch
 from ..schema.errors import MotorfolioError
-from ..schema.reconcile import reconcile
+from ..schema.reconcile.run import reconcile
 from . import documents as doc
 from .batch_documents import finding_documents, motor_documents
 from .documents import Document
 from .duplicates import merged
-from .import_result import MOST_FINDINGS, FileResult, ImportResult, Options
+from .import_result import (
+    MOST_FINDINGS,
+    MOST_SHOWN,
+    FileResult,
+    ImportResult,
+    Options,
+    first_constants,
+)
 from .overrides import check, check_used
 from .store import Catalog
 from .store.corrections import Correction, corrected
@@ -147,6 +154,7 @@ def _note(
     result: FileResult, table: JudgedTable, with_documents: bool, corrections: Sequence[Correction]
 ) -> None:
     result.motors += len(table.published)
+    result.constants += first_constants(table.reconciled, MOST_SHOWN - len(result.constants))
     result.makers.update(table.published.maker)
     findings = finding_documents(table.reconciled)
     result.severities.update(f["severity"] for f in findings)

@@ -195,8 +195,9 @@ class MotorCatalog:
         from .near_misses import near_misses
         from .search import search
 
-        found = search(self.store, _required(requirement))
-        return SearchResult(search_document(found, near_misses(found, self.store), self.store))
+        with self.store.at_once():
+            found = search(self.store, _required(requirement))
+            return SearchResult(search_document(found, near_misses(found, self.store), self.store))
 
     def judge(self, part: str, requirement: Asked) -> Judgement:
         """One motor held against a requirement."""
@@ -205,10 +206,11 @@ class MotorCatalog:
         from .candidate_documents import candidate_document
         from .search import search, show
 
-        known = self.store.find(part)
-        found = search(self.store, _required(requirement))
-        at = np.flatnonzero(found.fleet.ids == known.id)
-        document = candidate_document(show(found, at, self.store)[0], found, self.store)
+        with self.store.at_once():
+            known = self.store.find(part)
+            found = search(self.store, _required(requirement))
+            at = np.flatnonzero(found.fleet.ids == known.id)
+            document = candidate_document(show(found, at, self.store)[0], found, self.store)
         # the limits of "where" count too
         feasible = document["feasible"] and bool(np.isin(at, found.order).all())
         return Judgement({**document, "feasible": feasible})

@@ -14,9 +14,9 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ..schema.limits import Verdict
-from ..schema.machines import Machines, armature_amperes
-from ..schema.ratios import ratio_grid
+from ..schema.operation.limits import Verdict
+from ..schema.operation.machines import Machines, armature_amperes
+from ..schema.operation.ratios import ratio_grid
 from .choice import Judge, Judged, behind
 from .gears import gear_utilisations
 from .requirement import Requirement

@@ -5,7 +5,7 @@ from collections.abc import Iterable, Mapping
 
 from ..schema.batch import Heading
 from ..schema.errors import MotorfolioError
-from ..schema.units import read_unit
+from ..schema.units.read import read_unit
 from ..schema.vocabulary import quantities
 
 CONVENTIONS = ("dc", "peak", "rms", "lines", "phase", "star", "delta")

@@ -7,10 +7,10 @@ from dataclasses import dataclass, field, replace
 from pathlib import Path
 from typing import Any
 
-from ..schema.axis import Axis
-from ..schema.cycle import Cycle
-from ..schema.demand import Demand, Drive, Gearing, Supply, Surroundings
-from ..schema.moves import MoveError, move, one_after_the_other, rest
+from ..schema.operation.axis import Axis
+from ..schema.operation.cycle import Cycle
+from ..schema.operation.demand import Demand, Drive, Gearing, Supply, Surroundings
+from ..schema.operation.moves import MoveError, move, one_after_the_other, rest
 from . import cycle_table
 from .requirement_fields import LISTS, SECTIONS, Ratios, Reader, RequirementError, unknown
 from .where import Where, read_where

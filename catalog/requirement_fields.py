@@ -11,8 +11,8 @@ from dataclasses import dataclass
 from typing import Any
 
 from ..schema.errors import MotorfolioError
-from ..schema.figure import POINT, read_figure
-from ..schema.units import quantity, read_unit
+from ..schema.figure.read import POINT, read_figure
+from ..schema.units.read import quantity, read_unit
 
 
 class RequirementError(MotorfolioError):

@@ -9,9 +9,9 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ..schema.limits import LIMITS, Verdict
-from ..schema.machines import Machines
-from ..schema.ratios import feasible_ratios
+from ..schema.operation.limits import LIMITS, Verdict
+from ..schema.operation.machines import Machines
+from ..schema.operation.ratios import feasible_ratios
 from .choice import Judge, Judged, best_of, choose, choose_gears
 from .fleet import Fleet, load_fleet
 from .gears import Gear, gear_utilisations, load_gears

@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 
 from ..schema.canonical import CANONICAL
 from ..schema.errors import MotorfolioError
-from ..schema.units import quantity, read_unit
+from ..schema.units.read import quantity, read_unit
 from ..schema.vocabulary import quantities
 from .requirement_fields import RequirementError, unknown
 

@@ -12,7 +12,7 @@ if TYPE_CHECKING:
     from .entry import Entry, Motor, json_schema
     from .errors import MotorfolioError
     from .motor import Finding
-    from .units import convert
+    from .units.read import convert
     from .vocabulary import quantities
 
 __all__ = [
@@ -30,7 +30,7 @@ _HOMES = {
     "Finding": ".motor",
     "Motor": ".entry",
     "MotorfolioError": ".errors",
-    "convert": ".units",
+    "convert": ".units.read",
     "json_schema": ".entry",
     "quantities": ".vocabulary",
 }

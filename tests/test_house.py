@@ -35,7 +35,7 @@ def test_schema_knows_nothing_of_the_catalog(path: Path) -> None:
 
 def test_pint_is_met_in_one_module_only() -> None:
     met = {p.relative_to(ROOT).as_posix() for p in MODULES if "pint" in imports(p)}
-    assert met == {"schema/unit_factors.py"}
+    assert met == {"schema/units/factors.py"}
 
 
 def test_every_package_is_installed() -> None:

@@ -20,7 +20,7 @@ def command(parts: tuple[str, ...], catalog: Path, as_json: bool) -> int:
     """
     from ..store import Catalog
 
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         findings = opened.findings(parts or None)
         motors = len(set(parts)) if parts else len(opened)
     if as_json:

@@ -17,7 +17,7 @@ def command(parts: tuple[str, ...], catalog: Path, as_json: bool) -> int:
 
     if len(parts) < 2:
         raise click.UsageError("name at least two motors to compare")
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         documents = list(opened.motors(parts))
     if as_json:
         print_json(documents)

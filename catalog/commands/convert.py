@@ -18,7 +18,7 @@ def command(figure: str, unit: str, as_json: bool) -> int:
     A torque constant and a back-EMF constant are the same number in SI and convert to each other;
     a speed constant is their reciprocal.
     """
-    from ...schema.units import convert
+    from ...schema.units.read import convert
 
     value, shown, remark = convert(figure, unit)
     from ...schema.written import number

@@ -41,7 +41,7 @@ def command(
     from ..store import Catalog
 
     if part is None:
-        with Catalog.open(catalog) as opened:
+        with Catalog.open(catalog) as opened, opened.at_once():
             _print_list(opened, as_json)
         return 0
     if quantity is None or (value is None) is not revoking:

@@ -17,7 +17,7 @@ def command(number: int | None, catalog: Path, as_json: bool) -> int:
     from ..differences import of_import
     from ..store import Catalog
 
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         changes = of_import(opened, number)
     if as_json:
         print_json({"changes": changes})

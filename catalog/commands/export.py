@@ -40,7 +40,7 @@ def command(format_: str, units: str, output: Path | None, catalog: Path) -> int
     if format_ == "parquet" and output is None:
         raise click.UsageError("Parquet is written to a file: give --output FILE")
     chosen = None if units == "si" else read_units(Path(units))
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         if output is None:
             export(opened, format_, sys.stdout, chosen)
             return 0

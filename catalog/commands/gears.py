@@ -26,7 +26,7 @@ def command(
     from ..store import Catalog
 
     if not files:
-        with Catalog.open(catalog) as opened:
+        with Catalog.open(catalog) as opened, opened.at_once():
             gears = all_gears(opened)
         _show(gears, [], as_json)
         return 0

@@ -83,7 +83,7 @@ def command(
     All files of a call are stored, or none.
     """
     from ..importing import Options, import_files
-    from ..report import terminal
+    from ..report.imported import print_import
 
     if "-" in files and format_ is None:
         raise click.UsageError(f"standard input needs --format, one of {', '.join(FORMATS)}")
@@ -101,7 +101,7 @@ def command(
     if as_json:
         print_json(result.as_json())
     else:
-        terminal.print_import(result, catalog, dry_run=dry_run)
+        print_import(result, catalog, dry_run=dry_run)
     if result.refused:
         say("Nothing was stored: --strict, and something could not be read or is in error.")
         return 1

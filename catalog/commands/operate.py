@@ -48,7 +48,7 @@ def command(
     PART is a part number, or MAKER/PART where two makers share one.
     """
     from ...schema.errors import MotorfolioError
-    from ...schema.units import quantity
+    from ...schema.units.read import quantity
     from ..at_work import OperateError, at_work
     from ..store import Catalog
 
@@ -67,7 +67,7 @@ def command(
     if duty is not None and not 0 <= duty <= 1:
         raise OperateError(f"--duty: {options['duty']} is no duty cycle; give 0 to 100 %.")
     degrees = asked.pop("temperature")
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         document = at_work(opened, part, asked, 25.0 if degrees is None else degrees)
     if as_json:
         print_json(document)

@@ -30,7 +30,7 @@ def command(output: Path, title: str | None, catalog: Path, **options: Any) -> N
     from ..report.safety import SAFETY
     from ..store import Catalog
 
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         if says_the_load(options):
             requirement = requirement_of(options)
             text = search_page(opened, requirement, title or requirement.title or "Motor search")

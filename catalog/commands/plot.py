@@ -36,7 +36,7 @@ def plane(part: str, output: Path, catalog: Path, **options: Any) -> None:
     from ..report.pictures.make import plane_of
     from ..store import Catalog
 
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         load = says_the_load(options)
         if options["supply"] is None and not load:
             nominal = opened.motor(part)["figures"].get("nominal_voltage")
@@ -58,7 +58,7 @@ def candidates(output: Path, catalog: Path, **options: Any) -> None:
     from ..report.pictures.make import candidates_of
     from ..store import Catalog
 
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         _write(candidates_of(opened, requirement_of(options)), output)
 
 
@@ -75,7 +75,7 @@ def ratios(part: str, output: Path, catalog: Path, **options: Any) -> None:
     from ..report.pictures.make import ratios_of
     from ..store import Catalog
 
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         _write(ratios_of(opened, part, requirement_of(options)), output)
 
 
@@ -89,7 +89,7 @@ def figures(part: str, output: Path, catalog: Path) -> None:
     from ..report.pictures.make import figures_of
     from ..store import Catalog
 
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         _write(figures_of(opened, part), output)
 
 

@@ -18,7 +18,7 @@ def command(part: str | None, catalog: Path, as_json: bool) -> int:
     from ..differences import between
     from ..store import Catalog
 
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         if part is None:
             imports = opened.imports()
             documents = []

@@ -126,7 +126,7 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
     from ..search import search
     from ..store import Catalog
 
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         found = search(opened, requirement)
         document = search_document(found, near_misses(found, opened), opened)
     if as_json:

@@ -19,7 +19,7 @@ def command(part: str, catalog: Path, as_json: bool) -> int:
     """
     from ..store import Catalog
 
-    with Catalog.open(catalog) as opened:
+    with Catalog.open(catalog) as opened, opened.at_once():
         document = opened.motor(part)
     if as_json:
         print_json(document)

@@ -19,7 +19,7 @@ from ...schema.batch import (
     empty_figures,
 )
 from ...schema.convention import Commutation, Convention, default_convention
-from ...schema.signs import plain
+from ...schema.figure.signs import plain
 from ...schema.vocabulary import Quantity, quantity
 from .cells import missing
 from .decide import Decisions

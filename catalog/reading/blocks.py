@@ -4,7 +4,7 @@ import re
 from dataclasses import dataclass, field
 from itertools import pairwise
 
-from ...schema.signs import plain
+from ...schema.figure.signs import plain
 from ...schema.vocabulary import quantity
 from ..tables.grid import Grid
 from .cells import is_figure, is_unit, strength

@@ -4,9 +4,9 @@ import re
 from contextvars import ContextVar
 from functools import lru_cache
 
-from ...schema.figure import is_missing
-from ...schema.signs import plain
-from ...schema.units import is_unit_like
+from ...schema.figure.read import is_missing
+from ...schema.figure.signs import plain
+from ...schema.units.read import is_unit_like
 from ...schema.vocabulary import words
 from .label import parse_label, roles_of
 from .lexicon import canonical, find_symbol, lexicon, squeeze, tokens

@@ -8,9 +8,9 @@ import numpy as np
 
 from ...schema.batch import MAGNETS, Heading, Source
 from ...schema.convention import Commutation
-from ...schema.figure import NumberStyle, number_style
-from ...schema.signs import plain
-from ...schema.units import Unit, UnitError, read_unit
+from ...schema.figure.read import NumberStyle, number_style
+from ...schema.figure.signs import plain
+from ...schema.units.read import Unit, UnitError, read_unit
 from ...schema.vocabulary import Quantity, quantities, quantity
 from ..tables.grid import TableFile
 from .cells import is_ditto, missing

@@ -7,9 +7,9 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from ...schema.batch import FigureColumn, Floats, Ints
-from ...schema.figure import ColumnFigures, NumberStyle, read_column
-from ...schema.signs import plain
-from ...schema.units import Unit, UnitError, read_unit, unit_of
+from ...schema.figure.read import ColumnFigures, NumberStyle, read_column
+from ...schema.figure.signs import plain
+from ...schema.units.read import Unit, UnitError, read_unit, unit_of
 from ...schema.vocabulary import Quantity
 from .cells import missing
 

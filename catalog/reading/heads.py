@@ -3,8 +3,8 @@
 import re
 from dataclasses import replace
 
-from ...schema.signs import plain
-from ...schema.units import unit_of
+from ...schema.figure.signs import plain
+from ...schema.units.read import unit_of
 from .cells import is_caption, is_symbol, is_unit, strength
 from .label import Label, parse_label
 from .model import Field

@@ -3,7 +3,7 @@
 from collections import Counter
 from dataclasses import replace
 
-from ...schema.signs import plain
+from ...schema.figure.signs import plain
 from .label import names_part
 from .model import Field, Table
 

@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 from ...schema.batch import MODEL_BASES
 from ...schema.convention import Commutation
-from ...schema.signs import plain
+from ...schema.figure.signs import plain
 from ...schema.vocabulary import words
 from .lexicon import canonical, is_cjk, squeeze, tokens
 from .match import Match

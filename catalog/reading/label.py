@@ -5,8 +5,8 @@ from dataclasses import dataclass, field, replace
 from functools import lru_cache
 
 from ...schema.convention import Convention
-from ...schema.signs import plain
-from ...schema.units import is_unit_like, unit_of
+from ...schema.figure.signs import plain
+from ...schema.units.read import is_unit_like, unit_of
 from ...schema.vocabulary import quantities
 from .lexicon import find_symbol, lexicon, symbol_form, tokens
 from .phrase import Phrase, conventions_of, match_phrase, variant_of

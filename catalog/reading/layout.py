@@ -2,7 +2,7 @@
 
 import re
 
-from ...schema.signs import plain
+from ...schema.figure.signs import plain
 from ...schema.vocabulary import quantity
 from .blocks import Block, is_data
 from .cells import is_caption, is_ditto, is_figure, is_role, is_symbol, is_unit, missing, strength

@@ -10,7 +10,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass, field
 from functools import cache, lru_cache
 
-from ...schema.signs import plain
+from ...schema.figure.signs import plain
 from ...schema.vocabulary import quantities, words
 
 _TOKEN = re.compile(

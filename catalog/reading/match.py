@@ -6,9 +6,9 @@ from dataclasses import field as made
 
 import numpy as np
 
-from ...schema.figure import FigureError, NumberStyle, read_figure
-from ...schema.signs import plain
-from ...schema.units import GD2_TO_INERTIA, Unit, UnitError, read_unit, unit_of
+from ...schema.figure.read import FigureError, NumberStyle, read_figure
+from ...schema.figure.signs import plain
+from ...schema.units.read import GD2_TO_INERTIA, Unit, UnitError, read_unit, unit_of
 from ...schema.vocabulary import Quantity, quantities, quantity
 from .lexicon import find_symbol, lexicon, squeeze, symbol_form, tokens
 from .model import Field

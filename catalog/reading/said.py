@@ -4,7 +4,7 @@ import re
 
 from ...schema.batch import FigureColumn
 from ...schema.convention import Commutation, Convention, default_convention
-from ...schema.units import Unit
+from ...schema.units.read import Unit
 from ...schema.vocabulary import Quantity, quantity
 from .figures import Values
 from .kind import Notes, note_conventions, note_temperature

@@ -145,20 +145,12 @@ def _figures(figures: Mapping[str, Document], marks: Mapping[str, str], title: s
         si = "" if isinstance(value, str) else p.quantity(value, unit)
         severity = marks.get(key)
         sign = Text(SIGNS[severity], style=STYLES[severity]) if severity else ""
-        table.add_row(*_cells((sign, p.words(key), _printed(f), si, p.plain(note), _place(f))))
+        table.add_row(*_cells((sign, p.words(key), _printed(f), si, p.plain(note), p.place(f))))
     return table
 
 
 def _printed(f: Document) -> str:
     return p.plain(" ".join(filter(None, (f["text"], f.get("printed_unit")))))
-
-
-def _place(f: Document) -> str:
-    """Row and column in short: R10 C3."""
-    cell = f.get("cell") or {}
-    return " ".join(
-        f"{sign}{cell[key]}" for sign, key in (("R", "row"), ("C", "column")) if cell.get(key)
-    )
 
 
 def finding_lines(findings: Sequence[Document]) -> Iterator[Text]:

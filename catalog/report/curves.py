@@ -12,12 +12,12 @@ from dataclasses import dataclass, replace
 import numpy as np
 from numpy.typing import NDArray
 
-from ...schema.cycle import Cycle
-from ...schema.demand import Demand
-from ...schema.heating import Load, heating
-from ...schema.machines import Commutation, Machines, armature_amperes
-from ...schema.operation import judge
-from ...schema.thermal import copper_factor, magnet_factor
+from ...schema.operation.cycle import Cycle
+from ...schema.operation.demand import Demand
+from ...schema.operation.heating import Load, heating
+from ...schema.operation.judge import judge
+from ...schema.operation.machines import Commutation, Machines, armature_amperes
+from ...schema.operation.thermal import copper_factor, magnet_factor
 
 Array = NDArray[np.float64]
 

@@ -8,12 +8,12 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from ...schema.adjust import Problem, fit
-from ...schema.inference import infer
-from ...schema.model import FIGURES, INDEX
-from ...schema.observed import observe
-from ...schema.suspects import leave_out, own_sd, predicted
-from ...schema.table import readings, sample, scale
+from ...schema.reconcile.adjust import Problem, fit
+from ...schema.reconcile.inference import infer
+from ...schema.reconcile.model import FIGURES, INDEX
+from ...schema.reconcile.observed import observe
+from ...schema.reconcile.suspects import leave_out, own_sd, predicted
+from ...schema.reconcile.table import readings, sample, scale
 from ..documents import Document
 
 if TYPE_CHECKING:

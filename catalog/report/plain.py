@@ -8,11 +8,14 @@ __all__ = [
     "cell",
     "convention",
     "interval",
+    "many",
     "number",
     "percent",
+    "place",
     "plain",
     "quantity",
     "scale",
+    "when",
     "words",
 ]
 
@@ -51,6 +54,24 @@ def convention(found: dict | None) -> str:
         said.append(f"at {number(found['temperature'])} °C")
     basis = found.get("basis")
     return ", ".join(said) + (f" ({basis})" if basis and said and basis != "stated" else "")
+
+
+def many(n: int, noun: str) -> str:
+    """ "1 motor", "3 motors"."""
+    return f"{n} {noun}{'s' * (n != 1)}"
+
+
+def when(at: str) -> str:
+    """A stored time (UTC) to the minute: "2026-12-01 09:45"."""
+    return at[:16].replace("T", " ")
+
+
+def place(figure: dict) -> str:
+    """Row and column of a figure in short: R10 C3."""
+    cell = figure.get("cell") or {}
+    return " ".join(
+        f"{sign}{cell[key]}" for sign, key in (("R", "row"), ("C", "column")) if cell.get(key)
+    )
 
 
 def cell(found: dict | None) -> str:

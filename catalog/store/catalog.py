@@ -2,7 +2,7 @@
 
 import sqlite3
 from collections.abc import Iterator, Sequence
-from contextlib import contextmanager
+from contextlib import contextmanager, suppress
 from datetime import UTC, datetime
 from pathlib import Path
 from types import TracebackType
@@ -122,26 +122,44 @@ class Catalog:
 
     # ---- asking
 
-    def __len__(self) -> int:
+    @contextmanager
+    def at_once(self) -> Iterator[None]:
+        """Answer all that is asked in the block from one state of the file.
+
+        Meanwhile other programs may write, but they wait to commit until the block ends.
+        """
         with in_words(self.path):
+            if self.connection.in_transaction:
+                yield
+                return
+            self.connection.execute("BEGIN")
+            try:
+                yield
+            finally:
+                # a generator may be done with after the catalog was closed
+                with suppress(sqlite3.ProgrammingError):
+                    self.rollback()
+
+    def __len__(self) -> int:
+        with self.at_once():
             return self.connection.execute(
                 "SELECT count(*) FROM motor WHERE replaced_by IS NULL"
             ).fetchone()[0]
 
     def find(self, part: str) -> Known:
         """The motor of that part number (or MAKER/PART)."""
-        with in_words(self.path):
+        with self.at_once():
             return load.find(self.connection, part)
 
     def motor(self, part: str) -> "Document":
         """A motor's document: figures as published, constants, findings, provenance."""
-        with in_words(self.path):
+        with self.at_once():
             known = load.find(self.connection, part)
             return next(load.motors(self.connection, [known.id]))
 
     def motors(self, parts: Sequence[str] | None = None) -> Iterator["Document"]:
         """The documents of these motors, or of all, in the order in which they were read."""
-        with in_words(self.path):
+        with self.at_once():
             if parts is None:
                 ids = load.current_ids(self.connection)
             else:
@@ -150,7 +168,7 @@ class Catalog:
 
     def findings(self, parts: Sequence[str] | None = None) -> list["Document"]:
         """The findings of these motors, or of all; errors first."""
-        with in_words(self.path):
+        with self.at_once():
             ids = None
             if parts is not None:
                 ids = [load.find(self.connection, part).id for part in parts]
@@ -162,26 +180,26 @@ class Catalog:
         """Arrays over all motors, see columns.py for the names; "id" is always among them."""
         from . import columns
 
-        with in_words(self.path):
+        with self.at_once():
             return columns.load(self.connection, names)
 
     def batch(self, source: int) -> "Batch":
         """The table a source was read from, as it was published."""
         from .rebuild import batch_of_source
 
-        with in_words(self.path):
+        with self.at_once():
             return batch_of_source(self.connection, source)[0]
 
     def corrections(self, *, revoked: bool = False) -> list["Correction"]:
         """The corrections that stand, or all that were ever made."""
         from . import corrections
 
-        with in_words(self.path):
+        with self.at_once():
             return corrections.stored(self.connection, revoked=revoked)
 
     def kept_readings(self) -> list[tuple[str, str, str]]:
         """Readings kept for a maker's headings: (maker, heading, reading as --set takes it)."""
-        with in_words(self.path):
+        with self.at_once():
             return self.connection.execute(
                 "SELECT maker, heading, reading FROM kept_readings ORDER BY maker, heading"
             ).fetchall()
@@ -190,14 +208,14 @@ class Catalog:
         """What was imported, oldest first."""
         from . import revisions
 
-        with in_words(self.path):
+        with self.at_once():
             return revisions.imports(self.connection)
 
     def revisions(self, part: str) -> list["Document"]:
         """The motor's documents, oldest first; the last is current."""
         from . import revisions
 
-        with in_words(self.path):
+        with self.at_once():
             known = load.find(self.connection, part)
             return list(
                 load.motors(self.connection, revisions.revision_ids(self.connection, known))
@@ -209,7 +227,7 @@ class Catalog:
         """The motors that an import touched: documents before and after, None where none is."""
         from . import revisions
 
-        with in_words(self.path):
+        with self.at_once():
             for old, new in revisions.changed_motors(self.connection, import_id):
                 ids = [i for i in (old, new) if i is not None]
                 found = dict(zip(ids, load.motors(self.connection, ids), strict=True))

@@ -30,7 +30,8 @@ class Grid:
     ``rows`` holds the text as a person sees it in the file ("0.55 mNm" where a number format
     adds the unit), '' for an empty cell. ``row_numbers`` and ``column_numbers`` give the place
     of each row and column in the file, counted from 1, so that hidden or skipped ones leave
-    a gap. ``notes`` are texts beside the table, as a page has them. ``continuation`` yields further rows in chunks of a long table, directly below;
+    a gap. ``notes`` are texts beside the table, as a page has them. ``continuation`` yields
+    further rows in chunks of a long table, directly below;
     such a row is longer than the grid only where the file's row is (cells without a heading).
 
     ``decimal`` is '.' where number cells were written out from stored numbers (a workbook,

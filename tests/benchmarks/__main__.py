@@ -30,7 +30,7 @@ from motorfolio.catalog.requirement import read_requirement
 from motorfolio.catalog.requirement_file import saved
 from motorfolio.catalog.store import Catalog
 from motorfolio.catalog.tables import read_tables
-from motorfolio.schema.reconcile import reconcile
+from motorfolio.schema.reconcile.run import reconcile
 
 from .baselines import fit_a_motor_at_a_time
 from .search import CYCLE, POINT, SQL, best, made, plain_python

@@ -26,8 +26,8 @@ from motorfolio.catalog.requirement import Requirement, read_requirement
 from motorfolio.catalog.requirement_file import saved
 from motorfolio.catalog.search import search
 from motorfolio.catalog.store import Catalog
-from motorfolio.schema.cycle import Pieces
-from motorfolio.schema.machines import Machines
+from motorfolio.schema.operation.cycle import Pieces
+from motorfolio.schema.operation.machines import Machines
 
 from ..search.made import catalog_of
 

@@ -18,9 +18,9 @@ from motorfolio.catalog.cli import COMMANDS, group
 from motorfolio.catalog.requirement_fields import LISTS, SECTIONS, Field
 from motorfolio.catalog.store.layout import bring_up_to_date
 from motorfolio.schema import __all__ as schema_names
-from motorfolio.schema.causes import CAUSES
 from motorfolio.schema.entry import MODELS, json_schema
-from motorfolio.schema.relations import (
+from motorfolio.schema.reconcile.causes import CAUSES
+from motorfolio.schema.reconcile.relations import (
     BOUNDS,
     CONVENTION,
     FAMILY,
@@ -30,8 +30,8 @@ from motorfolio.schema.relations import (
     THERMAL,
     WITHIN_SCATTER,
 )
-from motorfolio.schema.unit_factors import evaluate
-from motorfolio.schema.unit_table import table
+from motorfolio.schema.units.factors import evaluate
+from motorfolio.schema.units.table import table
 from motorfolio.schema.vocabulary import quantities
 
 from . import notes
@@ -190,7 +190,9 @@ def language_names() -> Lines:
 
 
 def _unit_section(section: str) -> list[list[str]]:
-    text = resources.files("motorfolio.schema").joinpath("units.txt").read_text(encoding="utf-8")
+    text = (
+        resources.files("motorfolio.schema.units").joinpath("units.txt").read_text(encoding="utf-8")
+    )
     body = text.split(f"\n[{section}]\n", 1)[1].split("\n\n[", 1)[0]
     lines = (line for line in body.splitlines() if line.strip() and not line.startswith("#"))
     return [[part.strip() for part in f"{line} ; ; ".split(" ;")] for line in lines]

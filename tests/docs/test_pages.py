@@ -10,7 +10,7 @@ import pytest
 
 from motorfolio.catalog.cli import COMMANDS
 from motorfolio.catalog.store.layout import MIGRATIONS
-from motorfolio.schema.causes import CAUSES
+from motorfolio.schema.reconcile.causes import CAUSES
 
 from . import generated, notes
 from .pages import ROOT, Page, matches, pages

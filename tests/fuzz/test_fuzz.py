@@ -6,9 +6,9 @@ from collections.abc import Callable
 
 import pytest
 
-from motorfolio.schema.figure import FigureError, read_figure
-from motorfolio.schema.numerals import NumberStyle
-from motorfolio.schema.units import UnitError, quantity, read_unit
+from motorfolio.schema.figure.numerals import NumberStyle
+from motorfolio.schema.figure.read import FigureError, read_figure
+from motorfolio.schema.units.read import UnitError, quantity, read_unit
 
 from .files import try_file
 from .guard import run

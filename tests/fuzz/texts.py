@@ -8,9 +8,9 @@ from random import Random
 from motorfolio.catalog.cycle_table import from_rows
 from motorfolio.catalog.requirement import read_requirement
 from motorfolio.catalog.requirement_fields import RequirementError
-from motorfolio.schema.figure import FigureError, read_figure
-from motorfolio.schema.numerals import NumberStyle
-from motorfolio.schema.units import UnitError, quantity, read_unit
+from motorfolio.schema.figure.numerals import NumberStyle
+from motorfolio.schema.figure.read import FigureError, read_figure
+from motorfolio.schema.units.read import UnitError, quantity, read_unit
 
 NUMBER_PARTS = [
     *"0123456789.,-+−–—±×·^()[]{}<>≤≥~'’ \u00a0\u2009\u202f*/|%eE°½²³⁴⁻¹⁾†#=:;\"″",

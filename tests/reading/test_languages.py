@@ -15,8 +15,46 @@ EXPECTED = {
     "maximum_winding_temperature": 125, "maximum_speed": 9000 * RPM, "mass": 0.34,
     "maximum_efficiency": 0.83, "speed_torque_gradient": 6.1 * RPM * 1000,
 }  # fmt: skip
-UNITS = ["V", "rpm", "mA", "mNm", "mNm", "mNm/A", "Ω", "mH", "gcm²", "ms", "K/W", "K/W", "s", "°C", "rpm", "g", "%", "rpm/mNm"]
-TEXTS = ["24", "5600", "120", "85", "920", "40.5", "1.05", "0.42", "121", "7.8", "2.4", "9.1", "31", "125", "9000", "340", "83", "6.1"]
+UNITS = [
+    "V",
+    "rpm",
+    "mA",
+    "mNm",
+    "mNm",
+    "mNm/A",
+    "Ω",
+    "mH",
+    "gcm²",
+    "ms",
+    "K/W",
+    "K/W",
+    "s",
+    "°C",
+    "rpm",
+    "g",
+    "%",
+    "rpm/mNm",
+]
+TEXTS = [
+    "24",
+    "5600",
+    "120",
+    "85",
+    "920",
+    "40.5",
+    "1.05",
+    "0.42",
+    "121",
+    "7.8",
+    "2.4",
+    "9.1",
+    "31",
+    "125",
+    "9000",
+    "340",
+    "83",
+    "6.1",
+]
 
 NAMES = {
     "en": "Type;Nominal voltage;No-load speed;No-load current;Nominal torque;Stall torque;Torque constant;Terminal resistance;Terminal inductance;Rotor inertia;Mechanical time constant;Thermal resistance winding-housing;Thermal resistance housing-ambient;Thermal time constant winding;Max. winding temperature;Max. permissible speed;Weight;Max. efficiency;Speed/torque gradient",

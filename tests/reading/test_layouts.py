@@ -58,12 +58,18 @@ Model | No load | | At maximum efficiency | | | Stall |
 MM-1 | 10000 | 0.1 | 8500 | 5.2 | 0.6 | 40 | 4.1
 """)
     motor = s.motors()["MM-1"]
-    assert motor == pytest.approx({
-        "no_load_speed": 10000 * RPM, "no_load_current": 0.1,
-        "stall_torque": 0.04, "stall_current": 4.1,
-    })
+    assert motor == pytest.approx(
+        {
+            "no_load_speed": 10000 * RPM,
+            "no_load_current": 0.1,
+            "stall_torque": 0.04,
+            "stall_current": 4.1,
+        }
+    )
     point = next(p for p in s.batch.points[0] if p.name == "maximum efficiency")
-    assert point.figures == pytest.approx({"nominal_speed": 8500 * RPM, "nominal_torque": 0.0052, "nominal_current": 0.6})
+    assert point.figures == pytest.approx(
+        {"nominal_speed": 8500 * RPM, "nominal_torque": 0.0052, "nominal_current": 0.6}
+    )
 
 
 def test_captions_over_the_middle_of_their_groups():
@@ -237,7 +243,9 @@ M-1 | 6 | 9000 | 31 | 0.41 | 12.1 | 5.9
 
 
 def test_brake_value_in_brackets_is_a_condition():
-    s = sheet("Type | Rated voltage [V] | Rotor inertia [kgcm²]\nA | 48 | 1.8 (1.9)\nB | 48 | 2.8 (2.9)")
+    s = sheet(
+        "Type | Rated voltage [V] | Rotor inertia [kgcm²]\nA | 48 | 1.8 (1.9)\nB | 48 | 2.8 (2.9)"
+    )
     assert s.motors()["A"]["rotor_inertia"] == pytest.approx(1.8e-4)
     assert s.batch.conditions[0].figures[0]["rotor_inertia"].value == pytest.approx(1.9e-4)
 

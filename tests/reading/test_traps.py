@@ -82,12 +82,16 @@ V | 3000 | 4.1 | 3.0 | 12 | 10
 """)
     assert s.motors()["V"]["continuous_stall_torque"] == 4.1
     assert s.motors()["V"]["continuous_stall_current"] == 3.0
-    s = sheet("Type | No-load speed [rpm] | Stall torque [mNm] | Stall current [A]\nM | 9000 | 41 | 3")
+    s = sheet(
+        "Type | No-load speed [rpm] | Stall torque [mNm] | Stall current [A]\nM | 9000 | 41 | 3"
+    )
     assert s.motors()["M"]["stall_torque"] == pytest.approx(0.041)
 
 
 def test_mains_and_bus_voltage():
-    s = sheet("Type | Mains voltage [VAC] | DC bus voltage [V] | Rated speed [rpm]\nA | 400 | 560 | 3000")
+    s = sheet(
+        "Type | Mains voltage [VAC] | DC bus voltage [V] | Rated speed [rpm]\nA | 400 | 560 | 3000"
+    )
     assert s.motors()["A"]["mains_voltage"] == 400
     assert s.motors()["A"]["nominal_voltage"] == 560
 
@@ -95,13 +99,22 @@ def test_mains_and_bus_voltage():
 def test_phase_and_line_resistance():
     s = sheet("Type | Rated voltage [V] | Phase resistance [Ω] | Pole pairs\nA | 48 | 0.3 | 4")
     assert s.convention("terminal_resistance").between == "phase"
-    s = sheet("Type | Rated voltage [V] | Resistance, line-to-line [Ω] | Pole pairs\nA | 48 | 0.3 | 4")
+    s = sheet(
+        "Type | Rated voltage [V] | Resistance, line-to-line [Ω] | Pole pairs\nA | 48 | 0.3 | 4"
+    )
     assert s.convention("terminal_resistance").between == "lines"
     assert s.convention("terminal_resistance").basis == "stated"
 
 
 def test_upper_case_export():
-    s = sheet("TYPE | RATED VOLTAGE (V) | RATED TORQUE (NM) | TORQUE CONSTANT (NM/A) | ROTOR INERTIA (KGCM2)\nA | 48 | 1.2 | 0.11 | 0.4")
+    s = sheet(
+        "TYPE | RATED VOLTAGE (V) | RATED TORQUE (NM) | TORQUE CONSTANT (NM/A) | ROTOR INERTIA (KGCM2)\nA | 48 | 1.2 | 0.11 | 0.4"
+    )
     assert s.motors()["A"] == pytest.approx(
-        {"nominal_voltage": 48, "nominal_torque": 1.2, "torque_constant": 0.11, "rotor_inertia": 4e-5}
+        {
+            "nominal_voltage": 48,
+            "nominal_torque": 1.2,
+            "torque_constant": 0.11,
+            "rotor_inertia": 4e-5,
+        }
     )

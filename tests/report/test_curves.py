@@ -9,9 +9,9 @@ from motorfolio.catalog.fleet import load_fleet
 from motorfolio.catalog.report import curves
 from motorfolio.catalog.report.implied import implied_figures
 from motorfolio.catalog.store import Catalog
-from motorfolio.schema.cycle import Cycle
-from motorfolio.schema.demand import Demand, Drive, Gearing, Supply, Surroundings
-from motorfolio.schema.operation import judge
+from motorfolio.schema.operation.cycle import Cycle
+from motorfolio.schema.operation.demand import Demand, Drive, Gearing, Supply, Surroundings
+from motorfolio.schema.operation.judge import judge
 
 PARTS = ("MARMOT-1", "TERN-45L", "CIGALE-B", "DACHS-24", "IGEL-12", "KODAMA-B")
 

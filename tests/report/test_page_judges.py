@@ -168,8 +168,8 @@ def test_motors_behind_gears_of_the_catalog(catalog: Path, tmp_path: Path) -> No
 
 def test_the_plane_s_limits_agree(catalog: Path, tmp_path: Path) -> None:
     from motorfolio.catalog.report import curves
-    from motorfolio.schema.cycle import Cycle
-    from motorfolio.schema.demand import Demand, Supply, Surroundings
+    from motorfolio.schema.operation.cycle import Cycle
+    from motorfolio.schema.operation.demand import Demand, Supply, Surroundings
 
     call = [*POINT, "--supply", "24 V", "--current", "20 A", "--current-convention", "rms"]
     requirement = requirement_of(search.make_context("search", call).params)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from motorfolio.schema.operation import (
+from motorfolio.schema.operation.judge import (
     Cycle,
     Demand,
     Drive,

@@ -5,9 +5,9 @@ import math
 import numpy as np
 import pytest
 
-from motorfolio.schema.causes import CAUSES, causes_of, shape, static_scores
 from motorfolio.schema.convention import Commutation
-from motorfolio.schema.evidence import transpositions
+from motorfolio.schema.reconcile.causes import CAUSES, causes_of, shape, static_scores
+from motorfolio.schema.reconcile.evidence import transpositions
 
 BRUSHED, SERVO = int(Commutation.BRUSHED), int(Commutation.SINUSOIDAL)
 

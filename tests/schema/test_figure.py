@@ -9,7 +9,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from motorfolio.schema.figure import (
+from motorfolio.schema.figure.read import (
     COMMA,
     POINT,
     FigureError,

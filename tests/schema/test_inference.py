@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 from motorfolio.schema.convention import Commutation, Convention, to_dc
-from motorfolio.schema.reconcile import reconcile
+from motorfolio.schema.reconcile.run import reconcile
 
 from .simulated_sheets import SERVO, make, restate
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from motorfolio.schema.operation import (
+from motorfolio.schema.operation.judge import (
     Cycle,
     Demand,
     Gearing,
@@ -15,7 +15,7 @@ from motorfolio.schema.operation import (
     Verdict,
     judge,
 )
-from motorfolio.schema.thermal import copper_factor
+from motorfolio.schema.operation.thermal import copper_factor
 
 RPM = 2 * np.pi / 60
 

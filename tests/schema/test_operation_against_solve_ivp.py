@@ -14,7 +14,7 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
-from motorfolio.schema.operation import (
+from motorfolio.schema.operation.judge import (
     Cycle,
     Demand,
     Gearing,
@@ -24,7 +24,7 @@ from motorfolio.schema.operation import (
     Utilisations,
     judge,
 )
-from motorfolio.schema.ratios import feasible_ratios
+from motorfolio.schema.operation.ratios import feasible_ratios
 
 from .simulated_machine import Plant
 

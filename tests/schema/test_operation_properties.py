@@ -10,8 +10,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from motorfolio.schema.machines import Machines
-from motorfolio.schema.operation import (
+from motorfolio.schema.operation.judge import (
     LIMITS,
     Cycle,
     Demand,
@@ -24,6 +23,7 @@ from motorfolio.schema.operation import (
     judge,
     judge_worst,
 )
+from motorfolio.schema.operation.machines import Machines
 
 from .made_up_motors import demand, motors, moving
 
@@ -254,14 +254,14 @@ def replace_inertia(machines: Machines) -> Machines:
     ],
 )
 def test_cycles_that_cannot_be_run(rows: tuple[list[float], ...], message: str) -> None:
-    from motorfolio.schema.cycle import CycleError
+    from motorfolio.schema.operation.cycle import CycleError
 
     with pytest.raises(CycleError, match=message):
         Cycle.from_rows(*rows)
 
 
 def test_zero_duration_is_refused() -> None:
-    from motorfolio.schema.cycle import CycleError
+    from motorfolio.schema.operation.cycle import CycleError
 
     with pytest.raises(CycleError, match="segment 2 lasts no time"):
         Cycle.from_points([(1.0, 1.0, 1.0), (1.0, 1.0, 0.0)])

@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 from scipy.optimize import brentq, minimize_scalar
 
-from motorfolio.schema.operation import (
+from motorfolio.schema.operation.judge import (
     Cycle,
     Demand,
     Gearing,
@@ -14,7 +14,7 @@ from motorfolio.schema.operation import (
     Verdict,
     judge,
 )
-from motorfolio.schema.ratios import feasible_ratios, ratio_grid
+from motorfolio.schema.operation.ratios import feasible_ratios, ratio_grid
 
 from .made_up_motors import as_plain, demand, demand_plain, motors, segments
 from .plain_motor import judge_plain, largest

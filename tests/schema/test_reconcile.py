@@ -6,14 +6,14 @@ import numpy as np
 import pytest
 from scipy.optimize import least_squares
 
-from motorfolio.schema.adjust import fit
 from motorfolio.schema.batch import Point, empty_figures
-from motorfolio.schema.checks import thermal
 from motorfolio.schema.convention import Commutation
-from motorfolio.schema.explain import Narrator
-from motorfolio.schema.model import INDEX
-from motorfolio.schema.observed import observe
-from motorfolio.schema.reconcile import reconcile
+from motorfolio.schema.reconcile.adjust import fit
+from motorfolio.schema.reconcile.checks import thermal
+from motorfolio.schema.reconcile.explain import Narrator
+from motorfolio.schema.reconcile.model import INDEX
+from motorfolio.schema.reconcile.observed import observe
+from motorfolio.schema.reconcile.run import reconcile
 
 from .simulated_sheets import FEW, FULL, RPM, SERVO, make, put, restate, single, spoil
 

@@ -6,11 +6,11 @@ import math
 import numpy as np
 import pytest
 
-from motorfolio.schema.adjust import fit
-from motorfolio.schema.model import INDEX
-from motorfolio.schema.observed import observe
-from motorfolio.schema.relations import OWN_RELATION, RELATIONS
-from motorfolio.schema.suspects import predicted
+from motorfolio.schema.reconcile.adjust import fit
+from motorfolio.schema.reconcile.model import INDEX
+from motorfolio.schema.reconcile.observed import observe
+from motorfolio.schema.reconcile.relations import OWN_RELATION, RELATIONS
+from motorfolio.schema.reconcile.suspects import predicted
 from motorfolio.schema.vocabulary import quantities
 
 from .simulated_sheets import put, single

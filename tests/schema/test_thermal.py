@@ -5,8 +5,8 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from motorfolio.schema.pwm import space_vector_mean_square, two_level_ripple
-from motorfolio.schema.thermal import (
+from motorfolio.schema.operation.pwm import space_vector_mean_square, two_level_ripple
+from motorfolio.schema.operation.thermal import (
     COPPER_COEFFICIENT,
     TwoBody,
     copper_factor,

@@ -8,10 +8,9 @@ from pathlib import Path
 
 import pytest
 
-from motorfolio.schema import unit_factors
-from motorfolio.schema.figure import FigureError
-from motorfolio.schema.unit_table import table
-from motorfolio.schema.units import (
+from motorfolio.schema.figure.read import FigureError
+from motorfolio.schema.units import factors as unit_factors
+from motorfolio.schema.units.read import (
     GD2_TO_INERTIA,
     UnitError,
     convert,
@@ -20,6 +19,7 @@ from motorfolio.schema.units import (
     read_unit,
     unit_of,
 )
+from motorfolio.schema.units.table import table
 
 # International yard and pound agreement (1959); standard gravity, 3rd CGPM (1901).
 LB, INCH, GN = 0.45359237, 0.0254, 9.80665
@@ -449,8 +449,8 @@ def test_an_unknown_si_unit_is_a_fault_of_the_caller() -> None:
 
 
 def test_frozen_factors_are_what_pint_gives() -> None:
-    """``unit_factors.txt`` is generated; run ``python -m motorfolio.schema.unit_factors`` anew."""
-    path = Path(unit_factors.__file__).with_name("unit_factors.txt")
+    """``factors.txt`` is generated; run ``python -m motorfolio.schema.units.factors`` anew."""
+    path = Path(unit_factors.__file__).with_name("factors.txt")
     kept = [line for line in path.read_text(encoding="utf-8").splitlines() if line[0] != "#"]
     assert kept == unit_factors.frozen_lines()
 
@@ -467,7 +467,7 @@ def test_every_spelling_in_the_table_is_a_unit() -> None:
 
 def test_everyday_quantities_need_no_pint() -> None:
     code = (
-        "import sys; from motorfolio.schema.units import quantity as q\n"
+        "import sys; from motorfolio.schema.units.read import quantity as q\n"
         "q('0.3 N*m', ('N·m',)); q('3000 rpm', ('rad/s',)); q('20 oz-in', ('N·m',))\n"
         "q('1e-5 kg*m^2', ('kg·m²',)); q('500 g', ('kg',)); q('48 V', ('V',))\n"
         "q('40 °C', ('°C',))\n"

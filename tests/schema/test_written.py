@@ -6,7 +6,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from motorfolio.schema.units import UnitError, convert
+from motorfolio.schema.units.read import UnitError, convert
 from motorfolio.schema.written import in_words, number, percent, quantity
 
 

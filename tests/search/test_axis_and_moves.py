@@ -10,9 +10,9 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from motorfolio.catalog.candidate_documents import load_summary
-from motorfolio.schema.axis import GRAVITY, Axis
-from motorfolio.schema.cycle import Cycle
-from motorfolio.schema.moves import MoveError, move, one_after_the_other, ramps, rest
+from motorfolio.schema.operation.axis import GRAVITY, Axis
+from motorfolio.schema.operation.cycle import Cycle
+from motorfolio.schema.operation.moves import MoveError, move, one_after_the_other, ramps, rest
 
 RPM = 2 * math.pi / 60
 

@@ -19,11 +19,11 @@ from motorfolio.catalog.requirement_file import read_file
 from motorfolio.catalog.search import Found, names_of, search
 from motorfolio.catalog.store import Catalog
 from motorfolio.catalog.tables import read_tables
-from motorfolio.schema.energy import draw
-from motorfolio.schema.limits import Verdict
-from motorfolio.schema.machines import Machines
-from motorfolio.schema.operation import Cycle, Demand, Gearing, judge
-from motorfolio.schema.thermal import copper_factor
+from motorfolio.schema.operation.energy import draw
+from motorfolio.schema.operation.judge import Cycle, Demand, Gearing, judge
+from motorfolio.schema.operation.limits import Verdict
+from motorfolio.schema.operation.machines import Machines
+from motorfolio.schema.operation.thermal import copper_factor
 
 from .made import SAMPLES, catalog_of, sample_catalog
 

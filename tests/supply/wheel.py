@@ -24,7 +24,7 @@ from .project import SAMPLES, build, copy_of_project, environment, run
 
 SCRIPT = """\
 from motorfolio.catalog import MotorCatalog, normalise
-from motorfolio.schema.units import quantity
+from motorfolio.schema.units.read import quantity
 
 motor = normalise({"part_number": "EX-1", "torque_constant": "30 mN·m/A"})
 name: str = motor.part_number

@@ -6,8 +6,8 @@ from typing import Any
 
 import numpy as np
 
-from ....schema.demand import Demand, Gearing
-from ....schema.limits import LIMITS, Verdict
+from ....schema.operation.demand import Demand, Gearing
+from ....schema.operation.limits import LIMITS, Verdict
 from ...choice import _NEEDED, Judged, true_drop
 from ...requirement import Requirement
 from ...search import Found, Shown

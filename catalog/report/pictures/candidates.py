@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ....schema.limits import Verdict
+from ....schema.operation.limits import Verdict
 from . import style as s
 
 if TYPE_CHECKING:

@@ -9,9 +9,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ....schema.errors import MotorfolioError
-from ....schema.limits import Verdict
-from ....schema.machines import Machines
-from ....schema.ratios import ratio_grid
+from ....schema.operation.limits import Verdict
+from ....schema.operation.machines import Machines
+from ....schema.operation.ratios import ratio_grid
 from ...choice import Judge, behind
 from ...fleet import load_fleet
 from ...search import Found, Shown, search, show

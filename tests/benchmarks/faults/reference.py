@@ -59,7 +59,7 @@ def _fit(sheet: Sheet, m: Motor, keys: list[str], y: np.ndarray, sd: np.ndarray,
 
     use = np.array([k not in out for k in keys])
     p_sd = np.array([prior.get(n, 3.0) for n in names])
-    for _ in range(4):
+    for _ in range(10):  # far enough for a factor of a million, 1.5 in the logarithm a step
         base = predict(x)
         jac = np.empty((len(keys), len(x)))
         for c in range(len(x)):

@@ -9,7 +9,7 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from motorfolio.schema.motor import Finding
-from motorfolio.schema.reconcile import reconcile
+from motorfolio.schema.reconcile.run import reconcile
 
 from .mistakes import Planted, plant, plant_column
 from .reference import judge

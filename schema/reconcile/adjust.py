@@ -1,0 +1,229 @@
+"""Weighted least squares over many motors at once: Gauss-Newton in logarithms.
+
+The normal matrix of the linear rows is one matrix product over all motors of a chunk; the few
+nonlinear rows are added to it. Missing figures have weight zero, and a weak prior keeps every
+system regular, so that one incomplete motor can't stop the batch.
+"""
+
+from dataclasses import dataclass, field
+
+import numpy as np
+from numpy.typing import NDArray
+
+from ..batch import Floats
+from .equations import Equations, product
+from .model import (
+    INDEX,
+    LAW_BINDS,
+    LAW_SCATTER,
+    UNPUBLISHED_I0,
+    UNPUBLISHED_I0_SERVO,
+    UNPUBLISHED_IN,
+    UNPUBLISHED_NN_SERVO,
+    P,
+    Readings,
+)
+
+CHUNK = 2048
+"""Motors whose normal matrices are built at a time: what fits a processor's cache."""
+
+ITERATIONS = 6
+KEPT = 3
+REST = 1e-4
+LONGEST = 3.0
+"""Steps of the adjustment: at most so many, with the first matrix kept for so many; at rest below
+this change of any logarithm; none longer than this."""
+
+ROBUST_CUTS = (30.0, 10.0, 5.0, 3.0, 3.0, 3.0, 3.0)
+"""The cut of the robust fit, step by step, in standard deviations."""
+
+LAWS = len(LAW_SCATTER) + 3
+
+
+@dataclass(slots=True)
+class Problem:
+    """n motors to adjust.
+
+    y (n, F) logarithms of the figures, brought to the DC motor at the reference temperature (0
+    where absent); present (n, F); digits and scatter (n, F) standard deviations of y from the
+    printed digits and from custom; servo (n,) true for sinusoidal motors; family (n, 4) what the
+    motor's family shares (logarithms), family_sd its standard deviation (inf: no family);
+    bound (n, laws) which laws say anything about a motor's published figures (as published:
+    leaving a figure out doesn't unbind what implies it); scale (n,) or (1,) how much of the
+    customary scatter the table shows.
+    """
+
+    y: Floats
+    present: NDArray[np.bool_]
+    digits: Floats
+    scatter: Floats
+    servo: NDArray[np.bool_]
+    family: Floats
+    family_sd: Floats
+    readings: Readings
+    bound: NDArray[np.bool_]
+    scale: Floats = field(default_factory=lambda: np.ones(1))
+
+    def __len__(self) -> int:
+        return len(self.y)
+
+    def take(self, which: NDArray[np.integer] | slice) -> "Problem":
+        """The same for these motors (repeats allowed)."""
+        return Problem(
+            self.y[which], self.present[which], self.digits[which], self.scatter[which],
+            self.servo[which], self.family[which], self.family_sd[which], self.readings,
+            self.bound[which],
+            self.scale if len(self.scale) == 1 else self.scale[which],
+        )  # fmt: skip
+
+    def without(self, figures: NDArray[np.integer]) -> "Problem":
+        """The same with one figure left out a motor: figures (n,) indices."""
+        other = self.take(slice(None))
+        other.present = self.present.copy()
+        other.present[np.arange(len(self)), figures] = False
+        return other
+
+    def sd(self) -> Floats:
+        """Standard deviation of every figure's row, shape (n, F)."""
+        return np.sqrt(self.digits**2 + (self.scale[:, None] * self.scatter) ** 2)
+
+    def weights(self) -> Floats:
+        """1/variance of every figure's row, 0 where absent."""
+        return np.where(self.present, 1.0 / self.sd() ** 2, 0.0)
+
+    def law_weights(self) -> Floats:
+        """1/variance of the laws and of the priors on what isn't published: I0, I_N, n_N."""
+        laws = np.empty((len(self), LAWS))
+        scatter = np.array(list(LAW_SCATTER.values()))
+        laws[:, :-3] = self.bound / (self.scale[:, None] * scatter) ** 2
+        missing = ~self.present
+        prior = np.where(self.servo, UNPUBLISHED_I0_SERVO[1], UNPUBLISHED_I0[1]) ** -2.0
+        laws[:, -3] = missing[:, INDEX["no_load_current"]] * prior
+        rated = self.bound[:, 2] | self.bound[:, 3]
+        who = missing[:, INDEX["nominal_current"]] & rated & ~self.servo
+        laws[:, -2] = who * UNPUBLISHED_IN[1] ** -2.0
+        who = missing[:, INDEX["nominal_speed"]] & self.bound[:, 3] & self.servo
+        laws[:, -1] = who * UNPUBLISHED_NN_SERVO[1] ** -2.0
+        return laws
+
+
+def bound_laws(present: NDArray[np.bool_]) -> NDArray[np.bool_]:
+    """Which laws say anything about the published figures, (n, number of laws)."""
+    out = np.empty((len(present), len(LAW_SCATTER)), dtype=bool)
+    for i, law in enumerate(LAW_SCATTER):
+        out[:, i] = present[:, [INDEX[key] for key in LAW_BINDS[law]]].any(axis=1)
+    return out
+
+
+@dataclass(slots=True)
+class Fit:
+    """The adjusted unknowns (n, P), their covariance (n, P, P) and the sum of squares (n,)."""
+
+    x: Floats
+    covariance: Floats
+    chi2: Floats
+
+    def combination(self, row: Floats) -> tuple[Floats, Floats]:
+        """Value and standard deviation of a linear combination of the unknowns."""
+        used = np.flatnonzero(row)
+        variance = np.zeros(len(self.x))
+        for a in used:
+            for b in used:
+                variance += row[a] * row[b] * self.covariance[:, a, b]
+        return product(row[None, :], self.x.T)[0], np.sqrt(np.maximum(variance, 0.0))
+
+
+def fit(problem: Problem, robust: bool = False) -> Fit:
+    """Adjust all motors of a problem; with ``robust`` gross errors are weighed down.
+
+    Starts from the log-linear solution, in which the small corrections take typical values.
+    """
+    n = len(problem)
+    out = Fit(np.empty((n, P)), np.empty((n, P, P)), np.empty(n))
+    adjust = _robust if robust else _plain
+    for start in range(0, n, CHUNK):
+        part = slice(start, min(start + CHUNK, n))
+        chunk = problem.take(part)
+        equations = Equations(chunk)
+        x, inverse, chi2 = adjust(chunk, equations)
+        out.x[part], out.covariance[part], out.chi2[part] = (
+            x.T, equations.covariance(inverse), chi2
+        )  # fmt: skip
+    return out
+
+
+def relinearised(problem: Problem, at: Fit) -> Fit:
+    """The ordinary adjustment with all rows linearised at another fit: one step, its χ² as of the
+    linearised rows."""
+    n = len(problem)
+    out = Fit(np.empty((n, P)), np.empty((n, P, P)), np.empty(n))
+    for start in range(0, n, CHUNK):
+        part = slice(start, min(start + CHUNK, n))
+        equations = Equations(problem.take(part))
+        x = at.x[part].T.copy()
+        matrix, right = equations.normal(x)
+        inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
+        step = (inverse @ right.T[:, :, None])[:, :, 0].T
+        out.chi2[part] = equations.chi2(x) - (right * step).sum(axis=0)
+        x[equations.active] += step
+        out.x[part], out.covariance[part] = x.T, equations.covariance(inverse)
+    return out
+
+
+def _loglinear(equations: Equations) -> Floats:
+    x = equations.start()
+    matrix, right = equations.normal(x, typical=True)
+    x[equations.active] += np.linalg.solve(matrix, right.T[:, :, None])[:, :, 0].T
+    return x
+
+
+def _step(inverse: Floats, right: Floats) -> Floats:
+    return np.clip((inverse @ right.T[:, :, None])[:, :, 0].T, -LONGEST, LONGEST)
+
+
+def _plain(problem: Problem, equations: Equations) -> tuple[Floats, Floats, Floats]:
+    """Gauss-Newton with the matrix of the first step kept; the few motors that this doesn't bring
+    to rest are iterated further with their own."""
+    x = _loglinear(equations)
+    active = equations.active
+    matrix, right = equations.normal(x)
+    inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
+    step = _step(inverse, right)
+    x[active] += step
+    size = np.abs(step).max(axis=0)
+    far = size > 0.2
+    for _ in range(KEPT):
+        step = _step(inverse, equations.gradient(x))
+        x[active] += step
+        size = np.abs(step).max(axis=0)
+        if size.max(initial=0.0) < REST:
+            break
+    chi2 = equations.chi2(x)
+    who = np.flatnonzero(far | (size > REST))
+    if who.size:
+        x[:, who], inverse[who], chi2[who] = _further(problem.take(who), equations, x[:, who])
+    return x, inverse, chi2
+
+
+def _further(problem: Problem, whole: Equations, x: Floats) -> tuple[Floats, Floats, Floats]:
+    """More Gauss-Newton steps for some motors of a chunk, with the chunk's active unknowns."""
+    equations = Equations(problem, whole.active)
+    inverse = np.empty((0, 0, 0))
+    for _ in range(ITERATIONS):
+        matrix, right = equations.normal(x)
+        inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
+        step = _step(inverse, right)
+        x[equations.active] += step
+        if np.abs(step).max(initial=0.0) < REST:
+            break
+    return x, inverse, equations.chi2(x)
+
+
+def _robust(_: Problem, equations: Equations) -> tuple[Floats, Floats, Floats]:
+    x = _loglinear(equations)
+    inverse = np.empty((0, 0, 0))
+    for cut in ROBUST_CUTS:
+        matrix, right = equations.normal(x, cut)
+        inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
+        x[equations.active] += _step(inverse, right)
+    return x, inverse, equations.chi2(x, ROBUST_CUTS[-1])
