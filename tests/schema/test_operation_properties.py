@@ -146,9 +146,12 @@ def test_a_segment_split_in_two_changes_nothing(seed: int, at: float, which: int
     )
     second = replace(first, cycle=cycle)
     # The ripple's mean over a segment is that of five nodes, which the split moves; above the
-    # supply, where nothing is feasible, it stops with a kink.
+    # supply, where nothing is feasible, it stops with a kink. At the edge of runaway a millionth
+    # decides between two worlds, both far beyond any limit.
     a, b = (judge(machines, asked, RATIOS, periodic=False) for asked in (first, second))
-    within = a.voltage < 1
+    edge = np.fmax(a.thermal, b.thermal) > 2
+    within = (a.voltage < 1) & ~edge & ~(a.runaway | b.runaway)
+    assert within.any()
     assert a.rms_current[within] == pytest.approx(b.rms_current[within], rel=1e-4)
     still = replace(first, supply=Supply(48.0)), replace(second, supply=Supply(48.0))
     first_, second_ = (judge(machines, asked, RATIOS, periodic=False) for asked in still)
