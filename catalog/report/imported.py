@@ -7,6 +7,7 @@ from collections.abc import Iterable, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from rich.cells import cell_len
 from rich.console import Console
 from rich.padding import Padding
 from rich.text import Text
@@ -14,7 +15,7 @@ from rich.text import Text
 from ..documents import Document
 from . import plain as p
 from .screen import console
-from .terminal import SEVERITIES, counted, print_finding, table, whole
+from .terminal import counted, print_finding, table, whole
 
 if TYPE_CHECKING:
     from ...schema.batch import Heading
@@ -29,9 +30,10 @@ LEGEND = {
     "~": "~ inferred from the figures",
     "*": "* printed once for the motors of a frame",
 }
-_NAMED = re.compile(
-    r'"(?P<name>[^"]*)"(?: is a name of it| names it| is spelled like a name of it)?'
-)
+LONG = 18
+"""A reason of more letters goes below the table."""
+GAP = 3
+"""Columns between two texts of a table."""
 
 
 def print_import(result: "ImportResult", catalog: Path, *, dry_run: bool) -> None:
@@ -84,53 +86,97 @@ def _print_reading(out: Console, file: "FileResult") -> set[str]:
     guesses = {u["heading"]: u["guesses"] for u in file.unread if not u["part_number"]}
     # a long list repeats its headings from page to page
     rows = Counter(_row(h, guesses.get(h.text, ())) for h in file.headings)
-    shown = table("Heading", "Read as", "Convention", "Why")
-    shown.columns[0].max_width = max(26, out.width * 2 // 5)
-    for column in (shown.columns[0], shown.columns[2]):
-        column.no_wrap, column.overflow = True, "ellipsis"
-    for (heading, read_as, convention, why), n in rows.items():
-        shown.add_row(
-            Text(heading),
-            Text(read_as),
-            Text(convention),
-            Text(f"{why} ({n} times)" if n > 1 else why),
-        )
+    notes = _Notes()
+    said = [notes.mark(f"{row[3]} ({n} times)" if n > 1 else row[3]) for row, n in rows.items()]
+    columns = [("Read as", [r[1] for r in rows]), ("Convention", [r[2] for r in rows]),
+               ("Why", said)]  # fmt: skip
+    columns = [(name, texts) for name, texts in columns if any(texts)]
+    widths = [max(cell_len(text) for text in (name, *texts)) for name, texts in columns]
+    room = out.width - sum(widths) - GAP * len(widths)
+    shown = table("Heading", *(name for name, _ in columns))
+    whole(shown, *range(len(columns) + 1))
+    for i, row in enumerate(rows):
+        shown.add_row(*map(Text, (shortened(row[0], room), *(texts[i] for _, texts in columns))))
     out.print(shown)
     signs = {sign for row in rows for sign in LEGEND if sign in row[2] or row[0].endswith(sign)}
-    if signs:
-        out.print(Text("; ".join(LEGEND[s] for s in LEGEND if s in signs), style="dim"))
+    legend = [LEGEND[s] for s in LEGEND if s in signs]
+    if any(not text for text in said):
+        legend.append("read by name and unit where no reason stands")
+    if legend:
+        out.print(Text("; ".join(legend), style="dim"))
+    for line in notes.lines():
+        out.print(Padding(Text(line, style="dim"), (0, 0, 0, 2)))
     return {h.text for h in file.headings if h.quantity is None}
 
 
+class _Notes:
+    """Long reasons go below the table, each once."""
+
+    def __init__(self) -> None:
+        self.letters: dict[str, str] = {}
+
+    def mark(self, reason: str) -> str:
+        if len(reason) <= LONG:
+            return reason
+        n = len(self.letters)
+        letter = chr(ord("a") + n) if n < 26 else f"n{n + 1}"
+        return self.letters.setdefault(reason, letter)
+
+    def lines(self) -> list[str]:
+        return [f"{letter}  {reason}" for reason, letter in self.letters.items()]
+
+
+def shortened(text: str, width: int) -> str:
+    """The text in so many columns, cut before its unit: "Wärmewiderstand Wick… [K/W]"."""
+    if cell_len(text) <= width:
+        return text
+    found = re.search(r"\s*[\[(][^\[(]*[\])](?: \*)?$|\s\*$", text)
+    tail = found.group().lstrip() if found and cell_len(found.group()) < width // 2 else ""
+    head = text[: found.start()] if tail and found else text
+    while head and cell_len(head) + cell_len(tail) + 2 > width:
+        head = head[:-1]
+    return f"{head.rstrip()}… {tail}".rstrip()
+
+
+def brief(key: str) -> str:
+    """A quantity's name, the longest ones abridged to fit a line."""
+    name = p.words(key).replace("maximum", "max.")
+    return name.replace("thermal resistance ", "Rth ").replace("l time constant ", "l time const. ")
+
+
 def _row(h: "Heading", guesses: Sequence[str]) -> tuple[str, str, str, str]:
-    text = p.plain(h.text).rpartition(" › ")[2] if h.quantity else p.plain(h.text)
+    heading = p.plain(h.text)
+    text = heading if h.quantity is None or " under " in h.reason else heading.split(" › ")[-1]
     if h.unit and h.quantity and not re.search(r"[\[(,]", text) and not text.endswith(h.unit):
         text += f" [{h.unit}]"
     if SHARED in h.reason:
         text += " *"
     why = p.plain(short(h.reason))
-    if 0 < h.score < 1 and h.quantity:
-        why += f" {h.score:.2f}"
+    if h.quantity and 0 < h.score < 1:
+        why = f"{why or 'name, unit'} {h.score:.2f}"
     if guesses and not h.quantity:
         why += f"; may be {' or '.join(map(p.words, guesses))}"
-    return text, p.words(h.quantity) if h.quantity else "not read", _convention(h), why
+    read_as = brief(h.quantity) if h.quantity else "not read"
+    if point := re.fullmatch(r"(.+) at the point (\w+)", why):
+        read_as, why = f"{point[1]} of a point", ""
+    return text, read_as, _convention(h), why
 
 
 def short(reason: str) -> str:
-    """The reason in a few words: "name, unit", "symbol, unit", "name under “Stall”, unit"."""
-    reason = reason.replace(SHARED, "")
-    first, *rest = reason.split("; ")
-    fits = first.endswith(" fits")
-    if fits:
-        first = first.rpartition(", ")[0]
-    first = re.sub(r", [^,]* fits$", "", first)
-    first = re.sub(r', and so does the symbol "[^"]*"', ", symbol", first)
-    first = re.sub(r'symbol "[^"]*"', "symbol", first)
-    if "spelled like" in first:
-        first = _NAMED.sub(r"like “\g<name>”", first, count=1)
-    else:
-        first = _NAMED.sub("name", first, count=1) if not first.endswith("figures") else first
-    return "; ".join([first + ", unit" * fits, *rest])
+    """The reason in a few words, such as "symbol"; nothing where name and unit say it."""
+    first, *rest = reason.replace(SHARED, "").split("; ")
+    if first.endswith(" fits"):
+        first = re.sub(r"(, [^,]* fits)+$", "", first)
+    first = re.sub(r', and so does the symbol "[^"]*"', "", first)
+    first = re.sub(r'^symbol "[^"]*"', "symbol", first)
+    if like := re.fullmatch(r'"([^"]*)" is spelled like a name of it', first):
+        first = f"like “{like[1]}”"
+    if re.fullmatch(
+        r'"[^"]*"(?: is a name of it| names it| under "[^"]*")?|the part numbers', first
+    ):
+        first = ""
+    first = re.sub(r'^"[^"]*" (?:is a name of it|names it), ', "", first)
+    return "; ".join(filter(None, [first, *rest]))
 
 
 def _convention(h: "Heading") -> str:

@@ -79,8 +79,8 @@ def print_finding(out: Console, f: Document) -> None:
     details = []
     if f["cause"] != "unexplained":
         details.append(f"cause: {f['cause']}")
-    if f["other_causes"]:
-        details.append(f"or: {', '.join(f['other_causes'])}")
+    if others := [cause for cause in f["other_causes"] if cause != "unexplained"]:
+        details.append(f"or: {', '.join(others)}")
     if details:
         out.print(Padding(Text("; ".join(details), style="dim"), (0, 0, 0, 4)))
 
