@@ -187,8 +187,8 @@ def _convention(h: "Heading") -> str:
     mark = BASES.get(str(found.get("basis", "")), "")
     said = [f"{found[k]}{mark}" for k in ("current", "voltage", "between", "connection", "shape")
             if k in found]  # fmt: skip
-    if "temperature" in found:
-        said.append(f"{p.number(found['temperature'])} °C")
+    if h.convention.temperature is not None:
+        said.append(f"{p.number(h.convention.temperature)} °C")
     return ", ".join(dict.fromkeys(said))
 
 
