@@ -126,6 +126,17 @@ def fits(columns: list[Interval], other: list[Interval]) -> bool:
     return True
 
 
+def lies_in(columns: list[Interval], other: list[Interval]) -> bool:
+    """Whether every column overlaps one column of another table, and no two the same one."""
+    found: list[int] = []
+    for left, right in columns:
+        under = [j for j, (a, b) in enumerate(other) if min(right, b) > max(left, a)]
+        if len(under) != 1 or under[0] in found:
+            return False
+        found += under
+    return True
+
+
 def join_split_labels(
     rows: list[list[str]], numbers: list[int], spans: list[Span]
 ) -> tuple[list[list[str]], list[int], list[Span]]:

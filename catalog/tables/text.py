@@ -5,10 +5,11 @@ import unicodedata
 from collections import Counter
 
 from .cells import clean, even
-from .columns import Piece, arrange, find_columns, fits, join_split_labels
+from .columns import Piece, arrange, find_columns, fits, join_split_labels, lies_in
 from .grid import Grid
 
-_LABEL = r"[^\s:=;|]{1,40}(?:[ \xa0][^\s:=;|]{1,40}){0,9}"
+# Bilingual labels are long: "Thermal time constant winding / Constante de temps thermique du …".
+_LABEL = r"[^\s:=;|]{1,40}(?:[ \xa0][^\s:=;|]{1,40}){0,19}"
 # A colon between digits is a ratio or a time, one before // a web address.
 _SIGN = r"[ \xa0]*(?:：|=|:(?!//)(?!(?<=\d:)\d))[ \xa0]*"
 _PAIR = re.compile(rf"\s*(?P<label>{_LABEL}){_SIGN}(?P<value>.*)$", re.S)
@@ -23,13 +24,14 @@ _NOTE = re.compile(r"\s*(?:[*†‡¹²³⁴⁵]|\(?\d{1,2}\)|note|anm)", re.IGN
 _FIGURE = re.compile(
     r"(?:[<>≤≥~±≈]?[+\-−]?[.,]?\d[\d.,'’…/–\-]*(?:[eE][+\-]?\d+)?%?[*†¹²³]*|[-–—]+|n/a)$"
 )
+_THIN = re.compile(r"[\u2000-\u200a\u202f\u205f]")
 _RULE = re.compile(r"[\s\-=_─━+┼|]{3,}$")
 _OPEN = re.compile(r"[,;:=±/(\[×]$")
 
 
 def is_pairs(sample: str) -> bool:
     """Whether most lines of a text hold "label: value" pairs rather than columns."""
-    lines = [line for line in sample.splitlines() if line.strip()]
+    lines = [_THIN.sub(" ", line) for line in sample.splitlines() if line.strip()]
     pairs = sum(_starts_pair(line) for line in lines)
     several = sum(len(_pairs_of(line)) > 1 for line in lines)
     return pairs + several >= 2 and pairs >= 0.5 * len(lines)
@@ -75,7 +77,7 @@ def read_text(text: str) -> list[Grid]:
     """The tables of a pasted text; for paragraphs of pairs a grid of (heading, text) each."""
     lines = text.replace("\r\n", "\n").replace("\r", "\n").split("\n")
     if is_pairs("\n".join(lines[:2000])):
-        return _read_pairs(lines)
+        return _read_pairs([_THIN.sub(" ", line) for line in lines])
     return _read_columns(lines)
 
 
@@ -214,7 +216,10 @@ class _Block:
         both = find_columns([p for _, line in other.lines + self.lines if (p := _pieces(line))])
         most = max(len(self.columns), len(other.columns))
         return fits(self.columns, other.columns) or (
-            len(both) == most and min(len(self.columns), len(other.columns)) > 1
+            len(both) == most
+            and min(len(self.columns), len(other.columns)) > 1
+            and lies_in(self.columns, both)
+            and lies_in(other.columns, both)
         )
 
     def grid(self) -> Grid:
