@@ -33,22 +33,24 @@ def largest_square(
     table = np.stack(weights)
     first, second = accelerated[:, 0], accelerated[:, 1]
     speed0, speed1 = first[:, 3:], second[:, 3:]
-    # U² can peak inside only if its crosswise part, the product of speed and torque, does: if the
-    # product's slope, itself a combination of the four weights, changes sign over the piece.
+    torque0, torque1 = first @ table, second @ table
+    u0, u1 = (t * drop + w * emf for t, w in ((torque0, speed0), (torque1, speed1)))
+    # The straight part of U² is largest at an end; its crosswise part, the product of speed and
+    # torque, there or where its slope, itself a combination of the four weights, changes sign.
+    # Only where the two together could exceed what is known does a piece deserve a closer look.
     slope0 = (speed0 * second + (speed1 - 2 * speed0) * first) @ table
     slope1 = ((2 * speed1 - speed0) * second - speed1 * first) @ table
-    piece, which = np.nonzero(slope0 * slope1 < 0)
+    turns = slope0 * slope1 < 0
+    bend = np.where(turns, slope1 - slope0, 1.0)
+    across = np.maximum(np.abs(torque0 * speed0), np.abs(torque1 * speed1))
+    inside = np.abs(torque0 * speed0 - slope0**2 / (2 * bend))
+    across = np.where(turns, np.maximum(across, inside), across) * reactance
+    bound = np.maximum(u0**2, u1**2) + across**2
+    piece, which = np.nonzero(bound > square * (1 + 1e-12))
     if piece.size == 0:
         return square
-    torque0, torque1 = ((ends @ table)[piece, which] for ends in (first, second))
+    u0, u1, torque0, torque1 = (a[piece, which] for a in (u0, u1, torque0, torque1))
     w0, w1 = speed0[piece, 0], speed1[piece, 0]
-    u0, u1 = (t * drop[which] + w * emf[which] for t, w in ((torque0, w0), (torque1, w1)))
-    begin, end = slope0[piece, which], slope1[piece, which]
-    across = (torque0 * w0 - begin**2 / (2 * (end - begin))) * reactance[which]
-    bound = np.maximum(u0**2, u1**2) + across**2
-    kept = bound > square[which]
-    which, u0, u1 = which[kept], u0[kept], u1[kept]
-    torque0, torque1, w0, w1 = torque0[kept], torque1[kept], w0[kept], w1[kept]
     peak = _peak(u0, u1 - u0, torque0, torque1 - torque0, w0, w1 - w0, reactance[which])
     np.maximum.at(square, which, peak)
     return square
