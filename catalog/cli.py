@@ -93,7 +93,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
     except MotorfolioError as error:
         return _refuse(str(error))
     except (click.Abort, KeyboardInterrupt):
-        return _refuse("stopped; nothing was stored", status=130)
+        return _refuse("stopped; nothing was changed", status=130)
     except BrokenPipeError:
         # whoever read the output has seen enough; keep Python from complaining at its exit
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())

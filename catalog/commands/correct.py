@@ -59,11 +59,13 @@ def command(
     if as_json:
         print_json(motor)
         return 0
-    figure = motor["figures"][quantity]
+    from ...schema.written import in_words
+
+    figure, name = motor["figures"][quantity], in_words(quantity)
     if value is None:
-        say(f"{part}: {quantity} is again {figure['text']} as published.")
+        say(f"{part}: {name} is again {figure['text']} as published.")
     else:
-        say(f"{part}: {quantity} now counts as {figure['corrected']['text']}; the sheet prints "
+        say(f"{part}: {name} now counts as {figure['corrected']['text']}; the sheet prints "
             f"{figure['text']}.")  # fmt: skip
     return 0
 
@@ -75,10 +77,6 @@ def _print_list(opened: "Catalog", as_json: bool) -> None:
     elif found:
         from ..report import terminal
 
-        rows = [(c.maker, c.part_number, c.quantity, c.published_text, c.text, c.reason, c.at)
-                for c in found]  # fmt: skip
-        terminal.print_rows(
-            ("Maker", "Part", "Figure", "Published", "Corrected to", "Reason", "When"), rows
-        )
+        terminal.print_corrections(found)
     else:
         say("No corrections stand.")

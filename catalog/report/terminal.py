@@ -16,8 +16,10 @@ from . import plain as p
 from .screen import console, paged
 
 if TYPE_CHECKING:
+    from ..store.corrections import Correction
     from ..store.revisions import Import
 
+MOST_NAMED = 8
 SEVERITIES = {"error": "bold red", "warning": "yellow", "note": "dim"}
 
 
@@ -102,23 +104,50 @@ def _amount(document: Document | None) -> str:
 def print_imports(imports: Iterable["Import"]) -> None:
     """What was imported and when."""
     rows = [
-        (i.id, p.when(i.at), "\n".join(i.files) or "(motors removed)", i.motors, i.replaced or "")
+        (i.id, p.when(i.at), i.motors, i.replaced or "", "\n".join(i.files) or "(taken out)")
         for i in imports
     ]
-    print_rows(("Import", "When (UTC)", "Files", "Motors", "Replaced"), rows, unbroken=(1,))
+    print_rows(("Import", "When (UTC)", "Motors", "Replaced", "Files"), rows, unbroken=(1,))
+
+
+def print_corrections(corrections: Iterable["Correction"]) -> None:
+    """The corrections that stand, each with what it stands for, why and since when."""
+    out = console()
+    for c in corrections:
+        who = f"{c.maker}/{c.part_number}" if c.maker else c.part_number
+        head = f"{who}: {p.words(c.quantity)} (since {p.when(c.at)})"
+        out.print(Text(p.plain(head), style="bold"))
+        said = f"{c.published_text or 'not given'} → {c.text}: {c.reason}"
+        out.print(_hanging(p.plain(said)))
 
 
 def print_changes(changes: Iterable[Document]) -> None:
-    """What changed, a motor each."""
+    """What changed, a motor each; those that merely came or went in a line together."""
     out = console()
+    together: dict[str, list[str]] = {"new": [], "removed": []}
+    changed = []
     for change in changes:
+        if change["change"] in together:
+            together[change["change"]].append(p.plain(change["part_number"]))
+        else:
+            changed.append(change)
+    for word, parts in together.items():
+        if parts:
+            more = f" … and {len(parts) - MOST_NAMED} more" if len(parts) > MOST_NAMED else ""
+            named = ", ".join(parts[:MOST_NAMED])
+            out.print(Text(f"{p.many(len(parts), 'motor')} {word}: {named}{more}"))
+    for change in changed:
         out.print(Text(f"{p.plain(change['part_number'])}: {change['change']}", style="bold"))
         for key, figure in change.get("figures", {}).items():
             before, after = (_printed(figure[side]) for side in ("before", "after"))
-            out.print(Text(f"    {p.words(key)}: {before} → {after}"))
+            out.print(_hanging(f"{p.words(key)}: {before} → {after}"))
         for side, word in (("came", "new finding"), ("went", "no longer found")):
             for finding in change.get("findings", {}).get(side, ()):
-                out.print(Text(f"    {word}: {p.plain(finding['message'])}"))
+                out.print(_hanging(f"{word}: {p.plain(finding['message'])}"))
+
+
+def _hanging(text: str) -> Padding:
+    return Padding(Text(text), (0, 0, 0, 4))
 
 
 def _printed(figure: Document | None) -> str:

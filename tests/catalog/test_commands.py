@@ -1,6 +1,7 @@
 """The commands end to end: a sheet in, documents, tables and statuses out."""
 
 import json
+import re
 import subprocess
 import sys
 
@@ -293,3 +294,36 @@ def test_help_loads_nothing_heavy():
 def test_showing_a_motor_loads_nothing_heavy(run, sheet, catalog_file):
     run("import", sheet)
     assert not _loaded("show", "PUFFIN-A", "--catalog", str(catalog_file)) & HEAVY
+
+
+def test_undo_asks_on_a_terminal_and_says_what_will_go(run, sheet, catalog_file, monkeypatch):
+    run("import", sheet)
+    monkeypatch.setattr("sys.stdin.isatty", lambda: True)
+    monkeypatch.setattr("click.termui.visible_prompt_func", lambda prompt: "n")
+    status, _, err = run("undo")
+    assert status == 130
+    assert "puffin.csv; 3 motors" in err
+    with Catalog.open(catalog_file) as opened:
+        assert len(opened) == 3
+    status, _, err = run("undo", "--yes")
+    assert status == 0
+    assert "3 motors removed" in err
+
+
+def test_diff_names_new_motors_in_one_line(run, sheet):
+    run("import", sheet)
+    _, out, _ = run("diff")
+    assert out.splitlines() == ["3 motors new: PUFFIN-A, PUFFIN-B, PUFFIN-C"]
+
+
+def test_lists_on_a_narrow_terminal_break_no_time_and_no_word(run, sheet, monkeypatch):
+    run("import", sheet)
+    run("correct", "PUFFIN-A", "mass", "0.2 kg", "--reason", "weighed " * 20)
+    monkeypatch.setenv("COLUMNS", "80")
+    for command in ("correct", "revisions"):
+        _, out, _ = run(command)
+        assert re.search(r"\d{4}-\d\d-\d\d \d\d:\d\d", out)
+        assert max(map(len, out.splitlines())) <= 80
+    _, out, _ = run("correct")
+    assert "mass" in out.splitlines()[0]
+    assert all(line.startswith("    ") for line in out.splitlines()[1:])
