@@ -6,8 +6,9 @@ from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from functools import cache
 
-from ..errors import MotorfolioError
+from ..errors import MotorfolioError, excerpt
 from .numerals import DIGITS, EXPONENT, NumberStyle, readings
+from .pairs import PLUS_MINUS, share_power
 from .signs import plain
 
 
@@ -17,9 +18,10 @@ class FigureError(MotorfolioError):
     def __init__(self, text: str, reason: str, guesses: Sequence[float] = ()) -> None:
         self.text = text
         self.reason = reason
-        self.guesses = tuple(guesses)
-        hint = f"; it may mean {' or '.join(f'{g:.12g}' for g in self.guesses)}" if guesses else ""
-        super().__init__(f'"{text}": {reason}{hint}')
+        self.guesses = tuple(dict.fromkeys(g for g in guesses if math.isfinite(g)))
+        may_mean = " or ".join(f"{g:.12g}" for g in self.guesses[:4])
+        hint = f"; it may mean {may_mean}" if may_mean else ""
+        super().__init__(f'"{excerpt(text)}": {reason}{hint}')
 
 
 @dataclass(frozen=True, slots=True)
@@ -54,9 +56,11 @@ _QUALIFIERS = {
     "typical": "typical|typisch|typique|typ|標準|典型值|典型",
 }
 _PREFIX = [
-    (name, re.compile(rf"(?:{words})(?![^\W\d_])(?:(?<=[^\W\d_])\.)?\s*[:=]?\s*", re.I))
+    (name, re.compile(rf"(?:{words})(?![^\W\d_])(?P<dot>(?<=[^\W\d_])\.)?\s*[:=]?\s*", re.I))
     for name, words in _QUALIFIERS.items()
 ]
+# Of these a point may be the end; behind any other word ("约.55") it begins the number.
+_ABBREVIATED = re.compile(r"(?:max|máx|mín|min|ca|approx|aprox|env|ref|typ)\.$", re.I)
 # "min" behind a number is a minute, so "at least" has fewer words here.
 _SUFFIX = [
     (name, re.compile(rf"\s*(?:(?<![^\W\d_])(?:{words})\.?|[(\[](?:{words})\.?[)\]])$", re.I))
@@ -69,7 +73,6 @@ _SUFFIX = [
 ]
 _CJK_SUFFIX = re.compile(r"\s*(?P<most>以下|未満|以内)$|\s*(?P<least>以上)$")
 _NUMBER = re.compile(r"(?P<sign>[+-]?)(?P<digits>" + DIGITS + ")" + EXPONENT.format("") + "?")
-_PLUS_MINUS = re.compile(r"(?P<open>[(\[])?\s*(?:±|\+/-|\+-)\s*")
 _UNEQUAL = re.compile(
     r"(?P<open>[(\[])?\s*\+\s*(?P<up>[\d.,]+)\s*(?P<p1>%?)\s*[/ ,]?"
     r"\s*-\s*(?P<down>[\d.,]+)\s*(?P<p2>%?)\s*(?(open)[)\]])"
@@ -128,6 +131,10 @@ class CellReader:
             return replace(self.read(lines[0]), also=self.read(lines[1]))
         rest = " ".join(lines)
         before, qualifier, rest = self._prefix(rest)
+        shared = share_power(rest)
+        if shared is None:
+            raise self.fail("the power of ten may belong to both numbers or to the second alone")
+        rest = shared
         number = self._number(rest)
         if number is None:
             raise self.fail("no number at its beginning")
@@ -148,12 +155,31 @@ class CellReader:
         for name, pattern in _PREFIX:
             found = pattern.match(rest)
             if found:
-                qualifier, rest = name, rest[found.end() :]
+                qualifier = name
+                glued = found.group("dot") and found.end() == found.end("dot")
+                rest = self._behind_point(rest, found.end()) if glued else rest[found.end() :]
                 break
         found = re.match(r"(?:[$€£¥]|(?:EUR|USD|CHF|GBP|JPY|CNY|DC|AC)(?=[\s\d]))\s*", rest)
         if found:
             return found.group().strip(), qualifier, rest[found.end() :]
         return "", qualifier, rest
+
+    def _behind_point(self, rest: str, end: int) -> str:
+        """The number behind a word and a point without a blank: "max.45", "约.55".
+
+        The point ends an abbreviation or is the decimal sign; in a table of the decimal comma
+        only the former, in any other "max.45" may be both.
+        """
+        numeral = re.match(DIGITS, rest[end - 1 :])
+        if numeral is None or not numeral.group().startswith("."):
+            return rest[end:]
+        whole, fraction = readings(numeral.group()[1:]), readings(numeral.group())
+        if not _ABBREVIATED.search(rest[:end]) or not whole:
+            return rest[end - 1 :]
+        if not fraction or (self.style.decimal == "," and not self.style.conflicts):
+            return rest[end:]
+        guesses = [float(n) for n in (*whole.values(), *fraction.values())]
+        raise self.fail("the point may end the word or begin the number", guesses)
 
     def _number(self, rest: str) -> tuple[Figure, int] | None:
         """The number at the beginning of `rest` with its digits' interval, and where it ends."""
@@ -190,8 +216,8 @@ class CellReader:
         numeral, other = self._choose(possible, exponent)
         sign = "-" if groups["sign"] == "-" else ""
         value = float(f"{sign}{numeral}e{exponent}")
-        if not math.isfinite(value):
-            raise self.fail("too large for a number")
+        if value == 0 and float(numeral) != 0:
+            raise self.fail("too small for a number")
         half = half_digit(numeral, exponent)
         alternative = float(f"{sign}{other}e{exponent}") if other else None
         figure = Figure(
@@ -258,7 +284,7 @@ class CellReader:
         return unit
 
     def _with_tolerance(self, figure: Figure, tail: str) -> Figure | None:
-        at = _PLUS_MINUS.search(tail)
+        at = PLUS_MINUS.search(tail)
         if not at:
             return None
         found = self._number(tail[at.end() :])

@@ -9,13 +9,14 @@ from .signs import plain
 # A separator counts only between digits; a blank only before a group of exactly three.
 DIGITS = r"(?:[.,]?\d(?:\d|[.,](?=\d)|[' ](?=\d{3}(?!\d)))*)"
 # The power of ten: "e-5", "×10^-5", "x10-7", "·10^4", " 10^-6". In the last group stands what
-# follows a 10 without ^ or sign: a superscript that was lost ("×104").
+# follows a 10 without ^ or sign: a superscript that was lost ("×104"). "×1000" is none: it is
+# left to the unit ("×1000 rpm").
 EXPONENT = (
     r"(?:(?<=\d)[eE](?P<{0}e>[+-]?\d+)(?![\w])"
     r"|\s*[×xX*·]\s*10\^?(?P<{0}p>[+-]\d{{1,2}})(?!\d)"
     r"|\s*[×xX*·]\s*10\^(?P<{0}q>\d{{1,2}})(?!\d)"
     r"|\s+10\^(?P<{0}s>[+-]?\d{{1,2}})(?!\d)"
-    r"|\s*[×xX*·]\s*10(?P<{0}lost>\d+)(?!\d))"
+    r"|\s*[×xX*·]\s*10(?P<{0}lost>(?!00(?!\d))\d+)(?!\d))"
 )
 _BLANK_GROUPS = re.compile(r"\d{1,3}(?:[' ]\d{3})+")
 _TOKEN = re.compile(

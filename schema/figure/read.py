@@ -74,10 +74,15 @@ def read_figure(
     be part of the number is taken off only if it stands there. Raises FigureError, with the values
     it may have meant, for whatever is not one number.
     """
+    if len(text) > _LONGEST:
+        raise FigureError(text, "longer than any figure")
     if is_missing(text):
         return None
     rest, marks = _without_marks(plain(text), note_marks)
     figure = CellReader(text, style, note_marks).read(rest)
+    for part in (figure, figure.also):
+        if part is not None and any(map(math.isinf, (part.value, part.low, part.high))):
+            raise FigureError(text, "too large for a number")
     return replace(figure, marks=(*figure.marks, *marks)) if marks else figure
 
 
@@ -93,7 +98,7 @@ def read_column(
     for i, text in enumerate(texts):
         if not text:
             continue
-        if text.isascii():
+        if len(text) < len(_HALF) and text.isascii():
             whole, dot, fraction = text.partition(sign)
             if not dot:
                 if text.isdigit() and (text[0] != "0" or len(text) == 1):
@@ -102,7 +107,7 @@ def read_column(
                     continue
             elif decimal and fraction.isdigit() and whole.isdigit():
                 places = len(fraction)
-                if places < len(_HALF) and (whole[0] != "0" or len(whole) == 1):
+                if whole[0] != "0" or len(whole) == 1:
                     if places == 3 and len(whole) < 4 and whole != "0":
                         if style.conflicts:
                             column.failures[i] = undecided(text, readings(text))
@@ -131,6 +136,7 @@ def read_column(
 
 
 _HALF = [float(f"5e-{places + 1}") for places in range(16)]
+_LONGEST = 200
 
 
 @cache

@@ -156,6 +156,99 @@ def test_cells_with_more_than_a_number(
     assert (figure.qualifier, figure.unit, figure.text) == (qualifier, unit, text)
 
 
+@pytest.mark.parametrize(
+    "word",
+    [
+        "~",
+        "约",
+        "約",
+        "≈",
+        "<",
+        "≤",
+        "最大",
+        "参考値",
+        "etwa",
+        "up to",
+        "bis zu",
+        "at least",
+        "標準",
+    ],
+)
+def test_a_point_glued_to_a_word_begins_the_number(word: str) -> None:
+    """Sheets that leave off the zero print "约.5513", which is no 5513."""
+    figure = read_figure(f"{word}.5513", POINT)
+    assert figure is not None
+    assert figure.value == 0.5513
+    with pytest.raises(FigureError, match="does not fit the decimal sign"):
+        read_figure(f"{word}.5513", COMMA)
+
+
+@pytest.mark.parametrize("word", ["max", "typ", "ca", "approx", "ref"])
+def test_a_point_that_may_end_an_abbreviation_is_refused(word: str) -> None:
+    """A comma table has no decimal point; "max..5" and "max.05" leave no choice either."""
+    for style in (POINT, UNDECIDED):
+        with pytest.raises(FigureError) as refused:
+            read_figure(f"{word}.45", style)
+        assert refused.value.guesses == (45, 0.45)
+    for text, style, value in (
+        (f"{word}.45", COMMA, 45),
+        (f"{word}..45", POINT, 0.45),
+        (f"{word}.05", POINT, 0.05),
+        (f"{word}.4.5", POINT, 4.5),
+        (f"{word}.1,200", POINT, 1200),
+    ):
+        figure = read_figure(text, style)
+        assert figure is not None
+        assert figure.value == value
+
+
+@pytest.mark.parametrize(
+    ("text", "low", "high", "unit"),
+    [
+        ("7.91±0.02 ×1000 rpm", 7.89, 7.93, "×1000 rpm"),
+        ("3-5 ×1000 rpm", 3, 5, "×1000 rpm"),
+        ("1.017 ± 0.001 ×10⁻⁶ kg·m²", 1.016e-6, 1.018e-6, "kg·m^2"),
+        ("-1.017 ± 0.001 ×10⁻⁶", -1.018e-6, -1.016e-6, ""),
+        ("1.017±0.001e-6", 1.016e-6, 1.018e-6, ""),
+        ("3…5 ×10⁻⁶ m", 3e-6, 5e-6, "m"),
+        ("1.017×10⁻⁶ ± 1×10⁻⁹", 1.016e-6, 1.018e-6, ""),
+        ("7500 - 1×10^4", 7500, 10000, ""),
+    ],
+)
+def test_a_factor_behind_two_numbers(text: str, low: float, high: float, unit: str) -> None:
+    figure = read_figure(text, POINT)
+    assert figure is not None
+    assert (figure.low, figure.high) == pytest.approx((low, high), rel=1e-12)
+    assert figure.unit == unit
+
+
+def test_a_factor_that_may_be_of_one_or_both_numbers_is_refused() -> None:
+    for text in ("10000 ± 1×10^2", "10.000 ± 1×10^2"):
+        with pytest.raises(FigureError, match="both numbers or to the second alone"):
+            read_figure(text, POINT)
+
+
+@pytest.mark.parametrize(
+    "text", ["1e-400", "1e400", "9" * 190 + "e300", "9" * 400, "1.5e308±1e308"]
+)
+def test_what_no_float_holds_is_refused(text: str) -> None:
+    """Neither zero nor infinity is invented, in a cell or in a column."""
+    with pytest.raises(FigureError):
+        read_figure(text, POINT)
+    assert read_column([text], POINT).failures.keys() == {0}
+
+
+@pytest.mark.parametrize(
+    "text", ["k. A.\n0,25} \n", "x\r\n\t1", "9" * 4000 + "≥", "\u202e\x1b[2J1", "?" * 500]
+)
+def test_a_refusal_is_one_short_printable_line(text: str) -> None:
+    with pytest.raises(FigureError) as refused:
+        read_figure(text, POINT)
+    assert refused.value.text == text
+    assert str(refused.value).isprintable()
+    assert len(str(refused.value)) <= 300
+
+
 def test_tolerances_are_kept_as_printed() -> None:
     figure = read_figure("24 V +5/−20 %", POINT)
     assert figure is not None
