@@ -12,7 +12,7 @@ from ...schema.figure.read import NumberStyle, number_style
 from ...schema.figure.signs import plain
 from ...schema.units.read import Unit, UnitError, read_unit
 from ...schema.vocabulary import Quantity, quantities, quantity
-from ..tables.grid import TableFile
+from ..tables.grid import Stored, TableFile
 from .cells import is_ditto, missing
 from .join import id_field, ids_of
 from .kind import (
@@ -167,7 +167,7 @@ class Decisions:
             for f in self.table.fields
             if f is not self.id_field
             for t in f.texts[:STYLE_ROWS]
-            if t
+            if t and not isinstance(t, Stored)
         ]
         style = number_style(texts)
         if style.conflicts:

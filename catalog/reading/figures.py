@@ -7,10 +7,11 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from ...schema.batch import FigureColumn, Floats, Ints
-from ...schema.figure.read import ColumnFigures, NumberStyle, read_column
+from ...schema.figure.read import POINT, ColumnFigures, NumberStyle, read_column
 from ...schema.figure.signs import plain
 from ...schema.units.read import Unit, UnitError, read_unit, unit_of
 from ...schema.vocabulary import Quantity
+from ..tables.grid import Stored
 from .cells import missing
 
 BRACKETED = frozenset({"rotor_inertia", "mass", "length"})
@@ -54,7 +55,7 @@ def read_values(
 ) -> Values:
     """Read a column of cells as figures of q; ``units`` are the heading's, the second for a
     second figure in the cell. Cells may carry units of their own, which then count."""
-    column = read_column(texts, style, note_marks=note_marks)
+    column = _read(texts, style, note_marks)
     n = len(texts)
     unit = units[0] if units else None
     factor = unit.factor if unit else 1.0
@@ -86,6 +87,23 @@ def read_values(
                 spread = abs(out.value[i]) * tolerance
                 out.low[i], out.high[i] = out.value[i] - spread, out.value[i] + spread
     return out
+
+
+def _read(texts: list[str], style: NumberStyle, note_marks: frozenset[str]) -> ColumnFigures:
+    """The cells as numbers: typed ones in the table's style, stored ones with their point."""
+    stored = [i for i, text in enumerate(texts) if isinstance(text, Stored)]
+    if not stored or (style.decimal == "." and not style.conflicts):
+        return read_column(texts, style, note_marks=note_marks)
+    typed: list[str] = list(texts)
+    for i in stored:
+        typed[i] = ""
+    column = read_column(typed, style, note_marks=note_marks)
+    found = read_column([texts[i] for i in stored], POINT, note_marks=note_marks)
+    for name in ("value", "low", "high"):
+        getattr(column, name)[stored] = getattr(found, name)
+    column.figures |= {stored[k]: figure for k, figure in found.figures.items()}
+    column.failures |= {stored[k]: error for k, error in found.failures.items()}
+    return column
 
 
 def _refuse(out: Values, i: int, text: str, reason: str, guesses: tuple[str, ...] = ()) -> None:

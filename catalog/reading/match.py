@@ -6,10 +6,11 @@ from dataclasses import field as made
 
 import numpy as np
 
-from ...schema.figure.read import FigureError, NumberStyle, read_figure
+from ...schema.figure.read import POINT, FigureError, NumberStyle, read_figure
 from ...schema.figure.signs import plain
 from ...schema.units.read import GD2_TO_INERTIA, Unit, UnitError, read_unit, unit_of
 from ...schema.vocabulary import Quantity, quantities, quantity
+from ..tables.grid import Stored
 from .lexicon import find_symbol, lexicon, squeeze, symbol_form, tokens
 from .model import Field
 from .phrase import COMPOSED, EXACT, Phrase, guesses_for
@@ -128,7 +129,7 @@ def in_cell_units(texts: list[str], style: NumberStyle) -> list[str]:
         if not text:
             continue
         try:
-            figure = read_figure(text, style)
+            figure = read_figure(text, POINT if isinstance(text, Stored) else style)
         except FigureError:
             continue
         if figure is None:
@@ -148,7 +149,7 @@ def sample_values(texts: list[str], style: NumberStyle, most: int = 25) -> list[
         if not text:
             continue
         try:
-            figure = read_figure(text, style)
+            figure = read_figure(text, POINT if isinstance(text, Stored) else style)
         except FigureError:
             continue
         if figure is not None:

@@ -10,6 +10,13 @@ class TableError(MotorfolioError):
     """A file that holds no table this program can read; one sentence says why."""
 
 
+class Stored(str):
+    """The text of a number that a file stores as one (a workbook, JSON): its point is a decimal
+    point and it has no thousands marks, whatever was typed into the cells beside it."""
+
+    __slots__ = ()
+
+
 @dataclass(frozen=True, slots=True)
 class Span:
     """A merged cell: the text stands in its top left corner, the other cells are empty.
@@ -34,9 +41,8 @@ class Grid:
     further rows in chunks of a long table, directly below;
     such a row is longer than the grid only where the file's row is (cells without a heading).
 
-    ``decimal`` is '.' where number cells were written out from stored numbers (a workbook,
-    JSON): a point in such a text is a decimal point and there are no thousands marks, while
-    cells that were text keep what was typed. None: the cells alone must tell.
+    Number cells of a workbook or of JSON are ``Stored`` texts; cells that were text keep what was
+    typed, and must tell by themselves what their marks mean.
     ``row_pages`` gives each row's page where a table runs over several pages.
     """
 
@@ -49,7 +55,6 @@ class Grid:
     remarks: list[str] = field(default_factory=list)
     notes: list[str] = field(default_factory=list)
     continuation: Iterator[tuple[list[int], list[list[str]]]] | None = None
-    decimal: str | None = None
     row_pages: list[int] | None = None
 
 

@@ -11,7 +11,7 @@ from lxml import etree
 
 from .archive import Archive
 from .cells import clean, column_name, listing, some, sparse, subscript, superscript
-from .grid import Grid, TableError
+from .grid import Grid, Stored, TableError
 from .numberformat import plain
 
 _TABLE = "{urn:oasis:names:tc:opendocument:xmlns:table:1.0}"
@@ -111,7 +111,6 @@ class Document:
             merged=found.merged,
             sheet=sheet.name,
         )
-        grid.decimal = "."
         if found.hidden_rows:
             grid.remarks.append(f"hidden rows are skipped: {listing(found.hidden_rows)}")
         used = {column for row in found.cells.values() for column in row}
@@ -186,8 +185,9 @@ class Document:
         if kind in {"float", "percentage", "currency"}:
             value = cell.get(_VALUE, "")
             if text == value:
-                return text
-            return _with_point(text, value) if kind != "percentage" else _percent(text, value)
+                return Stored(text)
+            shown = _with_point if kind != "percentage" else _percent
+            return Stored(shown(text, value))
         if kind in {"date", "time"}:
             found.dates.append(f"{column_name(column)}{row}")
             return f"{kind} {cell.get(_OFFICE + f'{kind}-value') or text}"

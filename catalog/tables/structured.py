@@ -7,7 +7,7 @@ from collections.abc import Sequence
 from typing import Any
 
 from .cells import clean, even
-from .grid import Grid, TableError
+from .grid import Grid, Stored, TableError
 from .numberformat import plain
 
 _MOST_VALUES = 4_000_000
@@ -38,12 +38,6 @@ class _Object(list[tuple[str, Any]]):
         return any(name == key for name, _ in self)
 
 
-class _Digits(str):
-    """A number of JSON or TOML with the digits that were printed."""
-
-    __slots__ = ()
-
-
 def read_json(text: str, name: str) -> list[Grid]:
     """The motors of a JSON document; TableError where it has another shape."""
     if text.count(",") > _MOST_VALUES:
@@ -54,9 +48,9 @@ def read_json(text: str, name: str) -> list[Grid]:
         document = json.loads(
             text,
             object_pairs_hook=_Object,
-            parse_float=_Digits,
-            parse_int=_Digits,
-            parse_constant=_Digits,
+            parse_float=Stored,
+            parse_int=Stored,
+            parse_constant=Stored,
         )
     except json.JSONDecodeError as error:
         raise TableError(
@@ -72,7 +66,7 @@ def read_json(text: str, name: str) -> list[Grid]:
 def read_toml(text: str, name: str) -> list[Grid]:
     """The motors of a TOML document: one table, or an array of tables."""
     try:
-        document = _as_object(tomllib.loads(text, parse_float=_Digits))
+        document = _as_object(tomllib.loads(text, parse_float=Stored))
     except tomllib.TOMLDecodeError as error:
         raise TableError(f"{name}: is no valid TOML: {str(error)[:200]}") from None
     except (RecursionError, ValueError):
@@ -87,10 +81,10 @@ def _as_object(value: Any) -> Any:
         return _Object((key, _as_object(item)) for key, item in value.items())
     if isinstance(value, list):
         return [_as_object(item) for item in value]
-    if isinstance(value, bool | str | _Digits):
+    if isinstance(value, bool | str | Stored):
         return value
     if isinstance(value, int):
-        return _Digits(value)
+        return Stored(value)
     return f"date {value}"  # a TOML date or time is no figure
 
 
@@ -157,7 +151,6 @@ def _grid(motors: Sequence[_Object], name: str) -> Grid:
     rows = [[clean(heading) for heading, _ in columns]]
     rows += [[line.get(column, "") for column in range(width)] for line in lines]
     grid = even(rows, remarks=remarks)
-    grid.decimal = "."
     return grid
 
 
@@ -181,7 +174,8 @@ def _scalar(value: Any) -> str:
         return ""
     if isinstance(value, bool):
         return "true" if value else "false"
-    return clean(str(value))
+    text = clean(str(value))
+    return Stored(text) if isinstance(value, Stored) else text
 
 
 def _is_figure(value: Any) -> bool:
@@ -234,11 +228,11 @@ def _figure(key: str, figure: _Object, when: str) -> tuple[str, str]:
     text = _scalar(figure.get("text"))
     printed_unit, unit = figure.get("printed_unit"), figure.get("unit")
     value = figure.get("value")
-    dimensionless_text = text and not isinstance(value, _Digits)
+    dimensionless_text = text and not isinstance(value, Stored)
     if dimensionless_text or (text and printed_unit is not None and not _AMBIGUOUS.search(text)):
         shown_unit = _scalar(printed_unit)
     else:
-        text, shown_unit = _si_text(figure), _scalar(unit)
+        text, shown_unit = Stored(_si_text(figure)), _scalar(unit)
     heading = clean(key)
     if shown_unit and shown_unit != "1":
         heading += f" [{shown_unit}]"

@@ -12,7 +12,7 @@ from typing import Any
 from .archive import Archive
 from .binary import OLE_MAGIC, check_xls, check_xlsb
 from .cells import clean, column_name, even, some
-from .grid import Grid, Span, TableError
+from .grid import Grid, Span, Stored, TableError
 from .numberformat import plain
 from .source import Source
 
@@ -181,7 +181,6 @@ def _of_values(sheet: _Sheet) -> Grid:
             "they are no numbers"
         )
     grid = even(rows, sheet=sheet.name, spans=spans, remarks=remarks)
-    grid.decimal = "."
     return grid
 
 
@@ -193,4 +192,4 @@ def _text(value: Any, row: int, column: int, dates: list[str]) -> str:
     if isinstance(value, list):
         dates.append(f"{column_name(column)}{row}")
         return f"{value[0]} {value[1]}".removesuffix(" 00:00:00")
-    return plain(float(value))
+    return Stored(plain(float(value)))

@@ -26,7 +26,7 @@ from .cells import (
     subscript,
     superscript,
 )
-from .grid import Grid, TableError
+from .grid import Grid, Stored, TableError
 
 _MOST_ROWS, _MOST_COLUMNS = 1_048_576, 16_384
 _SHORT = re.compile(r"-?(?:0|[1-9]\d*)(?:\.\d*[1-9])?")
@@ -175,7 +175,6 @@ class Workbook:
             names = some([column_name(column) for column in gone])
             grid.remarks.append(f"hidden columns are skipped: {names}")
         grid.remarks += notes.remarks()
-        grid.decimal = "."
         if more:
             grid.continuation = _rest(chunks, reader, grid)
         return grid
@@ -207,7 +206,7 @@ class Workbook:
             if kind == "s" and value.isdecimal() and int(value) < len(self._strings):
                 return self._strings[int(value)]
             if (kind is None or kind == "n") and len(value) < 15 and _SHORT.fullmatch(value):
-                return value
+                return Stored(value)
         return None
 
     def cell_text(self, cell: etree._Element, place: str, notes: _Notes) -> str:
@@ -256,14 +255,14 @@ class Workbook:
         except ValueError:
             return clean(value)
         if code in {"General", "@"}:
-            return numberformat.plain(number)
+            return Stored(numberformat.plain(number))
         if style >= 0 and self._is_date[style]:
             notes.dates.append(place)
             return numberformat.date_text(number, since_1904=self._since_1904)
         text, remark = numberformat.shown(number, code)
         if remark:
             notes.formats.append(f"{place}: {remark}")
-        return text
+        return Stored(text)
 
 
 class _SheetReader:

@@ -9,6 +9,7 @@ from openpyxl.cell.rich_text import CellRichText, TextBlock
 from openpyxl.cell.text import InlineFont
 
 from motorfolio.catalog.tables import TableError, numberformat, read_tables
+from motorfolio.catalog.tables.grid import Stored
 
 from .files import check, ods, one, read, xls, xlsb, xlsx
 
@@ -34,7 +35,8 @@ def test_number_formats_show_units_percent_and_digits(tmp_path: Path) -> None:
     }  # fmt: skip
     grid = one(read_tables(saved(tmp_path / "a.xlsx", rows, formats)))
     assert grid.rows[1] == ["A1", "25.43 mNm", "12.0 V", "85.3 %", "1.23E-05", "5700", "00007"]
-    assert grid.decimal == "."
+    assert all(isinstance(text, Stored) for text in grid.rows[1][1:])
+    assert not isinstance(grid.rows[1][0], Stored)
     assert grid.remarks == []
 
 
