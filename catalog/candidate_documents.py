@@ -213,10 +213,10 @@ def _remarks(
                 "outside the model"
             )
         inductances = catalog.connection.execute(
-            "SELECT count(DISTINCT value) FROM (SELECT value FROM further_figures WHERE motor = ?1 "
-            "AND quantity = 'terminal_inductance' AND \"condition\" IS NULL UNION ALL SELECT "
-            "terminal_inductance FROM figure_value WHERE id = ?1)",
-            (int(found.fleet.ids[shown.motor]),),
+            "SELECT count(DISTINCT value) FROM (SELECT value FROM further_figures "
+            "WHERE motor = :id AND quantity = 'terminal_inductance' AND \"condition\" IS NULL "
+            "UNION ALL SELECT terminal_inductance FROM figure_value WHERE id = :id)",
+            {"id": int(found.fleet.ids[shown.motor])},
         ).fetchone()[0]
         if inductances > 1:
             said.append(

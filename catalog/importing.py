@@ -57,7 +57,7 @@ def import_files(
         with Catalog.open(catalog) as known:
             kept, corrections = known.kept_readings(), known.corrections()
     results: list[FileResult] = []
-    with storing(catalog, options) as store:
+    with storing(catalog, options, corrections) as store:
         for file in files:
             table_file, reading = _read(file, options, kept, standard_input)
             result = FileResult(table_file.name, table_file.sha256, table_file.format)

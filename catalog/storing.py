@@ -9,8 +9,9 @@ from pathlib import Path
 from ..schema.batch import Batch
 from ..schema.motor import Reconciled
 from .import_result import FileResult, Options
-from .store import Catalog, columns
+from .store import Catalog, CatalogError, columns, same
 from .store.catalog import now
+from .store.corrections import Correction
 from .store.database import in_words
 from .store.revisions import OF_SOURCE
 from .store.write import AppliedCorrection, Writer
@@ -31,9 +32,12 @@ class JudgedTable:
 
 
 @contextmanager
-def storing(path: Path, options: Options) -> "Iterator[Store]":
-    """A Store for the block, which keeps nothing unless it was finished."""
-    store = Store(path, options)
+def storing(path: Path, options: Options, corrections: Sequence[Correction]) -> "Iterator[Store]":
+    """A Store for the block, which keeps nothing unless it was finished.
+
+    corrections: those that the tables were judged with.
+    """
+    store = Store(path, options, corrections)
     try:
         yield store
     except BaseException:
@@ -46,9 +50,11 @@ def storing(path: Path, options: Options) -> "Iterator[Store]":
 class Store:
     """Buffers tables, then writes them in one transaction."""
 
-    def __init__(self, path: Path, options: Options) -> None:
+    def __init__(self, path: Path, options: Options, corrections: Sequence[Correction]) -> None:
         self.path = path
         self.options = options
+        self.corrections = corrections
+        self.corrected: set[tuple[str, str]] = set()
         self.pending: list[tuple[FileResult, JudgedTable]] = []
         self.catalog: Catalog | None = None
         self.created = False
@@ -85,6 +91,7 @@ class Store:
                 if file_id is not None:
                     self._finish_file(file_id, result)
             self._keep_readings(results)
+            same.take_aside(connection, self.writer.import_id)
             columns.rebuild(connection, sorted(self.touched))
             connection.execute(
                 "UPDATE imports SET files = ?, motors = ? WHERE id = ?",
@@ -104,6 +111,8 @@ class Store:
         self.created = not self.path.exists()
         self.catalog = Catalog.open(self.path, create=True)
         self.catalog.begin()
+        changed = set(self.catalog.corrections()) ^ set(self.corrections)
+        self.corrected = {(c.maker, c.part_number) for c in changed}
         connection = self.catalog.connection
         with in_words(self.path):
             cursor = connection.execute(
@@ -124,6 +133,12 @@ class Store:
         self.pending.clear()
 
     def _write(self, writer: Writer, file_id: int, result: FileResult, table: JudgedTable) -> None:
+        batch = table.published
+        if self.corrected.intersection(zip(batch.maker, batch.part_number, strict=True)):
+            raise CatalogError(
+                f"A figure in {self.path} was corrected while {result.file} was read, which was "
+                "read without that; nothing was stored, import it again."
+            )
         stored = writer.add_table(
             file_id, table.chunk, table.published, table.reconciled, table.applied
         )

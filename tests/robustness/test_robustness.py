@@ -13,6 +13,7 @@ from pathlib import Path
 
 import pytest
 
+from motorfolio.catalog.store import Catalog
 from motorfolio.catalog.store.database import APPLICATION_ID, VERSION
 
 from .sheets import call, digest, done, sheet
@@ -40,6 +41,30 @@ def test_killed_calls_are_whole_or_absent() -> None:
 
 def test_a_crowd_loses_nothing_and_nobody_is_turned_away() -> None:
     assert "nothing was lost" in long_run("crowd", "--seconds", "3")
+
+
+def test_a_correction_made_while_an_import_reads_is_not_passed_over(
+    catalog: Path, tmp_path: Path, monkeypatch
+) -> None:
+    """The sheet comes again, a little changed; meanwhile someone corrects AUK-2."""
+    again = tmp_path / "again.csv"
+    text = (tmp_path / "auk.csv").read_text(encoding="utf-8")
+    again.write_text(text.replace("AUK-5,", "AUK-5b,"), encoding="utf-8")
+    original = Catalog.begin
+    changes: list[str] = []
+
+    def begin(self: Catalog) -> None:
+        if not changes:
+            changes.append("AUK-2")
+            done("correct", "AUK-2", "mass", "66 g", "--reason", "weighed", "--catalog", catalog)
+        original(self)
+
+    monkeypatch.setattr(Catalog, "begin", begin)
+    status, _, err = call("import", again, "--catalog", catalog)
+    assert status == 2
+    assert "import it again" in err
+    assert call("import", again, "--catalog", catalog)[0] == 0
+    assert '"66 g"' in done("show", "AUK-2", "--json", "--catalog", catalog)
 
 
 # ---- disks
