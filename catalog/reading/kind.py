@@ -198,16 +198,30 @@ def signature(matches: list[Match], style_family: str | None) -> Commutation | N
     return None
 
 
+_ENDING = re.compile(r"(?<=\w{5})(?:e[nrsm]|[ao]s|[aeinos])$")
+"""What words take on in a sentence: bürstenbehaftet*e* Gleichstrommotor*en*, motor*i*."""
+
+_BRUSH = re.compile(
+    r"brush|burst|balai|spazzol|escobill|刷|ブラシ|mech|mecan|meccan|graphi|edelmet|precious|metaux"
+)
+"""A name of the brushed commutation that says so; "DC motor" is said of brushless ones too."""
+
+
+def _stems(words_: tuple[str, ...]) -> tuple[str, ...]:
+    return tuple(_ENDING.sub("", word) for word in words_)
+
+
 def in_words(text: str, table: str) -> str | None:
-    """The value (of magnets, commutations or connections) that a text names."""
-    form = canonical(tokens(text))
+    """The value (of magnets, commutations or connections) that a text names; None if it names
+    none, or brushed and brushless motors alike."""
+    form = _stems(canonical(tokens(text)))
     key = squeeze(form)
     if not key:
         return None
-    best: tuple[int, str] | None = None
+    found: list[tuple[int, str, str]] = []
     for value, names in getattr(words(), table).items():
         for name in names:
-            spelled = canonical(tokens(name))
+            spelled = _stems(canonical(tokens(name)))
             squeezed = squeeze(spelled)
             if not squeezed:
                 continue
@@ -216,11 +230,15 @@ def in_words(text: str, table: str) -> str | None:
                 if is_cjk(name) and len(squeezed) > 1
                 else (f" {' '.join(spelled)} " in f" {' '.join(form)} ")
             )
-            if (squeezed == key or (inside and len(squeezed) > 2)) and (
-                best is None or len(squeezed) > best[0]
-            ):
-                best = (len(squeezed), value)
-    return best[1] if best else None
+            if squeezed == key or (inside and len(squeezed) > 2):
+                found.append((len(squeezed), squeezed, value))
+    if table == "commutations" and len({value for *_, value in found}) > 1:
+        outer = [f for f in found if not any(f[1] in o[1] and f[1] != o[1] for o in found)]
+        brushed = [f for f in outer if f[2] == "brushed" and _BRUSH.search(f[1])]
+        found = [f for f in outer if f[2] != "brushed"]
+        if brushed:
+            return None if found else "brushed"
+    return max(found, key=lambda f: f[0])[2] if found else None
 
 
 def commutation_in(texts: Sequence[str]) -> Commutation | None:

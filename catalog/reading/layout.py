@@ -136,6 +136,8 @@ def _resection(table: Table) -> None:
     every section figures that it can have, and none twice."""
     captions = [f.captions[-1] if f.captions else "" for f in table.fields]
     order = [c for i, c in enumerate(captions) if c and (i == 0 or captions[i - 1] != c)]
+    while order and not section_of(order[-1]):
+        order.pop()  # "Constants" behind the sections makes no figure another one
     if not order or not all(section_of(c) for c in order):
         return
     keys = [{p.generic for p in f.label.names if p.generic} for f in table.fields]
@@ -144,21 +146,26 @@ def _resection(table: Table) -> None:
     while before > 0 and keys[before - 1]:
         before -= 1
     last = len(keys) - 1
-    while last > 0 and not keys[last]:
+    while last > 0 and (not keys[last] or captions[last] not in order):
         last -= 1
     if _fit(captions, keys) >= 0 and before == first:
         return
     best = (_fit(captions, keys) - (first - before), captions)
+    rivals: list[list[str]] = []
     spans = _partitions(before, last + 1, len(order), captions, order)
     for borders in spans:
-        attempt = [""] * len(captions)
+        attempt = [c if i > last else "" for i, c in enumerate(captions)]
         for k, caption in enumerate(order):
             for i in range(borders[k], borders[k + 1]):
                 attempt[i] = caption
         score = _fit(attempt, keys)
         if score > best[0]:
-            best = (score, attempt)
-    for field, old, new in zip(table.fields, captions, best[1], strict=True):
+            best, rivals = (score, attempt), []
+        elif score == best[0] and best[1] is not captions:
+            rivals.append(attempt)
+    # Where two ways are as good, a figure between two groups is of neither for sure.
+    sure = [c if all(r[i] == c for r in rivals) else "" for i, c in enumerate(best[1])]
+    for field, old, new in zip(table.fields, captions, sure, strict=True):
         if old != new:
             rest = field.captions[:-1] if old else field.captions
             field.captions = (*rest, new) if new else rest
@@ -276,7 +283,7 @@ def lay_out_columns(block: Block) -> Table:
         texts = [row[c] for c in values]
         label = row[label_column]
         pair = _LABEL_AND_FIGURE.match(plain(label)) if len(values) == 1 else None
-        if pair and not any(texts) and match_phrase(pair[1]).score >= 0.95:
+        if pair and not any(texts) and _measures(pair[1]):
             label, texts = pair[1], [pair[2]]
             row = [*row[:label_column], label, *row[label_column + 1 :]]
         groups = [row[c] for c, role in enumerate(roles) if role == "group" and row[c]]
@@ -324,6 +331,12 @@ def lay_out_columns(block: Block) -> Table:
     if conditions is not None:
         _fold_conditions(table, conditions)
     return table
+
+
+def _measures(text: str) -> bool:
+    """Whether a text names a quantity that is measured: "Winding at" 125 °C does not."""
+    phrase = match_phrase(text)
+    return phrase.score >= 0.95 and any(not quantity(k).text for k in phrase.keys)
 
 
 def _roles(block: Block, label_column: int) -> list[str]:

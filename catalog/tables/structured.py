@@ -150,8 +150,7 @@ def _grid(motors: Sequence[_Object], name: str) -> Grid:
     width = len(columns)
     rows = [[clean(heading) for heading, _ in columns]]
     rows += [[line.get(column, "") for column in range(width)] for line in lines]
-    grid = even(rows, remarks=remarks)
-    return grid
+    return even(rows, remarks=remarks)
 
 
 def _flat(motor: _Object, number: int, name: str) -> list[tuple[str, str]]:

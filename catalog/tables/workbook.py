@@ -180,8 +180,7 @@ def _of_values(sheet: _Sheet) -> Grid:
             f"dates in {some(dates)}: a spreadsheet may have made them of a figure such as 6-12; "
             "they are no numbers"
         )
-    grid = even(rows, sheet=sheet.name, spans=spans, remarks=remarks)
-    return grid
+    return even(rows, sheet=sheet.name, spans=spans, remarks=remarks)
 
 
 def _text(value: Any, row: int, column: int, dates: list[str]) -> str:

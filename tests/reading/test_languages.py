@@ -4,6 +4,8 @@
 
 import pytest
 
+from motorfolio.catalog.reading.kind import in_words
+
 from .sheets import RPM, sheet
 
 EXPECTED = {
@@ -83,3 +85,29 @@ def test_the_same_motor_in_every_language(language, layout):
     assert s.reading.layout == ("columns" if layout == "columns" else "rows")
     assert s.motors() == {"LK-24": pytest.approx(EXPECTED)}
     assert not s.reading.unread
+
+
+@pytest.mark.parametrize(
+    ("text", "commutation"),
+    [
+        ("Bürstenbehaftete Gleichstrommotoren mit NdFeB-Magneten", "brushed"),
+        ("bürstenlose Gleichstrommotoren", "block"),
+        ("Bürstenlose Motoren, Sinuskommutierung", "sinusoidal"),
+        ("Moteurs à courant continu à balais", "brushed"),
+        ("Moteurs à courant continu sans balais", "block"),
+        ("Motori in corrente continua senza spazzole", "block"),
+        ("Motores con escobillas", "brushed"),
+        ("Motores de corriente continua sin escobillas", "block"),
+        ("ブラシ付きDCモータ", "brushed"),
+        ("ブラシレスDCモータ", "block"),
+        ("有刷直流电机", "brushed"),
+        ("无刷直流电机", "block"),
+        ("Brushless motors, six-step", "block"),
+        ("Brushless motors with sinusoidal commutation", "sinusoidal"),
+        ("Brushed and brushless motors", None),
+    ],
+)
+def test_titles_state_the_commutation_in_every_inflection(
+    text: str, commutation: str | None
+) -> None:
+    assert in_words(text, "commutations") == commutation
