@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import csv
+import math
 import re
 from collections.abc import Sequence
 from pathlib import Path
@@ -10,7 +11,7 @@ from pathlib import Path
 from ..schema.errors import MotorfolioError
 from ..schema.operation.cycle import Cycle
 from ..schema.units.read import quantity, read_unit
-from .requirement_fields import RequirementError
+from .requirement_fields import RequirementError, quoted
 
 _NAMES = {
     "time": "time",
@@ -49,8 +50,13 @@ def from_file(path: Path, linear: bool) -> list[tuple[float, float, float]]:
         raise RequirementError(f"The cycle {path} is no UTF-8 text; save it as CSV.") from None
     except OSError as error:
         raise RequirementError(f"The cycle {path} can't be read: {error.strerror}.") from None
+    except ValueError:  # a zero byte in the name
+        raise RequirementError(f"The cycle {path} is no file; name a CSV file.") from None
     delimiter = max(";\t,", key=text.partition("\n")[0].count)
-    rows = list(csv.reader(text.splitlines(), delimiter=delimiter))
+    try:
+        rows = list(csv.reader(text.splitlines(), delimiter=delimiter))
+    except csv.Error as error:
+        raise RequirementError(f"The cycle {path} is no CSV: {error}.") from None
     if not any(any(cell.strip() for cell in row) for row in rows):
         raise RequirementError(f"The cycle {path} is empty; give columns time, speed and torque.")
     columns = _columns(rows[0], axis_units(linear), path)
@@ -72,7 +78,7 @@ def _columns(
     """Column number and factor to SI of time, speed and effort."""
     found: dict[str, tuple[int, float]] = {}
     for at, heading in enumerate(headings):
-        match = _HEADING.match(heading.strip())
+        match = _HEADING.match(heading.strip()[:200])
         name = (match["name"] if match else heading).strip().lower()
         kind = _NAMES.get(name)
         if kind is None:
@@ -109,13 +115,18 @@ def _cell(row: Sequence[str], at: int, factor: float, delimiter: str, where: str
     if delimiter != ",":
         plain = plain.replace(",", ".")
     try:
-        return float(plain) * factor
+        number = float(plain) * factor
     except ValueError:
-        raise RequirementError(f"The cycle {where}: {text!r} is no number; give one.") from None
+        number = math.nan
+    if not math.isfinite(number) or "_" in plain:
+        raise RequirementError(f"The cycle {where}: {quoted(text)} is no number; give one.")
+    return number
 
 
 def from_rows(rows: Sequence[Sequence[str]], linear: bool) -> list[tuple[float, float, float]]:
     """The same from rows of text with units, as a requirement file may hold them."""
+    if not isinstance(rows, list | tuple):
+        raise RequirementError("cycle: give a CSV file, or rows of [time, speed, torque].")
     units = axis_units(linear)
     result = []
     for number, row in enumerate(rows, start=1):

@@ -8,11 +8,19 @@ from pathlib import Path
 from typing import Any
 
 from ..schema.operation.axis import Axis
-from ..schema.operation.cycle import Cycle
+from ..schema.operation.cycle import Cycle, CycleError
 from ..schema.operation.demand import Demand, Drive, Gearing, Supply, Surroundings
 from ..schema.operation.moves import MoveError, move, one_after_the_other, rest
 from . import cycle_table
-from .requirement_fields import LISTS, SECTIONS, Ratios, Reader, RequirementError, unknown
+from .requirement_fields import (
+    LISTS,
+    SECTIONS,
+    Ratios,
+    Reader,
+    RequirementError,
+    quoted,
+    unknown,
+)
 from .where import Where, read_where
 
 Document = dict[str, Any]
@@ -110,8 +118,11 @@ def read_requirement(
             )
     values = {section: reader.section(document, section) for section in SECTIONS}
     axis = _axis(values["load"], reader)
-    on_axis, rests = _cycle(document, axis, reader, folder)
-    cycle = axis.at_shaft(on_axis)
+    try:
+        on_axis, rests = _cycle(document, axis, reader, folder)
+        cycle = axis.at_shaft(on_axis)
+    except CycleError as error:
+        raise RequirementError(str(error)) from error
     supply_in, drive_in, gear, ambient, wanted = (
         values[name] for name in ("supply", "drive", "gear", "ambient", "wanted")
     )
@@ -147,10 +158,16 @@ def read_requirement(
         where=tuple(read_where(text) for text in wanted.get("where", ())),
         order_by=wanted.get("order_by", "size"),
         limit=wanted.get("limit", 20),
-        title=str(document.get("title", "")),
+        title=_title(document.get("title", "")),
         rest_effort=axis.holding * axis.lever if rests else None,
         document=_plain(document),
     )
+
+
+def _title(given: Any) -> str:
+    if not isinstance(given, str):
+        raise RequirementError(f"title: {quoted(given)} is no text; write it in quotes.")
+    return given
 
 
 def _plain(document: Mapping[str, Any]) -> Document:

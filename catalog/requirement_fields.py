@@ -6,11 +6,12 @@ Reading, checking, the JSON Schema and the documentation all come from `SECTIONS
 from __future__ import annotations
 
 import difflib
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any
 
-from ..schema.errors import MotorfolioError
+from ..schema.errors import MotorfolioError, excerpt
 from ..schema.figure.read import POINT, read_figure
 from ..schema.units.read import quantity, read_unit
 
@@ -151,6 +152,10 @@ class Reader:
         self, table: Mapping[str, Any], section: str, fields: Mapping[str, Field]
     ) -> dict[str, Any]:
         """The values of a table in SI; RequirementError names an unknown key."""
+        if not isinstance(table, Mapping):
+            raise RequirementError(
+                f"{section}: {quoted(table)} is no table of keys; write it as [[{section}]]."
+            )
         values = {}
         for key, given in table.items():
             if key not in fields:
@@ -170,32 +175,46 @@ class Reader:
             case "count":
                 count = _number(given, name)
                 if count != int(count):
-                    raise RequirementError(f"{name}: {given} is no whole number; give one.")
+                    raise RequirementError(f"{name}: {quoted(given)} is no whole number; give one.")
                 return int(_bounded(count, field, name, given))
             case "current":
                 return _current(given, field, name)
             case "ratio":
                 return read_ratio(given, name)
             case "texts":
-                return [given] if isinstance(given, str) else [str(text) for text in given]
+                return texts(given, name)
             case "flag":
                 if not isinstance(given, bool):
-                    raise RequirementError(f"{name}: {given!r} is neither true nor false.")
+                    raise RequirementError(f"{name}: {quoted(given)} is neither true nor false.")
                 return given
             case "tolerance":
                 return _tolerance(given, name)
         if given not in field.accepts:
             raise RequirementError(
-                f"{name}: {given!r} is not known; {_or(field.accepts)} would do."
+                f"{name}: {quoted(given)} is not known; {_or(field.accepts)} would do."
             )
         return given
 
 
+def quoted(given: Any) -> str:
+    """What was given, as a message shows it."""
+    return excerpt(repr(given) if isinstance(given, str | list | dict) else str(given))
+
+
+def texts(given: Any, name: str) -> list[str]:
+    """One text or a list of them."""
+    every = given if isinstance(given, list | tuple) else [given]
+    for text in every:
+        if not isinstance(text, str):
+            raise RequirementError(f"{name}: {quoted(text)} is no text; write it in quotes.")
+    return list(every)
+
+
 def unknown(where: str, key: str, known: Mapping[str, Any]) -> str:
     """A sentence about a key that is not known."""
-    near = difflib.get_close_matches(key, known, n=1)
-    hint = f"did you mean {near[0]}?" if near else f"known are {', '.join(known)}."
-    return f"The requirement's {where} has no {key!r}; {hint}"
+    near = difflib.get_close_matches(key[:80], known, n=1)
+    hint = f"did you mean {near[0]}?" if near else f"known are {excerpt(', '.join(known), 180)}."
+    return f"The requirement's {where} has no {quoted(key)}; {hint}"
 
 
 def _or(words: tuple[str, ...]) -> str:
@@ -204,19 +223,24 @@ def _or(words: tuple[str, ...]) -> str:
 
 def _bounded(value: float, field: Field, name: str, given: Any) -> float:
     if field.over is not None and not value > field.over:
-        raise RequirementError(f"{name}: {given} is too small; give more than {field.over:g}.")
+        raise RequirementError(
+            f"{name}: {quoted(given)} is too small; give more than {field.over:g}."
+        )
     if field.least is not None and not value >= field.least:
-        raise RequirementError(f"{name}: {given} is too small; give {field.least:g} or more.")
+        raise RequirementError(
+            f"{name}: {quoted(given)} is too small; give {field.least:g} or more."
+        )
     if field.most is not None and not value <= field.most:
         most = f"{field.most:.0%}" if field.kind == "share" else f"{field.most:g}"
-        raise RequirementError(f"{name}: {given} is too large; give at most {most}.")
+        raise RequirementError(f"{name}: {quoted(given)} is too large; give at most {most}.")
     return value
 
 
 def _quantity(given: Any, accepts: tuple[str, ...], name: str) -> float:
     if not isinstance(given, str):
         raise RequirementError(
-            f'{name}: {given} is a number without a unit; give text such as "{given} {accepts[0]}".'
+            f"{name}: {quoted(given)} is a number without a unit; give text such as "
+            f'"{quoted(given)} {accepts[0]}".'
         )
     text = given.strip()
     if name.rpartition(".")[2] == "lead":  # a lead may be written per turn
@@ -240,7 +264,7 @@ def share(given: Any, name: str) -> float:
     if isinstance(given, bool):
         raise RequirementError(f"{name}: {given} is no number; give one such as 20 %.")
     if isinstance(given, int | float):
-        return float(given)
+        return _number(given, name)
     return _quantity(given, ("1",), name)
 
 
@@ -248,9 +272,12 @@ def _number(given: Any, name: str) -> float:
     if isinstance(given, bool):
         raise RequirementError(f"{name}: {given} is no number.")
     try:
-        return float(given)
-    except (TypeError, ValueError):
-        raise RequirementError(f"{name}: {given!r} is no number.") from None
+        number = float(given)
+    except (TypeError, ValueError, OverflowError):
+        number = math.nan
+    if not math.isfinite(number):
+        raise RequirementError(f"{name}: {quoted(given)} is no number.")
+    return number
 
 
 def _current(given: Any, field: Field, name: str) -> tuple[float, str | None]:
@@ -260,7 +287,7 @@ def _current(given: Any, field: Field, name: str) -> tuple[float, str | None]:
     marks = read_unit(figure.unit, ("A",)).marks if figure else frozenset()
     words = [word for word in ("rms", "peak", "dc") if word in marks]
     if len(words) > 1:
-        raise RequirementError(f"{name}: {given!r} names two conventions; name one.")
+        raise RequirementError(f"{name}: {quoted(given)} names two conventions; name one.")
     return value, words[0] if words else None
 
 
@@ -271,7 +298,7 @@ def _tolerance(given: Any, name: str) -> float | str:
         return 0.1 if given else 0.0
     value = share(given, name)
     if not 0 <= value < 1:
-        raise RequirementError(f"{name}: {given} is no tolerance; give one such as 10 %.")
+        raise RequirementError(f"{name}: {quoted(given)} is no tolerance; give one such as 10 %.")
     return value
 
 
@@ -300,7 +327,7 @@ def read_ratio(given: Any, name: str) -> Ratios:
         low, high = (_ratio(part, name) for part in given.split("..", 1))
         if low > high:
             raise RequirementError(
-                f"{name}: the range {given} begins above its end; write {high:g}..{low:g}."
+                f"{name}: the range {quoted(given)} begins above its end; write {high:g}..{low:g}."
             )
         return Ratios((low,)) if low == high else Ratios(low=low, high=high)
     parts = given.split(",") if isinstance(given, str) else given
@@ -318,80 +345,15 @@ def _ratio(text: Any, name: str) -> float:
     else:
         value = _ratio_number(text, name)
     if not 0 < value < float("inf"):
-        raise RequirementError(f"{name}: {text} is no gear ratio; give a number above 0.")
+        raise RequirementError(f"{name}: {quoted(text)} is no gear ratio; give a number above 0.")
     return value
 
 
 def _ratio_number(text: Any, name: str) -> float:
     try:
         return float(text)
-    except (TypeError, ValueError):
+    except (TypeError, ValueError, OverflowError):
         raise RequirementError(
-            f"{name}: {str(text).strip()!r} is no gear ratio; give a number (5), a range (3..20) "
-            "or a list (3,5,8)."
+            f"{name}: {quoted(str(text).strip())} is no gear ratio; give a number (5), "
+            "a range (3..20) or a list (3,5,8)."
         ) from None
-
-
-def json_schema() -> dict[str, Any]:
-    """The JSON Schema (2020-12) of a requirement file, made from the table."""
-
-    def of(fields: Mapping[str, Field]) -> dict[str, Any]:
-        return {
-            "type": "object",
-            "additionalProperties": False,
-            "properties": {key: _schema(field) for key, field in fields.items()},
-        }
-
-    text = {"type": "string"}
-    rows = {
-        "type": "array",
-        "minItems": 2,
-        "items": {"type": "array", "prefixItems": [text] * 3, "minItems": 3, "maxItems": 3},
-    }
-    cycle = {
-        "description": "a CSV file with the columns time, speed and torque (or force), "
-        "or rows of [time, speed, torque]",
-        "oneOf": [text, rows],
-    }
-    return {
-        "$schema": "https://json-schema.org/draft/2020-12/schema",
-        "title": "motorfolio requirement",
-        "type": "object",
-        "additionalProperties": False,
-        "properties": {
-            "title": text,
-            "cycle": cycle,
-            **{name: of(fields) for name, fields in SECTIONS.items()},
-            **{
-                name: {"type": "array", "minItems": 1, "items": of(fields)}
-                for name, fields in LISTS.items()
-            },
-        },
-    }
-
-
-def _schema(field: Field) -> dict[str, Any]:
-    number, text = {"type": "number"}, {"type": "string"}
-    match field.kind:
-        case "quantity":
-            unit = " or ".join(field.accepts)
-            return {**text, "description": f"{field.doc}; text with a unit ({unit})"}
-        case "current":
-            return {**text, "description": f"{field.doc}; text with a unit (A)"}
-        case "share":
-            kinds: list[dict[str, Any]] = [number, text]
-            return {"anyOf": kinds, "description": f"{field.doc}; a pure number or per cent"}
-        case "ratio":
-            several = {"type": "array", "minItems": 1, "items": number}
-            return {"anyOf": [number, text, several], "description": field.doc}
-        case "number":
-            return {**number, "description": field.doc}
-        case "count":
-            return {"type": "integer", "minimum": 1, "description": field.doc}
-        case "texts":
-            return {"type": "array", "items": text, "description": field.doc}
-        case "flag":
-            return {"type": "boolean", "description": field.doc}
-        case "tolerance":
-            return {"anyOf": [{"type": "boolean"}, number, text], "description": field.doc}
-    return {"enum": list(field.accepts), "description": field.doc}

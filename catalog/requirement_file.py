@@ -9,7 +9,7 @@ from typing import Any
 
 from . import cycle_table
 from .requirement import Document, Requirement
-from .requirement_fields import LISTS, RequirementError
+from .requirement_fields import LISTS, RequirementError, quoted, texts
 
 #: What is shown of a search is no part of what the machine asks: an option may change it.
 _VIEW = ("limit", "order_by")
@@ -35,11 +35,11 @@ def merged(file: Mapping[str, Any], options: Mapping[str, Any], folder: Path) ->
         table = dict(there)
         for key, value in added.items():
             if key == "where":
-                table[key] = [*table.get(key, []), *value]
+                table[key] = [*texts(table.get(key, []), f"{section}.{key}"), *value]
             elif key in table and table[key] != value and key not in _VIEW:
                 raise RequirementError(
-                    f"The requirement file says {section}.{key} = {table[key]} and the options "
-                    f"{value}; leave one of them."
+                    f"The requirement file says {section}.{key} = {quoted(table[key])} and the "
+                    f"options {quoted(value)}; leave one of them."
                 )
             else:
                 table[key] = value
@@ -73,7 +73,9 @@ def read_file(path: Path) -> Document:
         raise RequirementError(f"The requirement {path} is a folder; name a TOML file.") from None
     except OSError as error:
         raise RequirementError(f"The requirement {path} can't be read: {error.strerror}.") from None
-    except (tomllib.TOMLDecodeError, UnicodeDecodeError) as error:
+    except RecursionError:
+        raise RequirementError(f"The requirement {path} is nested too deeply.") from None
+    except ValueError as error:  # no TOML, no UTF-8, no path
         raise RequirementError(f"The requirement {path} is no TOML: {error}.") from None
 
 

@@ -1,5 +1,7 @@
 """Zip files opened with care: sizes are bounded before anything is unpacked."""
 
+import lzma
+import struct
 import zipfile
 import zlib
 from collections.abc import Iterator
@@ -15,9 +17,12 @@ FAULTS = (
     etree.XMLSyntaxError,
     zipfile.BadZipFile,
     zlib.error,
+    lzma.LZMAError,
+    struct.error,
     EOFError,
     OSError,
     ValueError,
+    RuntimeError,  # a password, an unknown packing
 )
 """What damaged archives and XML raise, besides a TableError."""
 _BIG_MEMBER = 20_000_000
@@ -59,7 +64,7 @@ class Archive:
         try:
             self._zip = zipfile.ZipFile(file)
             members = self._zip.infolist()
-        except (zipfile.BadZipFile, OSError, ValueError, NotImplementedError):
+        except FAULTS:
             raise TableError(
                 f"{name}: the workbook is damaged, perhaps cut short; save or download it again"
             ) from None
@@ -87,7 +92,7 @@ class Archive:
             raise TableError(
                 f"{self.name}: the workbook is damaged: its part {member} is missing"
             ) from None
-        except (zipfile.BadZipFile, NotImplementedError, OSError) as error:
+        except FAULTS as error:
             raise self.damaged(error) from None
 
     def read(self, member: str, most: int = 200_000_000) -> bytes:
@@ -96,7 +101,7 @@ class Archive:
         try:
             with self.open(member) as stream:
                 return stream.read()
-        except (zipfile.BadZipFile, zlib.error, EOFError, OSError) as error:
+        except FAULTS as error:
             raise self.damaged(error) from None
 
     def xml(self, member: str) -> etree._Element:
@@ -124,5 +129,5 @@ class Archive:
                 with self.open(member) as stream:
                     while stream.read(1 << 20):
                         pass
-            except (zipfile.BadZipFile, zlib.error, EOFError, OSError) as error:
+            except FAULTS as error:
                 raise self.damaged(error) from None

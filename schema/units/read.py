@@ -6,6 +6,7 @@ may be rad/s or rev/s. What is taken for something else than it says is told in 
 """
 
 import difflib
+import math
 import re
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
@@ -13,7 +14,7 @@ from fractions import Fraction
 from functools import lru_cache
 from typing import NamedTuple
 
-from ..errors import MotorfolioError
+from ..errors import MotorfolioError, excerpt
 from ..figure.read import POINT, read_figure
 from ..figure.signs import plain
 from .factors import evaluate
@@ -32,8 +33,8 @@ class UnitError(MotorfolioError):
         self.text = text
         self.reason = reason
         self.guesses = tuple(guesses)
-        hint = f"; it may mean {' or '.join(self.guesses)}" if guesses else ""
-        super().__init__(f'unit "{text}": {reason}{hint}')
+        hint = f"; it may mean {' or '.join(map(excerpt, self.guesses))}" if guesses else ""
+        super().__init__(f'unit "{excerpt(text)}": {excerpt(reason, 160)}{hint}')
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,6 +65,7 @@ class Converted(NamedTuple):
     remark: str
 
 
+_LONGEST = 100
 # Where a million is absurd for a motor, an upper-case M is a thousandth.
 _NEVER_MEGA = {"V", "A", "H", "N·m", "N·m/A", "V·s/rad", "N·m/√W", "rad/(s·N·m)", "s", "m"}
 
@@ -88,6 +90,10 @@ def _read(text: str, accepts: tuple[str, ...]) -> Unit | UnitError:
         if "1" in accepts:
             return Unit(text, "1", 1.0, 0.0, "1")
         return UnitError(text, f"no unit is given; {_or(accepts)} would do")
+    if len(text) > _LONGEST:
+        return UnitError(text, f"longer than any unit; {_or(accepts)} would do")
+    if accepts == ("m",) and re.match(r"[×xX*]\s*1000", bare(text)):
+        return UnitError(text, "it may be a factor or a second dimension; write one length")
     if (money := _currency(text, accepts)) is not None:
         return money
     clean, marks = split_marks(bare(text))
@@ -276,7 +282,7 @@ def unit_of(text: str) -> Unit | None:
     Used to decide what a column may be. Nothing is repaired here ("W" is a watt), and the case of
     a single letter always counts.
     """
-    if not text.strip():
+    if not text.strip() or len(text) > _LONGEST:
         return None
     if (money := _currency(text, ("currency",))) is not None:
         return money
@@ -339,7 +345,7 @@ def quantity(text: str, accepts: tuple[str, ...]) -> float:
     if not unit and "1" not in accepts:
         raise UnitError(text, f"a number without a unit; {_or(accepts)} would do")
     read = read_unit(unit, accepts)
-    return value * read.factor + read.offset
+    return _finite(value * read.factor + read.offset, text)
 
 
 _CONSTANTS, _SPEED_CONSTANT = ("N·m/A", "V·s/rad"), ("rad/(s·V)",)
@@ -371,7 +377,13 @@ def convert(text: str, target: str) -> Converted:
         si = 1 / si
         said.append(f"the reciprocal: 1/({text.strip()})")
     remark = "; ".join(r for r in said if r)
-    return Converted((si - wanted.offset) / wanted.factor, target, remark)
+    return Converted(_finite((si - wanted.offset) / wanted.factor, text), target, remark)
+
+
+def _finite(value: float, text: str) -> float:
+    if not math.isfinite(value):
+        raise UnitError(text, "the quantity is too large for a number")
+    return value
 
 
 def _number_and_unit(text: str) -> tuple[float, str]:

@@ -123,6 +123,10 @@ _POWER = re.compile(
 )
 
 
+# No unit of a sheet goes beyond these; what does would have no finite factor.
+_MOST_TENS, _MOST = 40, 20
+
+
 @dataclass(slots=True)
 class _Parser:
     text: str
@@ -149,6 +153,9 @@ class _Parser:
         products = self.quotient()
         if self.text[self.at :].strip():
             raise NotAUnitError(self.text[self.at :].strip())
+        for product in products:
+            if abs(product.tens) > _MOST_TENS or sum(abs(e) for _, e in product.powers) > _MOST:
+                raise NotAUnitError(self.text, f'the powers in "{self.text}" are beyond any unit')
         return products
 
     def quotient(self) -> list[Product]:
@@ -191,7 +198,8 @@ class _Parser:
 
     def factor(self, below: bool) -> list[Product]:
         token = self.peek()
-        assert token is not None
+        if token is None:
+            raise NotAUnitError(self.text[self.at :].strip() or self.text)
         if token.group("sign") == "√":
             self.take()
             return [Product().times(p, Fraction(1, 2)) for p in self.factor(below)]
@@ -255,7 +263,10 @@ class _Parser:
         if found.group("half"):
             return Fraction(1, 2)
         digits = found.group("raised") or found.group("inner") or found.group("low")
-        return Fraction(digits.replace(",", "."))
+        top, _, bottom = digits.replace(",", ".").partition("/")
+        if bottom and not int(bottom):
+            raise NotAUnitError(self.text, f'a power in "{self.text}" is divided by zero')
+        return Fraction(top) / int(bottom or 1)
 
     def word(self, word: str) -> list[Product]:
         meanings = self.meanings(word)

@@ -7,6 +7,8 @@ from fractions import Fraction
 from pathlib import Path
 
 import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
 
 from motorfolio.schema.figure.read import FigureError
 from motorfolio.schema.units import factors as unit_factors
@@ -429,6 +431,76 @@ def test_convert(text: str, target: str, value: float) -> None:
 def test_convert_refuses(text: str, target: str) -> None:
     with pytest.raises(UnitError):
         convert(text, target)
+
+
+@pytest.mark.parametrize(
+    "text",
+    [
+        "√", "N·m·√", "√(", "√√", "N·m/√", "×", "N·m^1/0", "N·m^(1/0)", "N^999·m", "10^999 N·m",
+        "N·m·" * 24 + "s", "1" + "0" * 60 + " N·m", "1e999", "9" * 400, "(" * 90, "√" * 90 + "W",
+        "N·m\n" * 300, "\nkilog", "\u202eN·m\x00", "hour^-20·hour^-20", "N^0.3333333·m",
+    ],
+)  # fmt: skip
+@pytest.mark.parametrize("accepts", [("N·m",), ("1",), ("N·m/√W",), ("currency",)])
+def test_any_text_is_a_unit_or_refused_in_one_line(text: str, accepts: tuple[str, ...]) -> None:
+    """Random texts once ended in tracebacks, infinite factors and messages over many lines."""
+    with pytest.raises(UnitError) as refused:
+        read_unit(text, accepts)
+    assert refused.value.text == text
+    assert str(refused.value).isprintable()
+    assert len(str(refused.value)) <= 300
+    assert isinstance(is_unit_like(text), bool)
+
+
+@pytest.mark.parametrize("text", ["1e307 kN·m", "1.5e308 lbf·ft", "1e999 N·m", "1e-320 mN·m/√"])
+def test_a_quantity_is_finite_or_refused(text: str) -> None:
+    with pytest.raises((FigureError, UnitError)):
+        quantity(text, ("N·m",))
+
+
+def test_a_reciprocal_beyond_all_numbers_is_refused() -> None:
+    with pytest.raises(UnitError, match="too large"):
+        convert("1e-320 rpm/V", "N·m/A")
+
+
+def test_a_thousand_behind_a_number_is_a_factor_of_speed_but_none_of_length() -> None:
+    """ "36 ×1000 mm" may be two dimensions."""
+    assert quantity("5 ×1000 rpm", ("rad/s",)) == pytest.approx(5000 * RPM)
+    with pytest.raises(UnitError, match="second dimension"):
+        quantity("36 ×1000 mm", ("m",))
+
+
+_PARTS = st.sampled_from(
+    [*"VAΩµmkgsNWH/*·.-²³⁻¹√()[]{}^ 0123456789,×%°\n\x00½", "Nm", "oz", "in", "lb", "rpm", "min",
+     "rad", "sqrt", "rms", "10^-7", "×1000", "U/min", "per", "(L-L)", "°C", "°F", "K/W", "1e999",
+     "^999", "^-99", "^1/0", "10^99", "M", "hour", "kgf", "Hz", "±0.1", "1.5 ", "max."]
+)  # fmt: skip
+_TEXTS = st.one_of(st.text(max_size=30), st.lists(_PARTS, max_size=8).map("".join))
+_ACCEPTS = st.sampled_from(
+    [*((si,) for si in table().targets), ("N·m/A", "V·s/rad"), ("currency",), ("1", "s")]
+)
+
+
+@settings(max_examples=1500, deadline=None)
+@given(_TEXTS, _ACCEPTS)
+def test_no_text_breaks_the_reading_of_units(text: str, accepts: tuple[str, ...]) -> None:
+    """Whatever stands there: a finite factor that is not zero, or the documented errors."""
+    for read in (
+        lambda: read_unit(text, accepts).factor,
+        lambda: quantity(text, accepts),
+        lambda: convert(text, "N·m/A").value,
+    ):
+        message = "1"
+        try:
+            number = read()
+        except (FigureError, UnitError) as error:
+            number, message = 1.0, str(error)
+        assert math.isfinite(number)
+        assert message.isprintable()
+        assert 0 < len(message) <= 300
+    assert isinstance(is_unit_like(text), bool)
+    known = unit_of(text)
+    assert known is None or math.isfinite(known.factor)
 
 
 def test_currencies_stay_what_they_are() -> None:

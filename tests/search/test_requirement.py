@@ -13,10 +13,10 @@ from motorfolio.catalog.requirement_fields import (
     LISTS,
     SECTIONS,
     RequirementError,
-    json_schema,
     read_ratio,
 )
 from motorfolio.catalog.requirement_file import merged, read_file, saved, to_toml
+from motorfolio.catalog.requirement_schema import json_schema
 from motorfolio.catalog.where import read_where
 from motorfolio.schema.errors import MotorfolioError
 
@@ -157,6 +157,56 @@ def test_one_sentence_says_what_would_do(document, words) -> None:
 def test_bad_cycle_files(tmp_path: Path, text: str, words: str) -> None:
     (tmp_path / "c.csv").write_text(text, encoding="utf-8")
     with pytest.raises(MotorfolioError, match=words):
+        read_requirement({"cycle": "c.csv"}, folder=tmp_path)
+
+
+@pytest.mark.parametrize(
+    "document",
+    [
+        {"point": ["abc"]},
+        {"point": [[1.5]]},
+        {"point": "abc"},
+        {"move": [5]},
+        {"cycle": [1.5]},
+        {"cycle": 7},
+        {"cycle": {"a": 1}},
+        {"cycle": "a\x00b.csv"},
+        {**POINT, "wanted": {"where": 5}},
+        {**POINT, "wanted": {"where": [5]}},
+        {**POINT, "wanted": {"limit": math.inf}},
+        {**POINT, "wanted": {"limit": 10**400}},
+        {**POINT, "wanted": {"largest_inertia_ratio": math.nan}},
+        {**POINT, "wanted": {"largest_inertia_ratio": math.inf}},
+        {**POINT, "wanted": {"reserve": 10**400}},
+        {**POINT, "gear": {"ratio": 10**400}},
+        {**POINT, "gear": {"ratio": "x" * 5000}},
+        {**POINT, "load": {"inertia": "\n" * 50 + "kg"}},
+        {**POINT, "load": {"inertia": ["a" * 90] * 90}},
+        {**POINT, "load": {"kind": {"a\n": "b"}}},
+        {**POINT, "title": 5},
+        {"y" * 5000: 1},
+    ],
+)
+def test_what_no_requirement_holds_is_refused_in_one_line(document) -> None:
+    """Random documents once ended in tracebacks and in messages over many lines."""
+    with pytest.raises(RequirementError) as refused:
+        read_requirement(document)
+    assert str(refused.value).isprintable()
+    assert len(str(refused.value)) <= 300
+
+
+def test_one_limit_in_the_file_and_one_option() -> None:
+    """A lone text in the file is one limit, not a list of letters."""
+    file = {"wanted": {"where": "mass < 500 g"}}
+    both = merged(file, {"wanted": {"where": ["maker = X"]}}, Path())
+    assert both["wanted"]["where"] == ["mass < 500 g", "maker = X"]
+
+
+@pytest.mark.parametrize("cell", ["nan", "inf", "1_000", "1e999"])
+def test_cells_of_a_cycle_are_plain_numbers(tmp_path: Path, cell: str) -> None:
+    text = f"time [s];speed [rpm];torque [N·m]\n0;0;1\n1;{cell};1\n"
+    (tmp_path / "c.csv").write_text(text, encoding="utf-8")
+    with pytest.raises(RequirementError, match=r"row 3: .* is no number"):
         read_requirement({"cycle": "c.csv"}, folder=tmp_path)
 
 

@@ -1,5 +1,6 @@
 """Input that can't be used: one clear sentence each, soon, and without filling memory."""
 
+import io
 import random
 import re
 import subprocess
@@ -13,6 +14,7 @@ import pytest
 from openpyxl import Workbook
 
 from motorfolio.catalog.tables import TableError, read_tables
+from motorfolio.catalog.tables.archive import Archive
 from motorfolio.schema.errors import MotorfolioError
 
 from .files import check, compound, ods, xls, xlsb, xlsx, zipped
@@ -289,3 +291,23 @@ def test_the_fingerprint_is_of_the_bytes(tmp_path: Path) -> None:
     (tmp_path / "a.csv").write_bytes(b"abc")
     digest = "ba7816bf8f01cfea414140de5dae2223b00361a396177a9cb410ff61f20015ad"
     assert read_tables(tmp_path / "a.csv", format="csv").sha256 == digest
+
+
+@pytest.mark.parametrize("packing", [zipfile.ZIP_DEFLATED, zipfile.ZIP_LZMA, zipfile.ZIP_BZIP2])
+def test_a_zip_with_any_byte_damaged_is_read_or_refused(packing: int) -> None:
+    """Damaged offsets, sizes, packings and passwords: zipfile has a different error for each."""
+    whole = zipped({"a.xml": "<a>1</a>", "b.xml": "<b>2</b>"}, packing)
+    refused = []
+    for at in range(len(whole)):
+        for damage in (0x00, 0xFF, whole[at] ^ 1):
+            damaged = whole[:at] + bytes([damage]) + whole[at + 1 :]
+            try:
+                archive = Archive(io.BytesIO(damaged), "a.xlsx")
+                archive.prove()
+                for member in archive.members:
+                    archive.xml(member)
+                    archive.read(member)
+            except TableError as error:
+                refused.append(str(error))
+    assert len(refused) > len(whole)
+    assert all("a.xlsx: " in sentence and sentence.isprintable() for sentence in refused)
