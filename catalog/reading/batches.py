@@ -205,6 +205,7 @@ class TableReader(Decisions):
                     cell_conventions(figure, values, q, convention, self.notes)
                     _fill_gaps(batch, q.key, figure, values)
                 self._to_condition(conditions, m, values, column, rows, columns, convention)
+                self._twice(conditions[m.when], m, values, column, rows, columns, unread, names)
                 continue
             figure = as_column(values, column, index, rows, columns)
             figure.conventions = [convention]
@@ -408,11 +409,25 @@ class TableReader(Decisions):
         assert m.key is not None
         for i in np.flatnonzero(~np.isnan(values.value)).tolist():
             k = int(i)
-            condition.figures.setdefault(k, {})[m.key] = PlacedFigure(
+            condition.figures.setdefault(k, {}).setdefault(m.key, PlacedFigure(
                 float(values.value[k]), float(values.low[k]), float(values.high[k]), texts[k],
                 m.units[0].text if m.units else "", convention, values.qualifiers.get(k),
                 int(rows[k]), int(columns[k]),
-            )  # fmt: skip
+            ))  # fmt: skip
+
+    def _twice(
+        self, condition: Condition, m: Match, values: Values, texts: Sequence[str],
+        rows: Ints, columns: Ints, unread: list[Unread], names: list[str],
+    ) -> None:  # fmt: skip
+        """List the figures that a condition has already, with another value: the first stands."""
+        assert m.key is not None
+        for i in np.flatnonzero(~np.isnan(values.value)).tolist():
+            k = int(i)
+            first = condition.figures[k][m.key]
+            if first.value != values.value[k]:
+                reason = f'"{condition.when}" has this figure already: {first.text}'
+                place = (int(rows[k]), int(columns[k]))
+                self._unread_cell(unread, names[k], m, place, texts[k], reason, ())
 
     def _to_points(
         self, points: dict[int, dict[str, Point]], m: Match, texts: list[str],

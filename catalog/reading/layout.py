@@ -282,9 +282,9 @@ def lay_out_columns(block: Block) -> Table:
             continue
         texts = [row[c] for c in values]
         label = row[label_column]
-        pair = _LABEL_AND_FIGURE.match(plain(label)) if len(values) == 1 else None
-        if pair and not any(texts) and _measures(pair[1]):
-            label, texts = pair[1], [pair[2]]
+        pair = figure_behind(label) if len(values) == 1 and not any(texts) else None
+        if pair is not None:
+            label, texts = pair[0], [pair[1]]
             row = [*row[:label_column], label, *row[label_column + 1 :]]
         groups = [row[c] for c, role in enumerate(roles) if role == "group" and row[c]]
         spanning = len({t for t in row if t}) == 1 and sum(1 for t in row if t) > 1
@@ -333,10 +333,15 @@ def lay_out_columns(block: Block) -> Table:
     return table
 
 
-def _measures(text: str) -> bool:
-    """Whether a text names a quantity that is measured: "Winding at" 125 °C does not."""
-    phrase = match_phrase(text)
-    return phrase.score >= 0.95 and any(not quantity(k).text for k in phrase.keys)
+def figure_behind(text: str) -> tuple[str, str] | None:
+    """The name of something measured and the figure behind it in one cell, or None: "Winding at
+    125 °C" has none."""
+    pair = _LABEL_AND_FIGURE.match(plain(text))
+    if pair is None:
+        return None
+    phrase = match_phrase(pair[1])
+    measured = phrase.score >= 0.95 and any(not quantity(k).text for k in phrase.keys)
+    return (pair[1], pair[2]) if measured else None
 
 
 def _roles(block: Block, label_column: int) -> list[str]:

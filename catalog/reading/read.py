@@ -4,6 +4,7 @@ from pathlib import PurePath
 
 from ...schema.batch import Batch, Heading
 from ..tables.grid import Grid, TableFile
+from .account import unaccounted
 from .batches import TableReader
 from .blocks import Block, blocks_of
 from .cells import TOLD
@@ -43,6 +44,7 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
         if not tables and grid.sheet:
             remarks.append(f"sheet {grid.sheet}: no motor table, skipped")
         lone += tables
+        unread += unaccounted(grid, tables)
     TOLD.reset(told)
     stem = PurePath(file.name).stem
     found = joined(lone, remarks)
