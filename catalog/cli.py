@@ -19,6 +19,7 @@ COMMANDS: dict[str, tuple[str, str]] = {
     # name: (module in commands, what it does)
     "import": ("import_", "Read datasheet tables into the catalog."),
     "check": ("check", "Say which published figures contradict each other, and why."),
+    "list": ("list_", "List the motors, or find those that words name."),
     "show": ("show", "Show a motor: constants, figures as published, findings."),
     "search": ("search", "Find the motors that do what a machine asks."),
     "operate": ("operate", "Show a motor at work, under voltage or current control."),
@@ -31,6 +32,8 @@ COMMANDS: dict[str, tuple[str, str]] = {
     "schema": ("schema", "Print the JSON Schema of a document."),
     "correct": ("correct", "Put a correction in place of a published figure, or revoke it."),
     "readings": ("readings", "List or remove the readings kept for a maker's headings."),
+    "same": ("same", "List motors that may be one, in two sheets."),
+    "merge": ("merge", "Say that two motors are one."),
     "revisions": ("revisions", "List imports, or the earlier revisions of a motor."),
     "diff": ("diff", "Show what an import changed."),
     "undo": ("undo", "Take an import back."),

@@ -12,10 +12,14 @@ import click
 from .common import catalog_option, json_option, print_json, say
 
 if TYPE_CHECKING:
+    from ..import_result import ImportResult
     from ..importing import Progress
 
 FORMATS = ("csv", "tsv", "text", "json", "toml", "html")
 SHOW_PROGRESS_AFTER = 1.0
+MOST_PAIRS = 5
+MOST_COMPARED = 5000
+"""With more motors, motorfolio same is left to be called."""
 
 
 def _overrides(
@@ -102,10 +106,25 @@ def command(
         print_json(result.as_json())
     else:
         print_import(result, catalog, dry_run=dry_run)
+        if any(file.stored for file in result.files):
+            _print_same(catalog, result)
     if result.refused:
         say("Nothing was stored: --strict, and something could not be read or is in error.")
         return 1
     return 0
+
+
+def _print_same(catalog: Path, result: "ImportResult") -> None:
+    """Motors of this import that another sheet seems to have too."""
+    from ..report.lists import print_pairs
+    from ..same_motors import pairs
+    from ..store import Catalog
+
+    if sum(file.stored for file in result.files) > MOST_COMPARED:
+        return
+    with Catalog.open(catalog) as opened:
+        last = opened.imports()[-1].id
+        print_pairs(pairs(opened, opened.motors_of(last)), MOST_PAIRS)
 
 
 @contextmanager

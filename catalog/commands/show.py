@@ -21,6 +21,11 @@ def command(part: str, catalog: Path, as_json: bool) -> int:
 
     with Catalog.open(catalog) as opened, opened.at_once():
         document = opened.motor(part)
+        also = opened.also(part)
+    if also:
+        document["also"] = [
+            {key: other[key] for key in ("part_number", "maker", "source")} for other in also
+        ]
     if as_json:
         print_json(document)
     else:

@@ -29,7 +29,11 @@ def print_card(motor: Document, out: Console) -> None:
     first: list[RenderableType] = [_constants(motor["constants"])]
     second = list(_published(motor))
     third: list[RenderableType] = [*finding_lines(motor["findings"])]
-    third += [Text(f"From {_source(motor['source'])}.", style="dim"), Text(SAFETY, style="dim")]
+    third.append(Text(f"From {_source(motor['source'])}.", style="dim"))
+    for other in motor.get("also", ()):
+        said = f"Also {other['part_number']} of {_source(other['source'])}."
+        third.append(Text(p.plain(said), style="dim"))
+    third += [Text(SAFETY, style="dim")]
     if out.width >= WIDE:
         grid = Table.grid(padding=(0, 3), expand=True)
         grid.add_column(ratio=3)

@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING, Self
 
 from . import load
 from .database import VERSION, CatalogError, connect, in_words, layout_version
-from .load import Known
+from .known import Known
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -211,6 +211,19 @@ class Catalog:
         with self.at_once():
             return revisions.imports(self.connection)
 
+    def motors_of(self, import_id: int) -> set[tuple[str, str]]:
+        """(maker, part number) of the current motors that an import stored."""
+        from .revisions import OF_SOURCE
+
+        with self.at_once():
+            return set(
+                self.connection.execute(
+                    "SELECT m.maker, m.part_number FROM files f JOIN sources s ON s.file = f.id "
+                    f'JOIN motor m ON {OF_SOURCE} WHERE f."import" = ? AND m.replaced_by IS NULL',
+                    (import_id,),
+                )
+            )
+
     def revisions(self, part: str) -> list["Document"]:
         """The motor's documents, oldest first; the last is current."""
         from . import revisions
@@ -259,6 +272,25 @@ class Catalog:
             motors = [load.find(connection, part) for part in parts]
             columns.rebuild(connection, sorted(revisions.remove(connection, motors, now())))
         return motors
+
+    def merge(self, part: str, other: str) -> tuple[Known, Known]:
+        """Let ``other`` be a further sheet of ``part``, see same.py; undo parts them again."""
+        from . import columns, same
+
+        with self.changing() as connection:
+            into, aside = load.find(connection, part), load.find(connection, other)
+            if into.id == aside.id:
+                raise CatalogError(f"{part} and {other} are one motor already.")
+            columns.rebuild(connection, sorted(same.merge(connection, into, aside, now())))
+        return into, aside
+
+    def also(self, part: str) -> list["Document"]:
+        """The documents of the motors that were merged into this one."""
+        from . import same
+
+        with self.at_once():
+            found = same.also(self.connection, load.find(self.connection, part))
+            return list(load.motors(self.connection, [known.id for known in found]))
 
     def set_kept_reading(self, maker: str, heading: str, reading: str) -> None:
         """Use this reading for the heading in further files of the maker; in a transaction."""

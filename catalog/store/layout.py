@@ -195,7 +195,21 @@ def _layout_2(db: Database) -> None:
     )
 
 
-MIGRATIONS: tuple[Callable[[Database], None], ...] = (_layout_1, _layout_2)
+# ---- layout 3: motors that a person said are one
+
+
+def _layout_3(db: Database) -> None:
+    names = ("maker", "part_number", "into_maker", "into_part")
+    db.table("merged").create(
+        {**dict.fromkeys(names, str), "import": int},
+        pk=("maker", "part_number"),
+        not_null={"into_maker", "into_part", "import"},
+        foreign_keys=[("import", "imports", "id")],
+        strict=True,
+    )
+
+
+MIGRATIONS: tuple[Callable[[Database], None], ...] = (_layout_1, _layout_2, _layout_3)
 """One function a layout, in order; the last brings a catalog to VERSION."""
 
 

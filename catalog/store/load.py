@@ -5,27 +5,16 @@ import sqlite3
 from collections import defaultdict
 from collections.abc import Iterable, Iterator, Sequence
 from itertools import islice
-from typing import Any, NamedTuple
+from typing import Any
 
 from .. import documents as doc
 from ..documents import Document
 from .chunk import Chunk, Palettes, rows
 from .database import CatalogError
+from .known import Known
+from .same import stands_for
 
 CHUNK = 400
-
-
-class Known(NamedTuple):
-    """A motor as `find` gives it."""
-
-    id: int
-    maker: str
-    part_number: str
-
-    @property
-    def name(self) -> str:
-        """MAKER/PART, or PART where no maker is known."""
-        return f"{self.maker}/{self.part_number}" if self.maker else self.part_number
 
 
 def find(connection: sqlite3.Connection, part: str) -> Known:
@@ -41,6 +30,16 @@ def find(connection: sqlite3.Connection, part: str) -> Known:
                 "SELECT id, maker, part_number FROM motor WHERE part_number = ? AND maker = ? "
                 "AND replaced_by IS NULL", (part[at + 1 :], part[:at]),
             )]  # fmt: skip
+    if not found:
+        found = [
+            Known(*row)
+            for name in stands_for(connection, part)
+            for row in connection.execute(
+                "SELECT id, maker, part_number FROM motor WHERE maker = ? AND part_number = ? "
+                "AND replaced_by IS NULL",
+                name,
+            )
+        ]
     if len(found) == 1:
         return found[0]
     if found:

@@ -5,7 +5,8 @@ from collections.abc import Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
-from .load import Known
+from .known import Known
+from .same import forget
 
 OF_SOURCE = "m.id BETWEEN s.first_motor AND s.first_motor + s.motors - 1"
 """The motors m of a source s: their ids follow one another, which saves an index."""
@@ -64,12 +65,12 @@ def changed_motors(
 ) -> list[tuple[int | None, int | None]]:
     """What an import did: (earlier row, new row) a motor, None where there is none."""
     rows = connection.execute(
-        "SELECT (SELECT old.id FROM motor old WHERE old.replaced_by = ?1 "
+        "SELECT (SELECT old.id FROM motor old WHERE old.replaced_by = :number "
         "AND old.part_number = m.part_number AND old.maker = m.maker "
         "ORDER BY old.id DESC LIMIT 1), "
         f"m.id FROM files f JOIN sources s ON s.file = f.id JOIN motor m ON {OF_SOURCE} "
-        'WHERE f."import" = ?1 ORDER BY m.id',
-        (import_id,),
+        'WHERE f."import" = :number ORDER BY m.id',
+        {"number": import_id},
     ).fetchall()
     seen = {old for old, _ in rows}
     gone = connection.execute(
@@ -108,6 +109,7 @@ def undo(connection: sqlite3.Connection, import_id: int) -> Undone:
         )
         done.sources.add(source)
         done.restored += row is None
+    forget(connection, import_id)
     connection.execute("DELETE FROM imports WHERE id = ?", (import_id,))
     return done
 

@@ -1,0 +1,84 @@
+"""Motors in a line each, and pairs of them that may be one."""
+
+from collections.abc import Iterable, Sequence
+from typing import TYPE_CHECKING
+
+from rich.console import Console
+from rich.padding import Padding
+from rich.table import Table
+from rich.text import Text
+
+from ..documents import Document
+from . import plain as p
+from .screen import paged
+from .terminal import SEVERITIES, table, whole
+
+if TYPE_CHECKING:
+    from ..same_motors import Pair
+
+_SHORT = {"torque_constant": "Km", "armature_resistance": "Ra", "rotor_inertia": "J"}
+_COLUMNS = {
+    "nominal_voltage": "U",
+    "torque_constant": "Km",
+    "armature_resistance": "Ra",
+    "rotor_inertia": "J",
+    "mass": "mass",
+}
+
+
+def print_motors(motors: Sequence[Document]) -> None:
+    """The motors by maker, with their constants and how many findings they have."""
+
+    def draw(out: Console) -> None:
+        makers: dict[str, list[Document]] = {}
+        for motor in motors:
+            makers.setdefault(motor["maker"] or "", []).append(motor)
+        for maker, group in makers.items():
+            out.print(Text(p.plain(maker) or "maker unknown", style="bold"))
+            out.print(_table(group))
+        out.print(p.many(len(motors), "motor") + ".")
+
+    paged(draw)
+
+
+def _table(motors: Iterable[Document]) -> Table:
+    shown = table("Motor", *_COLUMNS.values(), "Findings", right=tuple(_COLUMNS.values()))
+    whole(shown, *range(len(_COLUMNS) + 2))
+    for motor in motors:
+        figures = [p.quantity(motor[k]["value"], motor[k]["unit"], 3) for k in _COLUMNS]
+        said = [p.many(n, severity) for severity in SEVERITIES
+                if severity != "note" and (n := motor["findings"].get(severity, 0))]  # fmt: skip
+        shown.add_row(Text(p.plain(motor["part_number"])), *figures, ", ".join(said))
+    return shown
+
+
+def print_pairs(pairs: Sequence["Pair"], most: int | None = None) -> None:
+    """Both names with their sheets, what agrees, and the command that makes them one."""
+
+    def draw(out: Console) -> None:
+        for pair in pairs[:most]:
+            for line in _pair_lines(pair):
+                out.print(line)
+        if most is not None and len(pairs) > most:
+            out.print(f"… and {p.many(len(pairs) - most, 'pair')} more (motorfolio same)")
+
+    paged(draw)
+
+
+def _pair_lines(pair: "Pair") -> list[Text | Padding]:
+    """A pair in three lines."""
+    first, second = pair.first, pair.second
+    agreeing = ", ".join(
+        f"{_SHORT[key]} {p.percent(ratio - 1, 1, signed=True)}"
+        for key, ratio in pair.agreeing.items()
+    )
+    names = [_quoted(entry.known.name) for entry in (first, second)]
+    return [
+        Text(p.plain(f"{first.known.name} and {second.known.name} may be one motor")),
+        Padding(Text(p.plain(f"{first.file} against {second.file}: {agreeing}")), (0, 0, 0, 4)),
+        Padding(Text(p.plain(f"motorfolio merge {' '.join(names)}")), (0, 0, 0, 4)),
+    ]
+
+
+def _quoted(name: str) -> str:
+    return f'"{name}"' if " " in name else name
