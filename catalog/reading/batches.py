@@ -22,9 +22,9 @@ from ...schema.convention import Commutation, Convention, default_convention
 from ...schema.figure.signs import plain
 from ...schema.vocabulary import Quantity, quantity
 from .cells import missing
-from .decide import Decisions
+from .decide import REFERENCE_FIGURES, UNSTATED_REFERENCE, Decisions
 from .figures import Values, as_column, read_values
-from .kind import STATED, TOLD, in_words, note_tolerance
+from .kind import ASSUMED, STATED, TOLD, in_words, note_tolerance
 from .label import parse_label
 from .match import Match
 from .model import Field, Unread
@@ -224,9 +224,29 @@ class TableReader(Decisions):
             if wants_points:
                 self._point_too(points, m, values, rows)
         self._connections(batch)
+        self._own_references(batch)
         batch.conditions = list(conditions.values())
         batch.points = {i: list(p.values()) for i, p in points.items()}
         return batch
+
+    def _own_references(self, batch: Batch) -> None:
+        """Where some motors' figures are stated at a temperature and others' are not (an export of
+        several sheets), each motor has its own reference temperature."""
+        if self.notes.temperature is not None:
+            return
+        stated = np.full(len(batch), np.nan)
+        for key in REFERENCE_FIGURES:
+            column = batch.figures.get(key)
+            if column is not None:
+                at = np.array([np.nan if c.temperature is None else c.temperature
+                               for c in column.conventions])[column.convention]  # fmt: skip
+                at[np.isnan(column.value)] = np.nan
+                stated = np.where(np.isnan(stated), at, stated)
+        if np.isnan(stated).all():
+            return
+        known = np.isfinite(stated)
+        batch.reference_temperature = np.where(known, stated, UNSTATED_REFERENCE)
+        batch.reference_temperature_basis = np.where(known, STATED, ASSUMED).astype(np.int8)
 
     def _places(self, f: Field, lines: list[int]) -> tuple[Ints, Ints]:
         """Rows and columns of the motors' cells under a heading."""

@@ -92,6 +92,25 @@ def is_unit(text: str) -> bool:
     return is_unit_like(clean) or is_unit_like(clean.strip("[](){}"))
 
 
+@lru_cache(maxsize=64)
+def _mark_inside(marks: frozenset[str]) -> re.Pattern[str]:
+    numbered = "|".join(re.escape(m) for m in marks if m.isalnum()) or r"\b\B"
+    signs = "|".join(re.escape(m) for m in marks if not m.isalnum()) or r"\b\B"
+    mark = rf"\^?\(?(?:{numbered})\)|{signs}"
+    return re.compile(rf"(?<=\d)\s*(?P<mark>{mark})(?=\s*(?:[^\W\d_]|[°%Ω]))")
+
+
+def mark_last(text: str, marks: frozenset[str]) -> str:
+    """A cell whose footnote mark stands between figure and unit, with the mark at its end."""
+    if not marks or not any(mark in text for mark in marks):
+        return text
+    clean = plain(text)
+    found = _mark_inside(marks).search(clean)
+    if found is None:
+        return text
+    return f"{clean[: found.start()]}{clean[found.end() :]} {found['mark']}"
+
+
 @lru_cache(maxsize=8192)
 def is_symbol(text: str) -> bool:
     """Whether a cell could be a symbol."""

@@ -188,7 +188,8 @@ class Decisions:
                 overridden[i] = match
         rest = [f for i, f in enumerate(plain_fields) if i not in overridden]
         taken = {m.key for m in overridden.values()}
-        matcher = Matcher(rest, self.style, frozenset(k for k in taken if k))
+        told = frozenset(k for k in taken if k)
+        matcher = Matcher(rest, self.style, told, frozenset(self.notes.marked))
         self.family = matcher.family
         found = iter(matcher.assign())
         matches = [

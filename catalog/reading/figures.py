@@ -12,7 +12,7 @@ from ...schema.figure.signs import plain
 from ...schema.units.read import Unit, UnitError, read_unit, unit_of
 from ...schema.vocabulary import Quantity
 from ..tables.grid import Stored
-from .cells import missing
+from .cells import mark_last, missing
 
 BRACKETED = frozenset({"rotor_inertia", "mass", "length"})
 """Figures whose second value in brackets, without a unit, is that with a brake."""
@@ -91,6 +91,8 @@ def read_values(
 
 def _read(texts: list[str], style: NumberStyle, note_marks: frozenset[str]) -> ColumnFigures:
     """The cells as numbers: typed ones in the table's style, stored ones with their point."""
+    if note_marks:
+        texts = [mark_last(text, note_marks) for text in texts]
     stored = [i for i, text in enumerate(texts) if isinstance(text, Stored)]
     if not stored or (style.decimal == "." and not style.conflicts):
         return read_column(texts, style, note_marks=note_marks)

@@ -11,6 +11,7 @@ from ...schema.figure.signs import plain
 from ...schema.units.read import GD2_TO_INERTIA, Unit, UnitError, read_unit, unit_of
 from ...schema.vocabulary import Quantity, quantities, quantity
 from ..tables.grid import Stored
+from .cells import mark_last
 from .lexicon import find_symbol, lexicon, squeeze, symbol_form, tokens
 from .model import Field
 from .phrase import COMPOSED, EXACT, Phrase, guesses_for
@@ -121,15 +122,18 @@ def family_of(fields: list[Field]) -> str | None:
     return "dc" if dc > servo else None
 
 
-def in_cell_units(texts: list[str], style: NumberStyle) -> list[str]:
+def in_cell_units(
+    texts: list[str], style: NumberStyle, marks: frozenset[str] = frozenset()
+) -> list[str]:
     """Unit texts that stand in the cells themselves, of the first cells with figures."""
     units: list[str] = []
     seen = 0
     for text in texts[:200]:
         if not text:
             continue
+        typed = POINT if isinstance(text, Stored) else style
         try:
-            figure = read_figure(text, POINT if isinstance(text, Stored) else style)
+            figure = read_figure(mark_last(text, marks), typed, note_marks=marks)
         except FigureError:
             continue
         if figure is None:
@@ -163,9 +167,14 @@ class Matcher:
     """Finds the candidates of every field of one table, and their best assignment."""
 
     def __init__(
-        self, fields: list[Field], style: NumberStyle, taken: frozenset[str] = frozenset()
+        self,
+        fields: list[Field],
+        style: NumberStyle,
+        taken: frozenset[str] = frozenset(),
+        marks: frozenset[str] = frozenset(),
     ) -> None:
         self.fields = fields
+        self.marks = marks
         self.told = taken
         self.style = style
         self.family = family_of(fields)
@@ -261,7 +270,7 @@ class Matcher:
         units: list[Unit] = []
         refused = ""
         given = list(f.units)
-        inside = in_cell_units(f.texts, self.style)
+        inside = in_cell_units(f.texts, self.style, self.marks)
         for text in given:
             try:
                 units.append(read_unit(text, q.accepts))
@@ -487,7 +496,7 @@ class Matcher:
 
     def _generic_unit(self, f: Field, generic: str) -> Unit | None:
         si = (GENERIC_UNITS[generic],)
-        for text in (*f.units, *in_cell_units(f.texts, self.style)):
+        for text in (*f.units, *in_cell_units(f.texts, self.style, self.marks)):
             try:
                 return read_unit(text, si)
             except UnitError:

@@ -3,18 +3,21 @@
 import re
 import unicodedata
 from collections import Counter
+from itertools import pairwise
 
 from .cells import clean, even
 from .columns import Piece, arrange, find_columns, fits, join_split_labels, lies_in
 from .grid import Grid
 
 # Bilingual labels are long: "Thermal time constant winding / Constante de temps thermique du …".
-_LABEL = r"[^\s:=;|]{1,40}(?:[ \xa0][^\s:=;|]{1,40}){0,19}"
+_WORD = r"[^\s:=;|：＝；｜]{1,40}"
+_LABEL = rf"{_WORD}(?:[ \xa0\u3000]{_WORD}){{0,19}}"
 # A colon between digits is a ratio or a time, one before // a web address.
-_SIGN = r"[ \xa0]*(?:：|=|:(?!//)(?!(?<=\d:)\d))[ \xa0]*"
+_SIGN = r"[ \xa0\u3000]*(?:：|=|＝|:(?!//)(?!(?<=\d:)\d))[ \xa0\u3000]*"
 _PAIR = re.compile(rf"\s*(?P<label>{_LABEL}){_SIGN}(?P<value>.*)$", re.S)
 _HARD = re.compile(
-    rf"[;；|•▪、\n]|(?:(?<=!)|(?<=[^\W\d]{{5}}[.?]))[ \xa0]+(?=[A-ZÀ-Þ]{_LABEL}{_SIGN}\S)"
+    rf"[;；|｜▪、\n]|(?<!\w)•|•(?!\w)"  # between letters a bullet is a middle dot: gf•cm
+    rf"|(?:(?<=!)|(?<=[^\W\d]{{5}}[.?]))[ \xa0]+(?=[A-ZÀ-Þ]{_LABEL}{_SIGN}\S)"
 )
 _COMMA = re.compile(r"[,，·][ \xa0]+(?=[^\W\d])")
 _SIGN_IN = re.compile(_SIGN)
@@ -100,8 +103,7 @@ def _read_pairs(lines: list[str]) -> list[Grid]:
                     continue
                 numbers.append(number)
         if any(row[1] for row in rows):
-            grid = even(rows, numbers)
-            grids.append(grid)
+            grids += [even(*record) for record in _records(rows, numbers)]
         elif rows and grids:
             last = grids[-1]
             last.rows += [[row[0], ""] for row in rows]
@@ -109,6 +111,20 @@ def _read_pairs(lines: list[str]) -> list[Grid]:
         elif rows:
             grids.append(even([*rows], numbers))
     return _titles_joined(grids)
+
+
+def _records(rows: list[list[str]], numbers: list[int]) -> list[tuple[list[list[str]], list[int]]]:
+    """A paragraph divided where its pairs begin anew: one motor a line, no blank line between."""
+    keys = [unicodedata.normalize("NFKC", row[0]).casefold() if row[1] else "" for row in rows]
+    first = next(key for key in keys if key)
+    starts = [i for i, key in enumerate(keys) if key == first]
+    if len({rows[i][1] for i in starts}) < len(starts):
+        return [(rows, numbers)]
+    cuts = list(pairwise([0, *starts[1:], len(rows)]))
+    labels = [set(keys[a:b]) - {""} for a, b in cuts]
+    if any(len(other & labels[0]) < max(2, 0.5 * len(labels[0])) for other in labels):
+        return [(rows, numbers)]
+    return [(rows[a:b], numbers[a:b]) for a, b in cuts]
 
 
 def _titles_joined(grids: list[Grid]) -> list[Grid]:

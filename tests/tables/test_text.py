@@ -5,6 +5,7 @@ from pathlib import Path
 
 from motorfolio.catalog.tables import read_tables
 from motorfolio.catalog.tables.source import open_source
+from motorfolio.catalog.tables.text import read_text
 
 from .files import check, one, read
 
@@ -155,3 +156,21 @@ def test_one_long_line_before_a_foreign_letter_is_surveyed_at_once():
     survey = open_source(None, b"x" * 100_000 + b"\n\xe9\n").survey
     assert time.process_time() - start < 1
     assert survey.high_lines == b"\xe9\n"
+
+
+def test_motors_one_a_line_without_blank_lines_are_motors_of_their_own() -> None:
+    grids = read_text(
+        "Type = A1 | Voltage = 12 V | Stall torque = 3 gf•cm\n"
+        "Ｔｙｐｅ ＝ Ａ２ ｜ Ｖｏｌｔａｇｅ ＝ ２４ Ｖ ｜ Stall torque ＝ 4 gf•cm\n"
+        "Type = A3 | Voltage = 36 V | Stall torque = 5 gf•cm\n"
+    )
+    motors = [row for grid in grids for row in grid.rows]
+    assert [len(grid.rows) for grid in grids] == [3, 3, 3]
+    assert ["Type", "A3"] in motors
+    assert ["Stall torque", "3 gf•cm"] in motors
+
+
+def test_a_long_bilingual_label_is_a_label() -> None:
+    label = "Thermal time constant winding / Constante de temps thermique du bobinage"
+    (grid,) = read_text(f"Type: A1\n{label} : 21.3 s\n")
+    assert grid.rows[1] == [label, "21.3 s"]
