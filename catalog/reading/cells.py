@@ -72,6 +72,9 @@ def _strength(text: str) -> float:
         r"\d{1,2}[.)]?\s+[^\W\d_]{2}|2p", clean
     ):
         return 0.0
+    numbered = re.match(r"\d{1,2}\s+(?P<rest>.+)", clean)
+    if numbered and is_unit_like(numbered["rest"]):
+        return 0.0  # "3 Volt" is no third line
     label = parse_label(text)
     # "V" or "A" alone is a unit rather than a symbol.
     if label.symbols and not label.names and not label.units and is_unit_like(clean):

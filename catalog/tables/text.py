@@ -15,9 +15,11 @@ _LABEL = rf"{_WORD}(?:[ \xa0\u3000]{_WORD}){{0,19}}"
 # A colon between digits is a ratio or a time, one before // a web address.
 _SIGN = r"[ \xa0\u3000]*(?:：|=|＝|:(?!//)(?!(?<=\d:)\d))[ \xa0\u3000]*"
 _PAIR = re.compile(rf"\s*(?P<label>{_LABEL}){_SIGN}(?P<value>.*)$", re.S)
+# Points of abbreviations end no sentence: "机壳-环境热阻 / Therm. Widerstand = 7 K/W".
+_NO_END = "".join(rf"(?<!{a}{w}\.)" for w in ("herm", "lektr", "echan") for a in "TtEeMm")
 _HARD = re.compile(
     rf"[;；|｜▪、\n]|(?<!\w)•|•(?!\w)"  # between letters a bullet is a middle dot: gf•cm
-    rf"|(?:(?<=!)|(?<=[^\W\d]{{5}}[.?]))[ \xa0]+(?=[A-ZÀ-Þ]{_LABEL}{_SIGN}\S)"
+    rf"|(?:(?<=!)|(?<=[^\W\d]{{5}}[.?]){_NO_END})[ \xa0]+(?=[A-ZÀ-Þ]{_LABEL}{_SIGN}\S)"
 )
 _COMMA = re.compile(r"[,，·][ \xa0]+(?=[^\W\d])")
 _SIGN_IN = re.compile(_SIGN)

@@ -248,7 +248,7 @@ class CellReader:
 
     def _tail(self, figure: Figure, tail: str) -> Figure:
         """What follows the first number: tolerance, second end of a range, second figure, unit."""
-        if re.match(r"_|[xX][\dA-Fa-f]|[^\W\d_]*\d*_", tail):
+        if re.match(r"_|[xX][\dA-Fa-f]|(?![AV]_(?:rms|eff|pk|peak)\b)[^\W\d_]*\d*_", tail):
             raise self.fail("not written as a decimal number")
         for step in (self._with_tolerance, self._with_unequal, self._with_range, self._with_second):
             found = step(figure, tail)
