@@ -235,7 +235,8 @@ def test_printed_motors_and_findings_keep_to_their_schemas(
     motor = jsonschema.Draft202012Validator(schema_of(capsys, "motor"))
     finding = jsonschema.Draft202012Validator(schema_of(capsys, "finding"))
     where = ("--catalog", str(catalog))
-    parts = [m.part_number for m in open_catalog(catalog).motors()]
+    with open_catalog(catalog) as opened:
+        parts = [m.part_number for m in opened.motors()]
     motor.validate(printed(capsys, "show", parts[0], *where, "--json"))
     for document in printed(capsys, "compare", *parts, *where, "--json"):  # pyright: ignore[reportGeneralTypeIssues]
         motor.validate(document)
