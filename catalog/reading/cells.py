@@ -100,7 +100,7 @@ def _mark_inside(marks: frozenset[str]) -> re.Pattern[str]:
     numbered = "|".join(re.escape(m) for m in marks if m.isalnum()) or r"\b\B"
     signs = "|".join(re.escape(m) for m in marks if not m.isalnum()) or r"\b\B"
     mark = rf"\^?\(?(?:{numbered})\)|{signs}"
-    return re.compile(rf"(?<=\d)\s*(?P<mark>{mark})(?=\s*(?:[^\W\d_]|[°%Ω]))")
+    return re.compile(rf"(?<=\d)\s*(?P<mark>{mark})(?=\s*(?:[^\W\d_]|[°%Ω]|1/))")
 
 
 def mark_last(text: str, marks: frozenset[str]) -> str:

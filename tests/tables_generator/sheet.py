@@ -167,8 +167,9 @@ def _qualify(recipe: Recipe, key: str, place: int, unit: u.Unit, printed: Printe
         return Printed(text, middle, to_si(middle), to_si(number), to_si(end), False)
     else:
         mark = rng.choice(["~", "ca. ", "~ ", "typ. ", "≈ ", CAPTIONS["typical"][recipe.language]])
-        return Printed(mark.strip() + " " * mark.endswith(" ") + text, number, printed.value,
-                       plain=False)  # fmt: skip
+        # Behind a point a blank: "typ.951" may be 951 or .951, so nobody could be sure of it.
+        gap = " " * mark.endswith((" ", "."))
+        return Printed(mark.strip() + gap + text, number, printed.value, plain=False)
     if number <= 0 or low <= 0:
         return printed
     return Printed(text, number, printed.value, low, high, False)
