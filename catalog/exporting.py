@@ -3,15 +3,18 @@
 import csv
 import io
 import json
+import math
 import re
 import tomllib
 from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass
+from decimal import Decimal
 from pathlib import Path
 from typing import Any, TextIO
 
 from ..schema.convention import Commutation, Convention, to_dc
 from ..schema.errors import MotorfolioError
+from ..schema.figure.grammar import half_digit
 from ..schema.units.read import Unit, read_unit
 from ..schema.vocabulary import quantities
 from .documents import Document
@@ -259,7 +262,7 @@ def _number_text(
     if sign or low is None or high is None or low == high:
         return sign + shown
     if _PLAIN_NUMBER.fullmatch((figure["text"] or "").strip()):
-        return shown
+        return _as_precise(value, (high - low) / 2)
     if not re.search(r"[±%]|\+\s*/?\s*-", figure["text"] or "±"):
         return f"{_digits(low)}…{_digits(high)}"
     if abs((low + high) / 2 - value) <= 1e-9 * abs(value):
@@ -267,6 +270,15 @@ def _number_text(
     return (
         f"{shown} +{_digits(float(f'{high - value:.6g}'))}/-{_digits(float(f'{value - low:.6g}'))}"
     )
+
+
+def _as_precise(value: float, half: float) -> str:
+    """The number with the digits whose interval is ± ``half``, or with that as a tolerance."""
+    text = f"{value:.{min(max(round(-math.log10(2 * half)), 0), 15)}f}"
+    same = abs(float(text) - value) <= 1e-9 * abs(value)
+    if same and abs(half_digit(text.lstrip("-")) - half) <= 1e-6 * half:
+        return text if abs(value) >= 1e-4 else f"{Decimal(text):e}"
+    return f"{_digits(value)} ± {_digits(float(f'{half:.6g}'))}"
 
 
 def _digits(value: float) -> str:

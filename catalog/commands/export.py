@@ -29,8 +29,9 @@ from .common import catalog_option, say
 def command(format_: str, units: str, output: Path | None, catalog: Path) -> int:
     """Write all motors, in a form that motorfolio import reads back.
 
-    CSV has the published figures, a column for each quantity and convention; JSON and TOML also
-    the printed texts, constants, findings and places.
+    CSV has the published figures, a column for each quantity and convention, and with a figure
+    whose digits don't tell it its precision: 857.65 ± 0.52. JSON and TOML also have the printed
+    texts, constants, findings and places.
     """
     from ..exporting import export, export_parquet, read_units
     from ..store import Catalog

@@ -234,15 +234,17 @@ class TableReader(Decisions):
         several sheets), each motor has its own reference temperature."""
         if self.notes.temperature is not None:
             return
-        stated = np.full(len(batch), np.nan)
+        stated, differ = np.full(len(batch), np.nan), False
         for key in REFERENCE_FIGURES:
             column = batch.figures.get(key)
-            if column is not None:
-                at = np.array([np.nan if c.temperature is None else c.temperature
-                               for c in column.conventions])[column.convention]  # fmt: skip
-                at[np.isnan(column.value)] = np.nan
-                stated = np.where(np.isnan(stated), at, stated)
-        if np.isnan(stated).all():
+            if column is None:
+                continue
+            at = np.array([np.nan if c.temperature is None else c.temperature
+                           for c in column.conventions])[column.convention]  # fmt: skip
+            given = ~np.isnan(column.value)
+            differ |= len(np.unique(at[given])) > 1
+            stated = np.where(np.isnan(stated) & given, at, stated)
+        if not differ:
             return
         known = np.isfinite(stated)
         batch.reference_temperature = np.where(known, stated, UNSTATED_REFERENCE)

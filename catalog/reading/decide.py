@@ -34,6 +34,11 @@ from .model import Field, ReadOptions, Table, Unread
 from .purpose import is_of_gears, tells_of_a_motor
 from .said import convention_of, temperature_of
 
+REFERENCE_FIGURES = ("terminal_resistance", "torque_constant", "back_emf_constant")
+"""Figures whose temperature is the one that a motor's figures hold for."""
+
+UNSTATED_REFERENCE = 25.0
+
 STYLE_ROWS = 2000
 """Rows that are looked at to find the table's decimal sign."""
 
@@ -296,13 +301,13 @@ class Decisions:
     def _reference(self) -> tuple[float, int]:
         if self.notes.temperature is not None:
             return self.notes.temperature, STATED
-        for key in ("terminal_resistance", "torque_constant", "back_emf_constant"):
+        for key in REFERENCE_FIGURES:
             for m in self.matches:
                 if m.key == key and m.role == "figure":
                     t = temperature_of(m)
                     if t is not None:
                         return t, STATED
-        return 25.0, ASSUMED
+        return UNSTATED_REFERENCE, ASSUMED
 
     def _headings(self) -> list[Heading]:
         out = []
