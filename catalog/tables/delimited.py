@@ -47,12 +47,26 @@ def sniff(sample: str) -> Dialect | None:
     for delimiter in DELIMITERS:
         if delimiter not in sample:
             continue
-        for quoted in (True, False) if '"' in sample else (True,):
+        either = '"' in sample and not _quotes_cells(sample, delimiter)
+        for quoted in (True, False) if either else (True,):
             fit = _fit(lines, delimiter, quoted)
             # Quotation marks mean quoting unless the table is plainly more even without it.
             if fit and (best is None or fit > best.fit + (0.05 if not quoted else 1e-9)):
                 best = Dialect(delimiter, quoted, fit)
     return best
+
+
+def _quotes_cells(sample: str, delimiter: str) -> bool:
+    """Whether all quotation marks enclose cells, some of which hold the delimiter.
+
+    A mark with the delimiter behind it encloses nothing: it is a ditto mark.
+    """
+    mark = re.escape(delimiter)
+    cell = re.compile(
+        rf'(?:(?<={mark})|^)"(?!{mark}|\s*\n)(?P<text>(?:[^"]|"")*)"(?={mark}|\r?$)', re.M
+    )
+    inside = any(delimiter in found["text"] for found in cell.finditer(sample))
+    return inside and '"' not in cell.sub("", sample)
 
 
 def _fit(lines: list[str], delimiter: str, quoted: bool) -> float:

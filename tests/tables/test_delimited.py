@@ -220,3 +220,13 @@ def test_memory_of_a_long_file_is_bounded(tmp_path: Path) -> None:
         [sys.executable, "-c", program, str(path)], capture_output=True, text=True, check=False
     )
     assert (run.stdout, run.stderr) == ("150000\n", "")
+
+
+def test_quoted_cells_with_the_delimiter_in_them_are_cells(tmp_path: Path) -> None:
+    """Two blocks of unequal width may be more even without the quotation marks; they count."""
+    text = 'Type,"U, V","n, rpm","P, W"\nA1,3,"10,000",27.4\nA2,6,"9,920",27.4\n\n'
+    text += (
+        'Type,"nmax, rpm","k, V","M, Nm",L\nA1,13.4,0.295,"1,480",48.7\nA2,13.4,0.596,1.50,48.7\n'
+    )
+    rows = one(read(tmp_path / "a.csv", text)).rows
+    assert rows[1][:4] == ["A1", "3", "10,000", "27.4"]
