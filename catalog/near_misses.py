@@ -17,6 +17,7 @@ from numpy.typing import NDArray
 from ..schema.operation.limits import Verdict
 from ..schema.operation.machines import Machines, armature_amperes
 from ..schema.operation.ratios import ratio_grid
+from ..schema.written import percent
 from .choice import Judge, Judged, behind
 from .gears import gear_utilisations
 from .requirement import Requirement
@@ -225,7 +226,7 @@ class _Motor:
             return None
         return _change(
             "wanted.reserve", requirement.reserve, after, "1",
-            f"a reserve of {after:.1%} instead of {requirement.reserve:.1%}",
+            f"a reserve of {percent(after, 1)} instead of {percent(requirement.reserve, 1)}",
         )  # fmt: skip
 
     def peak_current(self) -> Change | None:

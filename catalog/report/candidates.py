@@ -74,7 +74,7 @@ def candidate_table(candidates: Sequence[Document]) -> Table:
     table.add_column("gear" if geared else "ratio", overflow="fold")
     for heading in ("mass kg", "peak A", "rms A", "winding °C"):
         table.add_column(heading, justify="right")
-    table.add_column("limit", overflow="fold")
+    table.add_column("limit", no_wrap=True)
     for rank, c in enumerate(candidates, start=1):
         mass = c["pair_mass"] if "pair_mass" in c else c["mass"]
         use = c["utilisation"].get(c["limiting"]) if c["limiting"] else None

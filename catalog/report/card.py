@@ -26,7 +26,7 @@ def print_card(motor: Document, out: Console) -> None:
     """The card; ``motor`` is the interface's MOTOR."""
     out.print(_title(motor))
     out.print(Text(_kind(motor), style="dim"))
-    first: list[RenderableType] = [_constants(motor["constants"])]
+    first: list[RenderableType] = [_constants(motor["constants"], narrow=out.width >= WIDE)]
     second = list(_published(motor))
     third: list[RenderableType] = [*finding_lines(motor["findings"])]
     third.append(Text(f"From {_source(motor['source'])}.", style="dim"))
@@ -97,11 +97,11 @@ def _cells(cells: Iterable[str | Text]) -> list[Text]:
     return [cell if isinstance(cell, Text) else Text(cell) for cell in cells]
 
 
-def _constants(constants: Mapping[str, Document]) -> RenderableType:
+def _constants(constants: Mapping[str, Document], *, narrow: bool) -> RenderableType:
     if not constants:
         return Text("No constants are known.")
     table = _table("Constants at 25 °C", "Value", "95 % interval", "Basis")
-    table.columns[2].no_wrap = True
+    table.columns[0].no_wrap, table.columns[2].no_wrap = not narrow, True
     for key, c in constants.items():
         _, low, high, _ = scaled(c["value"], c["low"], c["high"], c["unit"])
         table.add_row(

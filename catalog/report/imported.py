@@ -215,12 +215,10 @@ def _print_constants(out: Console, file: "FileResult") -> None:
 
 def _print_cells(out: Console, motors: Iterable[Document]) -> None:
     """Printed text beside SI value, cell by cell."""
-    shown = table("Motor", "Heading", "Cell", "Printed", "Read as", "SI", right=("SI",))
-    whole(shown, 2, 5)
-    for column in (0, 1):
-        shown.columns[column].no_wrap, shown.columns[column].overflow = True, "ellipsis"
-        shown.columns[column].max_width = max(16, out.width // 5)
+    shown = table("Motor and figure", "Cell", "Printed", "SI", right=("SI",))
+    whole(shown, 0, 1, 3)
     for motor in motors:
+        shown.add_row(Text(p.plain(motor["part_number"]), style="bold"))
         figures = list(motor["figures"].items())
         for condition in motor.get("conditions", ()):
             figures += [
@@ -230,8 +228,7 @@ def _print_cells(out: Console, motors: Iterable[Document]) -> None:
             printed = " ".join(filter(None, (figure["text"], figure.get("printed_unit"))))
             value = figure["value"]
             si = value if isinstance(value, str) else p.quantity(value, figure["unit"], 6)
-            cells = (motor["part_number"], (figure.get("heading") or "").rpartition(" › ")[2],
-                     p.place(figure), printed, p.words(key), si)  # fmt: skip
+            cells = (f"  {brief(key)}", p.place(figure), printed, si)
             shown.add_row(*(Text(p.plain(cell)) for cell in cells))
     out.print(shown)
 

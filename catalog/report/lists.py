@@ -1,5 +1,6 @@
 """Motors in a line each, and pairs of them that may be one."""
 
+import shlex
 from collections.abc import Iterable, Sequence
 from typing import TYPE_CHECKING
 
@@ -57,28 +58,25 @@ def print_pairs(pairs: Sequence["Pair"], most: int | None = None) -> None:
 
     def draw(out: Console) -> None:
         for pair in pairs[:most]:
-            for line in _pair_lines(pair):
-                out.print(line)
+            _print_pair(out, pair)
         if most is not None and len(pairs) > most:
             out.print(f"… and {p.many(len(pairs) - most, 'pair')} more (motorfolio same)")
 
     paged(draw)
 
 
-def _pair_lines(pair: "Pair") -> list[Text | Padding]:
-    """A pair in three lines."""
-    first, second = pair.first, pair.second
+def _print_pair(out: Console, pair: "Pair") -> None:
+    """A pair in three lines; the last one can be copied."""
+    known = [entry.known for entry in (pair.first, pair.second)]
     agreeing = ", ".join(
         f"{_SHORT[key]} {p.percent(ratio - 1, 1, signed=True)}"
         for key, ratio in pair.agreeing.items()
     )
-    names = [_quoted(entry.known.name) for entry in (first, second)]
-    return [
-        Text(p.plain(f"{first.known.name} and {second.known.name} may be one motor")),
-        Padding(Text(p.plain(f"{first.file} against {second.file}: {agreeing}")), (0, 0, 0, 4)),
-        Padding(Text(p.plain(f"motorfolio merge {' '.join(names)}")), (0, 0, 0, 4)),
-    ]
-
-
-def _quoted(name: str) -> str:
-    return f'"{name}"' if " " in name else name
+    parts = [k.part_number for k in known]
+    out.print(Text(p.plain(f"{parts[0]} and {parts[1]} may be one motor: {agreeing} apart")))
+    for entry in (pair.first, pair.second):
+        said = f"{entry.known.name} in {entry.file}"
+        out.print(Padding(Text(p.plain(said)), (0, 0, 0, 4)))
+    names = parts if parts[0] != parts[1] else [k.name for k in known]
+    command = f"    motorfolio merge {' '.join(map(shlex.quote, names))}"
+    out.print(Text(p.plain(command)), soft_wrap=True)

@@ -37,12 +37,9 @@ def whole(table: Table, *columns: int) -> None:
         table.columns[column].no_wrap = True
 
 
-def print_rows(
-    headings: Sequence[str], rows: Iterable[Sequence[object]], unbroken: Sequence[int] = ()
-) -> None:
-    """A plain table, whose columns ``unbroken`` are not wrapped."""
+def print_rows(headings: Sequence[str], rows: Iterable[Sequence[object]]) -> None:
+    """A plain table."""
     drawn = table(*headings)
-    whole(drawn, *unbroken)
     for row in rows:
         drawn.add_row(*(Text("" if cell is None else p.plain(str(cell))) for cell in row))
     console().print(drawn)
@@ -103,11 +100,12 @@ def _amount(document: Document | None) -> str:
 
 def print_imports(imports: Iterable["Import"]) -> None:
     """What was imported and when."""
-    rows = [
-        (i.id, p.when(i.at), i.motors, i.replaced or "", "\n".join(i.files) or "(taken out)")
-        for i in imports
-    ]
-    print_rows(("Import", "When (UTC)", "Motors", "Replaced", "Files"), rows, unbroken=(1,))
+    out = console()
+    for i in imports:
+        replaced = f", {i.replaced} replaced" if i.replaced else ""
+        out.print(Text(f"{i.id:>4}  {p.when(i.at)} UTC  {p.many(i.motors, 'motor')}{replaced}"))
+        for file in i.files or ("(taken out or merged)",):
+            out.print(Padding(Text(p.plain(file)), (0, 0, 0, 6)))
 
 
 def print_corrections(corrections: Iterable["Correction"]) -> None:

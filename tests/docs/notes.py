@@ -31,6 +31,7 @@ TABLES = {
     "unread": "a cell or heading that was not understood, and why",
     "corrections": "a correction with its reason; revoked ones stay",
     "applied_corrections": "what a correction stands in place of",
+    "merged": "motors that a person said are one: the name, and the one it stands for",
     "kept_readings": "a reading of a heading, kept for a maker's further files",
     "column_cache": "a column of a source as one block of numbers, for a quick search",
     "gears": "a gear",

@@ -57,10 +57,11 @@ def test_frame_values_carry_a_mark_and_a_legend(monkeypatch):
 
 
 def test_a_dry_run_shows_every_cell_on_a_line(monkeypatch):
-    lines = printed(monkeypatch, SAMPLES / "brindlewick_22.csv", dry_run=True, width=100)
+    lines = printed(monkeypatch, SAMPLES / "brindlewick_22.csv", dry_run=True)
+    start = lines.index("BRIN-22-D")
     assert any(
-        re.match(r"BRIN-22-D +\S.* R7 C6 +81\.8 mNm/A +torque constant +81\.8 mN·m/A", line)
-        for line in lines
+        re.match(r"  torque constant +R7 C6 +81\.8 mNm/A +81\.8 mN·m/A$", line)
+        for line in lines[start : start + 30]
     )
 
 
