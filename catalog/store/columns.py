@@ -71,32 +71,35 @@ def load(connection: sqlite3.Connection, names: Sequence[str]) -> dict[str, Floa
         _expression(name)
     sources = [row[0] for row in connection.execute("SELECT id FROM sources ORDER BY first_motor")]
     wanted = [name for name in dict.fromkeys(names) if name != "id"]
-    cached = [name for name in wanted if name in CACHED]
-    held: dict[tuple[int, str], bytes] = {}
-    marks = ",".join("?" * (len(cached) + 1))
-    for source, name, data in connection.execute(
-        f"SELECT source, name, data FROM column_cache WHERE name IN ({marks})", [_MARK, *cached]
-    ):
-        held[(source, name)] = data
-    parts: dict[str, list[Floats]] = {name: [] for name in ("id", *wanted)}
+    from_rows: list[dict[str, Floats]] = []
+    lengths: list[int] = []
     for source in sources:
-        mark = held.get((source, _MARK))
-        missing = wanted if mark is None else [name for name in wanted if name not in CACHED]
-        if mark is not None:
-            ids = np.frombuffer(mark)
-            parts["id"].append(ids)
-            for name in cached:
-                data = held.get((source, name))
-                parts[name].append(
-                    np.full(len(ids), np.nan) if data is None else np.frombuffer(data)
-                )
-        if missing:
-            columns = select(connection, source, missing)
-            for name in missing if mark is not None else ["id", *missing]:
-                parts[name].append(columns[name])
-        elif mark is None:
-            parts["id"].append(select(connection, source, [])["id"])
-    return {name: np.concatenate(found) if found else np.empty(0) for name, found in parts.items()}
+        mark = _cached(connection, source, _MARK)
+        if mark is None:
+            from_rows.append(select(connection, source, wanted))
+        else:
+            others = [name for name in wanted if name not in CACHED]
+            found = select(connection, source, others) if others else {}
+            from_rows.append({**found, "id": mark})
+        lengths.append(len(from_rows[-1]["id"]))
+    # a column at a time: all cached ones beside their copies would take twice the memory
+    columns: dict[str, Floats] = {}
+    for name in ("id", *wanted):
+        parts = []
+        for source, found, length in zip(sources, from_rows, lengths, strict=True):
+            part = found.pop(name, None)
+            if part is None:
+                part = _cached(connection, source, name)
+            parts.append(np.full(length, np.nan) if part is None else part)
+        columns[name] = np.concatenate(parts) if parts else np.empty(0)
+    return columns
+
+
+def _cached(connection: sqlite3.Connection, source: int, name: str) -> Floats | None:
+    row = connection.execute(
+        "SELECT data FROM column_cache WHERE source = ? AND name = ?", (source, name)
+    ).fetchone()
+    return None if row is None else np.frombuffer(row[0])
 
 
 def rebuild(connection: sqlite3.Connection, sources: Iterable[int]) -> None:
