@@ -3,6 +3,7 @@
 import re
 from collections.abc import Sequence
 from dataclasses import dataclass, field
+from typing import TypeVar
 
 import numpy as np
 
@@ -16,6 +17,9 @@ from .cells import mark_last, missing
 
 BRACKETED = frozenset({"rotor_inertia", "mass", "length"})
 """Figures whose second value in brackets, without a unit, is that with a brake."""
+
+
+Number = TypeVar("Number", float, Floats)
 
 
 @dataclass(slots=True)
@@ -45,6 +49,14 @@ class Values:
     cell_units: dict[int, Unit] = field(default_factory=dict)
 
 
+def _in_si(x: Number, factor: float, offset: float) -> Number:
+    """The value in SI: 118 g are 0.118 kg to the last digit, for which a prefix divides."""
+    inverse = round(1 / factor) if 0 < factor < 1 else 0
+    if offset == 0 and inverse and 1 / inverse == factor:
+        return x / inverse
+    return x * factor + offset
+
+
 def read_values(
     texts: list[str],
     q: Quantity,
@@ -61,7 +73,9 @@ def read_values(
     factor = unit.factor if unit else 1.0
     offset = unit.offset if unit else 0.0
     out = Values(
-        column.value * factor + offset, column.low * factor + offset, column.high * factor + offset
+        _in_si(column.value, factor, offset),
+        _in_si(column.low, factor, offset),
+        _in_si(column.high, factor, offset),
     )
     for i, error in column.failures.items():
         if not missing(texts[i]):
@@ -158,7 +172,7 @@ def _cells_with_more(
             assert own is not None
             out.cell_units[i] = own
             out.value[i], out.low[i], out.high[i] = (
-                x * own.factor + own.offset for x in (figure.value, figure.low, figure.high)
+                _in_si(x, own.factor, own.offset) for x in (figure.value, figure.low, figure.high)
             )
         if figure.qualifier:
             out.qualifiers[i] = figure.qualifier

@@ -118,3 +118,13 @@ def test_upper_case_export():
             "rotor_inertia": 4e-5,
         }
     )
+
+
+def test_a_prefix_adds_no_digits():
+    """118 g are 0.118 kg, not 0.11800000000000001."""
+    s = sheet("Type | Rated voltage [V] | Mass [g] | Rated current [mA]\nA | 48 | 118 | 35.7")
+    assert s.motors()["A"] == {
+        "nominal_voltage": 48.0,
+        "mass": 0.118,
+        "nominal_current": 0.0357,
+    }
