@@ -209,26 +209,21 @@ def best_of(judge_: Judge, machines: Machines, ratios: Array, *, periodic: bool)
     """Every motor at the best of some ratios, (R,) or (M, R)."""
     R = ratios.shape[-1]
     size = max(1, _CASES // R)
-    parts = []
+    whole = None
     for begin in range(0, max(len(machines), 1), size):
         span = slice(begin, begin + size)
         some = machines.take(span)
         own = ratios[span] if ratios.ndim == 2 else ratios
         flat = judge_.cases(some, own, span, periodic)
-        parts.append(flat.take(_best(flat, len(some), R)) if R > 1 else flat)
-    return parts[0] if len(parts) == 1 else _joined(parts)
-
-
-def _joined(parts: list[Judged]) -> Judged:
-    return Judged(
-        np.concatenate([part.ratio for part in parts]),
-        Utilisations.joined([part.use for part in parts]),
-        {name: np.concatenate([p.extra[name] for p in parts]) for name in parts[0].extra},
-        np.concatenate([part.verdict for part in parts]),
-        np.concatenate([part.gear for part in parts]),
-        np.concatenate([part.corner for part in parts]),
-        np.concatenate([part.unsure for part in parts]),
-    )
+        part = flat.take(_best(flat, len(some), R)) if R > 1 else flat
+        if whole is None:
+            if len(some) == len(machines):
+                return part
+            # filled in place: the parts beside their joint copy would take twice the memory
+            whole = part.take(np.zeros(len(machines), np.intp))
+        whole.put(np.arange(begin, begin + len(some)), part)
+    assert whole is not None
+    return whole
 
 
 def choose(judge_: Judge, machines: Machines) -> Judged:
