@@ -40,9 +40,9 @@ def forget(connection: sqlite3.Connection, import_id: int) -> None:
 def stands_for(connection: sqlite3.Connection, part: str) -> list[tuple[str, str]]:
     """The (maker, part number) that a merged motor's name stands for now, one at most a maker."""
     found: list[tuple[str, str]] = connection.execute(
-        "SELECT into_maker, into_part FROM merged WHERE part_number = ?1 "
-        "OR maker || '/' || part_number = ?1",
-        (part,),
+        "SELECT into_maker, into_part FROM merged WHERE part_number = :part "
+        "OR maker || '/' || part_number = :part",
+        {"part": part},
     ).fetchall()
     seen: set[tuple[str, str]] = set()
     ends = []

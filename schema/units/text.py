@@ -124,7 +124,7 @@ _POWER = re.compile(
 
 
 # No unit of a sheet goes beyond these; what does would have no finite factor.
-_MOST_TENS, _MOST = 40, 20
+_MOST_TENS, _MOST, _MOST_ROOT = 40, 20, 8
 
 
 @dataclass(slots=True)
@@ -154,7 +154,12 @@ class _Parser:
         if self.text[self.at :].strip():
             raise NotAUnitError(self.text[self.at :].strip())
         for product in products:
-            if abs(product.tens) > _MOST_TENS or sum(abs(e) for _, e in product.powers) > _MOST:
+            powers = [e for _, e in product.powers]
+            if (
+                abs(product.tens) > _MOST_TENS
+                or sum(map(abs, powers)) > _MOST
+                or any(e.denominator > _MOST_ROOT for e in powers)  # pint 0.26 rounds them away
+            ):
                 raise NotAUnitError(self.text, f'the powers in "{self.text}" are beyond any unit')
         return products
 
