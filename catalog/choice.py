@@ -36,7 +36,7 @@ _FEW = 60_000
 #: Motors above this utilisation at the coarse grid's best ratio have none that does between.
 _HOPELESS = 2.0
 #: Cases judged at once.
-_CASES = 1 << 18
+_CASES = 1 << 17
 
 
 @dataclass

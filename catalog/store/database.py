@@ -77,8 +77,9 @@ def connect(path: Path, *, create: bool = False, write: bool = False) -> sqlite3
     try:
         with in_words(path):
             _identify(connection, path)
-            connection.execute(f"PRAGMA cache_size = -{CACHE_KIBIBYTES}")
-            if not write:
+            if write:
+                connection.execute(f"PRAGMA cache_size = -{CACHE_KIBIBYTES}")
+            else:
                 connection.execute("PRAGMA query_only = 1")
     except BaseException:
         connection.close()
