@@ -21,3 +21,7 @@ def catalog(tmp_path_factory: pytest.TempPathFactory) -> Path:
     assert main(["import", *files, "--catalog", str(path)]) == 0
     assert main(["gears", str(SAMPLES / "gears.csv"), "--catalog", str(path)]) == 0
     return path
+
+
+HELP = {"help_option_names": ["-h", "--help"]}
+"""For a context without the program's own: click keeps a command's first help option for good."""

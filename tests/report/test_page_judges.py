@@ -21,7 +21,7 @@ from motorfolio.catalog.search import _tolerance
 from motorfolio.catalog.store import Catalog
 
 from .browser import opened
-from .conftest import SAMPLES
+from .conftest import HELP, SAMPLES
 
 MACHINES = SAMPLES / "machines"
 POINT = ["--torque", "50 mN·m", "--speed", "3000 rpm"]
@@ -55,7 +55,7 @@ def test_page_and_python_agree(catalog: Path, tmp_path: Path, name: str) -> None
     cycle = tmp_path / "cycle.csv"
     cycle.write_text(CYCLE, encoding="utf-8")
     call = [str(cycle) if word == "CYCLE" else word for word in CASES[name]]
-    requirement = requirement_of(search.make_context("search", call).params)
+    requirement = requirement_of(search.make_context("search", call, **HELP).params)
     path = tmp_path / "page.html"
     rng = np.random.default_rng(4)
     base = requirement.lowest_voltage
@@ -129,7 +129,7 @@ def test_page_and_python_agree(catalog: Path, tmp_path: Path, name: str) -> None
 
 def test_motors_behind_gears_of_the_catalog(catalog: Path, tmp_path: Path) -> None:
     call = ["--torque", "2 N·m", "--speed", "150 rpm", "--supply", "24 V", "--gears"]
-    requirement = requirement_of(search.make_context("search", call).params)
+    requirement = requirement_of(search.make_context("search", call, **HELP).params)
     path = tmp_path / "page.html"
     setting = {"supply": 20.0, "ambient": 40.0, "reserve": 0.1}
     with Catalog.open(catalog) as store:
@@ -172,7 +172,7 @@ def test_the_plane_s_limits_agree(catalog: Path, tmp_path: Path) -> None:
     from motorfolio.schema.operation.demand import Demand, Supply, Surroundings
 
     call = [*POINT, "--supply", "24 V", "--current", "20 A", "--current-convention", "rms"]
-    requirement = requirement_of(search.make_context("search", call).params)
+    requirement = requirement_of(search.make_context("search", call, **HELP).params)
     path = tmp_path / "page.html"
     with Catalog.open(catalog) as store:
         path.write_text(search_page(store, requirement, "Test"), encoding="utf-8")

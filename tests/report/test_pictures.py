@@ -7,6 +7,8 @@ import pytest
 
 from motorfolio.catalog.cli import main
 
+from .conftest import HELP
+
 pytest.importorskip("matplotlib", reason="pictures need the extra 'plot' (matplotlib)")
 
 ASKED = ("--torque", "50 mN·m", "--speed", "3000 rpm", "--supply", "24 V", "--ratio", "1..10")
@@ -49,7 +51,7 @@ def figure_of(catalog: Path, name: str):
     from motorfolio.catalog.report.pictures import make
     from motorfolio.catalog.store import Catalog
 
-    options = search.make_context("search", list(ASKED)).params
+    options = search.make_context("search", list(ASKED), **HELP).params
     with Catalog.open(catalog) as opened:
         requirement = requirement_of(options)
         if name == "plane":
