@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
     from .library import MotorCatalog, normalise, open_catalog, read_requirement, read_table
-    from .requirement import Requirement
+    from .requirement.read import Requirement
     from .results import Judgement, MotorTable, SearchResult, Sheet, Table
 
 __all__ = [
@@ -32,7 +32,7 @@ _HOMES = {
     **dict.fromkeys(
         ("MotorCatalog", "normalise", "open_catalog", "read_requirement", "read_table"), ".library"
     ),
-    "Requirement": ".requirement",
+    "Requirement": ".requirement.read",
 }
 
 

@@ -28,7 +28,7 @@ from ..schema.operation.drive import (
 )
 from ..schema.operation.machines import Commutation, Machines
 from .documents import amount
-from .fleet import load_fleet
+from .search.fleet import load_fleet
 
 if TYPE_CHECKING:
     from .store import Catalog

@@ -13,8 +13,8 @@ from typing import TYPE_CHECKING, Any, Self, TypedDict, Unpack
 
 from ..schema.entry import Entry, Motor, MotorFinding
 from ..schema.errors import MotorfolioError
-from .importing import STANDARD_INPUT, FileResult, ImportResult, Options, import_files
-from .requirement import Requirement
+from .importing.run import STANDARD_INPUT, FileResult, ImportResult, Options, import_files
+from .requirement.read import Requirement
 from .results import Judgement, MotorTable, SearchResult, Sheet, Table
 from .store import Catalog
 
@@ -113,8 +113,8 @@ def read_requirement(source: Mapping[str, Any] | str | Path) -> Requirement:
 
     >>> read_requirement({"point": [{"torque": "50 mN·m", "speed": "3000 rpm"}]})  # doctest: +SKIP
     """
-    from .requirement import read_requirement as read
-    from .requirement_file import read_file
+    from .requirement.file import read_file
+    from .requirement.read import read_requirement as read
 
     if isinstance(source, Mapping):
         return read(source)
@@ -191,9 +191,9 @@ class MotorCatalog:
 
     def search(self, requirement: Asked) -> SearchResult:
         """The motors that do what is asked, in order of rank, and the near misses."""
-        from .candidate_documents import search_document
-        from .near_misses import near_misses
-        from .search import search
+        from .search.documents import search_document
+        from .search.near_misses import near_misses
+        from .search.run import search
 
         with self.store.at_once():
             found = search(self.store, _required(requirement))
@@ -203,8 +203,8 @@ class MotorCatalog:
         """One motor held against a requirement."""
         import numpy as np
 
-        from .candidate_documents import candidate_document
-        from .search import search, show
+        from .search.documents import candidate_document
+        from .search.run import search, show
 
         with self.store.at_once():
             known = self.store.find(part)

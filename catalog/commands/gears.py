@@ -22,7 +22,7 @@ def command(
     efficiency, inertia, torques, input speed, backlash, mass, diameter, price) into the catalog;
     without a FILE list the catalog's gears. All files of a call are stored, or none.
     """
-    from ..gears import all_gears, read_gears, store_gears
+    from ..search.gears import all_gears, read_gears, store_gears
     from ..store import Catalog
 
     if not files:
@@ -30,7 +30,7 @@ def command(
             gears = all_gears(opened)
         _show(gears, [], as_json)
         return 0
-    from ..gears import GearError
+    from ..search.gears import GearError
     from ..tables import read_tables
 
     found, readings = [], []

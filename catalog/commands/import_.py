@@ -12,8 +12,8 @@ import click
 from .common import catalog_option, json_option, print_json, say
 
 if TYPE_CHECKING:
-    from ..import_result import ImportResult
-    from ..importing import Progress
+    from ..importing.result import ImportResult
+    from ..importing.run import Progress
 
 FORMATS = ("csv", "tsv", "text", "json", "toml", "html")
 SHOW_PROGRESS_AFTER = 1.0
@@ -86,7 +86,7 @@ def command(
     and units are recognised, with one motor a row or one a column; what can't be read is listed.
     All files of a call are stored, or none.
     """
-    from ..importing import Options, import_files
+    from ..importing.run import Options, import_files
     from ..report.imported import print_import
 
     if "-" in files and format_ is None:

@@ -7,7 +7,7 @@ import click
 from . import search
 
 if TYPE_CHECKING:
-    from ..requirement import Requirement
+    from ..requirement.read import Requirement
 
 _OWN = ("catalog", "as_json", "explain", "save_requirement")
 _LOAD = ("torque", "speed", "cycle", "requirement")

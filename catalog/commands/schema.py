@@ -14,7 +14,7 @@ def command(name: str) -> int:
     --json prints it, a finding, or a requirement file.
     """
     if name == "requirement":
-        from ..requirement_schema import json_schema as requirement_schema
+        from ..requirement.schema import json_schema as requirement_schema
 
         print_json(requirement_schema())
     else:

@@ -106,11 +106,11 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
     """
     requirement = _requirement(options)
     if options["save_requirement"] is not None:
-        from ..requirement_file import saved
+        from ..requirement.file import saved
 
         options["save_requirement"].write_text(saved(requirement), encoding="utf-8")
     if options["explain"]:
-        from ..candidate_documents import requirement_document
+        from ..search.documents import requirement_document
 
         document = requirement_document(requirement)
         if as_json:
@@ -121,9 +121,9 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
 
             paged(lambda out: print_requirement(document, out))
         return 0
-    from ..candidate_documents import search_document
-    from ..near_misses import near_misses
-    from ..search import search
+    from ..search.documents import search_document
+    from ..search.near_misses import near_misses
+    from ..search.run import search
     from ..store import Catalog
 
     with Catalog.open(catalog) as opened, opened.at_once():
@@ -143,8 +143,8 @@ def command(catalog: Path, as_json: bool, **options: Any) -> int:
 
 def _requirement(options: dict[str, Any]) -> Any:
     """The requirement of file and options together."""
-    from ..requirement import read_requirement
-    from ..requirement_file import merged, read_file
+    from ..requirement.file import merged, read_file
+    from ..requirement.read import read_requirement
 
     given, origin = _document(options)
     path = options["requirement"]
@@ -182,7 +182,7 @@ def _document(options: dict[str, Any]) -> tuple[dict[str, Any], dict[tuple[str, 
 
 
 def _points(options: dict[str, Any]) -> list[dict[str, str]]:
-    from ..requirement_fields import RequirementError
+    from ..requirement.fields import RequirementError
 
     torques, speeds, durations = (options[key] for key in ("torque", "speed", "duration"))
     if len(torques) != len(speeds):

@@ -19,7 +19,7 @@ from .terminal import counted, print_finding, table, whole
 
 if TYPE_CHECKING:
     from ...schema.batch import Heading
-    from ..import_result import FileResult, ImportResult
+    from ..importing.result import FileResult, ImportResult
 
 MOST_UNREAD = 15
 MOST_FINDINGS = 5

@@ -23,11 +23,11 @@ from pathlib import Path
 
 import numpy as np
 
-from motorfolio.catalog.choice import Judge, best_of
-from motorfolio.catalog.fleet import load_fleet
 from motorfolio.catalog.reading import ReadOptions, read
-from motorfolio.catalog.requirement import read_requirement
-from motorfolio.catalog.requirement_file import saved
+from motorfolio.catalog.requirement.file import saved
+from motorfolio.catalog.requirement.read import read_requirement
+from motorfolio.catalog.search.choice import Judge, best_of
+from motorfolio.catalog.search.fleet import load_fleet
 from motorfolio.catalog.store import Catalog
 from motorfolio.catalog.tables import read_tables
 from motorfolio.schema.reconcile.run import reconcile

@@ -20,11 +20,11 @@ from pathlib import Path
 
 import numpy as np
 
-from motorfolio.catalog.choice import Judge, best_of, choose
-from motorfolio.catalog.fleet import load_fleet
-from motorfolio.catalog.requirement import Requirement, read_requirement
-from motorfolio.catalog.requirement_file import saved
-from motorfolio.catalog.search import search
+from motorfolio.catalog.requirement.file import saved
+from motorfolio.catalog.requirement.read import Requirement, read_requirement
+from motorfolio.catalog.search.choice import Judge, best_of, choose
+from motorfolio.catalog.search.fleet import load_fleet
+from motorfolio.catalog.search.run import search
 from motorfolio.catalog.store import Catalog
 from motorfolio.schema.operation.cycle import Pieces
 from motorfolio.schema.operation.machines import Machines

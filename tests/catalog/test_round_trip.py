@@ -6,7 +6,7 @@ from pathlib import Path
 import pytest
 
 from motorfolio.catalog.exporting import as_text
-from motorfolio.catalog.importing import Options, import_files
+from motorfolio.catalog.importing.run import Options, import_files
 from motorfolio.catalog.store import Catalog
 
 SAMPLES = Path(__file__).resolve().parents[2] / "sample_entries"

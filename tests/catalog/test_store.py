@@ -5,7 +5,7 @@ import math
 import numpy as np
 import pytest
 
-from motorfolio.catalog.batch_documents import motor_documents
+from motorfolio.catalog.importing.documents import motor_documents
 from motorfolio.catalog.store import Catalog, CatalogError, columns
 from motorfolio.catalog.store.intervals import encode
 from motorfolio.catalog.store.write import Writer

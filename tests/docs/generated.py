@@ -15,7 +15,7 @@ from click.testing import CliRunner
 
 from motorfolio.catalog import __all__ as catalog_names
 from motorfolio.catalog.cli import COMMANDS, group
-from motorfolio.catalog.requirement_fields import LISTS, SECTIONS, Field
+from motorfolio.catalog.requirement.fields import LISTS, SECTIONS, Field
 from motorfolio.catalog.store.layout import bring_up_to_date
 from motorfolio.schema import __all__ as schema_names
 from motorfolio.schema.entry import MODELS, json_schema

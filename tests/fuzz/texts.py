@@ -5,9 +5,9 @@ from __future__ import annotations
 import math
 from random import Random
 
-from motorfolio.catalog.cycle_table import from_rows
-from motorfolio.catalog.requirement import read_requirement
-from motorfolio.catalog.requirement_fields import RequirementError
+from motorfolio.catalog.requirement.cycle_table import from_rows
+from motorfolio.catalog.requirement.fields import RequirementError
+from motorfolio.catalog.requirement.read import read_requirement
 from motorfolio.schema.figure.numerals import NumberStyle
 from motorfolio.schema.figure.read import FigureError, read_figure
 from motorfolio.schema.units.read import UnitError, quantity, read_unit

@@ -5,9 +5,9 @@ from pathlib import Path
 import numpy as np
 import pytest
 
-from motorfolio.catalog.fleet import load_fleet
 from motorfolio.catalog.report import curves
 from motorfolio.catalog.report.implied import implied_figures
+from motorfolio.catalog.search.fleet import load_fleet
 from motorfolio.catalog.store import Catalog
 from motorfolio.schema.operation.cycle import Cycle
 from motorfolio.schema.operation.demand import Demand, Drive, Gearing, Supply, Surroundings

@@ -7,7 +7,7 @@ from pathlib import Path
 import pytest
 from rich.console import Console
 
-from motorfolio.catalog.importing import Options, import_files
+from motorfolio.catalog.importing.run import Options, import_files
 from motorfolio.catalog.report import imported
 
 SAMPLES = Path(__file__).resolve().parents[2] / "sample_entries"

@@ -11,13 +11,13 @@ from pathlib import Path
 import numpy as np
 import pytest
 
-from motorfolio.catalog.choice import Judge, behind
 from motorfolio.catalog.commands.requirement_options import requirement_of
 from motorfolio.catalog.commands.search import command as search
-from motorfolio.catalog.fleet import load_fleet
-from motorfolio.catalog.gears import gear_utilisations, load_gears
 from motorfolio.catalog.report.page.write import search_page
-from motorfolio.catalog.search import _tolerance
+from motorfolio.catalog.search.choice import Judge, behind
+from motorfolio.catalog.search.fleet import load_fleet
+from motorfolio.catalog.search.gears import gear_utilisations, load_gears
+from motorfolio.catalog.search.run import _tolerance
 from motorfolio.catalog.store import Catalog
 
 from .browser import opened

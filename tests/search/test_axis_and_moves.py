@@ -9,7 +9,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from motorfolio.catalog.candidate_documents import load_summary
+from motorfolio.catalog.search.documents import load_summary
 from motorfolio.schema.operation.axis import GRAVITY, Axis
 from motorfolio.schema.operation.cycle import Cycle
 from motorfolio.schema.operation.moves import MoveError, move, one_after_the_other, ramps, rest

@@ -10,7 +10,7 @@ from pathlib import Path
 import pytest
 
 from motorfolio.catalog.cli import main
-from motorfolio.catalog.gears import read_gears, store_gears
+from motorfolio.catalog.search.gears import read_gears, store_gears
 from motorfolio.catalog.store import Catalog
 from motorfolio.catalog.tables import read_tables
 

@@ -8,16 +8,16 @@ from pathlib import Path
 import numpy as np
 import pytest
 
-from motorfolio.catalog.requirement import read_requirement
-from motorfolio.catalog.requirement_fields import (
+from motorfolio.catalog.requirement.fields import (
     LISTS,
     SECTIONS,
     RequirementError,
     read_ratio,
 )
-from motorfolio.catalog.requirement_file import merged, read_file, saved, to_toml
-from motorfolio.catalog.requirement_schema import json_schema
-from motorfolio.catalog.where import read_where
+from motorfolio.catalog.requirement.file import merged, read_file, saved, to_toml
+from motorfolio.catalog.requirement.read import read_requirement
+from motorfolio.catalog.requirement.schema import json_schema
+from motorfolio.catalog.requirement.where import read_where
 from motorfolio.schema.errors import MotorfolioError
 
 from .made import SAMPLES

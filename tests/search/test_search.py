@@ -8,15 +8,15 @@ from pathlib import Path
 import numpy as np
 import pytest
 
-from motorfolio.catalog import choice
-from motorfolio.catalog.candidate_documents import search_document
-from motorfolio.catalog.fleet import load_fleet
-from motorfolio.catalog.gears import Gear, read_gears, store_gears
-from motorfolio.catalog.near_misses import near_misses
-from motorfolio.catalog.requirement import read_requirement
-from motorfolio.catalog.requirement_fields import RequirementError
-from motorfolio.catalog.requirement_file import read_file
-from motorfolio.catalog.search import Found, names_of, search
+from motorfolio.catalog.requirement.fields import RequirementError
+from motorfolio.catalog.requirement.file import read_file
+from motorfolio.catalog.requirement.read import read_requirement
+from motorfolio.catalog.search import choice
+from motorfolio.catalog.search.documents import search_document
+from motorfolio.catalog.search.fleet import load_fleet
+from motorfolio.catalog.search.gears import Gear, read_gears, store_gears
+from motorfolio.catalog.search.near_misses import near_misses
+from motorfolio.catalog.search.run import Found, names_of, search
 from motorfolio.catalog.store import Catalog
 from motorfolio.catalog.tables import read_tables
 from motorfolio.schema.operation.energy import draw

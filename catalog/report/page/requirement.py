@@ -8,9 +8,9 @@ import numpy as np
 
 from ....schema.operation.demand import Demand, Gearing
 from ....schema.operation.limits import LIMITS, Verdict
-from ...choice import _NEEDED, Judged, true_drop
-from ...requirement import Requirement
-from ...search import Found, Shown
+from ...requirement.read import Requirement
+from ...search.choice import _NEEDED, Judged, true_drop
+from ...search.run import Found, Shown
 from .. import plain as p
 
 VERDICTS = {Verdict.FEASIBLE: "yes", Verdict.UNKNOWN: "unknown", Verdict.REJECTED: "no"}

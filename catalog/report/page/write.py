@@ -18,7 +18,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from ...fleet import Fleet, load_fleet
+from ...search.fleet import Fleet, load_fleet
 from .. import plain as p
 from ..implied import implied_figures
 from ..safety import SAFETY
@@ -27,7 +27,7 @@ from . import requirement as asked
 from .cards import Strings, pack_card, rounded
 
 if TYPE_CHECKING:
-    from ...requirement import Requirement
+    from ...requirement.read import Requirement
     from ...store import Catalog
 
 SCRIPTS = ("model.js", "judge.js", "charts.js", "card.js", "main.js")
@@ -56,9 +56,9 @@ def catalog_page(catalog: Catalog, title: str) -> str:
 
 def search_page(catalog: Catalog, requirement: Requirement, title: str) -> str:
     """The page of a search: candidates, near misses, and the nearest of the others."""
-    from ...candidate_documents import requirement_document
-    from ...near_misses import near_misses
-    from ...search import search, show
+    from ...search.documents import requirement_document
+    from ...search.near_misses import near_misses
+    from ...search.run import search, show
 
     found = search(catalog, requirement)
     misses = near_misses(found, catalog)

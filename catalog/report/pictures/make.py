@@ -12,9 +12,9 @@ from ....schema.errors import MotorfolioError
 from ....schema.operation.limits import Verdict
 from ....schema.operation.machines import Machines
 from ....schema.operation.ratios import ratio_grid
-from ...choice import Judge, behind
-from ...fleet import load_fleet
-from ...search import Found, Shown, search, show
+from ...search.choice import Judge, behind
+from ...search.fleet import load_fleet
+from ...search.run import Found, Shown, search, show
 from ..curves import plane
 from ..implied import implied_figures
 from ..plain import words
@@ -26,7 +26,7 @@ from .ratios import draw_ratios
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
-    from ...requirement import Requirement
+    from ...requirement.read import Requirement
     from ...store import Catalog
 
 Array = NDArray[np.float64]

@@ -9,7 +9,7 @@ import sys
 import tempfile
 from pathlib import Path
 
-from motorfolio.catalog.importing import Options, import_files
+from motorfolio.catalog.importing.run import Options, import_files
 from motorfolio.catalog.store import catalog, database, layout, names
 
 from ..conftest import TABLE

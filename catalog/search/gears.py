@@ -10,15 +10,15 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ..schema.errors import MotorfolioError
-from ..schema.figure.read import POINT, read_figure
-from ..schema.units.read import read_unit
-from .requirement_fields import Ratios, RequirementError
+from ...schema.errors import MotorfolioError
+from ...schema.figure.read import POINT, read_figure
+from ...schema.units.read import read_unit
+from ..requirement.fields import Ratios, RequirementError
 
 if TYPE_CHECKING:
-    from .requirement import Requirement
-    from .store import Catalog
-    from .tables.grid import Grid
+    from ..requirement.read import Requirement
+    from ..store import Catalog
+    from ..tables.grid import Grid
 
 Array = NDArray[np.float64]
 

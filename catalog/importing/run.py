@@ -4,14 +4,17 @@ from collections.abc import Callable, Iterable, Iterator, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from ..schema.batch import Batch
-from ..schema.errors import MotorfolioError
-from ..schema.reconcile.run import reconcile
-from . import documents as doc
-from .batch_documents import finding_documents, motor_documents
-from .documents import Document
+from ...schema.batch import Batch
+from ...schema.errors import MotorfolioError
+from ...schema.reconcile.run import reconcile
+from .. import documents as doc
+from ..documents import Document
+from ..store import Catalog
+from ..store.corrections import Correction, corrected
+from .documents import finding_documents, motor_documents
 from .duplicates import merged
-from .import_result import (
+from .overrides import check, check_used
+from .result import (
     MOST_FINDINGS,
     MOST_SHOWN,
     FileResult,
@@ -19,14 +22,11 @@ from .import_result import (
     Options,
     first_constants,
 )
-from .overrides import check, check_used
-from .store import Catalog
-from .store.corrections import Correction, corrected
 from .storing import JudgedTable, storing
 
 if TYPE_CHECKING:
-    from .reading import Reading, Unread
-    from .tables import TableFile
+    from ..reading import Reading, Unread
+    from ..tables import TableFile
 
 __all__ = ["FileResult", "ImportResult", "Options", "import_files"]
 
@@ -101,8 +101,8 @@ def _read(
     standard_input: Callable[[], bytes] | None,
 ) -> "tuple[TableFile, Reading]":
     """The file's tables and their reading, with the readings kept for its maker."""
-    from .reading import ReadOptions, read
-    from .tables import read_tables
+    from ..reading import ReadOptions, read
+    from ..tables import read_tables
 
     data = standard_input() if file == STANDARD_INPUT and standard_input else None
 

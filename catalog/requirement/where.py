@@ -11,14 +11,14 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 from numpy.typing import NDArray
 
-from ..schema.canonical import CANONICAL
-from ..schema.errors import MotorfolioError
-from ..schema.units.read import quantity, read_unit
-from ..schema.vocabulary import quantities
-from .requirement_fields import RequirementError, unknown
+from ...schema.canonical import CANONICAL
+from ...schema.errors import MotorfolioError
+from ...schema.units.read import quantity, read_unit
+from ...schema.vocabulary import quantities
+from .fields import RequirementError, unknown
 
 if TYPE_CHECKING:
-    from .store import Catalog
+    from ..store import Catalog
 
 _SIGNS: dict[str, Callable[[Any, Any], Any]] = {
     "<=": operator.le,

@@ -8,10 +8,10 @@ import re
 from collections.abc import Sequence
 from pathlib import Path
 
-from ..schema.errors import MotorfolioError
-from ..schema.operation.cycle import Cycle
-from ..schema.units.read import quantity, read_unit
-from .requirement_fields import RequirementError, quoted
+from ...schema.errors import MotorfolioError
+from ...schema.operation.cycle import Cycle
+from ...schema.units.read import quantity, read_unit
+from .fields import RequirementError, quoted
 
 _NAMES = {
     "time": "time",

@@ -3,10 +3,10 @@
 import difflib
 from collections.abc import Iterable, Mapping
 
-from ..schema.batch import Heading
-from ..schema.errors import MotorfolioError
-from ..schema.units.read import read_unit
-from ..schema.vocabulary import quantities
+from ...schema.batch import Heading
+from ...schema.errors import MotorfolioError
+from ...schema.units.read import read_unit
+from ...schema.vocabulary import quantities
 
 CONVENTIONS = ("dc", "peak", "rms", "lines", "phase", "star", "delta")
 SAID = "set by --set"

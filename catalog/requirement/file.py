@@ -8,8 +8,8 @@ from pathlib import Path
 from typing import Any
 
 from . import cycle_table
-from .requirement import Document, Requirement
-from .requirement_fields import LISTS, RequirementError, quoted, texts
+from .fields import LISTS, RequirementError, quoted, texts
+from .read import Document, Requirement
 
 #: What is shown of a search is no part of what the machine asks: an option may change it.
 _VIEW = ("limit", "order_by")

@@ -9,17 +9,17 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ..schema.operation.limits import LIMITS, Verdict
-from ..schema.operation.machines import Machines
-from ..schema.operation.ratios import feasible_ratios
+from ...schema.operation.limits import LIMITS, Verdict
+from ...schema.operation.machines import Machines
+from ...schema.operation.ratios import feasible_ratios
+from ..requirement.read import Requirement, RequirementError
+from ..requirement.where import Passed, apply_where
 from .choice import Judge, Judged, best_of, choose, choose_gears
 from .fleet import Fleet, load_fleet
 from .gears import Gear, gear_utilisations, load_gears
-from .requirement import Requirement, RequirementError
-from .where import Passed, apply_where
 
 if TYPE_CHECKING:
-    from .store import Catalog
+    from ..store import Catalog
 
 Array = NDArray[np.float64]
 Index = NDArray[np.intp]

@@ -13,13 +13,13 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ..schema.operation.demand import Gearing
-from ..schema.operation.energy import draw
-from ..schema.operation.judge import judge, judge_worst
-from ..schema.operation.limits import LIMITS, Utilisations, Verdict
-from ..schema.operation.machines import Machines
-from ..schema.operation.ratios import GRID, ratio_grid
-from .requirement import Requirement
+from ...schema.operation.demand import Gearing
+from ...schema.operation.energy import draw
+from ...schema.operation.judge import judge, judge_worst
+from ...schema.operation.limits import LIMITS, Utilisations, Verdict
+from ...schema.operation.machines import Machines
+from ...schema.operation.ratios import GRID, ratio_grid
+from ..requirement.read import Requirement
 
 if TYPE_CHECKING:
     from .gears import Gear

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Any
 
-from .requirement_fields import LISTS, SECTIONS, Field
+from .fields import LISTS, SECTIONS, Field
 
 
 def json_schema() -> dict[str, Any]:

@@ -7,9 +7,9 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import NamedTuple
 
-from ..schema.batch import Heading
-from ..schema.motor import Reconciled
-from .documents import Document
+from ...schema.batch import Heading
+from ...schema.motor import Reconciled
+from ..documents import Document
 
 MOST_SHOWN = 8
 """So many motors of a file are shown with their constants after an import."""

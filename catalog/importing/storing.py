@@ -6,15 +6,15 @@ from contextlib import contextmanager
 from dataclasses import dataclass
 from pathlib import Path
 
-from ..schema.batch import Batch
-from ..schema.motor import Reconciled
-from .import_result import FileResult, Options
-from .store import Catalog, CatalogError, columns, same
-from .store.catalog import now
-from .store.corrections import Correction
-from .store.database import in_words
-from .store.revisions import OF_SOURCE
-from .store.write import AppliedCorrection, Writer
+from ...schema.batch import Batch
+from ...schema.motor import Reconciled
+from ..store import Catalog, CatalogError, columns, same
+from ..store.catalog import now
+from ..store.corrections import Correction
+from ..store.database import in_words
+from ..store.revisions import OF_SOURCE
+from ..store.write import AppliedCorrection, Writer
+from .result import FileResult, Options
 
 BUFFERED_MOTORS = 40_000
 """Up to so many motors are read before the catalog is opened, so that a call which can't be used

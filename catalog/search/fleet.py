@@ -9,12 +9,12 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ..schema.operation.machines import Machines, coulomb_torque
-from .requirement import Requirement, RequirementError
-from .where import columns_of
+from ...schema.operation.machines import Machines, coulomb_torque
+from ..requirement.read import Requirement, RequirementError
+from ..requirement.where import columns_of
 
 if TYPE_CHECKING:
-    from .store import Catalog
+    from ..store import Catalog
 
 Array = NDArray[np.float64]
 

@@ -7,18 +7,18 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from ..schema.operation.cycle import Cycle
-from ..schema.operation.energy import draw
-from ..schema.operation.limits import Verdict
-from ..schema.operation.machines import Commutation, Machines
+from ...schema.operation.cycle import Cycle
+from ...schema.operation.energy import draw
+from ...schema.operation.limits import Verdict
+from ...schema.operation.machines import Commutation, Machines
+from ..documents import amount, number
+from ..requirement.read import Requirement
 from .choice import Judge, behind, true_drop
-from .documents import amount, number
 from .near_misses import Miss
-from .requirement import Requirement
-from .search import Found, Shown
+from .run import Found, Shown
 
 if TYPE_CHECKING:
-    from .store import Catalog
+    from ..store import Catalog
 
 Document = dict[str, Any]
 

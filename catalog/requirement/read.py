@@ -7,12 +7,12 @@ from dataclasses import dataclass, field, replace
 from pathlib import Path
 from typing import Any
 
-from ..schema.operation.axis import Axis
-from ..schema.operation.cycle import Cycle, CycleError
-from ..schema.operation.demand import Demand, Drive, Gearing, Supply, Surroundings
-from ..schema.operation.moves import MoveError, move, one_after_the_other, rest
+from ...schema.operation.axis import Axis
+from ...schema.operation.cycle import Cycle, CycleError
+from ...schema.operation.demand import Demand, Drive, Gearing, Supply, Surroundings
+from ...schema.operation.moves import MoveError, move, one_after_the_other, rest
 from . import cycle_table
-from .requirement_fields import (
+from .fields import (
     LISTS,
     SECTIONS,
     Ratios,

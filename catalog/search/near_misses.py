@@ -14,17 +14,17 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ..schema.operation.limits import Verdict
-from ..schema.operation.machines import Machines, armature_amperes
-from ..schema.operation.ratios import ratio_grid
-from ..schema.written import percent
+from ...schema.operation.limits import Verdict
+from ...schema.operation.machines import Machines, armature_amperes
+from ...schema.operation.ratios import ratio_grid
+from ...schema.written import percent
+from ..requirement.read import Requirement
 from .choice import Judge, Judged, behind
 from .gears import gear_utilisations
-from .requirement import Requirement
-from .search import Found, Shown, show
+from .run import Found, Shown, show
 
 if TYPE_CHECKING:
-    from .store import Catalog
+    from ..store import Catalog
 
 Array = NDArray[np.float64]
 

@@ -5,13 +5,13 @@ from typing import Any
 
 import numpy as np
 
-from ..schema.batch import MODEL_BASES, Batch, FigureColumn, PlacedFigure
-from ..schema.convention import Commutation
-from ..schema.motor import CANONICAL, CONSTANT_BASES, ConstantColumn, Reconciled
-from ..schema.vocabulary import quantities
-from . import documents as doc
-from .documents import Document
-from .store.write import AppliedCorrection
+from ...schema.batch import MODEL_BASES, Batch, FigureColumn, PlacedFigure
+from ...schema.convention import Commutation
+from ...schema.motor import CANONICAL, CONSTANT_BASES, ConstantColumn, Reconciled
+from ...schema.vocabulary import quantities
+from .. import documents as doc
+from ..documents import Document
+from ..store.write import AppliedCorrection
 
 
 def unit_of(key: str, printed: str = "") -> str:

@@ -5,7 +5,7 @@ from dataclasses import replace
 
 import numpy as np
 
-from ..schema.batch import (
+from ...schema.batch import (
     Batch,
     Condition,
     FigureColumn,
@@ -13,7 +13,7 @@ from ..schema.batch import (
     TextColumn,
     empty_figures,
 )
-from ..schema.vocabulary import quantities
+from ...schema.vocabulary import quantities
 
 VOLTAGE = "nominal_voltage"
 

@@ -11,9 +11,9 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any
 
-from ..schema.errors import MotorfolioError, excerpt
-from ..schema.figure.read import POINT, read_figure
-from ..schema.units.read import quantity, read_unit
+from ...schema.errors import MotorfolioError, excerpt
+from ...schema.figure.read import POINT, read_figure
+from ...schema.units.read import quantity, read_unit
 
 
 class RequirementError(MotorfolioError):
