@@ -1,10 +1,10 @@
 """Readings of headings that a person tells: "quantity[:unit[:convention]]"."""
 
-import difflib
 from collections.abc import Iterable, Mapping
 
 from ...schema.batch import Heading
 from ...schema.errors import MotorfolioError
+from ...schema.spelling import nearest
 from ...schema.units.read import read_unit
 from ...schema.vocabulary import quantities
 
@@ -21,7 +21,7 @@ def check(overrides: Mapping[str, str]) -> None:
         where = f'--set "{heading}={reading}"'
         quantity = quantities().get(key.strip())
         if quantity is None:
-            near = difflib.get_close_matches(key.strip(), quantities(), 3, 0.5)
+            near = nearest(key.strip(), quantities(), most=3, least=50)
             hint = f"; did you mean {' or '.join(near)}?" if near else "."
             raise MotorfolioError(f'{where}: there is no quantity "{key.strip()}"{hint}')
         if unit.strip() and not quantity.text:

@@ -5,7 +5,6 @@ Reading, checking, the JSON Schema and the documentation all come from `SECTIONS
 
 from __future__ import annotations
 
-import difflib
 import math
 from collections.abc import Mapping
 from dataclasses import dataclass
@@ -13,6 +12,7 @@ from typing import Any
 
 from ...schema.errors import MotorfolioError, excerpt
 from ...schema.figure.read import POINT, read_figure
+from ...schema.spelling import nearest
 from ...schema.units.read import quantity, read_unit
 
 
@@ -212,7 +212,7 @@ def texts(given: Any, name: str) -> list[str]:
 
 def unknown(where: str, key: str, known: Mapping[str, Any]) -> str:
     """A sentence about a key that is not known."""
-    near = difflib.get_close_matches(key[:80], known, n=1)
+    near = nearest(key[:80], known)
     hint = f"did you mean {near[0]}?" if near else f"known are {excerpt(', '.join(known), 180)}."
     return f"The requirement's {where} has no {quoted(key)}; {hint}"
 

@@ -5,7 +5,6 @@ mass, "oz-in-s²" an inertia of force; "min⁻¹" is a speed, and "s⁻¹" is re
 may be rad/s or rev/s. What is taken for something else than it says is told in ``remark``.
 """
 
-import difflib
 import math
 import re
 from collections.abc import Sequence
@@ -17,6 +16,7 @@ from typing import NamedTuple
 from ..errors import MotorfolioError, excerpt
 from ..figure.read import POINT, read_figure
 from ..figure.signs import plain
+from ..spelling import nearest
 from .factors import evaluate
 from .table import Product, table
 from .text import NotAUnitError, bare, read_products, split_marks, variants
@@ -256,7 +256,7 @@ def _refusal(
     except NotAUnitError as error:
         strange = strange or error
         words = [*table().words, *table().compounds]
-        near = difflib.get_close_matches(strange.part, words, n=3, cutoff=0.6)
+        near = nearest(strange.part, words, most=3)
         if len(strange.part) < 2 or (strange.part == clean and " " in clean):
             near = []
         guesses = strange.guesses or tuple(clean.replace(strange.part, word) for word in near)
