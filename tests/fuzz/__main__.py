@@ -1,4 +1,4 @@
-"""``python -m tests.fuzz --inputs N --seed S``: of N inputs 1 in 200 is a file, 1 in 50 a table."""
+"""``python -m tests.fuzz --inputs N --seed S``: of N inputs 1 in 500 is a file, 1 in 200 a table."""
 
 from __future__ import annotations
 
@@ -20,7 +20,7 @@ TARGETS = {"texts": try_text, "tables": try_heading, "files": try_file}
 
 def shares(inputs: int) -> dict[str, int]:
     """How many inputs go where."""
-    files, tables = max(1, inputs // 200), max(1, inputs // 50)
+    files, tables = max(1, inputs // 500), max(1, inputs // 200)
     return {"texts": max(1, inputs - files - tables), "tables": tables, "files": files}
 
 
