@@ -5,8 +5,8 @@ from collections import defaultdict
 from ...schema.figure.signs import plain
 from ..tables.grid import Grid
 from .cells import is_figure, is_unit, missing, strength
-from .label import parse_label
-from .layout import figure_behind
+from .headings.label import parse_label
+from .layout.columns import figure_behind
 from .model import Table, Unread
 
 REASON = "it stands in no table that was understood"

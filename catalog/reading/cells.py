@@ -8,8 +8,8 @@ from ...schema.figure.read import is_missing
 from ...schema.figure.signs import plain
 from ...schema.units.read import is_unit_like
 from ...schema.vocabulary import words
-from .label import parse_label, roles_of
-from .lexicon import canonical, find_symbol, lexicon, squeeze, tokens
+from .headings.label import parse_label, roles_of
+from .headings.lexicon import canonical, find_symbol, lexicon, squeeze, tokens
 
 _FIGURE = re.compile(r"[<>≤≥~≈±+-]?\s*(?:(?:max|min|ca|typ|approx)\.?\s*)?[<>≤≥]?\s*[.,]?\d")
 _LETTER = re.compile(r"[^\W\d_]|[Ø%]")

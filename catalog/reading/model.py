@@ -5,7 +5,7 @@ from dataclasses import dataclass, field
 
 from ...schema.batch import Batch, Heading
 from ...schema.errors import MotorfolioError
-from .label import Label
+from .headings.label import Label
 
 
 class ReadingError(MotorfolioError):
@@ -75,7 +75,6 @@ class Field:
     when: tuple[str, ...] = ()
     temperature: float | None = None
     variant: str | None = None
-    line: int = 0
     source: int = 0
     places: list[int] | None = None
     layout: str | None = None

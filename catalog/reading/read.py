@@ -5,15 +5,17 @@ from pathlib import PurePath
 from ...schema.batch import Batch, Heading
 from ..tables.grid import Grid, TableFile
 from .account import unaccounted
-from .batches import TableReader
-from .blocks import Block, blocks_of
 from .cells import TOLD
-from .join import goes_with, joined, take_in
-from .kind import is_marked
-from .layout import lay_out_columns, lay_out_rows
-from .lexicon import squeeze, tokens
+from .entries.batches import TableReader
+from .entries.kind import is_marked
+from .headings.lexicon import squeeze, tokens
+from .layout.blocks import Block, blocks_of
+from .layout.columns import lay_out_columns
+from .layout.join import goes_with, joined, take_in
+from .layout.lines import text_of
+from .layout.points import is_load_table, load_points, points_table
+from .layout.rows import lay_out_rows
 from .model import Reading, ReadingError, ReadOptions, Table, Unread
-from .points import is_load_table, load_points, points_table
 
 
 def read(file: TableFile, options: ReadOptions) -> Reading:
@@ -40,7 +42,7 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
         remarks += grid.remarks
         tables = _tables(grid)
         if not tables:
-            loose += [_line(row) for row in grid.rows[:50]]
+            loose += [text_of(row) for row in grid.rows[:50]]
         if not tables and grid.sheet:
             remarks.append(f"sheet {grid.sheet}: no motor table, skipped")
         lone += tables
@@ -95,7 +97,7 @@ def _tables(grid: Grid) -> list[Table]:
     tables: list[Table] = []
     loose: list[str] = []
     for block in blocks_of(grid):
-        texts = [_line(row) for row in block.rows] if block.kind == "text" else []
+        texts = [text_of(row) for row in block.rows] if block.kind == "text" else []
         if block.kind == "text":
             if tables and _continues_rows(tables[-1], block):
                 _append_rows(tables[-1], block)
@@ -128,14 +130,6 @@ def _tables(grid: Grid) -> list[Table]:
     return tables
 
 
-def _line(row: list[str]) -> str:
-    out: list[str] = []
-    for t in row:
-        if t and (not out or out[-1] != t):
-            out.append(t)
-    return " ".join(out)
-
-
 def _continues_rows(table: Table, block: Block) -> bool:
     """Whether rows behind a blank row go on with the table above."""
     if table.layout != "rows" or not table.fields:
@@ -147,7 +141,7 @@ def _continues_rows(table: Table, block: Block) -> bool:
 def _append_rows(table: Table, block: Block) -> None:
     for row, number in zip(block.rows, block.row_numbers, strict=True):
         if sum(1 for t in row if t) < 2:
-            table.notes.append(_line(row))
+            table.notes.append(text_of(row))
             continue
         for field in table.fields:
             field.texts.append(row[field.source] if field.source < len(row) else "")

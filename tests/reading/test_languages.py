@@ -4,7 +4,7 @@
 
 import pytest
 
-from motorfolio.catalog.reading.kind import in_words
+from motorfolio.catalog.reading.entries.kind import in_words
 
 from .sheets import RPM, sheet
 

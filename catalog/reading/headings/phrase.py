@@ -6,7 +6,7 @@ from functools import lru_cache
 
 from rapidfuzz import fuzz, process
 
-from ...schema.figure.signs import plain
+from ....schema.figure.signs import plain
 from .lexicon import canonical, is_cjk, lexicon, squeeze, tokens, without_fillers
 
 EXACT, SHORTENED, TYPO, CONTAINED = 1.0, 0.96, 0.85, 0.45

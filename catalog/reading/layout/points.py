@@ -2,12 +2,12 @@
 
 from dataclasses import replace
 
+from ..cells import is_figure
+from ..headings.label import parse_label
+from ..headings.phrase import section_of
+from ..model import Table
 from .blocks import Block
-from .cells import is_figure
 from .heads import HeadCell, head_field
-from .label import parse_label
-from .model import Table
-from .phrase import section_of
 
 
 def points_table(block: Block) -> Table | None:

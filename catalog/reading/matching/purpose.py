@@ -3,7 +3,7 @@
 import re
 from collections.abc import Sequence
 
-from ...schema.figure.signs import plain
+from ....schema.figure.signs import plain
 from .match import Match
 
 _BODY = re.compile(

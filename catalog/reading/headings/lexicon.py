@@ -10,8 +10,8 @@ from collections.abc import Iterable
 from dataclasses import dataclass, field
 from functools import cache, lru_cache
 
-from ...schema.figure.signs import plain
-from ...schema.vocabulary import quantities, words
+from ....schema.figure.signs import plain
+from ....schema.vocabulary import quantities, words
 
 _TOKEN = re.compile(
     r"[a-z]+|\d+|[α-ωϑΩω]+|[\u3040-\u30ff\u31f0-\u31ff\u3400-\u9fff\uf900-\ufaff々ー]+|[#%√Δ/]"

@@ -3,12 +3,12 @@
 import re
 from dataclasses import replace
 
-from ...schema.figure.signs import plain
-from ...schema.units.read import unit_of
-from .cells import is_caption, is_symbol, is_unit, strength
-from .label import Label, parse_label
-from .model import Field
-from .phrase import COMPOSED, match_phrase, section_of
+from ....schema.figure.signs import plain
+from ....schema.units.read import unit_of
+from ..cells import is_caption, is_symbol, is_unit, strength
+from ..headings.label import Label, parse_label
+from ..headings.phrase import match_phrase, section_of
+from ..model import Field
 
 HeadCell = tuple[str, str]
 """(kind, text): kind is "unit", "symbol", "caption" or "name"."""
@@ -159,13 +159,3 @@ def classify(text: str, kind_of_line: str) -> HeadCell:
     if kind_of_line == "caption":
         return ("caption", text)
     return ("name", text)
-
-
-def makes_sense(section: str | None, field_: Field) -> int:
-    """How well a section fits a field: 1 where both make a quantity, −1 where they do not."""
-    generics = {p.generic for p in field_.label.names if p.generic}
-    if not generics or section is None:
-        return 0
-    if any((section, g) in COMPOSED for g in generics):
-        return 1
-    return 0 if section in ("maximum_efficiency", "maximum_power", "no_load", "stall") else -1

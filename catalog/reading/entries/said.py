@@ -2,15 +2,15 @@
 
 import re
 
-from ...schema.batch import FigureColumn
-from ...schema.convention import Commutation, Convention, default_convention
-from ...schema.units.read import Unit
-from ...schema.vocabulary import Quantity, quantity
+from ....schema.batch import FigureColumn
+from ....schema.convention import Commutation, Convention, default_convention
+from ....schema.units.read import Unit
+from ....schema.vocabulary import Quantity, quantity
+from ..headings.lexicon import symbol_form
+from ..headings.phrase import conventions_of
+from ..matching.match import Match
 from .figures import Values
 from .kind import Notes, note_conventions, note_temperature
-from .lexicon import symbol_form
-from .match import Match
-from .phrase import conventions_of
 
 
 def convention_of(m: Match, commutation: Commutation, notes: Notes) -> Convention | None:
@@ -57,7 +57,8 @@ def convention_of(m: Match, commutation: Commutation, notes: Notes) -> Conventio
         and not (m.units and m.units[0].marks & {"rms", "peak"})
     ):
         kept.pop("voltage")
-    convention = base.with_(**kept, basis="stated") if kept else base
+    basis = "inferred" if m.field.label.inferred else "stated"
+    convention = base.with_(**kept, basis=basis) if kept else base
     if "temperature" in q.carries:
         t = temperature_of(m)
         for mark in m.field.label.marks:

@@ -1,20 +1,25 @@
 """One table → what is decided once for all its motors: headings, units, kind, conventions."""
 
 import re
-from collections.abc import Sequence
 from dataclasses import replace
 
 import numpy as np
 
-from ...schema.batch import MAGNETS, Heading, Source
-from ...schema.convention import Commutation
-from ...schema.figure.read import NumberStyle, number_style
-from ...schema.figure.signs import plain
-from ...schema.units.read import Unit, UnitError, read_unit
-from ...schema.vocabulary import Quantity, quantities, quantity
-from ..tables.grid import Stored, TableFile
-from .cells import is_ditto, missing
-from .join import id_field, ids_of
+from ....schema.batch import MAGNETS, Heading, Ints, Source
+from ....schema.convention import Commutation
+from ....schema.figure.read import NumberStyle, number_style
+from ....schema.figure.signs import plain
+from ....schema.units.read import Unit, UnitError, read_unit
+from ....schema.vocabulary import Quantity, quantities, quantity
+from ...tables.grid import Stored, TableFile
+from ..cells import missing
+from ..headings.label import parse_label
+from ..headings.lexicon import squeeze, tokens
+from ..layout.join import id_field, ids_of
+from ..matching.match import Match, Matcher
+from ..matching.purpose import is_of_gears, tells_of_a_motor
+from ..model import Field, ReadOptions, Table, Unread
+from .frame import share_frame, take_up_dittos
 from .kind import (
     ASSUMED,
     INFERRED,
@@ -26,12 +31,6 @@ from .kind import (
     notes_of,
     signature,
 )
-from .label import parse_label
-from .layout import inherit
-from .lexicon import squeeze, tokens
-from .match import Match, Matcher
-from .model import Field, ReadOptions, Table, Unread
-from .purpose import is_of_gears, tells_of_a_motor
 from .said import convention_of, temperature_of
 
 REFERENCE_FIGURES = ("terminal_resistance", "torque_constant", "back_emf_constant")
@@ -56,11 +55,11 @@ class Decisions:
         self.unread: list[Unread] = []
         self.remarks: list[str] = list(table.remarks)
         self.notes: Notes = notes_of([*table.titles, *table.notes])
-        self._ditto()
+        take_up_dittos(table)
         self.id_field = None if table.part_numbers else self._told_ids() or id_field(table)
         self.style = self._style()
         self.matches = self._match()
-        self._share_frame()
+        share_frame(table, self.matches, self.id_field)
         self._stated_voltage()
         self.why_not: list[str] = []
         figures = [m for m in self.matches if tells_of_a_motor(m)]
@@ -81,7 +80,8 @@ class Decisions:
         self.headings = self._headings()
         self._unread_headings()
 
-    def _ids(self) -> list[str | None]:
+    def ids(self) -> list[str | None]:
+        """The part numbers, None where there is none."""
         if self.table.part_numbers or self.id_field is None:
             return ids_of(self.table)
         return [t or None for t in self.id_field.texts]
@@ -93,12 +93,6 @@ class Decisions:
             if match is not None and match.key == "part_number":
                 return f
         return None
-
-    def _ditto(self) -> None:
-        """Cells that say "as above" or "as left" take that text; frame figures too where blank."""
-        for f in self.table.fields:
-            if any(is_ditto(t) for t in set(f.texts[:STYLE_ROWS]) if not t[:1].isdigit()):
-                f.texts = inherit(f.texts, ditto_only=True)
 
     def _stated_voltage(self) -> None:
         """The voltage of the whole table, where only a title or a note gives it: "at 12 V"."""
@@ -119,52 +113,6 @@ class Decisions:
         reason = "the voltage that the table is stated for, by its title or a note"
         unit = read_unit("V", ("V",))
         self.matches.append(Match(field, "figure", "nominal_voltage", 0.9, [unit], reason))
-
-    def _share_frame(self) -> None:
-        """A figure of the frame that stands once, at the first of its motors, holds for all.
-
-        Where a column names the frame (a model printed once, its windings below), it holds
-        down to the next model; without one only if no other motor has the figure.
-        """
-        groups = self._frame_groups()
-        for m in self.matches:
-            if m.role != "figure" or m.key is None or not quantity(m.key).frame:
-                continue
-            f = m.field
-            shared = False
-            texts = list(f.texts)
-            places = list(f.places or self.table.places)
-            for group in groups:
-                if len(group) > 1 and texts[group[0]] and not any(texts[k] for k in group[1:]):
-                    for k in group[1:]:
-                        texts[k], places[k] = texts[group[0]], places[group[0]]
-                    shared = True
-            if shared:
-                f.texts, f.places = texts, places
-                m.reason += "; printed once for the motors of a frame"
-
-    def _frame_groups(self) -> list[list[int]]:
-        n = self.table.count
-        for m in self.matches:
-            if m.key in ("series", "part_number") and m.field is not self.id_field:
-                texts = m.field.texts
-                if texts and texts[0] and not all(texts):
-                    return _runs(texts)
-                if m.key == "series" and all(texts):
-                    return _runs(
-                        [t if k == 0 or t != texts[k - 1] else "" for k, t in enumerate(texts)]
-                    )
-        if self.table.layout == "rows" or not 1 < n <= 200:
-            return []
-        once = [
-            m
-            for m in self.matches
-            if m.role == "figure" and m.field.texts[0] and not any(m.field.texts[1:])
-        ]
-        frames = [m for m in once if m.key and quantity(m.key).frame]
-        # One lone figure may be a gap in the others; two of the frame are a habit of the sheet.
-        sure = len(frames) == len(once) and (len(frames) > 1 or n > 3)
-        return [list(range(n))] if sure else []
 
     def _style(self) -> NumberStyle:
         texts = [
@@ -209,6 +157,13 @@ class Decisions:
         for m in matches:
             self._repair(m, matcher)
         return matches
+
+    def places_of(self, f: Field, lines: list[int]) -> tuple[Ints, Ints]:
+        """Rows and columns of the cells under a heading, of the motors at these lines."""
+        along = np.asarray(lines, dtype=np.int32)
+        if (f.layout or self.table.layout) == "rows":
+            return along, np.full(len(lines), f.column, dtype=np.int32)
+        return np.full(len(lines), f.row, dtype=np.int32), along
 
     def _override(self, f: Field) -> Match | None:
         names = {squeeze(tokens(t)) for t in (f.heading, f.label.text, *f.label.symbols) if t}
@@ -279,14 +234,15 @@ class Decisions:
         )
         m.guesses = (m.key,)
 
-    def _texts_about(self) -> list[str]:
+    def texts_about(self) -> list[str]:
+        """Titles, notes and captions."""
         captions = {c for f in self.table.fields for c in f.captions}
         return [*self.table.titles, *self.table.notes, *captions]
 
     def _commutation(self) -> tuple[Commutation, int]:
         if self.options.commutation:
             return Commutation[self.options.commutation.upper()], TOLD
-        stated = commutation_in(self._texts_about())
+        stated = commutation_in(self.texts_about())
         if stated is not None:
             return stated, STATED
         betrayed = signature(self.matches, self.family)
@@ -295,7 +251,7 @@ class Decisions:
         return Commutation.BRUSHED, ASSUMED
 
     def _magnet(self) -> tuple[str, int]:
-        stated = magnet_in(self._texts_about())
+        stated = magnet_in(self.texts_about())
         return (stated, STATED) if stated in MAGNETS else ("unknown", ASSUMED)
 
     def _reference(self) -> tuple[float, int]:
@@ -348,17 +304,6 @@ def _voltage_of(m: Match, matcher: Matcher) -> list[float]:
     if m.key != "nominal_voltage" or m.role != "figure" or not m.units:
         return []
     return [v * m.units[0].factor for v in matcher.sampled(m.field)]
-
-
-def _runs(texts: Sequence[str]) -> list[list[int]]:
-    """Indices in groups, a new one at every text."""
-    groups: list[list[int]] = []
-    for k, text in enumerate(texts):
-        if text or not groups:
-            groups.append([k])
-        else:
-            groups[-1].append(k)
-    return groups
 
 
 def _without_power(text: str, q: Quantity) -> Unit | None:

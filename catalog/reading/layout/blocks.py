@@ -4,11 +4,11 @@ import re
 from dataclasses import dataclass, field
 from itertools import pairwise
 
-from ...schema.figure.signs import plain
-from ...schema.vocabulary import quantity
-from ..tables.grid import Grid
-from .cells import is_figure, is_unit, strength
-from .label import parse_label
+from ....schema.figure.signs import plain
+from ....schema.vocabulary import quantity
+from ...tables.grid import Grid
+from ..cells import is_figure, is_unit, strength
+from ..headings.label import parse_label
 
 _CONDITION = re.compile(
     r"(?:at |bei |à |@ ?)?\d{1,3}(?:[.,]\d+)?\s*(?:V ?AC|V ?DC|VAC|VDC|V|K|°C)(?: ?(?:AC|DC))?"

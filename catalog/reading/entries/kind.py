@@ -5,13 +5,13 @@ import re
 from collections.abc import Sequence
 from dataclasses import dataclass, field
 
-from ...schema.batch import MODEL_BASES
-from ...schema.convention import Commutation
-from ...schema.figure.signs import plain
-from ...schema.vocabulary import words
-from .lexicon import canonical, is_cjk, squeeze, tokens
-from .match import Match
-from .phrase import conventions_of
+from ....schema.batch import MODEL_BASES
+from ....schema.convention import Commutation
+from ....schema.figure.signs import plain
+from ....schema.vocabulary import words
+from ..headings.lexicon import canonical, is_cjk, squeeze, tokens
+from ..headings.phrase import conventions_of
+from ..matching.match import Match
 
 TOLD, STATED, INFERRED, ASSUMED = (
     MODEL_BASES.index(b) for b in ("told", "stated", "inferred", "assumed")

@@ -3,9 +3,9 @@
 from collections import Counter
 from dataclasses import replace
 
-from ...schema.figure.signs import plain
-from .label import names_part
-from .model import Field, Table
+from ....schema.figure.signs import plain
+from ..headings.label import names_part
+from ..model import Field, Table
 
 
 def normal_id(text: str) -> str:

@@ -4,14 +4,14 @@ import re
 from dataclasses import dataclass, field, replace
 from functools import lru_cache
 
-from ...schema.convention import Convention
-from ...schema.figure.signs import plain
-from ...schema.units.read import is_unit_like, unit_of
-from ...schema.vocabulary import quantities
-from .lexicon import find_symbol, lexicon, symbol_form, tokens
+from ....schema.convention import Convention
+from ....schema.figure.signs import plain
+from ....schema.units.read import unit_of
+from ....schema.vocabulary import quantities
+from .lexicon import find_symbol, lexicon, tokens
 from .phrase import Phrase, conventions_of, match_phrase, variant_of
+from .pieces import bracketed_apart, may_be_unit, ways_to_divide
 
-_OPENING, _CLOSING = "([{<【", ")]}>】"
 _NUMBERING = re.compile(r"\(?\d{1,2}[.)]?\s+(?=[^\W\d_]{2})|\(\d{1,2}\)\s*")
 _MARKS = re.compile(
     r"(?:\s*(?:[*†‡§]+\)?|\^\(?(?:\d{1,2}|[a-z])\)|\^\(?[1456789a-z]\)?|(?<=\w)\s+\d\)|(?<=[^\W\d])\d{1,2}\)))+$"
@@ -43,10 +43,10 @@ _BRAKE_PAIR = re.compile(
     re.IGNORECASE,
 )
 _INNER_MARK = re.compile(r"\s*\^(\d{1,2}|[a-z])\)(?=[\s,;:])")
+_INFERRED = re.compile(r", inferred(?=[,)])")
 _TWO_SCRIPTS = re.compile(
     r"([^A-Za-z]*[\u3040-\u30ff\u3400-\u9fff][^A-Za-z]*?)\s+([A-Za-z][A-Za-z].*)$", re.S
 )
-_SYMBOL_EDGES = re.compile(r"\s*[,:=]\s*|\s+[–-]\s+|\s+")
 
 
 @dataclass(frozen=True, slots=True)
@@ -74,6 +74,11 @@ class Label:
     factor: str = ""
 
     @property
+    def inferred(self) -> bool:
+        """Whether an export says that its conventions stand on no sheet: figures showed them."""
+        return self.forced is not None and _INFERRED.search(self.text) is not None
+
+    @property
     def strength(self) -> float:
         """How surely this is a heading at all: 1 for a name, less for a symbol."""
         best = max((p.score for p in self.names), default=0.0)
@@ -82,46 +87,6 @@ class Label:
         if best < 0.6 and self.symbols:
             return 0.2 if any(p.rest for p in self.names) else 0.55
         return best if best >= 0.6 else 0.0
-
-
-def _groups(text: str) -> tuple[str, list[str]]:
-    """The text outside brackets, and the contents of its outermost brackets."""
-    outside: list[str] = []
-    inside: list[str] = []
-    depth, current = 0, ""
-    for i, c in enumerate(text):
-        if c in _OPENING and not (c == "<" and not re.search(r">", text[i:])):
-            if depth:
-                current += c
-            else:
-                glued = current and current[-1] in "/·√"
-                if glued or re.match(r"\((?:rad|min|r|rev|U|N|m)?[\w·/^-]*\)\s*/", text[i:]):
-                    depth, current = depth, current + c
-                    continue
-                outside.append(current)
-                current = ""
-            depth += 1
-        elif c in _CLOSING and depth:
-            depth -= 1
-            if depth:
-                current += c
-            else:
-                inside.append(current.strip())
-                current = ""
-        else:
-            current += c
-    if depth:
-        outside.append(current)
-    else:
-        outside.append(current)
-    joined = " ".join(part.strip(" ") for part in outside if part.strip(" ,;:\n"))
-    return joined, [i for i in inside if i]
-
-
-def _is_unit(text: str) -> bool:
-    return (
-        len(text) <= 40 and not re.fullmatch(r"[\d.,\s±]*(?:\d\s*%)?", text) and is_unit_like(text)
-    )
 
 
 @lru_cache(maxsize=16384)
@@ -137,22 +102,22 @@ def parse_label(text: str) -> Label:
     rest = clean
     if forced and forced.group(1) in quantities():
         label = replace(label, forced=forced.group(1))
-        rest = clean[forced.end() :].strip()
+        rest = _INFERRED.sub("", clean[forced.end() :]).strip()
     else:
         numbering = _NUMBERING.match(rest)
-        if numbering and not _is_unit(rest):
+        if numbering and not may_be_unit(rest):
             rest = rest[numbering.end() :]
     marks = _MARKS.search(rest)
-    if marks and _balanced(rest, marks.start()) and marks.start() > 0 and not _is_unit(rest):
+    if marks and _balanced(rest, marks.start()) and marks.start() > 0 and not may_be_unit(rest):
         label = replace(label, marks=tuple(re.findall(r"[*†‡§]+|\d{1,2}|[a-z]", marks.group())))
         rest = rest[: marks.start()]
     inner = [m for m in _INNER_MARK.finditer(rest) if _balanced(rest, m.start())]
     for m in reversed(inner):
         label = replace(label, marks=(*label.marks, m[1]))
         rest = rest[: m.start()] + rest[m.end() :]
-    core, inside = _groups(rest)
+    core, inside = bracketed_apart(rest)
     for content in inside:
-        whole = match_phrase(f"{core} {content}") if not _is_unit(content) else Phrase("")
+        whole = match_phrase(f"{core} {content}") if not may_be_unit(content) else Phrase("")
         if whole.keys and whole.score >= 0.96 and whole.keys != match_phrase(core).keys:
             core = f"{core} {content}"
         else:
@@ -185,7 +150,7 @@ def _bracket(label: Label, content: str) -> Label:
     whole = conventions_of(content, whole=True)
     if whole:
         return _with_convention(label, whole)
-    if _is_unit(content):
+    if may_be_unit(content):
         return replace(label, units=(*label.units, content))
     for piece in (
         re.split(r"[,;、]\s*|\s+[/|]\s+", content) if re.search(r"[,;、|/]", content) else [content]
@@ -201,7 +166,7 @@ def _piece(label: Label, piece: str, alone: bool) -> Label:
     found = conventions_of(piece, whole=True)
     if found:
         return _with_convention(label, found)
-    if _is_unit(piece):
+    if may_be_unit(piece):
         return replace(label, units=(*label.units, piece))
     if (t := _TEMPERATURE.fullmatch(piece)) is not None:
         return replace(label, temperature=float(t["t"].replace(",", ".")))
@@ -227,7 +192,7 @@ def _piece(label: Label, piece: str, alone: bool) -> Label:
     if phrase.other and not loose:
         label = replace(label, other=label.other or phrase.other)
     unit = re.match(r"(.+?)[\s,]+(?=\S+$)", piece)
-    if loose and unit and _is_unit(unit.group(1)):
+    if loose and unit and may_be_unit(unit.group(1)):
         label = replace(label, units=(*label.units, unit.group(1)))
     label = _with_convention(label, loose)
     return replace(label, conditions=(*label.conditions, piece))
@@ -237,7 +202,7 @@ def _core(label: Label, core: str) -> Label:
     """The text outside of brackets."""
     core = core.strip(" ,:;=")
     marks = _MARKS.search(core)
-    if marks and marks.start() > 0 and not _is_unit(core):
+    if marks and marks.start() > 0 and not may_be_unit(core):
         found = re.findall(r"[*†‡§]+|\d{1,2}|[a-z]", marks.group())
         label = replace(label, marks=(*label.marks, *found))
         core = core[: marks.start()].strip(" ,:;=")
@@ -277,7 +242,7 @@ def _core(label: Label, core: str) -> Label:
         for part in parts:
             if _CONDITION_ONLY.fullmatch(part):
                 label = replace(label, conditions=(*label.conditions, part))
-            elif _is_unit(part) and not (part == parts[0] and find_symbol(part)):
+            elif may_be_unit(part) and not (part == parts[0] and find_symbol(part)):
                 label = replace(label, units=(*label.units, part))
             else:
                 label = _named(label, part)
@@ -304,7 +269,7 @@ def _named(label: Label, core: str) -> Label:
     if phrase.score >= 0.99 and not _is_rather_symbol(core, phrase):
         return replace(label, names=(*label.names, phrase), other=label.other or phrase.other)
     best: tuple[float, Phrase, str, str] | None = None
-    for name, symbol, unit in _splits(core):
+    for name, symbol, unit in ways_to_divide(core):
         only = symbol and name and conventions_of(name, whole=True)
         p = match_phrase(name) if name else Phrase(name)
         if name and _is_rather_symbol(name, p):
@@ -339,55 +304,6 @@ def _named(label: Label, core: str) -> Label:
     if phrase.text:
         label = replace(label, names=(*label.names, phrase), other=label.other or phrase.other)
     return label
-
-
-def _splits(core: str):
-    """(name, symbol, unit) in every way that the text could be divided."""
-    found = [(core, "", "")]
-    hit = find_symbol(core)
-    if hit:
-        found.append(("", core, ""))
-        if hit.surety > 0.95:
-            return found  # "I_N" is no I in newtons
-    cuts = [
-        m.span()
-        for m in re.finditer(
-            r"\s*[,/:]\s*|\s+(?:in|en)\s+|[\s_]+|(?<=[^\x00-\x7f])(?=[A-Za-z])", core
-        )
-    ]
-    for start, end in cuts:
-        if start == 0 or end >= len(core):
-            continue
-        head, tail = core[:start].strip(), core[end:].strip()
-        if not head or not tail:
-            continue
-        units = [t for t in (tail, tail.replace("_", "/"), tail.replace("_", " ")) if _is_unit(t)]
-        if units:
-            found.append((head, "", units[0]))
-            if find_symbol(head):
-                found.append(("", head, units[0]))
-            for name, symbol in _name_and_symbol(head):
-                found.append((name, symbol, units[0]))
-    found += [(name, symbol, "") for name, symbol in _name_and_symbol(core)]
-    return found
-
-
-def _name_and_symbol(text: str) -> list[tuple[str, str]]:
-    pieces = [p for p in _SYMBOL_EDGES.split(text) if p]
-    if len(pieces) < 2:
-        return []
-    found = []
-    last, first = pieces[-1], pieces[0]
-    if find_symbol(last) and len(symbol_form(last)) <= 8:
-        found.append((text[: text.rindex(last)].strip(" ,:=–-"), last))
-    leading = find_symbol(first)
-    if leading and leading.surety > 0.95:  # "No load" begins with no symbol
-        found.append((text[text.index(first) + len(first) :].strip(" ,:=–-"), first))
-    if len(pieces) > 2:
-        two = text[text.rindex(pieces[-2]) :]
-        if find_symbol(two) and len(symbol_form(two)) <= 6:
-            found.append((text[: text.rindex(pieces[-2])].strip(" ,:=–-"), two))
-    return [(n, s) for n, s in found if n]
 
 
 def names_part(label: Label) -> bool:

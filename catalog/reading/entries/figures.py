@@ -7,13 +7,13 @@ from typing import TypeVar
 
 import numpy as np
 
-from ...schema.batch import FigureColumn, Floats, Ints
-from ...schema.figure.read import POINT, ColumnFigures, NumberStyle, read_column
-from ...schema.figure.signs import plain
-from ...schema.units.read import Unit, UnitError, read_unit, unit_of
-from ...schema.vocabulary import Quantity
-from ..tables.grid import Stored
-from .cells import mark_last, missing
+from ....schema.batch import FigureColumn, Floats, Ints
+from ....schema.figure.read import POINT, ColumnFigures, NumberStyle, read_column
+from ....schema.figure.signs import plain
+from ....schema.units.read import Unit, UnitError, read_unit, unit_of
+from ....schema.vocabulary import Quantity
+from ...tables.grid import Stored
+from ..cells import mark_last, missing
 
 BRACKETED = frozenset({"rotor_inertia", "mass", "length"})
 """Figures whose second value in brackets, without a unit, is that with a brake."""

@@ -1,0 +1,1 @@
+"""A table with its fields understood → batches of motors with figures in SI."""

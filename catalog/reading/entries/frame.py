@@ -1,0 +1,82 @@
+"""Cells that say "as above", and figures of a frame that are printed once for its motors."""
+
+from collections.abc import Sequence
+
+from ....schema.vocabulary import quantity
+from ..cells import is_ditto
+from ..matching.match import Match
+from ..model import Field, Table
+
+ROWS_LOOKED_AT = 2000
+"""Rows in which a ditto sign must first appear."""
+
+
+def take_up_dittos(table: Table) -> None:
+    """Cells that say "as above" take the text above."""
+    for f in table.fields:
+        if any(is_ditto(t) for t in set(f.texts[:ROWS_LOOKED_AT]) if not t[:1].isdigit()):
+            f.texts = _inherited(f.texts)
+
+
+def _inherited(texts: list[str]) -> list[str]:
+    out: list[str] = []
+    for text in texts:
+        out.append(out[-1] if out and is_ditto(text) else text)
+    return out
+
+
+def share_frame(table: Table, matches: list[Match], id_field: Field | None) -> None:
+    """A figure of the frame that stands once, at the first of its motors, holds for all.
+
+    Where a column names the frame (a model printed once, its windings below), it holds
+    down to the next model; without one only if no other motor has the figure.
+    """
+    groups = _frame_groups(table, matches, id_field)
+    for m in matches:
+        if m.role != "figure" or m.key is None or not quantity(m.key).frame:
+            continue
+        f = m.field
+        shared = False
+        texts = list(f.texts)
+        places = list(f.places or table.places)
+        for group in groups:
+            if len(group) > 1 and texts[group[0]] and not any(texts[k] for k in group[1:]):
+                for k in group[1:]:
+                    texts[k], places[k] = texts[group[0]], places[group[0]]
+                shared = True
+        if shared:
+            f.texts, f.places = texts, places
+            m.reason += "; printed once for the motors of a frame"
+
+
+def _frame_groups(table: Table, matches: list[Match], id_field: Field | None) -> list[list[int]]:
+    n = table.count
+    for m in matches:
+        if m.key in ("series", "part_number") and m.field is not id_field:
+            texts = m.field.texts
+            if texts and texts[0] and not all(texts):
+                return _runs(texts)
+            if m.key == "series" and all(texts):
+                return _runs(
+                    [t if k == 0 or t != texts[k - 1] else "" for k, t in enumerate(texts)]
+                )
+    if table.layout == "rows" or not 1 < n <= 200:
+        return []
+    once = [
+        m for m in matches if m.role == "figure" and m.field.texts[0] and not any(m.field.texts[1:])
+    ]
+    frames = [m for m in once if m.key and quantity(m.key).frame]
+    # One lone figure may be a gap in the others; two of the frame are a habit of the sheet.
+    sure = len(frames) == len(once) and (len(frames) > 1 or n > 3)
+    return [list(range(n))] if sure else []
+
+
+def _runs(texts: Sequence[str]) -> list[list[int]]:
+    """Indices in groups, a new one at every text."""
+    groups: list[list[int]] = []
+    for k, text in enumerate(texts):
+        if text or not groups:
+            groups.append([k])
+        else:
+            groups[-1].append(k)
+    return groups

@@ -1,0 +1,72 @@
+"""The part numbers of a table's motors, and what lines about the table say of all of them."""
+
+import re
+from collections.abc import Sequence
+
+from ....schema.figure.signs import plain
+from ..headings.label import parse_label
+from ..model import Table, Unread
+
+_SENTENCE_END = re.compile(r"[;；。]|(?:(?<=[a-z]{4})|(?<=\)))\.\s+(?=\w)")
+"""Where a name in a title line ends; "Co." and "Corp." end none."""
+
+
+def motor_names(
+    table: Table,
+    stem: str,
+    ids: Sequence[str | None],
+    places: Sequence[int],
+    unread: list[Unread],
+    remarks: list[str],
+) -> list[str]:
+    """The part numbers of the motors at ``places``; one without gets a name from the file's
+    (``stem``), which is listed, or remarked where the table has one motor only."""
+    if all(ids):
+        return [plain(t) if not t.isascii() else t.strip() for t in ids if t]
+    if len(ids) == 1:
+        title = _title_name(table)
+        name = title or stem
+        remarks.append(
+            f'the sheet has no part number; "{name}" is taken from '
+            + ("its title" if title else "the file's name")
+        )
+        return [name]
+    out: list[str] = []
+    where = "row" if table.layout == "rows" else "column"
+    for k, text in enumerate(ids):
+        if text:
+            out.append(plain(text))
+            continue
+        name = f"{stem} {where} {places[k]}" if k < len(places) else f"{stem} {k + 1}"
+        out.append(name)
+        unread.append(
+            Unread(name, "part number", table.sheet, table.page,
+                   places[k] if where == "row" and k < len(places) else None,
+                   places[k] if where == "column" and k < len(places) else None,
+                   "", f'no part number; "{name}" stands for it', ("part_number",))
+        )  # fmt: skip
+    return out
+
+
+def titled(table: Table, key: str) -> str | None:
+    """What a line about the table says of all motors: "Maker: …", "Series: …"."""
+    for title in (*table.titles, *table.notes):
+        for line in title.split("\n"):
+            heading, colon, text = plain(line).partition(":")
+            if not colon or len(heading) > 40 or not text.strip():
+                continue
+            if any(key in p.keys for p in parse_label(heading).names):
+                return _SENTENCE_END.split(text.strip())[0].strip()
+    return None
+
+
+def _title_name(table: Table) -> str | None:
+    """A part number in the titles: "Motor AX-12", "Type: AX-12"."""
+    for title in table.titles:
+        found = re.search(
+            r"(?:part\s*(?:no|number)|model|type|typ|modell|bestell\S*|motor|型[号番式])\.?\s*[:#]\s*(\S.*)$",
+            plain(title), re.IGNORECASE,
+        )  # fmt: skip
+        if found:
+            return found[1].strip()
+    return None

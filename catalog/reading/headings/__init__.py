@@ -1,0 +1,1 @@
+"""The text of a heading → what it says: names, symbols, units, conventions, conditions."""

@@ -1,0 +1,120 @@
+"""A block whose headings stand in a column → a Table: one motor a column."""
+
+import re
+
+from ....schema.figure.signs import plain
+from ....schema.vocabulary import quantity
+from ..cells import is_caption, is_figure, is_symbol, strength
+from ..headings.label import parse_label
+from ..headings.phrase import match_phrase, section_of
+from ..model import Table
+from .blocks import Block
+from .columns_head import header_rows, heads_quantity, roles_of_columns, spread_conditions
+from .conditions import fold_conditions
+from .heads import HeadCell, head_field
+from .lines import text_of
+
+_LABEL_AND_FIGURE = re.compile(r"([^\d:]{3,40}?)\s+([<>≤≥~]?\s?\d[\d.,]*\s?\S.*)$")
+
+
+def lay_out_columns(block: Block) -> Table:
+    """The table of a block whose headings stand in a column."""
+    label_column = block.line
+    rows = block.rows
+    roles = roles_of_columns(block, label_column)
+    values = [c for c, role in enumerate(roles) if role == "value"]
+    first = next((i for i, row in enumerate(rows) if heads_quantity(row, label_column, values)), 0)
+    values = [c for c in values if any(row[c] for row in rows[first:])]
+    id_row, condition_row = header_rows(rows, first, label_column, values)
+    conditions = [rows[condition_row][c] for c in values] if condition_row is not None else None
+    if id_row is not None and conditions is None:
+        condition_row, conditions = spread_conditions(rows, first, id_row, values)
+    table = Table("columns", [], [block.column_numbers[c] for c in values])
+    table.titles = [
+        text_of(row) for i, row in enumerate(rows[:first]) if i not in (id_row, condition_row)
+    ]
+    table.columns = values
+    caption: list[str] = []
+    captioned = -2
+    for i, row in enumerate(rows):
+        if i in (id_row, condition_row):
+            if i == id_row:
+                table.part_numbers = [row[c] or None for c in values]
+            continue
+        if i < first and not (row[label_column] and any(is_figure(row[c]) for c in values)):
+            continue
+        texts = [row[c] for c in values]
+        label = row[label_column]
+        pair = figure_behind(label) if len(values) == 1 and not any(texts) else None
+        if pair is not None:
+            label, texts = pair[0], [pair[1]]
+            row = [*row[:label_column], label, *row[label_column + 1 :]]
+        groups = [row[c] for c, role in enumerate(roles) if role == "group" and row[c]]
+        spanning = len({t for t in row if t}) == 1 and sum(1 for t in row if t) > 1
+        if (spanning or not any(texts)) and label:
+            if _is_note(label, i, rows, label_column, values):
+                table.notes.append(text_of(row))
+                continue
+            units = [row[c] for c, role in enumerate(roles) if role == "unit" and row[c]]
+            if strength(label) >= 0.9 and units and not spanning:
+                continue  # a quantity with no figure for any motor
+            keys = {k for p in parse_label(label).names for k in p.keys}
+            measured = any(not quantity(k).text for k in keys)
+            if measured and not spanning and not section_of(label) and not is_caption(label):
+                continue
+            caption, captioned = [label], i
+            continue
+        if not any(texts):
+            if any(row):  # a text beside the labels
+                table.notes.append(text_of(row))
+            continue
+        cells: list[HeadCell] = [("caption", c) for c in [*caption, *groups]]
+        for c, role in enumerate(roles):
+            if role in ("unit", "symbol", "label") and row[c]:
+                kind = {"unit": "unit", "symbol": "symbol", "label": "name"}[role]
+                if kind == "symbol" and not is_symbol(row[c]) and strength(row[c]) > 0.8:
+                    kind = "name"
+                cells.append((kind, row[c]))
+            elif role == "remark" and row[c]:
+                cells.append(("caption", row[c]))
+        cells.sort(key=lambda cell: cell[0] != "caption")
+        if not label and not [k for k, _ in cells if k in ("name", "symbol")]:
+            cells.append(("name", ""))
+        field = head_field(
+            cells,
+            texts,
+            block.row_numbers[i],
+            block.column_numbers[label_column],
+            joins=captioned == i - 1,
+        )
+        if caption and caption[0] not in field.captions:
+            caption = []  # it was the first line of this very name
+        field.source = i
+        table.fields.append(field)
+    if conditions is not None:
+        fold_conditions(table, conditions)
+    return table
+
+
+def figure_behind(text: str) -> tuple[str, str] | None:
+    """The name of something measured and the figure behind it in one cell, or None: "Winding at
+    125 °C" has none."""
+    pair = _LABEL_AND_FIGURE.match(plain(text))
+    if pair is None:
+        return None
+    phrase = match_phrase(pair[1])
+    measured = phrase.score >= 0.95 and any(not quantity(k).text for k in phrase.keys)
+    return (pair[1], pair[2]) if measured else None
+
+
+def _is_note(
+    label: str, i: int, rows: list[list[str]], label_column: int, values: list[int]
+) -> bool:
+    """Whether a text without figures is a note: long, marked, or with nothing behind it."""
+    clean = plain(label)
+    below = any(any(r[c] for c in values) and r[label_column] for r in rows[i + 1 :])
+    if not below:
+        return True
+    return bool(re.match(r"(?:[*†‡]|\^?\(?\d{1,2}\)|note|hinweis|注|※)", clean, re.IGNORECASE)) or (
+        len(clean) > 70
+    )
