@@ -27,9 +27,9 @@ from pathlib import Path
 
 from motorfolio.catalog.store import Catalog, database
 
+from ..catalog.layouts import restore
 from .sheets import digest, done, fork, sheet
 
-HERE = Path(__file__).parent
 TINY_KIBIBYTES = 8
 
 
@@ -52,9 +52,7 @@ def actions(folder: Path) -> list[Action]:
     done("import", sheet(folder / "a.csv", "AUK", 20), "--catalog", base)
     done("import", sheet(folder / "b.csv", "BOOBY", 8), "--catalog", base)
     done("correct", "AUK-3", "mass", "99 g", "--reason", "weighed", "--catalog", base)
-    upgradable = sqlite3.connect(old)
-    upgradable.executescript((HERE / "layout_1.sql").read_text(encoding="utf-8"))
-    upgradable.close()
+    restore(1, old)
     more = sheet(folder / "c.csv", "COOT", 40)
     again = sheet(folder / "a2.csv", "AUK", 30, first=10)
     made = [

@@ -1,4 +1,4 @@
-"""A share of the long runs, and what a disk or an earlier layout may do to a catalog."""
+"""A share of the long runs, and what a disk or another program may do to a catalog."""
 
 from __future__ import annotations
 
@@ -18,8 +18,7 @@ from motorfolio.catalog.store.database import APPLICATION_ID, VERSION
 
 from .sheets import call, digest, done, sheet
 
-HERE = Path(__file__).parent
-ROOT = HERE.parent.parent
+ROOT = Path(__file__).parents[2]
 PROGRAM = "import sys; from motorfolio.catalog.cli import main; sys.exit(main(sys.argv[1:]))"
 
 
@@ -179,67 +178,7 @@ def test_a_full_disk_keeps_what_it_has(catalog: Path, tmp_path: Path) -> None:
         subprocess.run(["umount", str(disk)], check=True)
 
 
-# ---- layouts
-
-
-@pytest.mark.parametrize("version", range(1, VERSION))
-def test_an_earlier_layout_is_upgraded(tmp_path: Path, version: int) -> None:
-    """Each earlier layout is kept as SQL text by keep_layout.py; opening it upgrades it."""
-    path = old_catalog(tmp_path, version)
-    document = done("show", "PETREL-1", "--json", "--catalog", path)
-    assert '"99 g"' in document
-    connection = sqlite3.connect(path)
-    assert connection.execute("PRAGMA user_version").fetchone() == (VERSION,)
-    wanted = tmp_path / "new.sqlite"
-    sheet_again = sheet(tmp_path / "petrel.csv", "PETREL", 3)
-    done("import", sheet_again, "--maker", "Petrel Motors (invented)", "--catalog", wanted)
-    other = sqlite3.connect(wanted)
-    for kind in ("table", "view", "index", "trigger"):
-        names = "SELECT name FROM sqlite_master WHERE type = ? ORDER BY name"
-        assert connection.execute(names, (kind,)).fetchall() == (
-            other.execute(names, (kind,)).fetchall()
-        )
-    for name in columns_of(other):
-        assert set(columns_of(other)[name]) <= set(columns_of(connection)[name])
-    other.close()
-    connection.close()
-    assert call("import", sheet_again, "--catalog", path)[0] == 0
-    assert call("undo", "--catalog", path)[0] == 0
-    digest(path)
-
-
-def old_catalog(folder: Path, version: int) -> Path:
-    path = folder / "old.sqlite"
-    connection = sqlite3.connect(path)
-    connection.executescript((HERE / f"layout_{version}.sql").read_text(encoding="utf-8"))
-    assert connection.execute("PRAGMA user_version").fetchone() == (version,)
-    connection.close()
-    return path
-
-
-def columns_of(connection: sqlite3.Connection) -> dict[str, list[str]]:
-    tables = connection.execute("SELECT name FROM sqlite_master WHERE type = 'table'").fetchall()
-    return {
-        name: [row[1] for row in connection.execute(f'PRAGMA table_info("{name}")')]
-        for (name,) in tables
-    }
-
-
-def test_an_upgrade_that_fails_leaves_the_earlier_layout(tmp_path: Path, monkeypatch) -> None:
-    """One transaction: the last step fails after all others were done."""
-    path = old_catalog(tmp_path, 1)
-    before = digest(path)
-
-    def fail(_db: object) -> None:
-        raise sqlite3.OperationalError("made up")
-
-    with monkeypatch.context() as patched:
-        patched.setattr("motorfolio.catalog.store.layout._make_views", fail)
-        status, _, err = call("check", "--catalog", path)
-    assert (status, len(err.strip().splitlines())) == (2, 1)
-    assert digest(path) == before
-    assert call("check", "--catalog", path)[0] in (0, 1)
-    assert digest(path) != before
+# ---- files of others
 
 
 @pytest.mark.parametrize("words", [("show", "AUK-1"), *CHANGES], ids=lambda w: w[0])

@@ -1,46 +1,45 @@
-"""Write the SQL text of a catalog of an earlier layout: python -m tests.catalog.layouts.write N.
+"""Writes a small catalog of a layout as SQL text, to be kept beside this file for good.
 
-Run it once, when a layout is about to be followed by another; the text is then kept, so that
-later programs are tried on what this one wrote.
+    python -m tests.catalog.layouts.write [LAYOUT]
+
+To be run once, before a layout is changed: the text is then what that program wrote. Its motors
+stand in ``keep()``; one figure is corrected.
 """
+
+from __future__ import annotations
 
 import sqlite3
 import sys
 import tempfile
 from pathlib import Path
 
-from motorfolio.catalog.importing.run import Options, import_files
 from motorfolio.catalog.store import catalog, database, layout, names
 
-from ..conftest import TABLE
+from ...robustness.sheets import done, sheet
+from . import kept_in
 
 
-def write(version: int) -> None:
-    """Make a catalog with the first ``version`` layouts and keep it as SQL, without its views."""
-    for module in (database, catalog, layout, names):
-        module.VERSION = version  # pyright: ignore[reportAttributeAccessIssue]
+def keep(version: int) -> str:
+    """The SQL of a catalog of this layout, which the present program must still know."""
+    for module in (catalog, database, layout, names):
+        module.VERSION = version  # type: ignore[attr-defined]
     layout.MIGRATIONS = layout.MIGRATIONS[:version]
-    with tempfile.TemporaryDirectory() as folder:
-        sheet = Path(folder) / "puffin.csv"
-        sheet.write_text(TABLE, encoding="utf-8")
-        path = Path(folder) / "catalog.sqlite"
-        import_files(path, [str(sheet)], Options(maker="Puffinworks"))
+    with tempfile.TemporaryDirectory() as name:
+        path = Path(name) / "c.sqlite"
+        table = sheet(Path(name) / "petrel.csv", "PETREL", 3)
+        done("import", table, "--maker", "Petrel Motors (invented)", "--catalog", path)
+        done("correct", "PETREL-1", "mass", "99 g", "--reason", "weighed", "--catalog", path)
         connection = sqlite3.connect(path)
-        connection.execute("UPDATE files SET file = 'puffin.csv'")
-        connection.execute("DELETE FROM column_cache")
-        for (view,) in connection.execute(
-            "SELECT name FROM sqlite_master WHERE type = 'view'"
-        ).fetchall():
-            connection.execute(f"DROP VIEW {view}")
-        connection.commit()
-        lines = [
-            f"PRAGMA application_id = {database.APPLICATION_ID};",
-            f"PRAGMA user_version = {version};",
-            *connection.iterdump(),
-        ]
+        connection.execute("UPDATE files SET file = 'petrel.csv'")
+        connection.execute("UPDATE imports SET at = '2025-01-01T00:00:00Z'")
+        lines = list(connection.iterdump())
         connection.close()
-    Path(__file__).with_name(f"{version}.sql").write_text("\n".join(lines) + "\n", encoding="utf-8")
+    pragmas = [
+        f"PRAGMA application_id = {database.APPLICATION_ID};", f"PRAGMA user_version = {version};"
+    ]  # fmt: skip
+    return "\n".join([*lines, *pragmas]) + "\n"
 
 
 if __name__ == "__main__":
-    write(int(sys.argv[1]))
+    wanted = int(sys.argv[1]) if len(sys.argv) > 1 else database.VERSION
+    kept_in(wanted).write_text(keep(wanted), encoding="utf-8")
