@@ -5,12 +5,14 @@ nonlinear rows are added to it. Missing figures have weight zero, and a weak pri
 system regular, so that one incomplete motor can't stop the batch.
 """
 
+from collections.abc import Iterator
 from dataclasses import dataclass, field
 
 import numpy as np
 from numpy.typing import NDArray
 
 from ..batch import Floats
+from .cholesky import Factor
 from .equations import Equations, product
 from .model import (
     INDEX,
@@ -140,16 +142,23 @@ def fit(problem: Problem, robust: bool = False) -> Fit:
     """
     n = len(problem)
     out = Fit(np.empty((n, P)), np.empty((n, P, P)), np.empty(n))
-    adjust = _robust if robust else _plain
-    for start in range(0, n, CHUNK):
-        part = slice(start, min(start + CHUNK, n))
-        chunk = problem.take(part)
-        equations = Equations(chunk)
-        x, inverse, chi2 = adjust(chunk, equations)
+    for part, chunk, equations in _chunks(problem):
+        x, normal, chi2 = (_robust if robust else _plain)(chunk, equations)
         out.x[part], out.covariance[part], out.chi2[part] = (
-            x.T, equations.covariance(inverse), chi2
+            x.T, equations.covariance(normal), chi2
         )  # fmt: skip
     return out
+
+
+def misfit(problem: Problem, robust: bool = False) -> tuple[Floats, Floats]:
+    """What of the same adjustment tells how well it fits: χ² (n,), and the logarithm (n,) of the
+    covariance's determinant."""
+    n = len(problem)
+    chi2, log_covariance = np.empty(n), np.empty(n)
+    for part, chunk, equations in _chunks(problem):
+        _, normal, chi2[part] = (_robust if robust else _plain)(chunk, equations)
+        log_covariance[part] = equations.log_covariance(normal)
+    return chi2, log_covariance
 
 
 def relinearised(problem: Problem, at: Fit) -> Fit:
@@ -157,43 +166,46 @@ def relinearised(problem: Problem, at: Fit) -> Fit:
     linearised rows."""
     n = len(problem)
     out = Fit(np.empty((n, P)), np.empty((n, P, P)), np.empty(n))
-    for start in range(0, n, CHUNK):
-        part = slice(start, min(start + CHUNK, n))
-        equations = Equations(problem.take(part))
+    for part, _, equations in _chunks(problem):
         x = at.x[part].T.copy()
-        matrix, right = equations.normal(x)
-        inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
-        step = (inverse @ right.T[:, :, None])[:, :, 0].T
+        normal, right = equations.normal(x)
+        step = normal.solve(right)
         out.chi2[part] = equations.chi2(x) - (right * step).sum(axis=0)
         x[equations.active] += step
-        out.x[part], out.covariance[part] = x.T, equations.covariance(inverse)
+        out.x[part], out.covariance[part] = x.T, equations.covariance(normal)
     return out
 
 
-def _loglinear(equations: Equations) -> Floats:
+def _chunks(problem: Problem) -> Iterator[tuple[slice, Problem, Equations]]:
+    for start in range(0, len(problem), CHUNK):
+        part = slice(start, min(start + CHUNK, len(problem)))
+        chunk = problem.take(part)
+        yield part, chunk, Equations(chunk)
+
+
+def _loglinear(equations: Equations) -> tuple[Floats, Factor]:
     x = equations.start()
-    matrix, right = equations.normal(x, typical=True)
-    x[equations.active] += np.linalg.solve(matrix, right.T[:, :, None])[:, :, 0].T
-    return x
+    normal, right = equations.normal(x, typical=True)
+    x[equations.active] += normal.solve(right)
+    return x, normal
 
 
-def _step(inverse: Floats, right: Floats) -> Floats:
-    return np.clip((inverse @ right.T[:, :, None])[:, :, 0].T, -LONGEST, LONGEST)
+def _step(normal: Factor, right: Floats) -> Floats:
+    return np.clip(normal.solve(right), -LONGEST, LONGEST)
 
 
-def _plain(problem: Problem, equations: Equations) -> tuple[Floats, Floats, Floats]:
+def _plain(problem: Problem, equations: Equations) -> tuple[Floats, Factor, Floats]:
     """Gauss-Newton with the matrix of the first step kept; the few motors that this doesn't bring
     to rest are iterated further with their own."""
-    x = _loglinear(equations)
+    x, _ = _loglinear(equations)
     active = equations.active
-    matrix, right = equations.normal(x)
-    inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
-    step = _step(inverse, right)
+    normal, right = equations.normal(x)
+    step = _step(normal, right)
     x[active] += step
     size = np.abs(step).max(axis=0)
     far = size > 0.2
     for _ in range(KEPT):
-        step = _step(inverse, equations.gradient(x))
+        step = _step(normal, equations.gradient(x))
         x[active] += step
         size = np.abs(step).max(axis=0)
         if size.max(initial=0.0) < REST:
@@ -201,29 +213,28 @@ def _plain(problem: Problem, equations: Equations) -> tuple[Floats, Floats, Floa
     chi2 = equations.chi2(x)
     who = np.flatnonzero(far | (size > REST))
     if who.size:
-        x[:, who], inverse[who], chi2[who] = _further(problem.take(who), equations, x[:, who])
-    return x, inverse, chi2
+        x[:, who], own, chi2[who] = _further(problem.take(who), equations, x[:, who])
+        normal.replace(who, own)
+    return x, normal, chi2
 
 
-def _further(problem: Problem, whole: Equations, x: Floats) -> tuple[Floats, Floats, Floats]:
+def _further(problem: Problem, whole: Equations, x: Floats) -> tuple[Floats, Factor, Floats]:
     """More Gauss-Newton steps for some motors of a chunk, with the chunk's active unknowns."""
     equations = Equations(problem, whole.active)
-    inverse = np.empty((0, 0, 0))
-    for _ in range(ITERATIONS):
-        matrix, right = equations.normal(x)
-        inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
-        step = _step(inverse, right)
+    steps = 0
+    while True:
+        normal, right = equations.normal(x)
+        step = _step(normal, right)
         x[equations.active] += step
-        if np.abs(step).max(initial=0.0) < REST:
+        steps += 1
+        if steps == ITERATIONS or np.abs(step).max(initial=0.0) < REST:
             break
-    return x, inverse, equations.chi2(x)
+    return x, normal, equations.chi2(x)
 
 
-def _robust(_: Problem, equations: Equations) -> tuple[Floats, Floats, Floats]:
-    x = _loglinear(equations)
-    inverse = np.empty((0, 0, 0))
+def _robust(_: Problem, equations: Equations) -> tuple[Floats, Factor, Floats]:
+    x, normal = _loglinear(equations)
     for cut in ROBUST_CUTS:
-        matrix, right = equations.normal(x, cut)
-        inverse = np.asarray(np.linalg.inv(matrix), dtype=np.float64)
-        x[equations.active] += _step(inverse, right)
-    return x, inverse, equations.chi2(x, ROBUST_CUTS[-1])
+        normal, right = equations.normal(x, cut)
+        x[equations.active] += _step(normal, right)
+    return x, normal, equations.chi2(x, ROBUST_CUTS[-1])

@@ -6,9 +6,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from ..batch import Floats
-from .adjust import Problem, fit
+from .adjust import Problem, misfit
 from .causes import causes_of
-from .evidence import Evidence
+from .evidence import TableEvidence
 from .model import F
 from .suspects import DEPARTURE, GAIN, leave_out, own_sd
 from .verdicts import CLEAR_ALL, CLEAR_FIT, IMPLAUSIBLE
@@ -42,7 +42,7 @@ def _capped(chi2: Floats) -> Floats:
     return np.minimum(chi2, CAP) + np.log1p(np.maximum(chi2 - CAP, 0.0))
 
 
-def column_faults(evidence: Evidence, motors: np.ndarray) -> list[ColumnFault]:
+def column_faults(evidence: TableEvidence, motors: np.ndarray) -> list[ColumnFault]:
     """The columns that share a mistake, judged by these motors; the worst first."""
     part = evidence.problem.take(motors)
     part.present = part.present.copy()
@@ -56,16 +56,16 @@ def column_faults(evidence: Evidence, motors: np.ndarray) -> list[ColumnFault]:
     return out
 
 
-def _worst(evidence: Evidence, motors: np.ndarray, part: Problem) -> ColumnFault | None:
-    base = fit(part)
-    if np.median(base.chi2) < 0.5 * GAIN and len(motors) < 30:
+def _worst(evidence: TableEvidence, motors: np.ndarray, part: Problem) -> ColumnFault | None:
+    chi2, _ = misfit(part)
+    if np.median(chi2) < 0.5 * GAIN and len(motors) < 30:
         return None
-    if (base.chi2 > GAIN).mean() < SHARE / 2.0:
+    if (chi2 > GAIN).mean() < SHARE / 2.0:
         return None
     left = leave_out(part)
     sd = own_sd(part, left)
     odd = IMPLAUSIBLE * evidence.implausible(part, left)
-    before = float(_capped(base.chi2).sum())
+    before = float(_capped(chi2).sum())
     fits, totals = np.full(F, np.inf), np.full(F, np.inf)
     shifts, spreads, faulty = np.zeros(F), np.zeros(F), np.zeros(F, dtype=bool)
     scores: dict[int, Floats] = {}
@@ -76,7 +76,7 @@ def _worst(evidence: Evidence, motors: np.ndarray, part: Problem) -> ColumnFault
         ratio, spread = left.log_ratio[known, f], sd[known, f]
         shift = float(np.median(ratio))
         share = (np.abs(ratio - shift) < 3.0 * spread + 0.02).mean()
-        rest = base.chi2.copy()
+        rest = chi2.copy()
         rest[known] = left.chi2[known, f] + ((ratio - shift) / spread) ** 2
         fits[f] = float(_capped(rest).sum()) + float(odd[known, f].sum())
         shifts[f] = shift

@@ -7,6 +7,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..batch import Floats
+from .cholesky import Factor, factor
 from .model import P, Slopes, family_matrix, linear_matrix, nonlinear_rows, ridge
 
 if TYPE_CHECKING:
@@ -109,12 +110,11 @@ class Equations:
 
     def normal(
         self, x: Floats, cut: float | None = None, typical: bool = False
-    ) -> tuple[Floats, Floats]:
-        """Normal matrix (n, A, A) and right-hand side (A, n) of the active unknowns at x."""
+    ) -> tuple[Factor, Floats]:
+        """Factors of the normal matrices and right-hand side (A, n) of the active unknowns at x."""
         upper = np.empty((len(self.squares), x.shape[1]))
         right = self.gradient(x, cut, upper, typical)
-        full = upper[self.place]
-        return np.ascontiguousarray(np.moveaxis(full, 2, 0)), right
+        return factor(upper, self.place, self.prior_weight[self.active]), right
 
     def nonlinear(self, x: Floats, typical: bool = False) -> Rows:
         """The rows that aren't sums of logarithms, at x."""
@@ -135,10 +135,17 @@ class Equations:
             total += loss(w * residual**2)
         return total
 
-    def covariance(self, inverse: Floats) -> Floats:
-        """Covariance (n, P, P) of all unknowns from the inverse of the normal matrix."""
-        out = np.zeros((len(inverse), P, P))
+    def covariance(self, normal: Factor) -> Floats:
+        """Covariance (n, P, P) of all unknowns from the factors of the normal matrices."""
+        inverse = normal.inverse()
+        out = np.zeros((inverse.shape[2], P, P))
         rest = np.setdiff1d(np.arange(P), self.active)
         out[:, rest, rest] = 1.0 / self.prior_weight[rest]
-        out[:, self.active[:, None], self.active[None, :]] = inverse
+        for i, row in zip(self.active.tolist(), inverse, strict=True):
+            out[:, i, self.active] = row.T
         return out
+
+    def log_covariance(self, normal: Factor) -> Floats:
+        """Logarithm of the determinant (n,) of that covariance."""
+        rest = np.setdiff1d(np.arange(P), self.active)
+        return normal.log_determinant() - np.log(self.prior_weight[rest]).sum()

@@ -49,22 +49,11 @@ def transpositions(text: str) -> list[float]:
 
 
 @dataclass
-class Evidence:
-    """A batch, its adjustment problem and first fit, asked about single figures."""
+class TableEvidence:
+    """A batch and its adjustment problem, asked about what was printed and about columns."""
 
     batch: Batch
     problem: Problem
-    base: Fit
-
-    @cached_property
-    def slope(self) -> Floats:
-        """Magnet temperature coefficients, 1/K."""
-        return magnet_slope(self.batch)
-
-    @cached_property
-    def hottest(self) -> Floats:
-        """Printed permissible winding temperature, °C; NaN where not given."""
-        return self.batch.value("maximum_winding_temperature")
 
     @cached_property
     def printed(self) -> Floats:
@@ -113,6 +102,30 @@ class Evidence:
         column = self.batch.figures.get(FIGURES[figure])
         return "" if column is None else column.text[motor] or ""
 
+    def column_scores(self, figure: int, motors: np.ndarray, log_ratio: float, sd: float) -> Floats:
+        """Log of prior times density of every cause of a factor that a whole column shares, shape
+        (causes,)."""
+        first = int(motors[0])
+        form = shape(FIGURES[figure], int(self.batch.commutation[first]), self.unit(first, figure))
+        return static_scores(form, np.array([log_ratio]), np.array([sd]))[0]
+
+
+@dataclass
+class Evidence(TableEvidence):
+    """The same with the first fit, asked about single figures."""
+
+    base: Fit
+
+    @cached_property
+    def slope(self) -> Floats:
+        """Magnet temperature coefficients, 1/K."""
+        return magnet_slope(self.batch)
+
+    @cached_property
+    def hottest(self) -> Floats:
+        """Printed permissible winding temperature, °C; NaN where not given."""
+        return self.batch.value("maximum_winding_temperature")
+
     def scores(
         self, motors: np.ndarray, figures: np.ndarray, log_ratio: Floats, sd: Floats
     ) -> Floats:
@@ -130,12 +143,6 @@ class Evidence:
         for i, (m, f) in enumerate(zip(motors.tolist(), figures.tolist(), strict=True)):
             self._particular(out[i], m, f, float(log_ratio[i]), float(sd[i]))
         return out
-
-    def column_scores(self, figure: int, motors: np.ndarray, log_ratio: float, sd: float) -> Floats:
-        """The same for a factor that a whole column shares, shape (causes,)."""
-        first = int(motors[0])
-        form = shape(FIGURES[figure], int(self.batch.commutation[first]), self.unit(first, figure))
-        return static_scores(form, np.array([log_ratio]), np.array([sd]))[0]
 
     def _particular(self, row: Floats, m: int, f: int, log_ratio: float, sd: float) -> None:
         """Causes whose factor depends on this motor's own text, neighbours and figures."""

@@ -13,7 +13,7 @@ import numpy as np
 
 from ..batch import Batch, FigureColumn
 from ..convention import Commutation, Convention
-from .adjust import Problem, fit
+from .adjust import Problem, misfit
 from .causes import CURRENTS
 from .model import FIGURES
 from .observed import to_model, usable
@@ -142,7 +142,7 @@ def _infer_kind(
     shifts = np.stack([_shift(batch, chosen, dimensions, combo) for combo in combos])
     stacked = problem.take(np.tile(chosen, len(combos)))
     stacked.y = stacked.y + shifts.reshape(-1, shifts.shape[2])
-    loss = fit(stacked, robust=True).chi2.reshape(len(combos), chosen.size)
+    loss = misfit(stacked, robust=True)[0].reshape(len(combos), chosen.size)
     cost = np.minimum(loss - loss.min(axis=0), CAP).sum(axis=1)
     prior = np.array([sum(o[c].cost for c, (_, o) in zip(combo, dimensions, strict=True))
                       for combo in combos])  # fmt: skip

@@ -17,7 +17,7 @@ from . import checks
 from .adjust import Fit, Problem, fit
 from .columns import ColumnFault, column_faults
 from .constants import constants, joined
-from .evidence import Evidence
+from .evidence import Evidence, TableEvidence
 from .explain import Narrator
 from .families import groups, observe_families, stands_off
 from .inference import Inferred, infer
@@ -88,9 +88,7 @@ def _whole(batch: Batch) -> tuple[Batch, _Table]:
     some = problem.take(chosen)
     some.readings = problem.readings = readings(some)
     some.scale = problem.scale = np.array([scale(some)])
-    base = fit(some)
-    evidence = Evidence(batch, problem, base)
-    faults = column_faults(evidence, chosen)
+    faults = column_faults(TableEvidence(batch, problem), chosen)
     if faults:
         some.present = some.present.copy()
         some.present[:, [f.figure for f in faults]] = False

@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 
 from ..batch import Floats
 from ..vocabulary import quantity
-from .adjust import Problem, fit
+from .adjust import Problem, fit, misfit
 from .evidence import Evidence
 from .model import FIGURES
 from .suspects import Suspicion, predicted
@@ -97,7 +97,7 @@ def _costs(
     gap = evidence.printed[who, b] - evidence.printed[who, a]
     part.y[i, a] += gap
     part.y[i, b] -= gap
-    return fit(part).chi2.tolist()
+    return misfit(part)[0].tolist()
 
 
 def _prior(evidence: Evidence, part: Problem, local: int, motor: int, a: int, b: int) -> float:

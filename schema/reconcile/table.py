@@ -5,7 +5,8 @@ from dataclasses import replace
 
 import numpy as np
 
-from .adjust import Problem, fit
+from ..batch import Floats
+from .adjust import Problem, misfit
 from .model import INDEX, LAW_BINDS, LAW_SCATTER, Readings
 
 SAMPLE = 240
@@ -35,26 +36,26 @@ def readings(problem: Problem) -> Readings:
     One reading per table: the one with the smaller robust loss, of which no motor counts for
     much; the customary one unless another fits clearly better.
     """
-    plain = ~problem.servo
+    plain = problem.take(np.flatnonzero(~problem.servo))
     chosen = problem.readings
     trials: list[tuple[tuple[str, ...], str]] = [
         (("stall_torque",), "stall_torque_net"),
         (("maximum_power",), "maximum_power_electrical"),
         (LAW_BINDS["nominal_speed"], "nominal_speed_hot"),
     ]
+    losses: Floats | None = None
     for figures, field in trials:
-        given = problem.present[:, [INDEX[key] for key in figures]].any(axis=1)
-        who = np.flatnonzero(plain & given)
+        given = plain.present[:, [INDEX[key] for key in figures]].any(axis=1)
+        who = np.flatnonzero(given)
         if not who.size:
             continue
-        part = problem.take(who)
-        other = replace(chosen, **{field: not getattr(chosen, field)})
-        losses = []
-        for reading in (chosen, other):
-            part.readings = reading
-            losses.append(fit(part, robust=True).chi2)
-        if np.clip(losses[0] - losses[1], -CAP, CAP).sum() > CLEARLY:
-            chosen = other
+        if losses is None:
+            losses, _ = misfit(plain, robust=True)
+        part = plain.take(who)
+        part.readings = replace(chosen, **{field: not getattr(chosen, field)})
+        other, _ = misfit(part, robust=True)
+        if np.clip(losses[who] - other, -CAP, CAP).sum() > CLEARLY:
+            chosen, losses[who] = part.readings, other
     return chosen
 
 
@@ -71,13 +72,12 @@ def scale(problem: Problem) -> float:
     stacked.scale = np.repeat(SCALES, n)
     stacked.present = stacked.present.copy()
     stacked.present[:, INDEX["peak_torque"]] = False  # inside its band it tells nothing
-    fitted = fit(stacked, robust=True)
-    sign, log_det = np.linalg.slogdet(fitted.covariance)
+    chi2, log_covariance = misfit(stacked, robust=True)
     variance = np.where(stacked.present, 2.0 * np.log(stacked.sd()), 0.0).sum(axis=1)
     laws = stacked.bound.copy()
     laws[:, list(LAW_SCATTER).index("nominal_speed")] &= ~stacked.servo
     variance += (laws * 2.0 * np.log(stacked.scale)[:, None]).sum(axis=1)
-    cost = fitted.chi2 / CAUCHY_MEAN + variance - np.where(sign > 0, log_det, 0.0)
+    cost = chi2 / CAUCHY_MEAN + variance - log_covariance
     total = cost.reshape(count, n).sum(axis=1) + (np.log(SCALES) / SCALE_PRIOR) ** 2
     share = np.exp(-0.5 * (total - total.min()))
     return float(np.sqrt((share * SCALES**2).sum() / share.sum()))

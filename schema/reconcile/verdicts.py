@@ -6,10 +6,19 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..batch import Floats
-from .adjust import Problem, fit
+from .adjust import Problem, misfit
 from .causes import causes_of
 from .evidence import Evidence
-from .suspects import Bools, LeftOut, Suspicion, contradicts, leave_out, own_sd, shortlist
+from .suspects import (
+    GAIN,
+    Bools,
+    LeftOut,
+    Suspicion,
+    contradicts,
+    leave_out,
+    own_sd,
+    shortlist,
+)
 from .swaps import find_swaps
 
 NEAR = 16.0
@@ -78,7 +87,8 @@ def _judge_some(evidence: Evidence, motors: NDArray[np.integer]) -> list[Suspici
     active = np.arange(len(motors))
     found: dict[int, list[Suspicion]] = {}
     for turn in range(int(limit.max(initial=0))):
-        active = active[turn < limit[active]]
+        # what is left of χ² is the most that leaving out one more could save
+        active = active[(turn < limit[active]) & (chi2[active] > GAIN)]
         if not active.size:
             break
         active = _one_turn(evidence, motors, part, chi2, active, found)
@@ -125,7 +135,7 @@ def _reconsider(
     sub = part.take(locals_)
     sub.present = sub.present.copy()
     sub.present[np.arange(len(pairs)), [s.figure for _, s in pairs]] = True
-    before = fit(sub).chi2
+    before, _ = misfit(sub)
     worth = shortlist(sub)
     worth[np.arange(len(pairs)), [s.figure for _, s in pairs]] = True
     left = leave_out(sub, worth)
