@@ -9,9 +9,8 @@ from importlib import import_module
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
-    from .entry import Entry, Motor, json_schema
+    from .entry import Entry, Finding, Motor, json_schema
     from .errors import MotorfolioError
-    from .motor import Finding
     from .units.read import convert
     from .vocabulary import quantities
 
@@ -27,7 +26,7 @@ __all__ = [
 
 _HOMES = {
     "Entry": ".entry",
-    "Finding": ".motor",
+    "Finding": ".entry",
     "Motor": ".entry",
     "MotorfolioError": ".errors",
     "convert": ".units.read",

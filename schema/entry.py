@@ -12,10 +12,20 @@ from typing import Any, Literal
 
 from pydantic import BaseModel, ConfigDict, Field
 
-from .motor import Amount, Cell, Finding
 from .vocabulary import quantities
 
-__all__ = ["MODELS", "Constant", "Entry", "Figure", "Motor", "TextFigure", "json_schema"]
+__all__ = [
+    "MODELS",
+    "Amount",
+    "Cell",
+    "Constant",
+    "Entry",
+    "Figure",
+    "Finding",
+    "Motor",
+    "TextFigure",
+    "json_schema",
+]
 
 Basis = Literal["told", "stated", "inferred", "assumed"]
 
@@ -48,6 +58,46 @@ class Entry(BaseModel):
 
 class _Document(BaseModel):
     model_config = ConfigDict(extra="forbid", frozen=True)
+
+
+class Amount(BaseModel):
+    """A value with its SI unit."""
+
+    model_config = ConfigDict(frozen=True)
+
+    value: float | None
+    unit: str
+
+
+class Cell(BaseModel):
+    """A place in the file: sheet or page where there is one, row and column from 1."""
+
+    model_config = ConfigDict(frozen=True)
+
+    sheet: str | None = None
+    page: int | None = None
+    row: int | None = None
+    column: int | None = None
+
+
+class Finding(BaseModel):
+    """One contradiction, or one thing worth knowing, among the published figures."""
+
+    model_config = ConfigDict(frozen=True)
+
+    part_number: str | None
+    scope: Literal["motor", "column"] = "motor"
+    part_numbers: tuple[str, ...] = ()
+    severity: Literal["error", "warning", "note"]
+    relation: str
+    figures: tuple[str, ...]
+    suspect: str | None = None
+    ratio: float | None = None
+    cause: str = "unexplained"
+    other_causes: tuple[str, ...] = ()
+    implied: Amount | None = None
+    cell: Cell | None = None
+    message: str
 
 
 class Convention(_Document):

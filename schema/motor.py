@@ -1,11 +1,12 @@
-"""A motor in SI, and what was found about its figures: the documents that leave the program."""
+"""Motors in SI as columns, and what was found about their figures.
+
+The documents that other programs get are in entry.py.
+"""
 
 from dataclasses import dataclass, field
-from typing import Literal
 
 import numpy as np
 from numpy.typing import NDArray
-from pydantic import BaseModel, ConfigDict
 
 from .batch import Batch, Floats
 from .canonical import CANONICAL, CONSTANT_BASES
@@ -37,19 +38,17 @@ class ConstantColumn:
     source: NDArray[np.int32]
 
 
-class Amount(BaseModel):
+@dataclass(frozen=True, slots=True)
+class Amount:
     """A value with its SI unit."""
-
-    model_config = ConfigDict(frozen=True)
 
     value: float | None
     unit: str
 
 
-class Cell(BaseModel):
+@dataclass(frozen=True, slots=True)
+class Cell:
     """A place in the file: sheet or page where there is one, row and column from 1."""
-
-    model_config = ConfigDict(frozen=True)
 
     sheet: str | None = None
     page: int | None = None
@@ -57,15 +56,15 @@ class Cell(BaseModel):
     column: int | None = None
 
 
-class Finding(BaseModel):
-    """One contradiction, or one thing worth knowing, among the published figures."""
-
-    model_config = ConfigDict(frozen=True)
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Finding:
+    """One contradiction, or one thing worth knowing, among the published figures; fields as in
+    the document of the same name."""
 
     part_number: str | None
-    scope: Literal["motor", "column"] = "motor"
+    scope: str = "motor"
     part_numbers: tuple[str, ...] = ()
-    severity: Literal["error", "warning", "note"]
+    severity: str
     relation: str
     figures: tuple[str, ...]
     suspect: str | None = None

@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 
 from ..batch import Floats
 from .cholesky import Factor
-from .equations import Equations, product
+from .equations import Equations
 from .model import (
     INDEX,
     LAW_BINDS,
@@ -125,14 +125,22 @@ class Fit:
     covariance: Floats
     chi2: Floats
 
+    def covariance_with(self, row: Floats) -> Floats:
+        """Covariance (P, n) of every unknown with a linear combination of the unknowns."""
+        out = np.zeros((P, len(self.x)))
+        for a in np.flatnonzero(row):
+            out += row[a] * self.covariance[:, a].T
+        return out
+
     def combination(self, row: Floats) -> tuple[Floats, Floats]:
         """Value and standard deviation of a linear combination of the unknowns."""
         used = np.flatnonzero(row)
-        variance = np.zeros(len(self.x))
+        value, variance = np.zeros(len(self.x)), np.zeros(len(self.x))
         for a in used:
+            value += row[a] * self.x[:, a]
             for b in used:
                 variance += row[a] * row[b] * self.covariance[:, a, b]
-        return product(row[None, :], self.x.T)[0], np.sqrt(np.maximum(variance, 0.0))
+        return value, np.sqrt(np.maximum(variance, 0.0))
 
 
 def fit(problem: Problem, robust: bool = False) -> Fit:

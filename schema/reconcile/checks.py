@@ -3,6 +3,7 @@ twice, the thermal rating, and the note on scatter."""
 
 import math
 from collections.abc import Callable
+from typing import Any
 
 import numpy as np
 
@@ -36,8 +37,8 @@ OFF, WIDE = 0.05, 2.0
 beyond the printed digits: at less a table of notes would tell nothing."""
 
 
-def _motor(narrator: Narrator, motor: int, severity: str, **fields: object) -> Finding:
-    return Finding(part_number=narrator.batch.part_number[motor], severity=severity, **fields)  # type: ignore[arg-type]
+def _motor(narrator: Narrator, motor: int, severity: str, **fields: Any) -> Finding:
+    return Finding(part_number=narrator.batch.part_number[motor], severity=severity, **fields)
 
 
 def bounds(narrator: Narrator, doubted: Doubted) -> Found:

@@ -61,8 +61,7 @@ def constants(batch: Batch, problem: Problem, fitted: Fit) -> dict[str, Constant
         for unknown, exponent in ROWS[key].items():
             row[unknown] = exponent
         log_value, sd = fitted.combination(row)
-        moved = np.einsum("npq,q->pn", fitted.covariance, row)
-        gain = np.abs(product(matrix, moved).T) * weights
+        gain = np.abs(product(matrix, fitted.covariance_with(row))).T * weights
         used = (gain > INFLUENCE) & problem.present
         known = (sd < DETERMINED) & used.any(axis=1)
         log_value = log_value + shift.get(key, 0.0)

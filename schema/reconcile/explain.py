@@ -220,7 +220,7 @@ class Narrator:
         text += f" {self.because(cause, others)}"
         return Finding(
             part_number=self.batch.part_number[motor],
-            severity=severity,  # type: ignore[arg-type]
+            severity=severity,
             relation=relation.name if relation else own_relation(figure),
             figures=names,
             suspect=None if rivals else figure,
@@ -270,7 +270,7 @@ class Narrator:
             part_number=None,
             scope="column",
             part_numbers=tuple(self.batch.part_number[m] for m in motors.tolist()),
-            severity=severity,  # type: ignore[arg-type]
+            severity=severity,
             relation=relation.name if relation else own_relation(figure),
             figures=names,
             suspect=None if rivals else figure,
