@@ -20,7 +20,7 @@ from .common import catalog_option, say
 )  # fmt: skip
 @click.option(
     "--units", default="si", show_default=True, metavar="si|FILE",
-    help='For CSV: SI, or a TOML file of lines such as torque_constant = "mN·m/A rms".',
+    help='For CSV and Parquet: SI, or a TOML file of lines such as torque_constant = "mN·m/A rms".',
 )  # fmt: skip
 @click.option(
     "--output", type=click.Path(path_type=Path), metavar="FILE", help="Instead of standard output."
@@ -31,13 +31,14 @@ def command(format_: str, units: str, output: Path | None, catalog: Path) -> int
 
     CSV has the published figures, a column for each quantity and convention, and with a figure
     whose digits don't tell it its precision: 857.65 ± 0.52. JSON and TOML also have the printed
-    texts, constants, findings and places.
+    texts, constants, findings and places. Parquet has the columns of CSV as numbers, and beside a
+    column whose numbers don't tell their precision one of the same name, "as written".
     """
     from ..exporting import export, export_parquet, read_units
     from ..store import Catalog
 
-    if units != "si" and format_ != "csv":
-        raise click.UsageError(f"--units is for CSV; {format_} is always in SI")
+    if units != "si" and format_ not in ("csv", "parquet"):
+        raise click.UsageError(f"--units is for CSV and Parquet; {format_} is always in SI")
     if format_ == "parquet" and output is None:
         raise click.UsageError("Parquet is written to a file: give --output FILE")
     chosen = None if units == "si" else read_units(Path(units))
@@ -47,7 +48,7 @@ def command(format_: str, units: str, output: Path | None, catalog: Path) -> int
             return 0
         with _replacing(output) as (path, out):
             if format_ == "parquet":
-                n = export_parquet(opened, path)
+                n = export_parquet(opened, path, chosen)
             else:
                 n = export(opened, format_, out, chosen)
     say(f"{n} motors written to {output}.")

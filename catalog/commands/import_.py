@@ -82,7 +82,7 @@ def command(
 ) -> int:
     """Read datasheet tables and store their motors.
 
-    A FILE is CSV, TSV, text, a workbook, PDF, HTML, JSON or TOML; - is standard input. Headings
+    A FILE is CSV, TSV, text, a workbook, PDF, HTML, JSON, TOML or Parquet; - is standard input. Headings
     and units are recognised, with one motor a row or one a column; what can't be read is listed.
     All files of a call are stored, or none.
     """

@@ -70,6 +70,10 @@ def _read(
         from .pdf import read_pdf
 
         grids, skipped = read_pdf(source)
+    elif kind == "parquet":
+        from .parquet import read_parquet
+
+        grids = read_parquet(source)
     else:
         from .plaintext import read_text_file
 

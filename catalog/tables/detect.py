@@ -23,7 +23,7 @@ _MAGIC = {
     b"MZ": "a program",
     b"{\\rtf": "a rich text document",
     b"SQLite format 3": "an SQLite database",
-    b"PAR1": "a Parquet file",
+    b"PARE": "an encrypted Parquet file",
 }
 _HTML = re.compile(r"<(?:!doctype\s+html|html|table|body|dl|div|head|meta)\b", re.IGNORECASE)
 _JSON = re.compile(r'\{\s*(?:"|\}|$)|\[\s*(?:[\[{\]"\d-]|$|true|false|null)')
@@ -31,12 +31,14 @@ _TOML_LINE = re.compile(r"""(?:\[{1,2}[\w .'"-]+\]{1,2}|(?:[\w-]+|"[^"]+"|'[^']+
 
 
 def binary_kind(source: Source) -> str | None:
-    """'pdf' or 'workbook' by the first bytes; TableError for what never holds a table."""
+    """'pdf', 'workbook' or 'parquet' by the first bytes; TableError for what holds no table."""
     head = source.survey.head
     if b"%PDF-" in head[:1024]:
         return "pdf"
     if head.startswith((b"PK\x03\x04", b"PK\x05\x06", bytes.fromhex("D0CF11E0A1B11AE1"))):
         return "workbook"
+    if head.startswith(b"PAR1"):
+        return "parquet"
     for magic, what in _MAGIC.items():
         if head.startswith(magic) and (len(magic) > 2 or not source.survey.valid_utf8):
             raise TableError(

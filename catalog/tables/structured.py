@@ -204,6 +204,9 @@ def _exported(motor: _Object, number: int, remarks: list[str]) -> list[tuple[str
             if key not in figures and isinstance(told, _Object) and told.get("value") != "unknown":
                 # no text of the sheet, so its basis goes with it
                 pairs.append((key, f"{_scalar(told.get('value'))} ({_scalar(basis)})"))
+    repeats = motor.get("repeats")
+    for key, again in repeats if isinstance(repeats, _Object) else ():
+        pairs += [_figure(key, value, "") for value in again or () if _is_figure(value)]
     for condition in motor.get("conditions") or []:
         if isinstance(condition, _Object) and isinstance(condition.get("figures"), _Object):
             when = _scalar(condition.get("when"))
@@ -227,8 +230,10 @@ def _figure(key: str, figure: _Object, when: str) -> tuple[str, str]:
     text = _scalar(figure.get("text"))
     printed_unit, unit = figure.get("printed_unit"), figure.get("unit")
     value = figure.get("value")
-    dimensionless_text = text and not isinstance(value, Stored)
-    if dimensionless_text or (text and printed_unit is not None and not _AMBIGUOUS.search(text)):
+    as_it_is = text and not isinstance(value, Stored)
+    if printed_unit is None and unit == "1" and _number(text) == _number(value):
+        as_it_is, printed_unit = True, unit  # a count
+    if as_it_is or (text and printed_unit is not None and not _AMBIGUOUS.search(text)):
         shown_unit = _scalar(printed_unit)
     else:
         text, shown_unit = Stored(_si_text(figure)), _scalar(unit)
@@ -271,10 +276,12 @@ def _convention_words(convention: Any) -> str:
         return ""
     words: list[str] = []
     if convention.get("basis") != "assumed":
-        for key in ("current", "voltage", "between", "connection"):
+        for key in ("current", "voltage", "between", "connection", "shape"):
             word = convention.get(key)
             if isinstance(word, str) and word not in words:
                 words.append(word)
+    if words and convention.get("basis") == "inferred":
+        words.append("inferred")
     # a temperature is never assumed: it stands there because the sheet says it
     temperature = convention.get("temperature")
     if temperature is not None:

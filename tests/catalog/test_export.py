@@ -3,6 +3,7 @@
 import csv
 import io
 import json
+import sys
 from pathlib import Path
 
 import pytest
@@ -170,3 +171,35 @@ def test_the_sample_sheets_are_exported_and_read_back(run, tmp_path, format_):
     assert status == 0, err
     assert sum(len(motor["figures"]) for motor in had.values()) > 1000
     same(motors(run, "--catalog", tmp_path / "again.sqlite"), had, intervals=format_ != "csv")
+
+
+def test_parquet_is_a_table_of_numbers_in_chosen_units(run, both, tmp_path):
+    parquet = pytest.importorskip("pyarrow.parquet")
+    units, path = tmp_path / "units.toml", tmp_path / "out.parquet"
+    units.write_text('no_load_speed = "rpm"\n', encoding="utf-8")
+    status, _, err = run("export", "--format", "parquet", "--units", units, "--output", path)
+    assert (status, err) == (0, f"4 motors written to {path}.\n")
+    columns = parquet.read_table(path).to_pydict()
+    assert columns["no_load_speed [rpm]"] == [4557.0, 4564.0, 4567.0, None]
+    assert columns["ambient_temperature [°C], as written"][3] == "-10…40"
+
+
+def test_without_the_extra_parquet_is_one_sentence(run, sheet, tmp_path, monkeypatch):
+    run("import", sheet)
+    monkeypatch.setitem(sys.modules, "pyarrow", None)
+    path = tmp_path / "out.parquet"
+    status, out, err = run("export", "--format", "parquet", "--output", path)
+    assert (status, out) == (2, "")
+    assert "pip install 'motorfolio[parquet]'" in err
+    assert not path.exists()
+
+
+def test_a_parquet_file_that_is_damaged_stores_nothing(run, tmp_path, catalog_file):
+    pytest.importorskip("pyarrow")
+    path = tmp_path / "a.parquet"
+    path.write_bytes(b"PAR1" + bytes(100))
+    status, out, err = run("import", path)
+    assert (status, out) == (2, "")
+    assert "the Parquet file is damaged" in err
+    assert err.count("\n") == 1
+    assert not catalog_file.exists()
