@@ -7,16 +7,19 @@ from ..tables.grid import Grid
 from .cells import is_figure, is_unit, missing, strength
 from .headings.label import parse_label
 from .layout.columns import figure_behind
+from .layout.lines import text_of
 from .model import Table, Unread
 
+_SHORT = 8
+"""A text as short as this may stand in a title or note by chance."""
+
 REASON = "it stands in no table that was understood"
-_ROWS_LOOKED_AT = 5000
 
 
 class _Taken:
     """The places of the cells that are figures of tables, and the texts that stand about them."""
 
-    def __init__(self, tables: list[Table]) -> None:
+    def __init__(self, tables: list[Table], columns: list[int]) -> None:
         self.down: dict[int, set[int]] = defaultdict(set)
         self.across: dict[int, set[int]] = defaultdict(set)
         self.texts: set[str] = set()
@@ -29,11 +32,15 @@ class _Taken:
                 else:
                     self.across[f.row].update(places)
                 self.texts.update((f.label.text, *f.units, *f.captions, *f.when, *f.label.units))
+                self.texts.update(f.label.symbols)
                 self.texts.update(f.label.text.split("\n"))
                 whole.update((f.heading, *f.captions))
             self.texts.update(t for t in table.part_numbers if t)
             self.texts.update(t for row in table.head for t in row)
             whole.update((*table.titles, *table.notes, *table.remarks))
+        # Most rows are motors of one table whose fields stand side by side: they need no look.
+        self.rows = max(self.down.values(), key=len, default=set[int]())
+        self.free = [i for i, c in enumerate(columns) if self.down.get(c) != self.rows]
         self.texts = {plain(t) for t in self.texts}
         self.about = "\n".join(plain(t) for t in whole)
 
@@ -46,13 +53,17 @@ def unaccounted(grid: Grid, tables: list[Table]) -> list[Unread]:
 
     Of a grid without tables only those beside or under the name of something measured.
     """
-    taken = _Taken(tables)
+    taken = _Taken(tables, grid.column_numbers)
     out: list[Unread] = []
     above = [""] * len(grid.column_numbers)  # the nearest name over each column
-    for i, (number, row) in enumerate(zip(grid.row_numbers, grid.rows, strict=False)):
-        if i >= _ROWS_LOOKED_AT:
-            break
+    for number, row in zip(grid.row_numbers, grid.rows, strict=False):
+        if number in taken.rows and not any(row[c] for c in taken.free):
+            continue
         over = list(above)
+        line = plain(text_of(row))
+        noted = len(line) > _SHORT and line in taken.about
+        # A merged cell repeats its text, and so does what holds under several conditions.
+        repeats = bool(grid.spans) or number in taken.across
         read = {row[c] for c, at in enumerate(grid.column_numbers) if taken.has(number, at)}
         for c, at in enumerate(grid.column_numbers):
             text = row[c]
@@ -62,10 +73,11 @@ def unaccounted(grid: Grid, tables: list[Table]) -> list[Unread]:
                 if not is_figure(text) and (_measured(text) or not _measured(above[c])):
                     above[c] = text
                 continue
-            if text in read:
+            if repeats and text in read:
                 continue
             clean = plain(text)
-            if clean in taken.texts or clean in taken.about or _counts_rows(row, c):
+            said = len(clean) > _SHORT and clean in taken.about
+            if noted or said or clean in taken.texts or _counts_rows(row, c):
                 continue
             heading = _heading(row, c, over[c])
             if not tables and not _measured(heading):

@@ -1,6 +1,6 @@
 """What the reading of a file is made of: options, tables, fields, and the result."""
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass, field
 
 from ...schema.batch import Batch, Heading
@@ -85,6 +85,8 @@ class Table:
     """Motors and fields of one block, whichever way it was laid out.
 
     ``places`` are the rows (layout "rows") or columns ("columns") of the motors in the file.
+    ``continuation`` yields further rows below, as a grid's does; ``columns`` are then the places
+    of the grid's columns.
     """
 
     layout: str
@@ -98,6 +100,7 @@ class Table:
     part_numbers: list[str | None] = field(default_factory=list)
     columns: list[int] = field(default_factory=list)
     head: list[list[str]] = field(default_factory=list)
+    continuation: Iterator[tuple[list[int], list[list[str]]]] | None = None
 
     @property
     def count(self) -> int:

@@ -1,5 +1,7 @@
 """A file's grids → batches: blocks, tables joined, headings matched once, figures read."""
 
+from collections.abc import Iterable
+from itertools import chain
 from pathlib import PurePath
 
 from ...schema.batch import Batch, Heading
@@ -11,7 +13,7 @@ from .entries.kind import is_marked
 from .headings.lexicon import squeeze, tokens
 from .layout.blocks import Block, blocks_of
 from .layout.columns import lay_out_columns
-from .layout.join import goes_with, joined, take_in
+from .layout.join import goes_with, have_motors_in_common, joined, take_in
 from .layout.lines import text_of
 from .layout.points import is_load_table, load_points, points_table
 from .layout.rows import lay_out_rows
@@ -26,27 +28,17 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
     remarks = list(file.skipped)
     unread: list[Unread] = []
     headings: list[Heading] = []
-    batches: list[Batch] = []
+    batches: list[Iterable[Batch]] = []
     layout = ""
     grids = [g for g in file.grids if not options.sheet or g.sheet == options.sheet]
     if not grids:
         names = ", ".join(str(g.sheet) for g in file.grids if g.sheet)
         raise ReadingError(f'{file.name}: has no sheet "{options.sheet}"; it has {names or "none"}')
-    lazy, gears = None, False
-    lone: list[Table] = []
-    loose: list[str] = []
+    gears = lazy = False
     told = TOLD.set(
         frozenset(squeeze(tokens(h)) for h in (*options.overrides, *options.kept)) - {""}
     )
-    for grid in grids:
-        remarks += grid.remarks
-        tables = _tables(grid)
-        if not tables:
-            loose += [text_of(row) for row in grid.rows[:50]]
-        if not tables and grid.sheet:
-            remarks.append(f"sheet {grid.sheet}: no motor table, skipped")
-        lone += tables
-        unread += unaccounted(grid, tables)
+    lone, loose = _all_tables(grids, remarks, unread)
     TOLD.reset(told)
     stem = PurePath(file.name).stem
     found = joined(lone, remarks)
@@ -60,16 +52,15 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
             continue
         layout = layout or table.layout
         headings += reader.headings
-        grid = next((g for g in grids if g.continuation is not None), None)
-        if grid is not None and table.layout == "rows" and len(found) == 1:
-            lazy = reader.lazily(grid.continuation, unread)
+        if table.continuation is not None:
+            lazy = True
+            batches.append(reader.lazily(unread))
             remarks += reader.remarks
             continue
-        batch = reader.batch()
+        batches.append([reader.batch()])
         unread += reader.unread
         remarks += reader.remarks
-        batches.append(batch)
-    if not batches and lazy is None:
+    if not batches:
         if gears:
             raise ReadingError(
                 f"{file.name}: a table of gears, not of motors; read it with: motorfolio gears "
@@ -79,9 +70,40 @@ def read(file: TableFile, options: ReadOptions) -> Reading:
             f"{file.name}: no motor is found in it; a table of motors has headings such as "
             '"Nominal voltage [V]" over or beside figures'
         )
-    return Reading(
-        layout or "rows", headings, lazy if lazy is not None else batches, unread, remarks
-    )
+    run = chain.from_iterable(batches)
+    return Reading(layout or "rows", headings, run if lazy else list(run), unread, remarks)
+
+
+def _all_tables(
+    grids: list[Grid], remarks: list[str], unread: list[Unread]
+) -> tuple[list[Table], list[str]]:
+    """The tables of all grids, and the texts of grids that have none."""
+    tables_of = [_tables(grid) for grid in grids]
+    for i, grid in enumerate(grids):
+        if grid.continuation is None:
+            continue
+        mine = tables_of[i]
+        others = [t for k, tables in enumerate(tables_of) if k != i for t in tables]
+        if mine and (
+            len(mine) > 1
+            or mine[0].layout != "rows"
+            or any(have_motors_in_common(mine[0], other) for other in others)
+        ):
+            grid.take_up_rest()
+            tables_of[i] = _tables(grid)
+        elif mine:
+            mine[0].continuation = grid.continuation
+    found: list[Table] = []
+    loose: list[str] = []
+    for grid, tables in zip(grids, tables_of, strict=True):
+        remarks += grid.remarks
+        if not tables:
+            loose += [text_of(row) for row in grid.rows[:50]]
+            if grid.sheet:
+                remarks.append(f"sheet {grid.sheet}: no motor table, skipped")
+        found += tables
+        unread += unaccounted(grid, tables)
+    return found, loose
 
 
 def _share_notes(tables: list[Table], loose: list[str], everywhere: bool) -> None:

@@ -57,6 +57,19 @@ class Grid:
     continuation: Iterator[tuple[list[int], list[list[str]]]] | None = None
     row_pages: list[int] | None = None
 
+    def take_up_rest(self) -> None:
+        """Read all that the continuation yields into the grid."""
+        for numbers, rows in self.continuation or ():
+            self.row_numbers += numbers
+            self.rows += rows
+        self.continuation = None
+        width = max(map(len, self.rows), default=0)
+        last = self.column_numbers[-1] if self.column_numbers else 0
+        more = width - len(self.column_numbers)
+        self.column_numbers += range(last + 1, last + 1 + more)
+        for row in self.rows:
+            row += [""] * (width - len(row))
+
 
 @dataclass(slots=True)
 class TableFile:

@@ -38,3 +38,84 @@ def test_chunks_are_read_with_the_heads_layout_and_lazily():
         ("Nominal voltage [V]", "0"),
         ("Torque constant [mNm/A]", "x"),
     ]
+
+
+def chunked(rows: list[list[str]], head: int, sheet: str | None = None) -> Grid:
+    """A grid of the first rows, the others in chunks of 30 behind it."""
+    numbers = list(range(1, len(rows) + 1))
+    grid = Grid(rows[:head], numbers[:head], list(range(1, len(rows[0]) + 1)), sheet=sheet)
+    grid.continuation = (
+        (numbers[i : i + 30], rows[i : i + 30]) for i in range(head, len(rows), 30)
+    )
+    return grid
+
+
+def parts_of(*grids: Grid) -> tuple[dict[str, float], list[tuple[int | None, int | None, str]]]:
+    """Torque constants by part number, and (row, column, text) of what is listed."""
+    reading = read(TableFile("long.csv", "0" * 64, "csv", list(grids)), ReadOptions())
+    found: dict[str, float] = {}
+    for batch in reading.batches:
+        column = batch.figures.get("torque_constant")
+        for i, part in enumerate(batch.part_number):
+            found[part] = float(column.value[i]) if column is not None else float("nan")
+    return found, [(u.row, u.column, u.text) for u in reading.unread]
+
+
+def test_cells_that_no_heading_covers_are_listed_at_the_end_of_a_long_table_too():
+    """A surplus cell, a cell in a column without a heading, one under a heading not read."""
+    head = [*HEAD[:3], "", "Frobnication"]
+    rows = [head, *([*row(i)[:3], "", ""] for i in range(200))]
+    rows[150].append("17.5")
+    rows[160][3] = "3.25"
+    rows[170][4] = "9"
+    rows[171][4] = "10"
+    found, listed = parts_of(chunked(rows, 60))
+    assert len(found) == 200
+    assert sorted(listed) == [(151, 6, "17.5"), (161, 4, "3.25"), (171, 5, "9")]
+
+
+def test_rows_under_other_headings_far_down_are_never_read_under_the_first():
+    other = ["Part number", "Torque constant [mNm/A]", "Nominal voltage [V]", "Mass [g]"]
+    rows = [HEAD, *map(row, range(150)), other]
+    rows += [[f"OT-{i}", "31.5", "12", "90"] for i in range(40)] + [HEAD, row(150), row(151)]
+    found, listed = parts_of(chunked(rows, 60))
+    assert list(found) == [f"LT-{i}" for i in range(152)]
+    assert [text for _, _, text in listed if text.startswith("OT-")] == [
+        f"OT-{i} 31.5 12 90" for i in range(40)
+    ]
+
+
+def test_a_second_table_below_row_eighty_is_a_table_of_its_own():
+    other = ["Part number", "Torque constant [mNm/A]", "Nominal voltage [V]", "Mass [g]"]
+    rows = [
+        HEAD,
+        *map(row, range(150)),
+        other,
+        *([f"OT-{i}", "31.5", "12", "90"] for i in range(5)),
+    ]
+    found, _ = parts_of(Grid(rows, list(range(1, len(rows) + 1)), [1, 2, 3, 4]))
+    assert len(found) == 155
+    assert found["OT-4"] == 0.0315
+    # The same where the head of a long table has both, and its rest only the second.
+    found, _ = parts_of(chunked(rows, 153))
+    assert len(found) == 155
+    assert found["OT-4"] == 0.0315
+
+
+def test_every_long_sheet_goes_on_with_its_own_rows():
+    second = [[f"S{r[0]}", *r[1:]] for r in map(row, range(90))]
+    found, _ = parts_of(
+        chunked(
+            [["Notes", "", "", ""], *([f"remark {i}", "", "", ""] for i in range(90))], 50, "A"
+        ),
+        chunked([HEAD, *map(row, range(90))], 50, "B"),
+        chunked([HEAD, *second], 40, "C"),
+    )
+    assert list(found) == [f"LT-{i}" for i in range(90)] + [f"SLT-{i}" for i in range(90)]
+
+
+def test_a_motor_in_two_long_sheets_is_one():
+    more = [["Part number", "Terminal resistance [Ohm]", "Mass [g]"]]
+    more += [[f"LT-{i}", "1.5", "90"] for i in range(90)]
+    found, _ = parts_of(chunked([HEAD, *map(row, range(90))], 50, "A"), chunked(more, 50, "B"))
+    assert list(found) == [f"LT-{i}" for i in range(90)]

@@ -12,6 +12,7 @@ from ..model import Unread
 from .decide import Decisions
 from .facts import apply_connections, own_references, put_connection, put_texts
 from .figures import Values, as_column, read_values
+from .further import FurtherRows
 from .gather import Column, Conditions, Listing, Points, fill_gaps, place
 from .kind import note_tolerance
 from .naming import motor_names, titled
@@ -40,16 +41,12 @@ class TableReader(Decisions):
         places = [m.field.places or self.table.places for m in self.matches]
         return self._build(ids, texts, places, self.unread)
 
-    def lazily(
-        self, continuation: Iterator[tuple[list[int], list[list[str]]]] | None, unread: list[Unread]
-    ) -> Iterator[Batch]:
+    def lazily(self, unread: list[Unread]) -> Iterator[Batch]:
         """Batches of the head and of every chunk that follows; the headings are decided."""
         unread += self.unread
         ids = self.ids()
         sources = [m.field.source for m in self.matches]
         id_source = self.id_field.source if self.id_field is not None else None
-        head = self.table.head
-        heads = {tuple(r) for r in head}
         fields = [m.field.texts for m in self.matches]
         places = list(self.table.places)
         for start in range(0, len(places), CHUNK):
@@ -57,24 +54,12 @@ class TableReader(Decisions):
             yield self._build(
                 ids[piece], [t[piece] for t in fields], [places[piece]] * len(fields), unread
             )
+        further = FurtherRows(self.table, self.matches, unread)
         self.table.places = []
         for m in self.matches:
             m.field.texts = []
-        for numbers, rows in continuation or ():
-            keep = [
-                k
-                for k, row in enumerate(rows)
-                if len(row) - row.count("") > 1 and tuple(row) not in heads
-            ]
-            if len(keep) < len(rows):
-                kept = set(keep)
-                for k, row in enumerate(rows):
-                    if k not in kept and any(row) and tuple(row) not in heads:
-                        unread.append(
-                            Unread(None, "", self.table.sheet, self.table.page, numbers[k], 1,
-                                   " ".join(t for t in row if t), "a row with a single cell")
-                        )  # fmt: skip
-                rows, numbers = [rows[k] for k in keep], [numbers[k] for k in keep]
+        for numbers, rows in self.table.continuation or ():
+            numbers, rows = further.motors(numbers, rows)
             for start in range(0, len(rows), CHUNK):
                 some = rows[start : start + CHUNK]
                 columns = list(map(list, zip(*some, strict=False)))

@@ -14,6 +14,8 @@ _CONDITION = re.compile(
     r"(?:at |bei |à |@ ?)?\d{1,3}(?:[.,]\d+)?\s*(?:V ?AC|V ?DC|VAC|VDC|V|K|°C)(?: ?(?:AC|DC))?"
 )
 _ROWS_TRIED, _COLUMNS_TRIED = 80, 40
+HEADINGS = 2.9
+"""So many headings in a row below figures begin another table."""
 
 
 @dataclass(slots=True)
@@ -70,9 +72,13 @@ def _stacked(block: Block) -> list[Block]:
     scores = row_scores(block)
     cuts: list[int] = []
     seen_figures = False
-    for r in range(1, len(scores)):
+    for r in range(1, len(block.rows)):
         row = block.rows[r]
-        if scores[r] >= 2.9 and seen_figures and not is_data(row):
+        if r >= len(scores) and any(t[:1].isdigit() for t in row):
+            seen_figures = seen_figures or is_data(row)
+            continue  # far down no row of headings has a cell that begins with a digit
+        score = scores[r] if r < len(scores) else row_score(row)
+        if score >= HEADINGS and seen_figures and not is_data(row):
             cut = r
             above = {t for t in block.rows[r - 1] if t}
             if (
@@ -83,7 +89,7 @@ def _stacked(block: Block) -> list[Block]:
                 cut -= 1
             cuts.append(cut)
             seen_figures = False
-        elif is_data(row):
+        elif not seen_figures and is_data(row):
             seen_figures = True
     borders = [0, *cuts, len(block.rows)]
     return [
@@ -165,15 +171,17 @@ def _worth(cell: str) -> float:
 
 def row_scores(block: Block) -> list[float]:
     """For each of the first rows, how many headings it holds."""
-    scores = []
-    for row in block.rows[:_ROWS_TRIED]:
-        total, previous = 0.0, ""
-        for cell in row[:300]:
-            if cell and cell != previous:
-                total += _worth(cell)
-            previous = cell
-        scores.append(total)
-    return scores
+    return [row_score(row) for row in block.rows[:_ROWS_TRIED]]
+
+
+def row_score(row: list[str]) -> float:
+    """How many headings a row holds; what a merged cell repeats counts once."""
+    total, previous = 0.0, ""
+    for cell in row[:300]:
+        if cell and cell != previous:
+            total += _worth(cell)
+        previous = cell
+    return total
 
 
 def column_scores(block: Block) -> list[float]:

@@ -33,7 +33,6 @@ def lay_out_columns(block: Block) -> Table:
     table.titles = [
         text_of(row) for i, row in enumerate(rows[:first]) if i not in (id_row, condition_row)
     ]
-    table.columns = values
     caption: list[str] = []
     captioned = -2
     for i, row in enumerate(rows):

@@ -93,22 +93,18 @@ def take_in(home: Table, table: Table) -> None:
     home.notes += [*table.titles, *table.notes]
 
 
+def have_motors_in_common(one: Table, other: Table) -> bool:
+    """Whether two tables of one layout name the same motors, at least half of the smaller."""
+    here, there = ({normal_id(i) for i in ids_of(t) if i} for t in (one, other))
+    fewer = min(len(here), len(there))
+    return fewer > 0 and one.layout == other.layout and len(here & there) >= 0.5 * fewer
+
+
 def joined(tables: list[Table], remarks: list[str]) -> list[Table]:
     """Tables with motors in common made one; the others as they are."""
     out: list[Table] = []
     for table in tables:
-        ids = ids_of(table)
-        keys = {normal_id(i) for i in ids if i}
-        home = None
-        for earlier in out:
-            mine = {normal_id(i) for i in ids_of(earlier) if i}
-            if (
-                keys
-                and len(keys & mine) >= 0.5 * min(len(keys), len(mine))
-                and earlier.layout == table.layout
-            ):
-                home = earlier
-                break
+        home = next((earlier for earlier in out if have_motors_in_common(earlier, table)), None)
         if home is None:
             out.append(table)
         else:

@@ -39,7 +39,7 @@ def lay_out_rows(block: Block) -> Table:
     ]
     body, numbers, notes, end_sections = _body(block, start, head_rows)
     table = Table("rows", [], numbers, titles=titles, notes=notes, head=head_rows)
-    table.columns = list(range(block.width))
+    table.columns = block.column_numbers
     columns: list[list[str]] = [list(c) for c in zip(*body, strict=False)] if body else []
     for c in range(block.width):
         cells: list[HeadCell] = []
