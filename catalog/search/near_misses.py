@@ -35,7 +35,7 @@ _POOL = 8
 _COLDEST = 0.0
 _LONGEST_REST = 100.0  # times the cycle's period
 _WIDEST = 4.0  # times the range of ratios, and of turns of a winding
-_STEPS = 12
+_STEPS, _BITS = 12, 4  # halvings of a search, and how many of them at once
 
 
 @dataclass(frozen=True)
@@ -367,17 +367,16 @@ class _Motor:
             ]
         )
 
-        def at(ratio: float) -> bool:
-            return self.admits(self.requirement, np.array([ratio]))
+        def feasible(ratios: Array) -> NDArray[np.bool_]:
+            return self.judge(self.requirement, ratios=ratios).verdict == Verdict.FEASIBLE
 
-        verdict = self.judge(self.requirement, ratios=outside).verdict
-        good = outside[verdict == Verdict.FEASIBLE]
+        good = outside[feasible(outside)]
         if not good.size:
             return None
         near = float(good[np.argmin(np.minimum(abs(np.log(good / low)), abs(np.log(good / high))))])
-        edge = _bisect(at, near, low if near < low else high, _STEPS)
+        edge = _section(feasible, near, low if near < low else high)
         after = _digits(edge, up=edge > high)
-        if not at(after):
+        if not feasible(np.array([after])).any():
             after = near
         span = self.requirement.ratios.text
         return _change(
@@ -432,6 +431,17 @@ def _bisect(passes: Callable[[float], bool], good: float, bad: float, steps: int
             good = middle
         else:
             bad = middle
+    return good
+
+
+def _section(passes: Callable[[Array], NDArray[np.bool_]], good: float, bad: float) -> float:
+    """The same as `_bisect` where many values are judged as fast as one: as exact in few looks."""
+    parts = 1 << _BITS
+    for _ in range(_STEPS // _BITS):
+        values = good + (bad - good) * np.arange(parts + 1) / parts
+        fails = np.append(~passes(values[1:-1]), True)
+        first = int(fails.argmax())
+        good, bad = float(values[first]), float(values[first + 1])
     return good
 
 

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass, fields
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -173,7 +174,7 @@ class Pieces:
     def period(self) -> float:
         return float(self.duration.sum())
 
-    @property
+    @cached_property
     def gram(self) -> Array:
         """Means over the cycle of the products of the four functions, shape (4, 4)."""
         first, second = self.basis[:, 0], self.basis[:, 1]
@@ -189,19 +190,19 @@ class Pieces:
         magnitude = np.abs(self.basis[:, :, 3]).mean(axis=1)
         return float(self.duration @ magnitude / self.period)
 
-    @property
+    @cached_property
     def corners(self) -> Array:
         """Distinct rows of `basis` but for their sign, shape (E, 4): where magnitudes peak."""
         rows = self.basis.reshape(-1, 4)
         leading = rows[np.arange(len(rows)), (rows != 0).argmax(axis=1)]
         return np.unique(np.where(leading < 0, -1.0, 1.0)[:, None] * rows + 0.0, axis=0)
 
-    @property
+    @cached_property
     def accelerated(self) -> Array:
         """The pieces of `basis` in which speed changes, each of them once, shape (Q, 2, 4)."""
         return np.unique(self.basis[self.basis[:, 0, 1] != 0], axis=0)
 
-    @property
+    @cached_property
     def is_constant(self) -> bool:
         """Whether nothing varies over the cycle, so that no temperature can swing."""
-        return len(np.unique(self.basis.reshape(-1, 4), axis=0)) == 1
+        return bool((self.basis == self.basis[0, 0]).all())
