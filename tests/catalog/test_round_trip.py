@@ -11,10 +11,18 @@ from motorfolio.catalog.store import Catalog
 
 SAMPLES = Path(__file__).resolve().parents[2] / "sample_entries"
 SHEETS = [
-    str(path)
-    for path in sorted(SAMPLES.iterdir())
-    if path.suffix in (".csv", ".tsv", ".html") and path.stem != "gears"
+    str(SAMPLES / name)
+    for name in (
+        "wobbleton.csv",
+        "brindlewick_10.csv",
+        "brindlewick_22.csv",
+        "quasselbach.csv",
+        "gopher_notch.tsv",
+        "grisoulette.csv",
+        "tanuki_hollow.html",
+    )
 ]
+"""A sheet with figures of its frames stands before sheets whose motors name no series."""
 
 KINDS = ("current", "voltage", "between", "connection", "temperature", "shape", "basis")
 Motors = dict[tuple[str, str], dict]

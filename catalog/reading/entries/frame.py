@@ -1,6 +1,7 @@
 """Cells that say "as above", and figures of a frame that are printed once for its motors."""
 
-from collections.abc import Sequence
+from collections.abc import Collection, Sequence
+from itertools import pairwise
 
 from ....schema.vocabulary import quantity
 from ..cells import is_ditto
@@ -50,32 +51,63 @@ def share_frame(table: Table, matches: list[Match], id_field: Field | None) -> N
 
 
 def _frame_groups(table: Table, matches: list[Match], id_field: Field | None) -> list[list[int]]:
+    """Motors by frame, in runs of neighbours; none where the table shows no such habit."""
+    figures = [m for m in matches if m.role == "figure"]
+    if all(m.field.label.forced for m in figures):
+        return []  # headed by the names of quantities, as programs write: every row is whole
     n = table.count
+    makers = [m.field.texts for m in matches if m.key == "maker"]
     for m in matches:
         if m.key in ("series", "part_number") and m.field is not id_field:
             texts = m.field.texts
-            if texts and texts[0] and not all(texts):
-                return _runs(texts)
+            if texts and texts[0] and not all(texts) and not _repeated(texts):
+                return _runs(texts, _apart(texts, makers, id_field))
             if m.key == "series" and all(texts):
                 return _runs(
                     [t if k == 0 or t != texts[k - 1] else "" for k, t in enumerate(texts)]
                 )
     if table.layout == "rows" or not 1 < n <= 200:
         return []
-    once = [
-        m for m in matches if m.role == "figure" and m.field.texts[0] and not any(m.field.texts[1:])
-    ]
+    once = [m for m in figures if m.field.texts[0] and not any(m.field.texts[1:])]
     frames = [m for m in once if m.key and quantity(m.key).frame]
     # One lone figure may be a gap in the others; two of the frame are a habit of the sheet.
     sure = len(frames) == len(once) and (len(frames) > 1 or n > 3)
     return [list(range(n))] if sure else []
 
 
-def _runs(texts: Sequence[str]) -> list[list[int]]:
-    """Indices in groups, a new one at every text."""
+def _repeated(texts: Sequence[str]) -> bool:
+    """Whether a frame's name stands at several of its motors: then an empty cell names no frame."""
+    return any(text and text == above for above, text in pairwise(texts))
+
+
+def _apart(
+    frames: Sequence[str], makers: Sequence[Sequence[str]], id_field: Field | None
+) -> set[int]:
+    """Motors that are none of the frame named above: of another maker, or not named after it
+    where that frame's first motor is."""
+    apart = {
+        k for texts in makers for k in range(1, len(texts)) if texts[k] and texts[k] != texts[k - 1]
+    }
+    if id_field is not None:
+        stem, named = "", False
+        for k, (frame, name) in enumerate(zip(frames, id_field.texts, strict=True)):
+            if frame:
+                stem = _letters(frame)
+                named = bool(stem) and _letters(name).startswith(stem)
+            elif named and not _letters(name).startswith(stem):
+                apart.add(k)
+    return apart
+
+
+def _letters(text: str) -> str:
+    return "".join(filter(str.isalnum, text)).casefold()
+
+
+def _runs(texts: Sequence[str], apart: Collection[int] = ()) -> list[list[int]]:
+    """Indices in groups, a new one at every text and at every index of ``apart``."""
     groups: list[list[int]] = []
     for k, text in enumerate(texts):
-        if text or not groups:
+        if text or k in apart or not groups:
             groups.append([k])
         else:
             groups[-1].append(k)
