@@ -131,28 +131,31 @@ def select(connection: sqlite3.Connection, source: int, names: Sequence[str]) ->
     ).fetchall()
     table = np.array(rows, dtype=np.float64).reshape(len(rows), len(names) + 3)
     columns = {name: np.ascontiguousarray(table[:, i + 3]) for i, name in enumerate(names)}
-    for name in names:
-        if name.startswith(ARMATURE) and name not in CANONICAL and "_current" in name:
-            columns[name] *= _armature_factors(connection, name, table[:, 1], table[:, 2])
+    currents = [name for name in names if name.startswith(ARMATURE) and "_current" in name]
+    if currents:
+        patterns, kinds = table[:, 1].astype(np.int64), table[:, 2].astype(np.int64)
+        span = int(kinds.max(initial=0)) + 1
+        unique, which = np.unique(patterns * span + kinds, return_inverse=True)
+        pairs = [divmod(pair, span) for pair in unique.tolist()]
+        for name in currents:
+            columns[name] *= _armature_factors(connection, name, pairs)[which]
     return {"id": np.ascontiguousarray(table[:, 0]), **columns}
 
 
 def _armature_factors(
-    connection: sqlite3.Connection, name: str, patterns: Floats, kinds: Floats
+    connection: sqlite3.Connection, name: str, pairs: Sequence[tuple[int, int]]
 ) -> Floats:
+    """Armature amperes per published ampere, of each pair of pattern and kind."""
     key = name.removeprefix(ARMATURE)
-    factors = np.ones(len(patterns))
-    pairs = np.stack([patterns, kinds], axis=1)
-    unique, which = np.unique(pairs, axis=0, return_inverse=True)
-    for number, (pattern, kind) in enumerate(unique.astype(int).tolist()):
+    factors = []
+    for pattern, kind in pairs:
         row = connection.execute(
             'SELECT d."current", k.commutation FROM kinds k LEFT JOIN patterns p ON p.pattern = ? '
             "AND p.quantity = ? LEFT JOIN conventions d ON d.id = p.convention WHERE k.id = ?",
             (pattern, key, kind),
         ).fetchone()
-        factor = to_dc(key, Convention(current=row[0]), Commutation[row[1].upper()])
-        factors[which.ravel() == number] = factor
-    return factors
+        factors.append(to_dc(key, Convention(current=row[0]), Commutation[row[1].upper()]))
+    return np.array(factors, dtype=np.float64)
 
 
 def _expression(name: str) -> str:

@@ -230,6 +230,8 @@ class Writer(ResultWriter):
         """Mark the motors that the catalog has as replaced: source → how many of its motors, and
         how many of them this very import had stored."""
         touched: dict[int, int] = {}
+        if not self.connection.execute("SELECT EXISTS (SELECT 1 FROM motor)").fetchone()[0]:
+            return touched, 0
         where = "part_number = ? AND maker = ? AND replaced_by IS NULL"
         for who in identity:
             row = self.connection.execute(
