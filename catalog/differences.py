@@ -8,15 +8,22 @@ _FIGURE = ("text", "value", "unit", "low", "high", "convention", "qualifier", "p
 
 def of_import(catalog: Catalog, number: int | None = None) -> list[Document]:
     """The changes that an import made (the last one if no number is given), a motor each; those
-    that it left as they were are left out."""
+    that it left as they were are left out. A motor that was merged has ``into``, what it stands
+    for since, beside ``change`` "merged"."""
     known = [found.id for found in catalog.imports()]
     if not known:
         raise CatalogError(f"Nothing has been imported into {catalog.path}.")
     if number is not None and number not in known:
         raise CatalogError(f"{catalog.path} has no import {number}; see motorfolio revisions.")
+    number = known[-1] if number is None else number
+    merged = catalog.merged_by(number)
     changes = []
-    for before, after in catalog.changed_motors(known[-1] if number is None else number):
+    for before, after in catalog.changed_motors(number):
         change = between(before, after)
+        into = merged.get((change["maker"] or "", change["part_number"]))
+        if into is not None:
+            stands_for = {"maker": into[0] or None, "part_number": into[1]}
+            change = {**change, "change": "merged", "into": stands_for}
         if change["change"] != "unchanged":
             changes.append(change)
     return changes

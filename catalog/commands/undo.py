@@ -36,13 +36,13 @@ def command(number: int | None, catalog: Path, yes: bool) -> int:
 def _what_goes(opened: "Catalog", number: int | None) -> str:
     """The import that would be taken back, in words."""
     from ..report.plain import many, when
+    from ..report.terminal import deed
 
     imports = {found.id: found for found in opened.imports()}
     found = imports.get(max(imports, default=0) if number is None else number)
     if found is None:
         return "There is no such import."
-    what = ", ".join(found.files) or "motors taken out or merged"
-    said = f"Import {found.id} of {when(found.at)}: {what}; {many(found.motors, 'motor')}"
-    return (
-        f"{said}, {found.replaced} earlier ones would come back." if found.replaced else f"{said}."
-    )
+    did, concerned = deed(found)
+    said = ": ".join(filter(None, (did, ", ".join(concerned))))
+    back = f"; {many(found.replaced, 'motor')} would come back" if found.replaced else ""
+    return f"Number {found.id} of {when(found.at)}: {said}{back}."

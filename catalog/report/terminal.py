@@ -102,10 +102,21 @@ def print_imports(imports: Iterable["Import"]) -> None:
     """What was imported and when."""
     out = console()
     for i in imports:
+        did, lines = deed(i)
+        out.print(Text(f"{i.id:>4}  {p.when(i.at)} UTC  {did}"))
+        for line in lines:
+            out.print(Padding(Text(p.plain(line)), (0, 0, 0, 6)))
+
+
+def deed(i: "Import") -> tuple[str, list[str]]:
+    """What an import, a merging or a removal did, and the files or motors that it concerned."""
+    if i.files:
         replaced = f", {i.replaced} replaced" if i.replaced else ""
-        out.print(Text(f"{i.id:>4}  {p.when(i.at)} UTC  {p.many(i.motors, 'motor')}{replaced}"))
-        for file in i.files or ("(taken out or merged)",):
-            out.print(Padding(Text(p.plain(file)), (0, 0, 0, 6)))
+        return p.many(i.motors, "motor") + replaced, list(i.files)
+    if i.merged:
+        merged = [f"{name} into {into}" for name, into in i.merged]
+        return p.many(len(merged), "motor") + " merged", merged
+    return p.many(i.replaced, "motor") + " taken out", []
 
 
 def print_corrections(corrections: Iterable["Correction"]) -> None:
@@ -135,6 +146,10 @@ def print_changes(changes: Iterable[Document]) -> None:
             named = ", ".join(parts[:MOST_NAMED])
             out.print(Text(f"{p.many(len(parts), 'motor')} {word}: {named}{more}"))
     for change in changed:
+        if change["change"] == "merged":
+            into = "/".join(filter(None, change["into"].values()))
+            out.print(Text(p.plain(f"{change['part_number']}: merged into {into}")))
+            continue
         out.print(Text(f"{p.plain(change['part_number'])}: {change['change']}", style="bold"))
         for key, figure in change.get("figures", {}).items():
             before, after = (_printed(figure[side]) for side in ("before", "after"))

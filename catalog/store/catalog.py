@@ -284,6 +284,12 @@ class Catalog:
             columns.rebuild(connection, sorted(same.merge(connection, into, aside, now())))
         return into, aside
 
+    def merged_by(self, import_id: int) -> dict[tuple[str, str], tuple[str, str]]:
+        """(maker, part number) of the motors that a merging took aside → what they stand for."""
+        from . import same
+
+        return {a[1:]: b[1:] for a, b in same.merged_by(self.connection, import_id)}
+
     def also(self, part: str) -> list["Document"]:
         """The documents of the motors that were merged into this one."""
         from . import same

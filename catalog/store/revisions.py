@@ -6,7 +6,7 @@ from dataclasses import dataclass, field
 from typing import Any
 
 from .known import Known
-from .same import forget
+from .same import forget, merged_by
 
 OF_SOURCE = "m.id BETWEEN s.first_motor AND s.first_motor + s.motors - 1"
 """The motors m of a source s: their ids follow one another, which saves an index."""
@@ -14,13 +14,15 @@ OF_SOURCE = "m.id BETWEEN s.first_motor AND s.first_motor + s.motors - 1"
 
 @dataclass(frozen=True, slots=True)
 class Import:
-    """One call that stored something; ``motors`` what it stored, ``replaced`` what it ended."""
+    """One call that stored something; ``motors`` what it stored, ``replaced`` what it ended,
+    ``merged`` the motors that it took aside, each (name, name of what it stands for)."""
 
     id: int
     at: str
     files: tuple[str, ...]
     motors: int
     replaced: int
+    merged: tuple[tuple[str, str], ...] = ()
 
 
 @dataclass(slots=True)
@@ -45,7 +47,8 @@ def imports(connection: sqlite3.Connection) -> list[Import]:
         replaced = connection.execute(
             "SELECT count(*) FROM motor WHERE replaced_by = ?", (number,)
         ).fetchone()[0]
-        found.append(Import(number, at, files, motors, replaced))
+        merged = tuple((a.name, b.name) for a, b in merged_by(connection, number))
+        found.append(Import(number, at, files, motors, replaced, merged))
     return found
 
 
@@ -64,15 +67,16 @@ def changed_motors(
     connection: sqlite3.Connection, import_id: int
 ) -> list[tuple[int | None, int | None]]:
     """What an import did: (earlier row, new row) a motor, None where there is none."""
+    # a sheet of a motor that is merged is taken aside at once; its earlier row is so already
     rows = connection.execute(
-        "SELECT (SELECT old.id FROM motor old WHERE old.replaced_by = :number "
-        "AND old.part_number = m.part_number AND old.maker = m.maker "
+        "SELECT (SELECT old.id FROM motor old WHERE :number IN (old.replaced_by, m.replaced_by) "
+        "AND old.id < m.id AND old.part_number = m.part_number AND old.maker = m.maker "
         "ORDER BY old.id DESC LIMIT 1), "
         f"m.id FROM files f JOIN sources s ON s.file = f.id JOIN motor m ON {OF_SOURCE} "
         'WHERE f."import" = :number ORDER BY m.id',
         {"number": import_id},
     ).fetchall()
-    seen = {old for old, _ in rows}
+    seen = {motor for row in rows for motor in row}
     gone = connection.execute(
         "SELECT id FROM motor WHERE replaced_by = ? ORDER BY id", (import_id,)
     ).fetchall()

@@ -60,6 +60,18 @@ def stands_for(connection: sqlite3.Connection, part: str) -> list[tuple[str, str
     return ends
 
 
+def merged_by(connection: sqlite3.Connection, import_id: int) -> list[tuple[Known, Known]]:
+    """The motors that a merging took aside, each with the one that it then stood for; their ids
+    are of no use here, and 0."""
+    return [
+        (Known(0, maker, part), Known(0, into_maker, into_part))
+        for maker, part, into_maker, into_part in connection.execute(
+            'SELECT maker, part_number, into_maker, into_part FROM merged WHERE "import" = ?',
+            (import_id,),
+        )
+    ]
+
+
 def also(connection: sqlite3.Connection, known: Known) -> list[Known]:
     """The latest revisions of the motors that were merged into this one, and into those."""
     out: list[Known] = []

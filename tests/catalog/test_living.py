@@ -81,6 +81,13 @@ def test_merged_on_a_word_kept_with_both_sheets_and_parted_by_undo(run, two_shee
     assert [also["source"]["file"].rsplit("/", 1)[-1] for also in shown["also"]] == ["shop.csv"]
     assert "Also Puffin A of" in run("show", "PUFFIN-A")[1]
     assert len(json.loads(run("same", "--json")[1])["pairs"]) == 2
+    (change,) = json.loads(run("diff", "--json")[1])["changes"]
+    assert change["change"] == "merged"
+    assert change["into"] == {"maker": "Puffinworks (invented)", "part_number": "PUFFIN-A"}
+    assert run("diff")[1] == "Puffin A: merged into Puffinworks (invented)/PUFFIN-A\n"
+    revisions = run("revisions")[1]
+    assert "1 motor merged" in revisions
+    assert "/Puffin A into Puffinworks (invented)/PUFFIN-A" in revisions
     status, _, _ = run("undo")
     assert status == 0
     assert json.loads(run("show", "Puffin A", "--json")[1])["part_number"] == "Puffin A"
@@ -94,8 +101,19 @@ def test_a_new_sheet_of_a_merged_motor_stays_aside(run, two_sheets, tmp_path, ca
     run("import", again, "--maker", "Puffinworks GmbH (invented)")
     with Catalog.open(catalog_file) as catalog:
         assert len(catalog) == 5
+    changes = json.loads(run("diff", "--json")[1])["changes"]
+    assert {c["part_number"]: c["change"] for c in changes} == dict.fromkeys(
+        ["Puffin A", "Puffin B", "Puffin C"], "changed"
+    )
     (also,) = json.loads(run("show", "PUFFIN-A", "--json")[1])["also"]
     assert also["part_number"] == "Puffin A"
+
+
+def test_a_removal_is_no_merging(run, sheet):
+    run("import", sheet)
+    run("remove", "PUFFIN-A")
+    assert run("diff")[1] == "1 motor removed: PUFFIN-A\n"
+    assert "1 motor taken out" in run("revisions")[1]
 
 
 def test_a_motor_is_not_merged_with_itself_or_with_none(run, sheet):
