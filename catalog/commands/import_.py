@@ -1,7 +1,7 @@
 """motorfolio import: files into the catalog."""
 
 import sys
-import time
+import threading
 from collections.abc import Iterator, Sequence
 from contextlib import contextmanager
 from pathlib import Path
@@ -142,14 +142,16 @@ def _progress() -> "Iterator[Progress | None]":
     columns = (SpinnerColumn(), TextColumn("{task.description}", markup=False), TimeElapsedColumn())
     bar = Bar(*columns, console=Console(stderr=True), transient=True)
     task = bar.add_task("")
-    start = time.monotonic()
+    # from a thread of its own: reading a long file may say nothing for a while
+    start = threading.Timer(SHOW_PROGRESS_AFTER, bar.start)
+    start.start()
 
     def report(file: str, motors: int) -> None:
-        if time.monotonic() - start > SHOW_PROGRESS_AFTER:
-            bar.start()
-            bar.update(task, description=f"{file}: {motors} motors")
+        bar.update(task, description=f"{file}: {motors} motors" if motors else f"{file}: reading")
 
     try:
         yield report
     finally:
+        start.cancel()
+        start.join()
         bar.stop()

@@ -59,6 +59,8 @@ def import_files(
     results: list[FileResult] = []
     with storing(catalog, options, corrections) as store:
         for file in files:
+            if progress is not None:
+                progress(file, 0)
             table_file, reading = _read(file, options, kept, standard_input)
             result = FileResult(table_file.name, table_file.sha256, table_file.format)
             result.headings = list(reading.headings)
