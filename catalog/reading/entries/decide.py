@@ -55,11 +55,11 @@ class Decisions:
         self.unread: list[Unread] = []
         self.remarks: list[str] = list(table.remarks)
         self.notes: Notes = notes_of([*table.titles, *table.notes])
-        take_up_dittos(table)
+        with_dittos = take_up_dittos(table)
         self.id_field = None if table.part_numbers else self._told_ids() or id_field(table)
         self.style = self._style()
         self.matches = self._match()
-        share_frame(table, self.matches, self.id_field)
+        share_frame(table, self.matches, self.id_field, with_dittos)
         self._stated_voltage()
         self.why_not: list[str] = []
         figures = [m for m in self.matches if tells_of_a_motor(m)]

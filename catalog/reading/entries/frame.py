@@ -12,11 +12,16 @@ ROWS_LOOKED_AT = 2000
 """Rows in which a ditto sign must first appear."""
 
 
-def take_up_dittos(table: Table) -> None:
-    """Cells that say "as above" take the text above."""
-    for f in table.fields:
-        if any(is_ditto(t) for t in set(f.texts[:ROWS_LOOKED_AT]) if not t[:1].isdigit()):
-            f.texts = _inherited(f.texts)
+def take_up_dittos(table: Table) -> list[Field]:
+    """Cells that say "as above" take the text above; the fields that have such cells."""
+    found = [
+        f
+        for f in table.fields
+        if any(is_ditto(t) for t in set(f.texts[:ROWS_LOOKED_AT]) if not t[:1].isdigit())
+    ]
+    for f in found:
+        f.texts = _inherited(f.texts)
+    return found
 
 
 def _inherited(texts: list[str]) -> list[str]:
@@ -26,13 +31,15 @@ def _inherited(texts: list[str]) -> list[str]:
     return out
 
 
-def share_frame(table: Table, matches: list[Match], id_field: Field | None) -> None:
+def share_frame(
+    table: Table, matches: list[Match], id_field: Field | None, with_dittos: list[Field]
+) -> None:
     """A figure of the frame that stands once, at the first of its motors, holds for all.
 
     Where a column names the frame (a model printed once, its windings below), it holds
     down to the next model; without one only if no other motor has the figure.
     """
-    groups = _frame_groups(table, matches, id_field)
+    groups = _frame_groups(table, matches, id_field, with_dittos)
     for m in matches:
         if m.role != "figure" or m.key is None or not quantity(m.key).frame:
             continue
@@ -50,7 +57,9 @@ def share_frame(table: Table, matches: list[Match], id_field: Field | None) -> N
             m.reason += "; printed once for the motors of a frame"
 
 
-def _frame_groups(table: Table, matches: list[Match], id_field: Field | None) -> list[list[int]]:
+def _frame_groups(
+    table: Table, matches: list[Match], id_field: Field | None, with_dittos: list[Field]
+) -> list[list[int]]:
     """Motors by frame, in runs of neighbours; none where the table shows no such habit."""
     figures = [m for m in matches if m.role == "figure"]
     if all(m.field.label.forced for m in figures):
@@ -60,7 +69,8 @@ def _frame_groups(table: Table, matches: list[Match], id_field: Field | None) ->
     for m in matches:
         if m.key in ("series", "part_number") and m.field is not id_field:
             texts = m.field.texts
-            if texts and texts[0] and not all(texts) and not _repeated(texts):
+            repeated = m.field not in with_dittos and _repeated(texts)
+            if texts and texts[0] and not all(texts) and not repeated:
                 return _runs(texts, _apart(texts, makers, id_field))
             if m.key == "series" and all(texts):
                 return _runs(
