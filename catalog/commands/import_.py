@@ -82,9 +82,9 @@ def command(
 ) -> int:
     """Read datasheet tables and store their motors.
 
-    A FILE is CSV, TSV, text, a workbook, PDF, HTML, JSON, TOML or Parquet; - is standard input. Headings
-    and units are recognised, with one motor a row or one a column; what can't be read is listed.
-    All files of a call are stored, or none.
+    A FILE is CSV, TSV, text, a workbook, PDF, HTML, JSON, TOML or Parquet; - is standard input.
+    Headings and units are recognised, with one motor a row or one a column; what can't be read is
+    listed. All files of a call are stored, or none.
     """
     from ..importing.run import Options, import_files
     from ..report.imported import print_import

@@ -302,7 +302,7 @@ def test_undo_asks_on_a_terminal_and_says_what_will_go(run, sheet, catalog_file,
     monkeypatch.setattr("click.termui.visible_prompt_func", lambda prompt: "n")
     status, _, err = run("undo")
     assert status == 130
-    assert "puffin.csv; 3 motors" in err
+    assert "3 motors: " in err
     with Catalog.open(catalog_file) as opened:
         assert len(opened) == 3
     status, _, err = run("undo", "--yes")
