@@ -4,6 +4,8 @@
 
 import pytest
 
+from motorfolio.schema.convention import Commutation, to_dc
+
 from .sheets import RPM, sheet
 
 
@@ -104,6 +106,35 @@ def test_phase_and_line_resistance():
     )
     assert s.convention("terminal_resistance").between == "lines"
     assert s.convention("terminal_resistance").basis == "stated"
+
+
+@pytest.mark.parametrize(
+    ("title", "heading", "factor"),
+    # line-to-line voltage over that of a winding: √3 in a star, 1 in a delta (from memory, any
+    # handbook of three-phase circuits)
+    [
+        ("Servo S, star connected windings", "Back-EMF per phase, peak (V/krpm)", 3**0.5),
+        ("Servo S, delta connected windings", "Back-EMF per phase, peak (V/krpm)", 1.0),
+        ("Servo S, delta connected windings", "Back-EMF, line to line, peak (V/krpm)", 1.0),
+        ("Servo S", "Back-EMF per phase of the delta, peak (V/krpm)", 1.0),
+    ],
+)
+def test_the_connection_of_the_windings_is_that_of_the_back_emf_too(title, heading, factor):
+    s = sheet(
+        f"{title}\nType | Rated current [A rms] | {heading} | Pole pairs\n"
+        "A | 4.2 | 60.5 | 4\nB | 2.1 | 121 | 4"
+    )
+    found = to_dc("back_emf_constant", s.convention("back_emf_constant"), Commutation.SINUSOIDAL)
+    assert found == pytest.approx(factor)
+
+
+def test_a_connection_alone_does_not_settle_peak_or_rms():
+    s = sheet(
+        "Servo S, delta connected windings\n"
+        "Type | Rated current [A rms] | Back-EMF (V/krpm) | Pole pairs\nA | 4.2 | 60.5 | 4"
+    )
+    assert s.convention("back_emf_constant").connection == "delta"
+    assert s.convention("back_emf_constant").basis == "assumed"
 
 
 def test_upper_case_export():

@@ -58,6 +58,8 @@ def convention_of(m: Match, commutation: Commutation, notes: Notes) -> Conventio
     ):
         kept.pop("voltage")
     basis = "inferred" if m.field.label.inferred else "stated"
+    if "voltage" in q.carries and set(kept) == {"connection"}:
+        basis = base.basis  # star or delta alone says nothing of how a back-EMF is measured
     convention = base.with_(**kept, basis=basis) if kept else base
     if "temperature" in q.carries:
         t = temperature_of(m)
