@@ -1,35 +1,36 @@
-"""The options of a requirement, as `search` has them, for the other commands that take one."""
+"""The options of a requirement for the commands that take one, made from their table."""
 
-from typing import TYPE_CHECKING, Any
+from pathlib import Path
+from typing import Any
 
 import click
 
-from . import search
+from ..requirement.options import OPTIONS, Option, requirement_of, says_the_load
 
-if TYPE_CHECKING:
-    from ..requirement.read import Requirement
-
-_OWN = ("catalog", "as_json", "explain", "save_requirement")
-_LOAD = ("torque", "speed", "cycle", "requirement")
+__all__ = ["requirement_of", "requirement_options", "says_the_load"]
 
 
 def requirement_options(command: click.Command) -> click.Command:
     """The command with the options of a requirement before its own."""
     command.params = [
         *(p for p in command.params if isinstance(p, click.Argument)),
-        *(p for p in search.command.params if p.name not in _OWN),
+        *map(_option, OPTIONS),
         *(p for p in command.params if not isinstance(p, click.Argument)),
     ]
     return command
 
 
-def says_the_load(options: dict[str, Any]) -> bool:
-    """Whether the options say what the load does."""
-    return any(options[name] for name in _LOAD)
-
-
-def requirement_of(options: dict[str, Any], *, load: bool = True) -> "Requirement":
-    """The requirement; without ``load`` that of a shaft of which nothing is asked."""
-    if not load:
-        options = options | {"torque": ("0 N·m",), "speed": ("0 rad/s",)}
-    return search._requirement(options)
+def _option(option: Option) -> click.Option:
+    more: dict[str, Any] = {}
+    match option.kind:
+        case "many":
+            more = {"multiple": True}
+        case "flag":
+            more = {"is_flag": True}
+        case "maybe":
+            more = {"is_flag": False, "flag_value": option.given}
+    if option.name == "requirement":
+        more["type"] = click.Path(path_type=Path)
+    if option.sign:
+        more["metavar"] = option.sign
+    return click.Option([option.flag, option.name], help=option.help, **more)

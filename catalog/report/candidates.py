@@ -27,7 +27,9 @@ def print_search(document: Document, console: Console) -> None:
         f"{_many(counts['considered'], 'motor')}: {feasible} {_verb(feasible, 'does')} it, "
         f"{rejected} {_verb(rejected, 'does')} not, {unknown} {_verb(unknown, 'is')} unknown."
     )
-    if candidates:
+    if counts["considered"] and not counts["pass_where"] and document["where"]:
+        console.print(Text(plain(_where_passes_none(document))))
+    elif candidates:
         console.print(candidate_table(candidates))
         for line in _notes(candidates):
             console.print(Text(line), soft_wrap=False)
@@ -45,6 +47,53 @@ def print_search(document: Document, console: Console) -> None:
         for miss in document["near_misses"]:
             console.print(Padding(Text(_miss(miss)), (0, 0, 0, 2)))
     console.print(Text(SAFETY, style="dim"))
+
+
+def why_none(document: Document) -> str:
+    """Why no motor was found, and what would do."""
+    counts = document["counts"]
+    if not counts["considered"]:
+        return "The catalog has no motors; read a table first: motorfolio import FILE."
+    if document["where"] and not counts["pass_where"]:
+        return "No motor passes --where; give limits that some motor meets."
+    if counts["lacking"]:
+        most = max(counts["lacking"], key=counts["lacking"].get)
+        figures = {
+            "thermal": "thermal resistances, or a continuous current, with a winding temperature",
+            "voltage": "inductance and pole pairs of sinusoidal motors",
+            "inertia_ratio": "the rotor's inertia",
+            "where": "the figures that --where asks for",
+            "gear": "efficiency, inertia and torque of the gears",
+        }.get(most, words(most))
+        unknown = counts["unknown"]
+        return (
+            f"No motor is known to do it; {unknown} {_verb(unknown, 'is')} unknown, most for lack "
+            f"of {figures}."
+        )
+    who = "No motor of the catalog does it"
+    if document["where"]:
+        who = f"None of the {_many(counts['pass_where'], 'motor')} that pass --where does it"
+        if counts["pass_where"] == 1:
+            who = "The one motor that passes --where does not do it"
+    if document["near_misses"]:
+        return f"{who}; the near misses tell what would admit one."
+    return f"{who}, and no single change of the requirement would admit one of the nearest."
+
+
+def _where_passes_none(document: Document) -> str:
+    """Which limit on stored figures lets no motor through, or that all of them together do not."""
+    none = [held for held in document["where"] if not held["passes"]]
+    if not none:
+        each = ", ".join(f"{held['limit']} {held['passes']}" for held in document["where"])
+        return f"No motor passes all of --where together; each alone passes: {each}."
+    held = none[0]
+    said = f'No motor passes --where "{held["limit"]}"'
+    if held["unknown"] == document["counts"]["considered"]:
+        return f"{said}: none has that figure."
+    if held["did_you_mean"]:
+        near = " or ".join(f'"{text}"' for text in held["did_you_mean"])
+        return f"{said}: a text must be equal as a whole, case aside; the catalog has {near}."
+    return f"{said}."
 
 
 def _many(n: int, noun: str) -> str:

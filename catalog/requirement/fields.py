@@ -14,6 +14,7 @@ from ...schema.errors import MotorfolioError, excerpt
 from ...schema.figure.read import POINT, read_figure
 from ...schema.spelling import nearest
 from ...schema.units.read import quantity, read_unit
+from ...schema.written import percent
 
 
 class RequirementError(MotorfolioError):
@@ -231,7 +232,12 @@ def _bounded(value: float, field: Field, name: str, given: Any) -> float:
             f"{name}: {quoted(given)} is too small; give {field.least:g} or more."
         )
     if field.most is not None and not value <= field.most:
-        most = f"{field.most:.0%}" if field.kind == "share" else f"{field.most:g}"
+        most = f"{field.most:g}"
+        if field.kind == "share":
+            most = percent(field.most)
+            plain = str(given).strip()
+            if value <= 100 * field.most and "%" not in plain:
+                most += f'; for per cent write the sign, too: "{plain} %"'
         raise RequirementError(f"{name}: {quoted(given)} is too large; give at most {most}.")
     return value
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import operator
 import re
 from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -13,6 +13,7 @@ from numpy.typing import NDArray
 
 from ...schema.canonical import CANONICAL
 from ...schema.errors import MotorfolioError
+from ...schema.spelling import nearest
 from ...schema.units.read import quantity, read_unit
 from ...schema.vocabulary import quantities
 from .fields import RequirementError, unknown
@@ -31,6 +32,8 @@ _SIGNS: dict[str, Callable[[Any, Any], Any]] = {
 _TEXT = re.compile(r"^\s*(?P<key>[\w.-]+)\s*(?P<sign><=|>=|!=|==|=|<|>|≤|≥|≠)\s*(?P<value>.+?)\s*$")
 #: Equal means equal to the digits that anyone types.
 _NEAR = 1e-9
+#: Texts offered where none is equal to what was given.
+_MEANT = 3
 
 
 @dataclass(frozen=True, slots=True)
@@ -84,12 +87,30 @@ def read_where(text: str) -> Where:
         raise RequirementError(f'--where "{text}": {error}.') from error
 
 
+@dataclass(frozen=True, slots=True)
+class Held:
+    """How many motors one limit lets through, and for how many it is not known. `near` holds
+    the catalog's own texts that may have been meant where an equality passes none."""
+
+    limit: Where
+    passes: int
+    unknown: int
+    near: tuple[str, ...] = ()
+
+
 @dataclass
 class Passed:
-    """Which motors a set of limits lets through: `rejected` and `unknown` are of shape (M,)."""
+    """Which motors a set of limits lets through: `rejected` and `unknown` are of shape (M,).
+    `held` tells of each limit on its own."""
 
     rejected: NDArray[np.bool_]
     unknown: NDArray[np.bool_]
+    held: list[Held] = field(default_factory=list)
+
+    @property
+    def passes(self) -> int:
+        """Motors that every limit lets through."""
+        return int((~self.rejected & ~self.unknown).sum())
 
 
 def apply_where(
@@ -100,6 +121,7 @@ def apply_where(
     """Hold motors against the limits; a figure that a motor lacks leaves it unknown."""
     n = len(columns["id"])
     rejected, unknown_ = np.zeros(n, bool), np.zeros(n, bool)
+    held = []
     for limit in limits:
         if limit.is_text:
             keeps, known = _text(limit, columns["id"], catalog)
@@ -107,7 +129,12 @@ def apply_where(
             keeps, known = _number(limit, columns, catalog)
         rejected |= known & ~keeps
         unknown_ |= ~known
-    return Passed(rejected, unknown_ & ~rejected)
+        passes = int((known & keeps).sum())
+        near = ()
+        if limit.is_text and limit.sign == "=" and n and not passes:
+            near = _meant(limit, catalog)
+        held.append(Held(limit, passes, int((~known).sum()), near))
+    return Passed(rejected, unknown_ & ~rejected, held)
 
 
 def _number(
@@ -153,23 +180,46 @@ def _currencies(ids: NDArray[np.float64], catalog: Catalog) -> NDArray[np.str_]:
 def _text(
     limit: Where, ids: NDArray[np.float64], catalog: Catalog
 ) -> tuple[NDArray[np.bool_], NDArray[np.bool_]]:
-    column = {
-        "commutation": "k.commutation",
-        "magnet": "nullif(k.magnet, 'unknown')",
-        "maker": "nullif(m.maker, '')",
-        "part_number": "m.part_number",
-        "series": "m.series",
-    }.get(limit.key, f't."{limit.key}"')
-    join = "JOIN figure_text t ON t.id = m.id " if column.startswith("t.") else ""
+    column, motors = _column(limit.key)
     rows = catalog.connection.execute(
-        f"SELECT {column} IS NULL, {column} = ? COLLATE NOCASE FROM motor m "
-        f"JOIN kinds k ON k.id = m.kind {join}WHERE m.replaced_by IS NULL ORDER BY m.id",
+        f"SELECT {column} IS NULL, {column} = ? COLLATE NOCASE {motors} ORDER BY m.id",
         (limit.value,),
     ).fetchall()
     table = np.array(rows, dtype=np.float64).reshape(-1, 2)
     assert len(table) == len(ids)
     known, equal = table[:, 0] == 0, table[:, 1] == 1
     return (equal if limit.sign == "=" else ~equal), known
+
+
+def _column(key: str) -> tuple[str, str]:
+    """SQL of a text of motors, and of all motors that it is taken from."""
+    column = {
+        "commutation": "k.commutation",
+        "magnet": "nullif(k.magnet, 'unknown')",
+        "maker": "nullif(m.maker, '')",
+        "part_number": "m.part_number",
+        "series": "m.series",
+    }.get(key, f't."{key}"')
+    join = "JOIN figure_text t ON t.id = m.id " if column.startswith("t.") else ""
+    motors = f"FROM motor m JOIN kinds k ON k.id = m.kind {join}WHERE m.replaced_by IS NULL"
+    return column, motors
+
+
+def _meant(limit: Where, catalog: Catalog) -> tuple[str, ...]:
+    """The catalog's texts that hold what was given, the shortest first, else the likest ones,
+    else those with the likest word."""
+    column, motors = _column(limit.key)
+    rows = catalog.connection.execute(
+        f"SELECT DISTINCT {column} {motors} AND {column} IS NOT NULL ORDER BY 1"
+    )
+    known = {text.casefold(): text for (text,) in rows if isinstance(text, str)}
+    wanted = str(limit.value).casefold()
+    within = sorted((text for text in known if wanted in text), key=lambda t: (len(t), t))
+    near = within or nearest(wanted, known, most=_MEANT)
+    if not near:
+        words = {word: text for text in reversed(known) for word in text.split()}
+        near = [*dict.fromkeys(words[word] for word in nearest(wanted, words, most=_MEANT))]
+    return tuple(known[text] for text in near[:_MEANT])
 
 
 def columns_of(limits: Sequence[Where]) -> list[str]:

@@ -41,11 +41,21 @@ def search_document(found: Found, misses: Sequence[Miss], catalog: Catalog) -> D
         "requirement": requirement_document(found.requirement),
         "counts": {
             "considered": found.considered,
+            "pass_where": found.passed.passes,
             "feasible": found.feasible,
             "unknown": found.unknown,
             "rejected": found.rejected,
             "lacking": found.lacking,
         },
+        "where": [
+            {
+                "limit": held.limit.text,
+                "passes": held.passes,
+                "unknown": held.unknown,
+                "did_you_mean": list(held.near),
+            }
+            for held in found.passed.held
+        ],
         "candidates": [candidate_document(shown, found, catalog) for shown in found.candidates],
         "near_misses": [
             {

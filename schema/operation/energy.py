@@ -100,10 +100,11 @@ def _draw(m, demand, ratio, temperature, bridge_drop, pieces):
     edges = np.stack([np.zeros_like(p0), cuts[0], cuts[1], np.ones_like(p0)])
     primitive = edges * (p0 + edges * (b / 2 + edges * a / 3))
     energy = np.diff(primitive, axis=0) * duration  # (3, n, P, 2)
-    energy = np.moveaxis(energy, 0, -1).reshape(len(ratio), -1)  # in the order of time
+    n, P = len(ratio), len(pieces.duration)
+    energy = np.moveaxis(energy, 0, -1).reshape(n, 6 * P)  # in the order of time
     drawn = np.maximum(energy, 0).sum(axis=1)
     returned = np.maximum(-energy, 0).sum(axis=1)
-    flat = (len(ratio), -1)
+    flat = (n, 2 * P)
     return (
         np.maximum(highest.reshape(flat).max(axis=1), 0),
         np.maximum(-lowest.reshape(flat).min(axis=1), 0),

@@ -120,14 +120,70 @@ def test_none_found_is_status_1(run) -> None:
     status, out, err = run("search", "--torque", "900 N·m", "--speed", "3000 rpm")
     assert status == 1
     assert "No motor does it" in out
-    assert "see the near misses" in err
+    assert "Near misses" not in out
+    assert "no single change" in err
+
+
+@pytest.mark.parametrize(
+    ("where", "said"),
+    [
+        (["maker = Quasselbach"], 'the catalog has "Quasselbach Kleinantriebe (erfunden)"'),
+        (["maker = Quaselbach"], 'the catalog has "Quasselbach Kleinantriebe (erfunden)"'),
+        (["part_number = rin-22"], 'has "BRIN-22-A" or "BRIN-22-B" or "BRIN-22-C"'),
+        (["mass > 90 kg"], 'No motor passes --where "mass > 90 kg".'),
+        (["length < 1 mm", "mass < 0.1 kg"], '--where "length < 1 mm"'),
+        (["mass < 0.1 kg", "mass > 1 kg"], "together; each alone passes: mass < 0.1 kg 14,"),
+    ],
+)
+def test_limits_that_no_motor_passes_say_so_first(run, where, said) -> None:
+    words = [word for limit in where for word in ("--where", limit)]
+    status, out, err = run("search", *POINT, *words)
+    lines = " ".join(out.split("\n"))
+    assert status == 1
+    assert said in " ".join(lines.split())
+    assert out.splitlines()[1].startswith("No motor passes")
+    assert err.startswith("No motor passes --where")
+    document = json.loads(run("search", *POINT, *words, "--json")[1])
+    assert document["counts"]["pass_where"] == 0
+    assert [held["limit"] for held in document["where"]] == where
+
+
+def test_near_misses_are_only_pointed_to_where_there_are_some(run) -> None:
+    status, out, err = run("search", *POINT, "--where", "mass < 60 g", "--reserve", "99 %")
+    assert status == 1
+    assert ("Near misses" in out) == ("near misses" in err)
+    assert "that pass --where" in err
+
+
+REQUIREMENTS = [
+    [*POINT, "--supply-power", "50 W"], [*POINT, "--supply-current", "5 A", "--ratio", "2..9"],
+    [*POINT, "--gears"], [*POINT, "--inertia-ratio", "3", "--worst-case", "printed"],
+    [*POINT, "--pwm-frequency", "20 kHz", "--where", "maker = X", "--where", "price < 5 EUR"],
+    *(["--requirement", str(SAMPLES / "machines" / f"{name}.toml")]
+      for name in ("lift_axis", "rotary_table", "hand_tool")),
+]  # fmt: skip
+
+
+@pytest.mark.parametrize("asked", REQUIREMENTS, ids=range(len(REQUIREMENTS)))
+def test_an_empty_catalog_says_so(tmp_path, capsys, asked) -> None:
+    path = str(tmp_path / "empty.sqlite")
+    assert main(["gears", str(SAMPLES / "gears.csv"), "--catalog", path]) == 0
+    capsys.readouterr()
+    assert main(["search", *asked, "--catalog", path]) == 1
+    out = capsys.readouterr()
+    assert out.out == ""
+    assert out.err == "The catalog has no motors; read a table first: motorfolio import FILE.\n"
+    assert main(["search", *asked, "--json", "--catalog", path]) == 1
+    assert json.loads(capsys.readouterr().out)["counts"]["considered"] == 0
 
 
 @pytest.mark.parametrize(
     ("words", "said"),
     [
         (["--torque", "0.1", "--speed", "1 rpm"], "--torque: "),
-        (["--torque", "1 N·m"], "a point needs both"),
+        (["--torque", "1 N·m"], "--torque is given, --speed is not; give both"),
+        (["--speed", "1 rpm", "--speed", "2 rpm", "--torque", "1 N·m"], "once, --speed twice"),
+        ([*POINT, "--duration", "1 s", "--duration", "2 s"], "twice for 1 point;"),
         (["--torque", "1 N·m", "--speed", "1 rpm", "--cycle", "c.csv"], "--torque and --cycle"),
         (["--cycle", "c.csv"], "no cycle file"),
         ([*POINT, "--ratio", "20..3"], "--ratio: "),

@@ -15,6 +15,7 @@ from motorfolio.catalog.requirement.fields import (
     read_ratio,
 )
 from motorfolio.catalog.requirement.file import merged, read_file, saved, to_toml
+from motorfolio.catalog.requirement.options import OPTIONS, requirement_of
 from motorfolio.catalog.requirement.read import read_requirement
 from motorfolio.catalog.requirement.schema import json_schema
 from motorfolio.catalog.requirement.where import read_where
@@ -108,7 +109,7 @@ SUPPLY = {"supply": {"voltage": "24 V"}}
         ({**POINT, "gear": {"ratio": "20..3"}}, "3..20"),
         ({**POINT, "gear": {"ratio": "0"}}, "above 0"),
         ({**POINT, "gear": {"ratio": "much"}}, "gear ratio"),
-        ({**POINT, "gear": {"efficiency": "130 %"}}, "at most 100%"),
+        ({**POINT, "gear": {"efficiency": "130 %"}}, "at most 100 %."),
         ({**POINT, "gear": {"use": "catalog", "efficiency": 0.9}}, "bring their own"),
         ({**POINT, "supply": {"voltage": "24 V", "lowest_voltage": "30 V"}}, "exchange"),
         ({**POINT, "supply": {"bridge_drop": "1 V"}}, "supply.voltage"),
@@ -278,3 +279,21 @@ def test_every_key_is_documented() -> None:
         for key, field in fields.items():
             assert f"| `{key}` |" in block
             assert field.doc in block
+
+
+def test_every_option_sets_a_key_that_exists() -> None:
+    """An option's row names a section and a key of the table of fields, and none stands twice."""
+    for option in OPTIONS:
+        if option.section:
+            assert option.key in {**SECTIONS, **LISTS}[option.section], option.name
+    assert len({o.name for o in OPTIONS}) == len(OPTIONS)
+    keys = [(o.section, o.key) for o in OPTIONS if o.key]
+    assert len(set(keys)) == len(keys)
+
+
+def test_a_limit_of_candidates_is_saved_as_a_number() -> None:
+    given = dict.fromkeys(option.name for option in OPTIONS)
+    given |= {"torque": ("1 N·m",), "speed": ("1 rpm",), "duration": (), "limit": "1"}
+    requirement = requirement_of(given)
+    assert "limit = 1\n" in saved(requirement)
+    assert requirement.limit == 1
