@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any
 if TYPE_CHECKING:
     from .entry import Entry, Finding, Motor, json_schema
     from .errors import MotorfolioError
-    from .units.read import convert
+    from .units.convert import convert
     from .vocabulary import quantities
 
 __all__ = [
@@ -29,7 +29,7 @@ _HOMES = {
     "Finding": ".entry",
     "Motor": ".entry",
     "MotorfolioError": ".errors",
-    "convert": ".units.read",
+    "convert": ".units.convert",
     "json_schema": ".entry",
     "quantities": ".vocabulary",
 }

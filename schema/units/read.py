@@ -11,10 +11,9 @@ from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
 from functools import lru_cache
-from typing import NamedTuple
 
 from ..errors import MotorfolioError, excerpt
-from ..figure.read import POINT, read_figure
+from ..figure.read import POINT, FigureError, read_figure
 from ..figure.signs import plain
 from ..spelling import nearest
 from .factors import evaluate
@@ -56,16 +55,8 @@ class Unit:
     remark: str = ""
 
 
-class Converted(NamedTuple):
-    """A value in the unit that was asked for; ``remark`` says how its text was taken, if not
-    by its plain meaning."""
-
-    value: float
-    unit: str
-    remark: str
-
-
 _LONGEST = 100
+_NO_COMMA = "write the number without a comma; the decimal sign is a point"
 # Where a million is absurd for a motor, an upper-case M is a thousandth.
 _NEVER_MEGA = {"V", "A", "H", "N·m", "N·m/A", "V·s/rad", "N·m/√W", "rad/(s·N·m)", "s", "m"}
 
@@ -89,9 +80,9 @@ def _read(text: str, accepts: tuple[str, ...]) -> Unit | UnitError:
     if not text.strip():
         if "1" in accepts:
             return Unit(text, "1", 1.0, 0.0, "1")
-        return UnitError(text, f"no unit is given; {_or(accepts)} would do")
+        return UnitError(text, f"no unit is given; {spelt_out(accepts)} would do")
     if len(text) > _LONGEST:
-        return UnitError(text, f"longer than any unit; {_or(accepts)} would do")
+        return UnitError(text, f"longer than any unit; {spelt_out(accepts)} would do")
     if accepts == ("m",) and re.match(r"[×xX*]\s*1000", bare(text)):
         return UnitError(text, "it may be a factor or a second dimension; write one length")
     if (money := _currency(text, accepts)) is not None:
@@ -243,7 +234,8 @@ def _radian_not_written(product: Product, si: str, wanted: str) -> bool:
 _RADIAN = Product((("radian", Fraction(1)),))
 
 
-def _or(accepts: Sequence[str]) -> str:
+def spelt_out(accepts: Sequence[str]) -> str:
+    """The units as a refusal lists them."""
     return " or ".join("a currency such as EUR" if si == "currency" else si for si in accepts)
 
 
@@ -271,8 +263,10 @@ def _refusal(
             guesses = (si, si.replace("rad", "rev"))
             return UnitError(text, "it does not say whether it counts radians or turns", guesses)
     other = unit_of(text)
-    what = f"it is a unit of {other.si}" if other else "it is a unit of another quantity"
-    return UnitError(text, f"{what}; {_or(accepts)} would do")
+    what = "it is a unit of another quantity"
+    if other is not None and other.si != text.strip():
+        what = f"it is a unit of {other.si}"
+    return UnitError(text, f"{what}; {spelt_out(accepts)} would do")
 
 
 @lru_cache(maxsize=8192)
@@ -341,57 +335,32 @@ def quantity(text: str, accepts: tuple[str, ...]) -> float:
     The decimal sign is a point. A bare number is refused unless "1" is accepted. Raises
     FigureError or UnitError.
     """
-    value, unit = _number_and_unit(text)
+    value, unit = number_and_unit(text)
     if not unit and "1" not in accepts:
-        raise UnitError(text, f"a number without a unit; {_or(accepts)} would do")
+        raise UnitError(text, f"a number without a unit; {spelt_out(accepts)} would do")
     read = read_unit(unit, accepts)
-    return _finite(value * read.factor + read.offset, text)
+    return finite(value * read.factor + read.offset, text)
 
 
-_CONSTANTS, _SPEED_CONSTANT = ("N·m/A", "V·s/rad"), ("rad/(s·V)",)
-_RECIPROCALS = {_CONSTANTS: _SPEED_CONSTANT, _SPEED_CONSTANT: _CONSTANTS}
-
-
-def convert(text: str, target: str) -> Converted:
-    """A number with its unit in another unit: ("4.3 V/krpm", "N·m/A") → 0.0411 N·m/A.
-
-    A torque constant and a back-EMF constant are the same SI number and convert to each other; a
-    speed constant is their reciprocal, and the remark says so. Raises FigureError or UnitError.
-    """
-    wanted = unit_of(target)
-    if wanted is None:
-        raise UnitError(target, "not understood as a unit to convert to")
-    value, unit = _number_and_unit(text)
-    reciprocal = next((_RECIPROCALS[k] for k in _RECIPROCALS if wanted.si in k), ())
-    accepts = next((k for k in _RECIPROCALS if wanted.si in k), (wanted.si,))
-    if not unit and wanted.si != "1":
-        raise UnitError(text, f"a number without a unit; {_or(accepts)} would do")
-    known = unit_of(unit) if reciprocal else None
-    turned = known is not None and known.si in reciprocal
-    source = read_unit(unit, reciprocal if turned else accepts)
-    si = value * source.factor + source.offset
-    said = [source.remark, wanted.remark]
-    if turned:
-        if si == 0:
-            raise UnitError(unit, "a constant of zero has no reciprocal")
-        si = 1 / si
-        said.append(f"the reciprocal: 1/({text.strip()})")
-    remark = "; ".join(r for r in said if r)
-    return Converted(_finite((si - wanted.offset) / wanted.factor, text), target, remark)
-
-
-def _finite(value: float, text: str) -> float:
+def finite(value: float, text: str) -> float:
+    """The value; UnitError where it is too large for a number."""
     if not math.isfinite(value):
         raise UnitError(text, "the quantity is too large for a number")
     return value
 
 
-def _number_and_unit(text: str) -> tuple[float, str]:
-    figure = read_figure(text, POINT)
+def number_and_unit(text: str) -> tuple[float, str]:
+    """A typed number and the text of its unit, unread. Raises FigureError or UnitError."""
+    try:
+        figure = read_figure(text, POINT)
+    except FigureError:
+        if re.search(r"\d,\d", text):
+            raise UnitError(text, _NO_COMMA) from None
+        raise
     if figure is None:
         raise UnitError(text, "a number with a unit is wanted")
     if figure.qualifier or figure.also or figure.marks:
         raise UnitError(text, "one plain number with a unit is wanted")
     if figure.other is not None and "," in text:
-        raise UnitError(text, "write the number without a comma; the decimal sign is a point")
+        raise UnitError(text, _NO_COMMA)
     return figure.value, figure.unit

@@ -6,7 +6,8 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from motorfolio.schema.units.read import UnitError, convert
+from motorfolio.schema.units.convert import convert
+from motorfolio.schema.units.read import UnitError
 from motorfolio.schema.written import in_words, number, percent, quantity
 
 
