@@ -11,9 +11,6 @@ from numpy.typing import NDArray
 
 from ..batch import Floats
 
-BLOCK = 512
-"""Motors eliminated at a time: what fits a processor's cache."""
-
 
 @dataclass(slots=True)
 class Factor:
@@ -34,11 +31,16 @@ class Factor:
         return x
 
     def inverse(self) -> Floats:
-        """The inverses of the matrices, (A, A, n)."""
-        out = np.empty_like(self.lower)
-        for start in range(0, out.shape[2], BLOCK):
-            part = slice(start, start + BLOCK)
-            out[:, :, part] = _inverse(self.lower[:, :, part])
+        """The inverses of the matrices, (A, A, n): that of the triangle, times itself."""
+        size, lower = len(self.lower), self.lower
+        triangle, out = np.zeros_like(lower), np.empty_like(lower)
+        for i in range(size):
+            done = np.einsum("kn,kjn->jn", lower[i, :i], triangle[:i, :i])
+            triangle[i, :i] = -lower[i, i] * done
+            triangle[i, i] = lower[i, i]
+        for i in range(size):
+            out[i, : i + 1] = np.einsum("kn,kjn->jn", triangle[i:, i], triangle[i:, : i + 1])
+            out[:i, i] = out[i, :i]
         return out
 
     def log_determinant(self) -> Floats:
@@ -57,28 +59,11 @@ def factor(packed: Floats, place: NDArray[np.integer], least: Floats) -> Factor:
     fall below: what stands on the diagonal beside sums of squares. Rounding that brings one lower
     is put right by it.
     """
-    size, n = len(place), packed.shape[1]
-    lower = np.empty((size, size, n))
-    for start in range(0, n, BLOCK):
-        part = slice(start, start + BLOCK)
-        own, block = packed[:, part], lower[:, :, part]
-        for k in range(size):
-            column = own[place[k:, k]]
-            column -= np.einsum("ikn,kn->in", block[k:, :k], block[k, :k])
-            block[k, k] = 1.0 / np.sqrt(np.maximum(column[0], least[k]))
-            np.multiply(column[1:], block[k, k], out=block[k + 1 :, k])
+    size = len(place)
+    lower = np.empty((size, size, packed.shape[1]))
+    for k in range(size):
+        column = packed[place[k:, k]]
+        column -= np.einsum("ikn,kn->in", lower[k:, :k], lower[k, :k])
+        lower[k, k] = 1.0 / np.sqrt(np.maximum(column[0], least[k]))
+        np.multiply(column[1:], lower[k, k], out=lower[k + 1 :, k])
     return Factor(lower)
-
-
-def _inverse(lower: Floats) -> Floats:
-    """The inverse of the triangle, then its product with itself."""
-    size = len(lower)
-    triangle, out = np.zeros_like(lower), np.empty_like(lower)
-    for i in range(size):
-        done = np.einsum("kn,kjn->jn", lower[i, :i], triangle[:i, :i])
-        triangle[i, :i] = -lower[i, i] * done
-        triangle[i, i] = lower[i, i]
-    for i in range(size):
-        out[i, : i + 1] = np.einsum("kn,kjn->jn", triangle[i:, i], triangle[i:, : i + 1])
-        out[:i, i] = out[i, :i]
-    return out
