@@ -27,6 +27,7 @@ from ..schema.operation.drive import (
     torque_at_current,
 )
 from ..schema.operation.machines import Commutation, Machines
+from ..schema.written import number, quantity
 from .documents import amount
 from .search.fleet import load_fleet
 
@@ -69,26 +70,43 @@ def at_work(
     supply, current = asked["supply"], asked["current"]
     if supply is None and current is None:
         raise OperateError("Say what drives the motor: --supply, --current, or both.")
+    if supply == 0:
+        raise OperateError("--supply: 0 V is no supply; for a shorted motor give one and --duty 0.")
     document: Document = {
         "part_number": part_number,
         "maker": maker,
         "winding_temperature": amount(temperature, "°C"),
+        "holds": True,
         "notes": [],
     }
     if motor.commutation != Commutation.SINUSOIDAL and np.isnan(machines.coulomb_torque[0]):
         document["notes"].append("its sheet gives no friction: taken as 0")
     if supply is not None:
-        document["voltage_control"] = _voltage(motor, machines, asked, document["notes"])
+        document["voltage_control"] = _voltage(motor, machines, asked, document)
     if current is not None:
-        document["current_control"] = _current(motor, asked, document["notes"])
+        document["current_control"] = _current(motor, asked, document)
     if asked["deceleration"] is not None:
         document["braking"] = _braking(motor, asked)
     return document
 
 
+def _driven_back(document: Document, load: float, most: float, at: str, friction: float) -> None:
+    """Say that the load would drive the motor backward: more than `most` and friction hold it."""
+    document["holds"] = False
+    load_text, most_text = quantity(load, "N·m"), quantity(most, "N·m")
+    if most <= 0:
+        said = f"{at} gives no torque, and a load of {load_text} is more than friction holds"
+        said += f" ({quantity(friction, 'N·m')})"
+    else:
+        times = f"{number(load / most, 3)} times the stall torque"
+        said = f"a load of {load_text} is {times} of {most_text} that {at} gives"
+    document["notes"].append(f"{said}: it would drive the motor backward")
+
+
 def _voltage(
-    motor: Motor, machines: Machines, asked: Mapping[str, float | None], notes: list[str]
+    motor: Motor, machines: Machines, asked: Mapping[str, float | None], whole: Document
 ) -> Document:
+    notes = whole["notes"]
     supply, torque = asked["supply"], asked["torque"] or 0.0
     assert supply is not None
     drop, duty = asked["drop"] or 0.0, asked["duty"]
@@ -100,13 +118,21 @@ def _voltage(
         "voltage": amount(voltage, "V"),
         "no_load_speed": amount(no_load_speed(motor, voltage), "rad/s"),
         "load_torque": amount(torque, "N·m"),
-        "speed": amount(speed, "rad/s"),
-        "current": amount(point.current, "A"),
-        "mechanical_power": amount(point.mechanical_power, "W"),
-        "electrical_power": amount(point.electrical_power, "W"),
-        "copper_loss": amount(point.copper_loss, "W"),
     }
-    if speed == 0:
+    inner = motor.torque_constant * voltage / motor.armature_resistance
+    stall = max(inner - motor.coulomb_torque, 0.0)
+    if torque > inner + motor.coulomb_torque:
+        document["torque_at_standstill"] = amount(stall, "N·m")
+        _driven_back(whole, torque, stall, quantity(voltage, "V"), motor.coulomb_torque)
+    else:
+        document |= {
+            "speed": amount(speed, "rad/s"),
+            "current": amount(point.current, "A"),
+            "mechanical_power": amount(point.mechanical_power, "W"),
+            "electrical_power": amount(point.electrical_power, "W"),
+            "copper_loss": amount(point.copper_loss, "W"),
+        }
+    if speed == 0 and whole["holds"]:
         notes.append("the shaft stands: at this voltage the motor does not turn against that load")
         document["current"] = amount(voltage / motor.armature_resistance, "A")
         document["electrical_power"] = amount(voltage**2 / motor.armature_resistance, "W")
@@ -167,7 +193,8 @@ def _ripple(
     return document
 
 
-def _current(motor: Motor, asked: Mapping[str, float | None], notes: list[str]) -> Document:
+def _current(motor: Motor, asked: Mapping[str, float | None], whole: Document) -> Document:
+    notes = whole["notes"]
     current, torque = asked["current"], asked["torque"] or 0.0
     assert current is not None
     inertia, speed = asked["load_inertia"] or 0.0, asked["speed"]
@@ -179,6 +206,10 @@ def _current(motor: Motor, asked: Mapping[str, float | None], notes: list[str]) 
             acceleration_at_current(motor, current, 0.0, torque, inertia), "rad/s²"
         ),
     }
+    inner = motor.torque_constant * current
+    if torque > max(inner, 0.0) + motor.coulomb_torque:
+        stall = max(inner - motor.coulomb_torque, 0.0)
+        _driven_back(whole, torque, stall, quantity(current, "A"), motor.coulomb_torque)
     if speed is not None:
         document["torque_at_speed"] = amount(torque_at_current(motor, current, speed), "N·m")
         document["time_to_speed"] = amount(

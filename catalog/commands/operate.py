@@ -71,11 +71,11 @@ def command(
         document = at_work(opened, part, asked, 25.0 if degrees is None else degrees)
     if as_json:
         print_json(document)
-        return 0
+        return 0 if document["holds"] else 1
     from ..report.at_work import lines
     from ..report.safety import SAFETY
 
     for line in lines(document):
         click.echo(line)
     click.echo(SAFETY)
-    return 0
+    return 0 if document["holds"] else 1

@@ -253,6 +253,40 @@ def test_operate_against_the_circuit_equation(run) -> None:
     assert acceleration == pytest.approx((torque - 0.2e-3) / k["rotor_inertia"], rel=1e-3)
 
 
+def test_a_load_beyond_stall_does_not_hold(run) -> None:
+    """Stall torque Km·(U/Ra − I0) from the true constants; 25 times as much turns it backward,
+    and a load that friction still holds leaves it standing."""
+    truth = json.loads((SAMPLES / "truth.json").read_text(encoding="utf-8"))["motors"]
+    name = next(n for n, m in truth.items() if m["commutation"] == "brushed")
+    k = truth[name]["constants"]
+    Km, Ra, I0 = k["torque_constant"], k["armature_resistance"], k["no_load_current"]
+    stall = Km * (1.5 / Ra - I0)
+    status, out, _ = run("operate", name, "--supply", "1.5 V", "--torque", f"{25 * stall} N·m")
+    assert status == 1
+    assert "25 times the stall torque" in out
+    assert "would drive the motor backward" in out
+    assert " W" not in out.split("Note:")[0]
+    status, out, _ = run(
+        "operate", name, "--supply", "1.5 V", "--current", "0.1 A", "--torque",
+        f"{25 * stall} N·m", "--json",
+    )  # fmt: skip
+    document = json.loads(out)
+    assert status == 1
+    assert not document["holds"]
+    found = document["voltage_control"]["torque_at_standstill"]["value"]
+    assert found == pytest.approx(stall, rel=3e-3)
+    assert "speed" not in document["voltage_control"]
+    assert len(document["notes"]) == 2
+    held = stall + Km * I0
+    status, out, _ = run("operate", name, "--supply", "1.5 V", "--torque", f"{held} N·m")
+    assert status == 0
+    assert "the shaft stands" in out
+    shorted = ["--supply", "1.5 V", "--duty", "0"]
+    status, out, _ = run("operate", name, *shorted, "--torque", f"{stall} N·m")
+    assert status == 1
+    assert "more than friction holds" in out
+
+
 @pytest.mark.parametrize(
     ("words", "said"),
     [
@@ -262,6 +296,7 @@ def test_operate_against_the_circuit_equation(run) -> None:
         (["TERN-30", "--current", "1 A", "--duty", "120 %"], "--duty"),
         (["TERN-30", "--current", "1 A", "--deceleration", "1 rad/s²"], "give --speed"),
         (["TERN-30", "--supply", "-1 V"], "below 0"),
+        (["TERN-30", "--supply", "0 V"], "no supply"),
     ],
 )
 def test_bad_calls_of_operate(run, words, said) -> None:
