@@ -72,15 +72,16 @@ def dc_back_emf(convention: Convention, commutation: Commutation) -> float:
     """Back-EMF constant of the DC motor per printed back-EMF constant.
 
     Sinusoidal: peak line-to-line. Block: the mean that six-step currents make of it, 3/π of the
-    peak on a sine; on an ideal trapezoid the peak itself, whose rms is √5/3 of it. Stated dc, or
-    not said: one.
+    peak on a sine; on an ideal trapezoid the peak itself, whose rms is √5/3 of it between lines
+    (flat for 60°) and √7/3 in a phase (flat for 120°). Stated dc, or not said: one.
     """
     if convention.voltage in (None, "dc") or commutation is Commutation.BRUSHED:
         return 1.0
     trapezoid = convention.shape == "trapezoidal"
-    rms_to_peak = 3 / math.sqrt(5) if trapezoid else SQRT2
+    star_phase = convention.between == "phase" and convention.connection != "delta"
+    rms_to_peak = 3 / math.sqrt(7 if star_phase else 5) if trapezoid else SQRT2
     to_peak = rms_to_peak if convention.voltage == "rms" else 1.0
-    if convention.between == "phase" and convention.connection != "delta":
+    if star_phase:
         to_peak *= 2.0 if trapezoid else SQRT3
     if commutation is Commutation.BLOCK and not trapezoid:
         to_peak *= 3 / math.pi
