@@ -14,6 +14,8 @@ from typing import TYPE_CHECKING, Any, Self, TypedDict, Unpack
 from ..schema.entry import Entry, Motor, MotorFinding
 from ..schema.errors import MotorfolioError
 from .importing.run import STANDARD_INPUT, FileResult, ImportResult, Options, import_files
+from .reading import ReadingError
+from .reading.headings.label import parse_label
 from .requirement.read import Requirement
 from .results import Judgement, MotorTable, SearchResult, Sheet, Table
 from .store import Catalog
@@ -72,17 +74,48 @@ def normalise(entry: Mapping[str, Any] | Entry, *, commutation: str | None = Non
     """Bring one entry to SI constants: ``{"part_number": "EX-1", "torque_constant": "30 mN·m/A"}``.
 
     Keys are figure keys or headings, values text with a unit. Raises MotorfolioError naming what
-    could not be read, so that nothing is dropped in silence.
+    is missing or could not be read, so that nothing is dropped in silence.
     """
-    sheet = read_table([entry], commutation=commutation)
+    given = _as_mapping(entry)
+    if not any(str(text).strip() and _names_part_number(key) for key, text in given.items()):
+        raise MotorfolioError(
+            'The entry has no part number; give it one, such as "part_number": "EX-1".'
+        )
+    try:
+        sheet = read_table([given], commutation=commutation)
+    except ReadingError:
+        # the reader takes it for no motor at all, and says nothing of its figures
+        sheet = read_table([{**given, **_SOME_FIGURES, **given}], commutation=commutation)
+        if not sheet.unread:
+            raise MotorfolioError(
+                "The entry has no figure of a motor beside its part number; give some, such as "
+                '"torque_constant": "30 mN·m/A".'
+            ) from None
     if sheet.unread:
         named = "; ".join(f"{u['heading']} {u['text']!r}: {u['reason']}" for u in sheet.unread)
         raise MotorfolioError(f"Not all of the entry could be read: {named}.")
     return sheet.motors[0]
 
 
+_SOME_FIGURES = {
+    "nominal_voltage": "24 V",
+    "terminal_resistance": "2.1 Ω",
+    "torque_constant": "31 mN·m/A",
+}
+"""With these any entry is one of a motor; used only to be told what is wrong with the others."""
+
+
+def _names_part_number(heading: str) -> bool:
+    label = parse_label(heading)
+    return label.forced == "part_number" or any("part_number" in n.keys for n in label.names)
+
+
+def _as_mapping(entry: Mapping[str, Any] | Entry) -> dict[str, Any]:
+    return entry.model_dump(exclude_none=True) if isinstance(entry, Entry) else dict(entry)
+
+
 def _entries(entries: Sequence[Mapping[str, Any] | Entry], options: Options) -> ImportResult:
-    flat = [e.model_dump(exclude_none=True) if isinstance(e, Entry) else dict(e) for e in entries]
+    flat = [_as_mapping(e) for e in entries]
     data = json.dumps(flat, ensure_ascii=False).encode()
     return import_files(
         NO_CATALOG, [STANDARD_INPUT], replace(options, format="json"), with_documents=True,

@@ -101,6 +101,13 @@ def test_normalise_takes_an_entry_and_tells_a_contradiction() -> None:
     [
         ({"part_number": "EX-1", "torque_constant": "30 mN·m/A", "stall_torque": "5 kg"}, "5 kg"),
         ({"part_number": "EX-1", "torque_constant": "30 mN·m/A", "glitter": "3 V"}, "glitter"),
+        ({"part_number": "EX-1", "torque_constant": "3 V"}, "torque_constant '3 V'"),
+        ({"part_number": "EX-1", "nominal_voltage": "3 A"}, "nominal_voltage '3 A'"),
+        ({"part_number": "EX-1", "glitter": "3 V"}, "glitter"),
+        ({"part_number": "EX-1"}, "no figure of a motor"),
+        ({"torque_constant": "30 mN·m/A", "terminal_resistance": "1 Ω"}, "no part number"),
+        ({"part_number": " ", "torque_constant": "30 mN·m/A"}, "no part number"),
+        ({}, "no part number"),
     ],
 )
 def test_normalise_drops_nothing_in_silence(entry: dict[str, str], said: str) -> None:
