@@ -15,6 +15,14 @@ OPTIONS = (
     "--disable-background-networking", "--disable-component-update", "--disable-sync",
 )  # fmt: skip
 
+PATIENCE = 180_000
+"""Milliseconds; beside other tests on few processors a browser may take its time."""
+
+
+def settled(page: Any) -> None:
+    """Wait until what was asked of the page is drawn: it draws in the next animation frame."""
+    page.evaluate("new Promise(done => requestAnimationFrame(() => requestAnimationFrame(done)))")
+
 
 def chromium() -> str:
     """The path of Chromium; skips the test where it or playwright is missing."""
@@ -34,8 +42,11 @@ def opened(path: Path, **options: Any) -> Iterator[Any]:
 
     complaints: list[str] = []
     with sync_playwright() as player:
-        browser = player.chromium.launch(executable_path=executable, args=list(OPTIONS))
+        browser = player.chromium.launch(
+            executable_path=executable, args=list(OPTIONS), timeout=PATIENCE
+        )
         page = browser.new_page(viewport={"width": 1400, "height": 900}, **options)
+        page.set_default_timeout(PATIENCE)
         page.on("console", lambda m: complaints.append(f"{m.type}: {m.text}"))
         page.on("pageerror", lambda error: complaints.append(f"error: {error}"))
         page.on(

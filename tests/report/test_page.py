@@ -14,7 +14,7 @@ from motorfolio.catalog.cli import main
 from motorfolio.catalog.report.implied import implied_figures
 from motorfolio.catalog.report.page.write import as_json, catalog_page
 
-from .browser import opened
+from .browser import opened, settled
 from .conftest import SAMPLES
 from .many import table
 
@@ -212,18 +212,17 @@ def test_settings_judge_anew_and_come_back(search_html: Path) -> None:
         now = page.locator("#now")
         first = now.inner_text()
         before = page.locator("#rows").inner_text()
-        page.locator("#supply").fill("14")
-        page.wait_for_function("document.getElementById('now').textContent.startsWith('Now')")
-        fewer = int(re.search(r"Now (\d+)", now.inner_text())[1])
-        page.locator("#supply").fill("60")
-        page.wait_for_function(
-            "fewer => Number(/Now (\\d+)/.exec(document.getElementById('now').textContent)?.[1])"
-            " > fewer",
-            arg=fewer,
-        )
+        doing = []
+        for supply in ("14", "60"):
+            page.locator("#supply").fill(supply)
+            settled(page)
+            doing.append(int(re.search(r"^Now (\d+) of", now.inner_text())[1]))
+        assert doing[1] > doing[0]
+        assert page.locator("#rows").inner_text() != before
         page.get_by_role("button", name="As asked").click()
-        page.wait_for_function("document.getElementById('now').textContent.startsWith('As asked')")
+        settled(page)
         assert now.inner_text() == first
+        assert first.startswith("As asked")
         assert page.locator("#rows").inner_text() == before
 
 
