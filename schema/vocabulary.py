@@ -75,9 +75,10 @@ class Words:
     fillers: tuple[str, ...]
     captions: tuple[str, ...]
     others: tuple[str, ...]
+    parts: tuple[str, ...]
 
 
-_LISTS = ("fillers", "captions", "others")
+_LISTS = ("fillers", "captions", "others", "parts")
 
 
 @cache

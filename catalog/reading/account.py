@@ -37,6 +37,8 @@ class _Taken:
                 whole.update((f.heading, *f.captions))
             self.texts.update(t for t in table.part_numbers if t)
             self.texts.update(t for row in table.head for t in row)
+            for text in (*table.titles, *table.notes):
+                self.texts.update((text, *text.split("\n")))
             whole.update((*table.titles, *table.notes, *table.remarks))
         # Most rows are motors of one table whose fields stand side by side: they need no look.
         self.rows = max(self.down.values(), key=len, default=set[int]())

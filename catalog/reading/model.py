@@ -62,6 +62,7 @@ class Field:
     ``layout`` is that of its own table where it came from another one.
     ``texts`` has one text a motor; ``row`` and ``column`` are the heading's place in the file.
     In layout "rows" the motors' cells stand in ``column``, in layout "columns" in ``row``.
+    ``part`` is the part built onto the motor that a caption says the figures are of.
     """
 
     heading: str
@@ -75,6 +76,7 @@ class Field:
     when: tuple[str, ...] = ()
     temperature: float | None = None
     variant: str | None = None
+    part: str | None = None
     source: int = 0
     places: list[int] | None = None
     layout: str | None = None

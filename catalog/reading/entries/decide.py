@@ -20,6 +20,7 @@ from ..matching.match import Match, Matcher
 from ..matching.purpose import is_of_gears, tells_of_a_motor
 from ..model import Field, ReadOptions, Table, Unread
 from .frame import share_frame, take_up_dittos
+from .identity import by_frame_and_winding, by_voltage
 from .kind import (
     ASSUMED,
     INFERRED,
@@ -53,12 +54,15 @@ class Decisions:
         self.stem = stem if position is None else f"{stem} {position + 1}"
         self.source = Source(file.name, file.sha256, table.sheet, table.page, table.layout)
         self.unread: list[Unread] = []
-        self.remarks: list[str] = list(table.remarks)
+        self.remarks = table.remarks
         self.notes: Notes = notes_of([*table.titles, *table.notes])
         with_dittos = take_up_dittos(table)
         self.id_field = None if table.part_numbers else self._told_ids() or id_field(table)
+        if self.id_field is not None:
+            by_frame_and_winding(table, self.id_field)
         self.style = self._style()
         self.matches = self._match()
+        by_voltage(table, self.matches, self.id_field, self.style)
         share_frame(table, self.matches, self.id_field, with_dittos)
         self._stated_voltage()
         self.why_not: list[str] = []

@@ -9,8 +9,8 @@ from ....schema.batch import MODEL_BASES
 from ....schema.convention import Commutation
 from ....schema.figure.signs import plain
 from ....schema.vocabulary import words
-from ..headings.lexicon import canonical, is_cjk, squeeze, tokens
-from ..headings.phrase import conventions_of
+from ..headings.lexicon import canonical, find_symbol, is_cjk, squeeze, tokens
+from ..headings.phrase import conventions_of, match_phrase
 from ..matching.match import Match
 
 TOLD, STATED, INFERRED, ASSUMED = (
@@ -109,6 +109,8 @@ def clauses_of(text: str) -> list[tuple[str | None, dict[str, str]]]:
     """
     found: list[tuple[str | None, dict[str, str]]] = []
     for sentence in re.split(r"[;；。]|\.\s", text):
+        if _explains_symbol(sentence):
+            continue
         subjects: list[str] = []
         said = False
         for clause in re.split(r",\s|、|\s(?:and|und|et|e|y)\s", sentence):
@@ -121,6 +123,17 @@ def clauses_of(text: str) -> list[tuple[str | None, dict[str, str]]]:
                 found += [(s, stated) for s in dict.fromkeys(subjects)] or [(None, stated)]
                 said = True
     return found
+
+
+_LEGEND = re.compile(r"[\"']?\s*(?P<symbol>\S{1,10})\s*[:=：]\s*(?P<name>.+)")
+
+
+def _explains_symbol(sentence: str) -> bool:
+    """Whether a clause tells what a symbol means ("Imax: peak current"), not how others hold."""
+    found = _LEGEND.match(plain(sentence).strip())
+    return found is not None and bool(
+        find_symbol(found["symbol"]) and match_phrase(found["name"]).keys
+    )
 
 
 def note_conventions(text: str) -> dict[str, str]:

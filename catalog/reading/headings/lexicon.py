@@ -89,6 +89,7 @@ class Lexicon:
     roles: dict[str, set[str]] = field(default_factory=dict)
     captions: set[str] = field(default_factory=set)
     others: set[str] = field(default_factory=set)
+    parts: set[str] = field(default_factory=set)
     fillers: frozenset[str] = frozenset()
     known: set[str] = field(default_factory=set)
     symbols: dict[str, list[str]] = field(default_factory=dict)
@@ -143,6 +144,7 @@ def lexicon() -> Lexicon:
             for form in _forms(name):
                 lex.roles.setdefault(squeeze(form), set()).add(meaning)
     lex.captions = {squeeze(form) for c in w.captions for form in _forms(c)}
+    lex.parts = {squeeze(form) for part in w.parts for form in _forms(part)}
     for other in w.others:
         for form in _forms(other):
             lex.others.add(squeeze(form))

@@ -5,6 +5,7 @@ from dataclasses import dataclass, field
 from functools import lru_cache
 
 from rapidfuzz import fuzz, process
+from rapidfuzz.distance import OSA
 
 from ....schema.figure.signs import plain
 from .lexicon import canonical, is_cjk, lexicon, squeeze, tokens, without_fillers
@@ -135,6 +136,26 @@ def variant_of(text: str) -> str | None:
     return lexicon().variants.get(squeeze(form)) or lexicon().variants.get(
         squeeze(without_fillers(form))
     )
+
+
+_BESIDE_A_PART = frozenset(tokens(
+    "option optional Optionen options optionnel opzionale opcional data Daten Werte values "
+    "specification specifications characteristics parameters unit section type typ built "
+    "integrated données dati datos caractéristiques características caratteristiche"
+))  # fmt: skip
+"""Words of a caption that say nothing beside the part that it names."""
+
+
+def part_of(text: str) -> str | None:
+    """The part built onto the motor (brake, gearbox, encoder) that a caption names, and nothing
+    else; None of any other text."""
+    clean = re.sub(r"[(（\[【].*?[)）\]】]|^\s*\d{1,2}[.)]?(?=\s)|[:：].*$", " ", plain(text))
+    form = tuple(t for t in canonical(tokens(clean)) if t not in _BESIDE_A_PART)
+    if is_cjk(clean):
+        run = re.sub(r"(?:部|部分|参数|參數|数据|特性|仕様|規格|规格|参数表)$", "", squeeze(form))
+        return clean.strip() if run in lexicon().parts else None
+    core = without_fillers(form)
+    return clean.strip() if core and squeeze(core) in lexicon().parts else None
 
 
 def section_of(text: str) -> str | None:
@@ -337,9 +358,7 @@ def _near(form: tuple[str, ...]) -> tuple[tuple[str, ...], float]:
             if mine in lex.known or len(theirs) < 4:
                 worst = 0.0
                 break
-            likeness = fuzz.ratio(mine, theirs) / 100
-            needed = 0.85 if is_cjk(mine) or len(theirs) <= 5 else 0.8
-            worst = min(worst, likeness if likeness >= needed else 0.0)
+            worst = min(worst, _misspelt(mine, theirs))
             if not worst:
                 break
         if worst:
@@ -349,6 +368,22 @@ def _near(form: tuple[str, ...]) -> tuple[tuple[str, ...], float]:
         return (), 0.0
     top = max(best.values())
     return tuple(sorted(k for k, v in best.items() if v >= top - 0.05)), TYPO
+
+
+def _misspelt(word: str, name: str) -> float:
+    """How like a word is to a name that it may be a slip of the pen for; 0 where it is none.
+
+    A slip is one wrong, missing or doubled letter, two in a long word, two neighbours changed
+    over. Another first letter, or another first part of a compound (Last-, Rastdrehmoment), is
+    another word.
+    """
+    slips = OSA.distance(word, name)
+    likeness = fuzz.ratio(word, name) / 100
+    if len(word) >= 8 and name.startswith(word):
+        return likeness if likeness >= 0.8 else 0.0  # cut short: Drehmomentkonst.
+    if word[0] != name[0] or slips > (2 if len(name) >= 9 and not is_cjk(word) else 1):
+        return 0.0
+    return likeness if likeness >= (0.85 if len(name) <= 5 or is_cjk(word) else 0.8) else 0.0
 
 
 @lru_cache(maxsize=4096)

@@ -9,7 +9,13 @@ from ..headings.label import parse_label
 from ..headings.phrase import match_phrase, section_of
 from ..model import Table
 from .blocks import Block
-from .columns_head import header_rows, heads_quantity, roles_of_columns, spread_conditions
+from .columns_head import (
+    header_rows,
+    heads_quantity,
+    joined_ids,
+    roles_of_columns,
+    spread_conditions,
+)
 from .conditions import fold_conditions
 from .heads import HeadCell, head_field
 from .lines import text_of
@@ -27,18 +33,25 @@ def lay_out_columns(block: Block) -> Table:
     values = [c for c in values if any(row[c] for row in rows[first:])]
     id_row, condition_row = header_rows(rows, first, label_column, values)
     conditions = [rows[condition_row][c] for c in values] if condition_row is not None else None
+    joined = None
     if id_row is not None and conditions is None:
+        joined = joined_ids(rows, first, id_row, label_column, values)
+    if id_row is not None and conditions is None and joined is None:
         condition_row, conditions = spread_conditions(rows, first, id_row, values)
     table = Table("columns", [], [block.column_numbers[c] for c in values])
     table.titles = [
-        text_of(row) for i, row in enumerate(rows[:first]) if i not in (id_row, condition_row)
+        text_of(row)
+        for i, row in enumerate(rows[:first])
+        if i not in (id_row, condition_row) and not (joined and i == joined[1])
     ]
+    if joined is not None:
+        table.remarks.append("the part numbers are joined from two rows, type and winding")
     caption: list[str] = []
     captioned = -2
     for i, row in enumerate(rows):
         if i in (id_row, condition_row):
             if i == id_row:
-                table.part_numbers = [row[c] or None for c in values]
+                table.part_numbers = list(joined[0]) if joined else [row[c] or None for c in values]
             continue
         if i < first and not (row[label_column] and any(is_figure(row[c]) for c in values)):
             continue

@@ -104,6 +104,28 @@ def header_rows(
     return best, conditions[0] if conditions else None
 
 
+def joined_ids(
+    rows: list[list[str]], first: int, id_row: int, label_column: int, values: list[int]
+) -> tuple[list[str], int] | None:
+    """Part numbers joined from two rows (type and winding) where one alone does not tell the
+    motors apart, and the other row; None where nothing of the kind stands there."""
+    ids = [rows[id_row][c] for c in values]
+    if len(set(ids)) == len(ids) or not all(ids):
+        return None
+    for i in range(max(first, id_row) + 1):
+        keys = {k for p in parse_label(rows[i][label_column]).names for k in p.keys}
+        if i == id_row or not keys & {"part_number", "series"}:
+            continue
+        others: list[str] = []
+        for c in values:
+            others.append(rows[i][c] or (others[-1] if others else ""))
+        pairs = zip(others, ids, strict=True) if i < id_row else zip(ids, others, strict=True)
+        joined = [" ".join(filter(None, pair)) for pair in pairs]
+        if len(set(joined)) == len(joined):
+            return joined, i
+    return None
+
+
 def spread_conditions(
     rows: list[list[str]], first: int, id_row: int, values: list[int]
 ) -> tuple[int | None, list[str] | None]:

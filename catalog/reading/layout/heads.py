@@ -7,7 +7,7 @@ from ....schema.figure.signs import plain
 from ....schema.units.read import unit_of
 from ..cells import is_caption, is_symbol, is_unit, strength
 from ..headings.label import Label, parse_label
-from ..headings.phrase import match_phrase, section_of
+from ..headings.phrase import match_phrase, part_of, section_of
 from ..model import Field
 
 HeadCell = tuple[str, str]
@@ -45,6 +45,7 @@ def head_field(
         units=tuple(f"{label.factor}{u}" for text in printed for u in unit_pair(text)),
         captions=tuple(captions), section=section, when=when,
         temperature=temperature, variant=variant,
+        part=next((part for c in reversed(captions) if (part := part_of(c))), None),
     )  # fmt: skip
 
 

@@ -16,7 +16,7 @@ def normal_id(text: str) -> str:
 def id_field(table: Table) -> Field | None:
     """The field that holds the part numbers, by its heading: the one whose texts differ most."""
     named = [f for f in table.fields if names_part(f.label)]
-    named = [f for f in named if any(f.texts) and not f.units]
+    named = [f for f in named if any(f.texts) and not f.units and not f.part]
     if not named and table.layout == "rows" and table.fields:
         first = table.fields[0]
         blank = not first.heading or not first.label.names

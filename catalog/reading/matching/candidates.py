@@ -70,6 +70,9 @@ class Candidates:
             if score > scored.get(key, (0.0, ""))[0]:
                 scored[key] = (score, reason)
 
+        if f.part:
+            self.refusals[i] = (f'"{f.part}" stands over it: no figure of the motor', ())
+            return []
         if f.label.forced:
             offer(f.label.forced, EXACT, "the heading is the quantity's own name")
         for phrase in f.label.names:

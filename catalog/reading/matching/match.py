@@ -194,6 +194,8 @@ class Matcher(Candidates):
         return Match(f, "unread", None, cands[0].score if cands else 0.0, [], reason, guesses)
 
     def _point(self, f: Field) -> tuple[str, str] | None:
+        if f.part:
+            return None
         for phrase in f.label.names:
             section = phrase.section or f.section
             if phrase.generic and section:
@@ -235,7 +237,7 @@ class Matcher(Candidates):
         return "not understood", guesses or self._by_unit(f)
 
     def _by_unit(self, f: Field) -> tuple[str, ...]:
-        if f.label.other:
+        if f.label.other or f.part:
             return ()
         for text in f.units:
             unit = unit_of(text)

@@ -1,0 +1,116 @@
+"""What stands beside the motor's own figures and is none of them; motors that share a name.
+
+All sheets are invented; the words are the trade's, from memory.
+"""
+
+import pytest
+
+from .sheets import sheet
+
+
+@pytest.mark.parametrize(("caption", "label", "unit"), [
+    ("Holding brake", "Static torque", "Nm"),
+    ("Haltebremse (Option)", "Nennspannung", "V DC"),
+    ("GEARBOX", "Max. intermittent torque", "Nm"),
+    ("3. Encoder", "Max. speed", "rpm"),
+    ("Réducteur", "Charge radiale", "N"),
+    ("Freno", "Potenza nominale", "W"),
+    ("Reductor", "Par máximo", "Nm"),
+    ("保持ブレーキ", "静摩擦トルク", "N·m"),
+    ("编码器参数", "最高转速", "r/min"),
+])  # fmt: skip
+def test_under_the_caption_of_another_part_nothing_is_the_motors(caption, label, unit):
+    s = sheet(f"""
+        Type | | S-1 | S-2
+        Torque constant | Nm/A | 0.4 | 0.8
+        Nominal voltage | V | 24 | 48
+        {caption} | | |
+        {label} | {unit} | 7 | 9
+        Mechanical data | | |
+        Weight | kg | 4 | 5
+    """)
+    assert {k for f in s.motors().values() for k in f} == {
+        "torque_constant", "nominal_voltage", "mass"
+    }  # fmt: skip
+    assert not any(c.figures for c in s.batch.conditions)
+    assert [u.text for u in s.reading.unread] == ["7"]
+
+
+def test_a_group_of_headings_under_another_part_gives_no_figure():
+    s = sheet("""
+         | Motor | | Gearhead | |
+        Type | Rated torque [Nm] | Weight [g] | Peak torque [Nm] | Weight [g]
+        G-1 | 0.2 | 96 | 1.1 | 70
+    """)
+    assert s.motors() == {"G-1": {"nominal_torque": 0.2, "mass": 0.096}}
+
+
+@pytest.mark.parametrize(("heading", "unit"), [
+    ("Lastdrehmoment", "Nm"), ("Rotorgewicht", "kg"), ("Statorgewicht", "kg"),
+    ("Vorwiderstand", "Ohm"), ("Bremsspannung", "V"), ("Getriebedrehzahl", "1/min"),
+    ("Fremdträgheitsmoment", "kgcm²"), ("Drosselinduktivität", "mH"), ("Heizleistung", "W"),
+    ("Constante del tacogenerador", "V/1000 rpm"), ("許容慣性モーメント", "kg·cm²"),
+])  # fmt: skip
+def test_another_first_part_of_a_compound_is_another_word(heading, unit):
+    s = sheet(f"Type | Torque constant [Nm/A] | {heading} [{unit}]\nA | 0.4 | 7")
+    assert s.motors() == {"A": {"torque_constant": 0.4}}
+    assert heading in " ".join(s.unread)
+
+
+@pytest.mark.parametrize(("heading", "key"), [
+    ("Torque constnat [Nm/A]", "torque_constant"),
+    ("Nennspanung [V]", "nominal_voltage"),
+    ("Massenträgheitsmoent [kgm²]", "rotor_inertia"),
+    ("Drehmomentkonst. [Nm/A]", "torque_constant"),
+])  # fmt: skip
+def test_slips_of_the_pen_and_cut_words_are_read(heading, key):
+    s = sheet(f"Type | Nominal speed [rpm] | {heading}\nA | 3000 | 7")
+    assert s.motors()["A"][key] == 7
+
+
+def test_type_and_winding_together_name_the_motor():
+    rows = sheet("""
+        Type | Winding | Nominal voltage [V] | Terminal resistance [Ω]
+        GA 30 | 012 | 12 | 0.85
+         | 024 | 24 | 3.35
+        GA 42 | 012 | 12 | 0.92
+         | 024 | 24 | 3.66
+    """)
+    expected = {"GA 30 012": 0.85, "GA 30 024": 3.35, "GA 42 012": 0.92, "GA 42 024": 3.66}
+    assert {k: f["terminal_resistance"] for k, f in rows.motors().items()} == expected
+    columns = sheet("""
+        Type | | GA 30 | GA 30 | GA 42 | GA 42
+        Winding | | 012 | 024 | 012 | 024
+        Nominal voltage | V | 12 | 24 | 12 | 24
+        Terminal resistance | Ω | 0.85 | 3.35 | 0.92 | 3.66
+    """)
+    assert {k: f["terminal_resistance"] for k, f in columns.motors().items()} == expected
+
+
+def test_one_name_on_rows_with_other_winding_constants_is_several_motors():
+    s = sheet("""
+        Model | Voltage [V] | Resistance [Ω] | Torque constant [mNm/A]
+        RX-28 | 6 | 0.9 | 7.8
+        RX-28 | 12 | 3.6 | 15.5
+    """)
+    assert {k: f["terminal_resistance"] for k, f in s.motors().items()} == {
+        "RX-28 6 V": 0.9, "RX-28 12 V": 3.6
+    }  # fmt: skip
+    # One winding at two voltages is one motor, and so is another maker's of the same name.
+    s = sheet("""
+        Model | Voltage [V] | Resistance [Ω] | No-load speed [rpm]
+        RX-28 | 6 | 0.9 | 3000
+        RX-28 | 12 | 0.9 | 6000
+    """)
+    assert set(s.motors()) == {"RX-28"}
+
+
+def test_a_legend_of_symbols_states_no_convention():
+    s = sheet("""
+        Type | M0 [Nm] | Mmax [Nm] | Imax [A] | I0 [A]
+        L-1 | 4.1 | 14 | 97.5 | 24.8
+
+        All currents are rms values
+        M0: continuous stall torque; Imax: peak current; I0: continuous stall current
+    """)
+    assert s.convention("continuous_stall_current").current == "rms"
