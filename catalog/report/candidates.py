@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
+from itertools import groupby
 from typing import Any
 
 from rich.console import Console
@@ -191,16 +192,23 @@ def print_requirement(document: Document, console: Console) -> None:
     table = Table(box=None, pad_edge=False, padding=(0, 1), header_style="bold")
     for heading in ("from s", "for s", "speed rpm", "torque N·m", "power W"):
         table.add_column(heading, justify="right")
-    for row in document["cycle"]:
+    stretches = [list(rows) for _, rows in groupby(document["cycle"], lambda r: r["stretch"])]
+    for rows in stretches:
         table.add_row(
-            number(row["time"]["value"]),
-            number(row["duration"]["value"]),
-            _span(row["speed"], _RPM),
-            _span(row["torque"]),
-            _span(row["power"]),
+            number(rows[0]["time"]["value"]),
+            number(sum(row["duration"]["value"] for row in rows)),
+            _span(rows, "speed", _RPM),
+            _span(rows, "torque"),
+            _span(rows, "power"),
         )
     console.print("At the load's shaft, its inertia's acceleration included:")
     console.print(table)
+    most = max(map(len, stretches))
+    if most > 1:
+        console.print(
+            f"A bent ramp stands in one row and is judged in up to {most} straight pieces; between "
+            "its ends stands what is farthest from them."
+        )
     load = document["load"]
     console.print(
         f"Peak torque {_si(load['peak_torque'])}, rms {_si(load['rms_torque'])}; peak speed "
@@ -249,8 +257,14 @@ def _si(found: Document, digits: int = 4) -> str:
     return quantity(found["value"], found["unit"], digits)
 
 
-def _span(pair: Sequence[Document], factor: float = 1.0) -> str:
-    first, second = (p["value"] * factor + 0.0 for p in pair)
-    if abs(first - second) <= 1e-9 * max(abs(first), abs(second)):
-        return number(first)
-    return f"{number(first)} … {number(second)}"
+def _span(rows: Sequence[Document], name: str, factor: float = 1.0) -> str:
+    """The figure at both ends of a stretch; between them its extreme, where it lies beyond."""
+    values = [p["value"] * factor + 0.0 for row in rows for p in row[name]]
+    first, last = values[0], values[-1]
+    low, high = sorted((first, last))
+    near = 1e-9 * max(map(abs, values))
+    beyond = max(values, key=lambda v: max(v - high, low - v))
+    said = [first] if high - low <= near else [first, last]
+    if beyond > high + near or beyond < low - near:
+        said = [first, beyond, last]
+    return " … ".join(map(number, said))

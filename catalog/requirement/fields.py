@@ -48,7 +48,7 @@ ORDERS = (
     "winding-temperature",
     "utilisation",
 )
-KINDS = ("rotary", "belt", "pinion", "screw")
+KINDS = ("rotary", "belt", "pinion", "drum", "screw")
 PROFILES = ("thirds", "trapezoidal", "triangular", "s-curve")
 
 SECTIONS: dict[str, dict[str, Field]] = {
@@ -61,12 +61,17 @@ SECTIONS: dict[str, dict[str, Field]] = {
         "pulley_inertia": _q("kg·m²", "belt: all pulleys, at the driven one", least=0),
         "pinion_radius": _q("m", "rack and pinion: pitch radius", over=0),
         "pinion_inertia": _q("kg·m²", "rack and pinion", least=0),
+        "drum_radius": _q("m", "drum, winch: to the middle of the rope", over=0),
+        "drum_inertia": _q("kg·m²", "drum, winch", least=0),
         "lead": _q("m", "screw: travel a turn", over=0),
         "screw_inertia": _q("kg·m²", "screw", least=0),
-        "efficiency": Field("share", "screw, belt or rack", over=0, most=1),
+        "efficiency": Field("share", "screw, belt, rack or drum", over=0, most=1),
         "moving_mass": _q("kg", "linear axis", least=0),
         "counterweight": _q("kg", "linear axis: hangs on a rope", least=0),
         "friction_force": _q("N", "opposes motion (linear axis)", least=0),
+        "friction_coefficient": Field(
+            "number", "of the moving mass on its guide, beside any friction_force", least=0
+        ),
         "force": _q("N", "always pulls against positive speed (linear axis)"),
         "slope": _q("rad", "to the horizontal; 90 deg lifts (linear axis)"),
     },

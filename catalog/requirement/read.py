@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from pathlib import Path
 from typing import Any
 
-from ...schema.operation.axis import Axis
+from ...schema.operation.axis import GRAVITY, Axis
 from ...schema.operation.cycle import Cycle, CycleError
 from ...schema.operation.demand import Demand, Drive, Gearing, Supply, Surroundings
 from ...schema.operation.moves import MoveError, move, one_after_the_other, rest
@@ -33,9 +34,13 @@ _ALTITUDE_SHARE = 0.01 / 100.0
 _LINEAR = {
     "belt": ("pulley_radius", "pulley_inertia"),
     "pinion": ("pinion_radius", "pinion_inertia"),
+    "drum": ("drum_radius", "drum_inertia"),
     "screw": ("lead", "screw_inertia"),
 }
-_LINEAR_ONLY = ("moving_mass", "counterweight", "friction_force", "force", "slope", "efficiency")
+_LINEAR_ONLY = (
+    "moving_mass", "counterweight", "friction_force", "friction_coefficient", "force", "slope",
+    "efficiency",
+)  # fmt: skip
 _ROTARY_ONLY = ("inertia", "friction_torque", "torque")
 
 
@@ -201,14 +206,17 @@ def _axis(load: Mapping[str, Any], reader: Reader) -> Axis:
     travel, inertia = _LINEAR[kind]
     if travel not in load:
         raise RequirementError(f"[load] of kind {kind} needs {travel}; give it with a unit.")
+    mass, slope = load.get("moving_mass", 0.0), load.get("slope", 0.0)
+    # a guide carries the weight's share across the slope (dry friction, F = µ·N)
+    pressed = abs(math.cos(slope)) * GRAVITY * mass
     return Axis(
-        travel=load[travel] / (2 * 3.141592653589793) if kind == "screw" else load[travel],
+        travel=load[travel] / (2 * math.pi) if kind == "screw" else load[travel],
         inertia=load.get(inertia, 0.0),
-        friction=load.get("friction_force", 0.0),
+        friction=load.get("friction_force", 0.0) + load.get("friction_coefficient", 0.0) * pressed,
         steady=load.get("force", 0.0),
-        mass=load.get("moving_mass", 0.0),
+        mass=mass,
         counterweight=load.get("counterweight", 0.0),
-        slope=load.get("slope", 0.0),
+        slope=slope,
         efficiency=load.get("efficiency", 1.0),
     )
 
@@ -305,6 +313,7 @@ def _moves(tables: Sequence[Mapping[str, Any]], linear: bool) -> Cycle:
                     sign * table[way],
                     profile=table.get("profile", "thirds"),
                     effort=table.get(effort, 0.0),
+                    unit="m" if linear else "rad",
                     **told,
                 )
                 for sign in (1, -1)

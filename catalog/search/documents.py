@@ -280,7 +280,8 @@ def requirement_document(requirement: Requirement) -> Document:
 
 
 def cycle_rows(cycle: Cycle, load_inertia: float) -> list[Document]:
-    """The cycle at the load's shaft: torque with what accelerates the load's inertia."""
+    """The cycle at the load's shaft: torque with what accelerates the load's inertia. Rows of one
+    `stretch` are the pieces in which a bent ramp is judged."""
     begin = np.concatenate([[0.0], np.cumsum(cycle.duration)[:-1]])
     extra = load_inertia * (cycle.speed_end - cycle.speed_start) / cycle.duration
     rows = []
@@ -289,6 +290,7 @@ def cycle_rows(cycle: Cycle, load_inertia: float) -> list[Document]:
         w0, w1 = float(cycle.speed_start[i]), float(cycle.speed_end[i])
         rows.append(
             {
+                "stretch": int(cycle.stretches[i]),
                 "time": amount(float(begin[i]), "s"),
                 "duration": amount(float(cycle.duration[i]), "s"),
                 "speed": [amount(w0, "rad/s"), amount(w1, "rad/s")],

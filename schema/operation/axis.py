@@ -65,7 +65,7 @@ class Axis:
         a screw is divided by its efficiency where the motor drives, multiplied where it brakes,
         left alone at standstill; the mass's own acceleration passes the screw, too.
         """
-        parts = _cut(cycle, self._zeros_of_speed(cycle))
+        parts = _cut(cycle, self._zeros_of_speed(cycle), apart=True)
         motion = np.sign(parts.speed_start + parts.speed_end)
         added = self.holding + self.friction * motion
         start, end = parts.torque_start + added, parts.torque_end + added
@@ -73,8 +73,9 @@ class Axis:
             acceleration = (parts.speed_end - parts.speed_start) / parts.duration
             pushed = (self.mass + self.counterweight) * acceleration
             parts = Cycle(
-                parts.duration, parts.speed_start, parts.speed_end, start + pushed, end + pushed
-            )
+                parts.duration, parts.speed_start, parts.speed_end, start + pushed, end + pushed,
+                parts.stretches,
+            )  # fmt: skip
             parts = _cut(parts, _crossing(parts.torque_start, parts.torque_end))
             start, end = parts.torque_start, parts.torque_end
             power = np.sign(start + end) * np.sign(parts.speed_start + parts.speed_end)
@@ -89,6 +90,7 @@ class Axis:
             parts.speed_end / lever,
             start * lever,
             end * lever,
+            parts.stretches,
         )
 
     @staticmethod
@@ -102,8 +104,9 @@ def _crossing(start: np.ndarray, end: np.ndarray) -> np.ndarray:
     return np.where(crosses, start / np.where(crosses, start - end, 1.0), 0.0)
 
 
-def _cut(cycle: Cycle, at: np.ndarray) -> Cycle:
-    """The same cycle with the segments cut at a share of their duration (0: not cut)."""
+def _cut(cycle: Cycle, at: np.ndarray, *, apart: bool = False) -> Cycle:
+    """The same cycle with the segments cut at a share of their duration (0: not cut); with
+    ``apart`` what lies behind a cut is a stretch of its own."""
     if not (at > 0).any():
         return cycle
     begin = np.stack([np.zeros_like(at), at], axis=1).ravel()
@@ -121,4 +124,5 @@ def _cut(cycle: Cycle, at: np.ndarray) -> Cycle:
         between(cycle.speed_start, cycle.speed_end, end),
         between(cycle.torque_start, cycle.torque_end, begin),
         between(cycle.torque_start, cycle.torque_end, end),
+        2 * cycle.stretches[which] + (apart & (begin > 0)),
     )

@@ -7,7 +7,7 @@ in the direction of positive speed. A cycle repeats for ever.
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass, fields
+from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
@@ -21,6 +21,9 @@ Array = NDArray[np.float64]
 _DUST = 1e-12
 
 
+COLUMNS = ("duration", "speed_start", "speed_end", "torque_start", "torque_end")
+
+
 class CycleError(MotorfolioError):
     """The cycle can't be run: the text names the segment or row and what would do."""
 
@@ -29,7 +32,9 @@ class CycleError(MotorfolioError):
 class Cycle:
     """Segments in order, arrays of shape (S,): duration in s, load speed, external load torque.
 
-    Speed and torque are linear inside a segment, so that its acceleration is constant.
+    Speed and torque are linear inside a segment, so that its acceleration is constant. `stretch`
+    numbers what was asked in one: a bent ramp is one stretch of several segments. If it is left
+    out, each segment is its own.
     """
 
     duration: Array
@@ -37,16 +42,17 @@ class Cycle:
     speed_end: Array
     torque_start: Array
     torque_end: Array
+    stretch: NDArray[np.intp] | None = None
 
     def __post_init__(self) -> None:
-        for field in fields(self):
-            column = np.atleast_1d(np.asarray(getattr(self, field.name), float))
+        for name in COLUMNS:
+            column = np.atleast_1d(np.asarray(getattr(self, name), float))
             if column.ndim != 1 or column.shape != np.shape(np.atleast_1d(self.duration)):
-                raise CycleError(f"Cycle: {field.name} must hold one number for each duration.")
+                raise CycleError(f"Cycle: {name} must hold one number for each duration.")
             if not np.isfinite(column).all():
                 where = int(np.flatnonzero(~np.isfinite(column))[0]) + 1
-                raise CycleError(f"Cycle: segment {where} has no finite {field.name}; give one.")
-            object.__setattr__(self, field.name, column)
+                raise CycleError(f"Cycle: segment {where} has no finite {name}; give one.")
+            object.__setattr__(self, name, column)
         if self.duration.size == 0:
             raise CycleError("Cycle: it has no segment; give at least one torque and speed.")
         if (self.duration <= 0).any():
@@ -102,6 +108,13 @@ class Cycle:
         return cls(step[kept], w[:-1][kept], w[1:][kept], m[:-1][kept], m[1:][kept])
 
     @property
+    def stretches(self) -> NDArray[np.intp]:
+        """The number of the stretch that each segment belongs to (S,), counted from 0."""
+        if self.stretch is None:
+            return np.arange(self.duration.size)
+        return np.cumsum(np.diff(self.stretch, prepend=self.stretch[0]) != 0)
+
+    @property
     def period(self) -> float:
         """Duration of the whole cycle in s."""
         return float(self.duration.sum())
@@ -139,7 +152,7 @@ class Cycle:
             ],
             axis=2,
         )
-        return Pieces((end - begin) * self.duration[segment], basis)
+        return Pieces((end - begin) * self.duration[segment], basis, self.stretches[segment])
 
     @property
     def _speeds(self) -> tuple[Array, Array]:
@@ -164,11 +177,13 @@ class Pieces:
     gear's losses (N·m, still to be divided by the ratio), load acceleration (rad/s², to be
     multiplied by ratio and inertia), sign of motion (0 in a dwell), load speed (rad/s, to be
     multiplied by the ratio). The motor's torque is a linear combination of the four, so that
-    mean squares come from one 4 × 4 matrix, whatever the number of pieces.
+    mean squares come from one 4 × 4 matrix, whatever the number of pieces. `stretch` (P,) numbers
+    the stretches of the cycle that they are pieces of.
     """
 
     duration: Array
     basis: Array
+    stretch: NDArray[np.intp]
 
     @property
     def period(self) -> float:

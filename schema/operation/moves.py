@@ -13,7 +13,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..errors import MotorfolioError
-from .cycle import Cycle
+from ..written import quantity
+from .cycle import COLUMNS, Cycle
 
 Array = NDArray[np.float64]
 
@@ -51,8 +52,9 @@ def ramps(
     time: float | None = None,
     top_speed: float | None = None,
     acceleration: float | None = None,
+    unit: str = "m",
 ) -> Ramps:
-    """The profile that covers `distance` (above 0) with what is told of it.
+    """The profile that covers `distance` (above 0, in `unit`) with what is told of it.
 
     `thirds` and `triangular` need the time or the top speed: s = (2/3)·v·t and s = v·t/2.
     `trapezoidal` and `s-curve` need two of time, top speed and (mean) acceleration, the S-curve
@@ -80,8 +82,10 @@ def ramps(
         ramp = time - distance / top_speed
         if not 0 < ramp <= time / 2 * (1 + 1e-9):
             raise MoveError(
-                f"{distance:g} in {time:g} s needs a top speed above {distance / time:g} and at "
-                f"most {2 * distance / time:g}, not {top_speed:g}"
+                f"{quantity(distance, unit)} in {quantity(time, 's')} needs a top speed above "
+                f"{quantity(distance / time, f'{unit}/s')} and at most "
+                f"{quantity(2 * distance / time, f'{unit}/s')}, not "
+                f"{quantity(top_speed, f'{unit}/s')}"
             )
         return Ramps(top_speed, ramp, max(time - 2 * ramp, 0.0))
     if time is None:
@@ -90,14 +94,18 @@ def ramps(
         return Ramps(top, top / acceleration, distance / top - top / acceleration)
     least = 2 * math.sqrt(distance / acceleration)
     if time < least * (1 - 1e-9):
-        raise MoveError(f"{distance:g} takes at least {least:g} s at that acceleration")
+        raise MoveError(
+            f"{quantity(distance, unit)} takes at least {quantity(least, 's')} at "
+            f"{quantity(acceleration, f'{unit}/s²')}, not {quantity(time, 's')}"
+        )
     root = math.sqrt(max((acceleration * time) ** 2 - 4 * acceleration * distance, 0.0))
     top = (acceleration * time - root) / 2
     return Ramps(top, top / acceleration, max(time - 2 * top / acceleration, 0.0))
 
 
-def _speeds(shape: Ramps, profile: str) -> tuple[Array, Array]:
-    """Durations (S,) and speeds at their ends (S + 1,) of a move."""
+def _speeds(shape: Ramps, profile: str) -> tuple[Array, Array, NDArray[np.intp]]:
+    """Durations (S,), speeds at their ends (S + 1,), and stretches (S,) of a move: speeding up,
+    top speed, slowing down."""
     if profile == "s-curve":
         # While the acceleration rises the speed is a parabola in x = t/ramp: x²/(2·j·(1 − j)).
         j = JERK_SHARE
@@ -111,8 +119,9 @@ def _speeds(shape: Ramps, profile: str) -> tuple[Array, Array]:
     down = shape.ramp + shape.cruise + up
     t = np.concatenate([up, down])
     v = shape.top * np.concatenate([values, values[::-1]])
+    stretch = np.repeat([0, 1, 2], [len(up) - 1, 1, len(down) - 1])
     kept = np.diff(t) > 1e-12 * t[-1]
-    return np.diff(t)[kept], v[np.concatenate([kept, [True]])]
+    return np.diff(t)[kept], v[np.concatenate([kept, [True]])], stretch[kept]
 
 
 def move(
@@ -123,16 +132,19 @@ def move(
     top_speed: float | None = None,
     acceleration: float | None = None,
     effort: float = 0.0,
+    unit: str = "m",
 ) -> Cycle:
-    """A move over `distance` (its sign is the direction) against an `effort` that opposes it."""
+    """A move over `distance` (its sign is the direction; `unit` names it in a refusal) against an
+    `effort` that opposes it."""
     way = math.copysign(1.0, distance)
     shape = ramps(
-        abs(distance), profile=profile, time=time, top_speed=top_speed, acceleration=acceleration
-    )
-    duration, speed = _speeds(shape, profile)
+        abs(distance), profile=profile, time=time, top_speed=top_speed,
+        acceleration=acceleration, unit=unit,
+    )  # fmt: skip
+    duration, speed, stretch = _speeds(shape, profile)
     speed = way * speed
     against = np.full(duration.size, way * effort)
-    return Cycle(duration, speed[:-1], speed[1:], against, against)
+    return Cycle(duration, speed[:-1], speed[1:], against, against, stretch)
 
 
 def rest(duration: float, effort: float = 0.0) -> Cycle:
@@ -143,5 +155,7 @@ def rest(duration: float, effort: float = 0.0) -> Cycle:
 
 def one_after_the_other(parts: list[Cycle]) -> Cycle:
     """The parts as one cycle."""
-    names = ("duration", "speed_start", "speed_end", "torque_start", "torque_end")
-    return Cycle(*(np.concatenate([getattr(part, name) for part in parts]) for name in names))
+    begin = np.cumsum([0, *(part.stretches[-1] + 1 for part in parts[:-1])])
+    stretches = [part.stretches + first for part, first in zip(parts, begin, strict=True)]
+    columns = (np.concatenate([getattr(part, name) for part in parts]) for name in COLUMNS)
+    return Cycle(*columns, np.concatenate(stretches))

@@ -2,12 +2,16 @@
 
 from __future__ import annotations
 
+import io
 import math
+import re
 from pathlib import Path
 
 import numpy as np
 import pytest
+from rich.console import Console
 
+from motorfolio.catalog.report.candidates import print_requirement
 from motorfolio.catalog.requirement.fields import (
     LISTS,
     SECTIONS,
@@ -19,6 +23,7 @@ from motorfolio.catalog.requirement.options import OPTIONS, requirement_of
 from motorfolio.catalog.requirement.read import read_requirement
 from motorfolio.catalog.requirement.schema import json_schema
 from motorfolio.catalog.requirement.where import read_where
+from motorfolio.catalog.search.documents import requirement_document
 from motorfolio.schema.errors import MotorfolioError
 
 from .made import SAMPLES
@@ -272,13 +277,62 @@ def test_toml_writes_what_it_reads(tmp_path: Path) -> None:
 
 
 def test_every_key_is_documented() -> None:
-    page = (SAMPLES.parent / "docs" / "requirement.md").read_text(encoding="utf-8")
+    page = (SAMPLES.parent / "docs" / "reference" / "requirement.md").read_text(encoding="utf-8")
     for section, fields in {**SECTIONS, **LISTS}.items():
-        head = f"### `[[{section}]]`" if section in LISTS else f"### `[{section}]`"
-        block = page.split(head)[1].split("###")[0]
+        head = f"### [[{section}]]" if section in LISTS else f"### [{section}]"
+        block = page.split(head + "\n")[1].split("###")[0]
         for key, field in fields.items():
             assert f"| `{key}` |" in block
             assert field.doc in block
+
+
+def test_a_winch_and_a_sledge_by_hand() -> None:
+    """A drum lifts m·g·r; a sledge on a slope needs m·g·(sin φ + µ·cos φ)·r upward (dry friction
+    on an inclined plane, any textbook of mechanics; from memory)."""
+    point = [{"force": "0 N", "speed": "0.5 m/s"}]
+    winch = {"kind": "drum", "drum_radius": "50 mm", "moving_mass": "20 kg", "slope": "90 deg",
+             "drum_inertia": "0.01 kg·m²", "friction_coefficient": 0.3}  # fmt: skip
+    asked = read_requirement({"load": winch, "point": point})
+    assert asked.demand.cycle.torque_start == pytest.approx([20 * 9.80665 * 0.05])
+    assert asked.demand.cycle.speed_start == pytest.approx([10.0])
+    assert asked.load_inertia == pytest.approx(0.01 + 20 * 0.05**2)
+    sledge = {"kind": "belt", "pulley_radius": "20 mm", "moving_mass": "8 kg",
+              "friction_coefficient": 0.15, "friction_force": "3 N", "slope": "30 deg"}  # fmt: skip
+    up = read_requirement({"load": sledge, "point": point}).demand.cycle
+    force = 8 * 9.80665 * (0.5 + 0.15 * math.sqrt(3) / 2) + 3
+    assert up.torque_start == pytest.approx([force * 0.02])
+    with pytest.raises(RequirementError, match="belongs to a drum"):
+        read_requirement({"load": {**sledge, "drum_radius": "1 m"}, "point": point})
+
+
+def test_a_move_that_cannot_be_made_is_told_with_units() -> None:
+    told = {"profile": "trapezoidal", "time": "2 s", "top_speed": "0.2 m/s"}
+    load = {"kind": "belt", "pulley_radius": "20 mm"}
+    with pytest.raises(RequirementError) as refused:
+        read_requirement({"load": load, "move": [{"distance": "1 m", **told}]})
+    assert str(refused.value) == (
+        "Move 1: 1 m in 2 s needs a top speed above 0.5 m/s and at most 1 m/s, not 0.2 m/s."
+    )
+    told = {"profile": "trapezoidal", "time": "1 s", "acceleration": "1 rad/s²"}
+    with pytest.raises(RequirementError, match=r"1 rad takes at least 2 s at 1 rad/s², not 1 s"):
+        read_requirement({"move": [{"angle": "1 rad", **told}]})
+
+
+def test_a_bent_ramp_is_one_row_of_many_pieces() -> None:
+    """There and back with dwells: up, top, down and rest, twice, whatever a ramp is cut into."""
+    way = {"angle": "9 rad", "time": "1 s", "dwell": "1 s", "there_and_back": True}
+    for profile, pieces in (("thirds", 1), ("s-curve", 17)):
+        asked = read_requirement({"move": [{**way, "profile": profile}]})
+        rows = requirement_document(asked)["cycle"]
+        stretches = [row["stretch"] for row in rows]
+        assert sorted(set(stretches)) == list(range(8))
+        assert max(map(stretches.count, stretches)) == pieces
+        said = io.StringIO()
+        print_requirement(requirement_document(asked), Console(file=said, width=80))
+        table = said.getvalue().split("power W")[1].split("Peak torque")[0]
+        rows = [line for line in table.splitlines() if re.match(r" *[\d.]+ +[\d.]+ +-?[\d.]+ ", line)]
+        assert len(rows) == 8
+        assert ("judged in up to 17 straight pieces" in said.getvalue()) == (pieces == 17)
 
 
 def test_every_option_sets_a_key_that_exists() -> None:
