@@ -40,12 +40,24 @@ def number(value: float | None, digits: int = 4) -> str:
     return f"{number(rounded / 10.0**exponent, digits)}×10{str(exponent).translate(_SUPERSCRIPTS)}"
 
 
-def percent(share: float, decimals: int = 0, *, signed: bool = False) -> str:
-    """A share in per cent: 0.615 → "62 %"; never "-0 %"."""
+def percent(share: float | None, decimals: int = 0, *, signed: bool = False) -> str:
+    """A share in per cent: 0.615 → "62 %"; never "-0 %"; "–" where there is none."""
+    if share is None or math.isnan(share):
+        return "–"
+    if math.isinf(share):
+        return "∞" if share > 0 else "-∞"
     value = round(100 * share, decimals) + 0.0
     return f"{value:{'+' if signed and value else ''}.{decimals}f} %"
 
 
+def departure(ratio: float) -> str:
+    """How far a ratio is from one: "+0.4 %", from 1.35 on "×7.18", "÷2.28"."""
+    if abs(math.log(ratio)) > math.log(_FAR):
+        return f"×{number(ratio, 3)}" if ratio > 1 else f"÷{number(1 / ratio, 3)}"
+    return percent(ratio - 1, 1, signed=True)
+
+
+_FAR = 1.35
 _PREFIXES = ((1e6, "M"), (1e3, "k"), (1.0, ""), (1e-3, "m"), (1e-6, "µ"), (1e-9, "n"))
 _PREFIXED = frozenset({
     "A", "V", "Ω", "H", "N·m", "N·m/A", "V·s/rad", "N·m/√W", "N·m·s/rad", "s", "W", "m", "J",
@@ -74,3 +86,17 @@ def quantity(value: float | None, unit: str, digits: int = 4) -> str:
     factor, prefixed = scale(value, unit)
     shown = number(None if value is None else value / factor, digits)
     return shown if unit in ("1", "") or shown == "–" else f"{shown} {prefixed}"
+
+
+RULES = {
+    "spellings": _SPELLINGS,
+    "smallest_plain": _SMALLEST_PLAIN,
+    "largest_plain": _LARGEST_PLAIN,
+    "vanishing": _VANISHING,
+    "far": _FAR,
+    "prefixes": _PREFIXES,
+    "prefixed": sorted(_PREFIXED),
+    "prefix_from": _FROM,
+    "prefix_below": _BELOW,
+}
+"""What the page's scripts must know to spell names and numbers as this module does."""

@@ -18,6 +18,7 @@ from ...schema.operation.heating import Load, heating
 from ...schema.operation.judge import judge
 from ...schema.operation.machines import Commutation, Machines, armature_amperes
 from ...schema.operation.thermal import copper_factor, magnet_factor
+from .plain import number
 
 Array = NDArray[np.float64]
 
@@ -75,7 +76,7 @@ def plane(machine: Machines, demand: Demand, ratio: float | None = None) -> Plan
     if np.isnan(continuous).all():
         missing.append("thermal figures for the continuous limit")
     else:
-        limits.append(Limit("continuous", continuous, f"ambient {ambient:.3g} °C"))
+        limits.append(Limit("continuous", continuous, f"ambient {number(ambient, 3)} °C"))
     peak, note = peak_torque(machine, speed, demand, ambient if np.isnan(hot) else hot)
     if np.isnan(peak).all():
         missing.append("a peak current or torque")
@@ -87,7 +88,7 @@ def plane(machine: Machines, demand: Demand, ratio: float | None = None) -> Plan
         for kind, temperature in (("voltage cold", ambient), ("voltage hot", hot)):
             if not np.isnan(temperature):
                 torque = voltage_torque(machine, speed, available, temperature)
-                note = f"{available:.4g} V, winding at {temperature:.3g} °C"
+                note = f"{number(available)} V, winding at {number(temperature, 3)} °C"
                 limits.append(Limit(kind, torque, note))
     return Plane(
         speed,
@@ -172,7 +173,7 @@ def peak_torque(
     published = float(machine.peak_torque[0])
     if np.isnan(current) or published < torque[0]:
         return np.fmin(torque, published), "the motor's peak torque"
-    return np.fmin(torque, published), f"{note}, {current:.3g} A (armature)"
+    return np.fmin(torque, published), f"{note}, {number(current, 3)} A (armature)"
 
 
 def voltage_is_whole(machine: Machines) -> bool:

@@ -153,7 +153,7 @@ def _row(h: "Heading", guesses: Sequence[str]) -> tuple[str, str, str, str]:
         text += " *"
     why = p.plain(short(h.reason))
     if h.quantity and 0 < h.score < 1:
-        why = f"{why or 'name, unit'} {h.score:.2f}"
+        why = f"{why or 'name, unit'} {p.number(h.score, 2)}"
     if guesses and not h.quantity:
         why += f"; may be {' or '.join(map(p.words, guesses))}"
     read_as = brief(h.quantity) if h.quantity else "not read"

@@ -2,11 +2,12 @@
 
 import re
 
-from ...schema.written import in_words, number, percent, quantity, scale
+from ...schema.written import departure, in_words, number, percent, quantity, scale
 
 __all__ = [
     "cell",
     "convention",
+    "departure",
     "interval",
     "many",
     "number",

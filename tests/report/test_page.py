@@ -4,6 +4,8 @@ quick with thousands of motors."""
 from __future__ import annotations
 
 import json
+import math
+import random
 import re
 from html.parser import HTMLParser
 from pathlib import Path
@@ -13,6 +15,8 @@ import pytest
 from motorfolio.catalog.cli import main
 from motorfolio.catalog.report.implied import implied_figures
 from motorfolio.catalog.report.page.write import as_json, catalog_page
+from motorfolio.schema import written as w
+from motorfolio.schema.vocabulary import quantities
 
 from .browser import opened, settled
 from .conftest import SAMPLES
@@ -72,7 +76,7 @@ def test_one_file_with_all_in_it(catalog_html: Path, search_html: Path) -> None:
         parser.feed(text)
         assert parser.outside == []
         assert parser.handlers == []
-        assert parser.kinds.count(None) == 6
+        assert parser.kinds.count(None) == 7
         assert "default-src &#x27;none&#x27;" in text
         assert "unsafe" not in text.split("</head>")[0]
         assert "Copyright (c) 2022 Leon Sorokin" in text
@@ -307,3 +311,55 @@ def test_five_thousand_motors_repaint_in_a_tenth_of_a_second(tmp_path: Path) -> 
                     k,
                 )
             assert (busy() - before) / 6 < 0.1, name
+
+
+NUMBERS = [
+    0.0, 1.0, -1.0, 0.5, 0.125, 2.5, 12.345, 1234.5, 12345.0, 12355.0, 0.0001, 0.00012345,
+    9.9995e-5, 9.99949e-5, 99.996, 9999999.0, 1e7, 2.5e7, 3.456e-8, 1.5e-9, -0.00075, 1e-120,
+    1 / 3, 2 / 3,
+    0.0999, 0.1, 9999.0, 10000.0, 0.99999, 7.18, 0.4386, 1.35, 0.996, 0.9999, 1.004, math.inf,
+    math.nan,
+]  # fmt: skip
+UNITS = ["N·m/A", "Ω", "H", "kg·m²", "kg", "s", "m", "W", "rad/s", "°C", "1", ""]
+
+
+def test_the_page_spells_numbers_and_names_as_the_program_does(search_html: Path) -> None:
+    drawn = random.Random(3)
+    numbers = NUMBERS + [drawn.uniform(-10, 10) * 10.0 ** drawn.randint(-9, 9) for _ in range(400)]
+    numbers += [drawn.randint(1, 99999) / 2 ** drawn.randint(0, 6) for _ in range(400)]  # ties
+    keys = list(quantities())
+    with opened(search_html) as page:
+        told = [None if math.isnan(x) else x for x in numbers if x != math.inf]
+        got = page.evaluate(
+            """([numbers, units, keys]) => {
+                const all = [...numbers.map(x => x === null ? NaN : x), Infinity];
+                return {
+                    number: all.map(x => [1, 2, 3, 4, 7].map(d => written.number(x, d))),
+                    percent: all.map(x => [0, 1].flatMap(d => [false, true].map(s =>
+                        written.percent(x, d, s)))),
+                    quantity: all.map(x => units.map(u => written.quantity(x, u))),
+                    departure: all.filter(x => x > 0 && x < Infinity).map(written.departure),
+                    words: keys.map(written.words),
+                };
+            }""",
+            [told, UNITS, keys],
+        )
+    all_numbers = [math.nan if x is None else x for x in told] + [math.inf]
+    assert got["number"] == [[w.number(x, d) for d in (1, 2, 3, 4, 7)] for x in all_numbers]
+    assert got["percent"] == [
+        [w.percent(x, d, signed=s) for d in (0, 1) for s in (False, True)] for x in all_numbers
+    ]
+    assert got["quantity"] == [[w.quantity(x, u) for u in UNITS] for x in all_numbers]
+    assert got["departure"] == [w.departure(x) for x in all_numbers if 0 < x < math.inf]
+    assert got["words"] == [w.in_words(key) for key in keys]
+    assert w.in_words("no_load_speed") in got["words"]
+
+
+def test_no_report_has_a_number_format_of_its_own() -> None:
+    own = re.compile(
+        r"\{[^{}]*:[-+,.]*\d*[.]?\d*[gGeEfFn%]\}|\.toFixed|\.toExponential|toLocaleString"
+    )
+    report = Path(__file__).parents[2] / "catalog" / "report"
+    for path in [*report.rglob("*.py"), *report.glob("page/assets/*.js")]:
+        if path.name != "written.js":
+            assert not own.search(path.read_text(encoding="utf-8")), path.name

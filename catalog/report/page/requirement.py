@@ -129,12 +129,13 @@ def in_words(document: dict[str, Any]) -> list[list[str]]:
     ]  # fmt: skip
     if "ratio_range" in document:
         low, high = document["ratio_range"]
-        ratio = f"{low:g} to {high:g}, efficiency {document['gear_efficiency']:.0%}"
+        ratio = f"{p.number(low)} to {p.number(high)}, "
+        ratio += f"efficiency {p.percent(document['gear_efficiency'])}"
     elif document["gears"]:
         ratio = "the catalog's gears"
     else:
-        ratio = ", ".join(f"{r:g}" for r in document["ratios"])
-        ratio += f", efficiency {document['gear_efficiency']:.0%}"
+        ratio = ", ".join(p.number(r) for r in document["ratios"])
+        ratio += f", efficiency {p.percent(document['gear_efficiency'])}"
     said.append(["Gear ratio", ratio])
     for name, term in (
         ("load_inertia", "Load inertia"), ("peak_current", "Drive, peak"),
@@ -145,7 +146,7 @@ def in_words(document: dict[str, Any]) -> list[list[str]]:
         if document[name]["value"]:
             said.append([term, _si(document[name])])
     if document["pwm_frequency"]["value"]:
-        said.append(["PWM frequency", f"{document['pwm_frequency']['value'] / 1e3:g} kHz"])
+        said.append(["PWM frequency", _si(document["pwm_frequency"])])
     if document["worst_case"]:
         said.append(["Worst case of", str(document["worst_case"])])
     said += [["Where", p.plain(text)] for text in document["where"]]

@@ -18,6 +18,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
+from ....schema.written import RULES
 from ...search.fleet import Fleet, load_fleet
 from .. import plain as p
 from ..implied import implied_figures
@@ -30,7 +31,7 @@ if TYPE_CHECKING:
     from ...requirement.read import Requirement
     from ...store import Catalog
 
-SCRIPTS = ("model.js", "judge.js", "charts.js", "card.js", "main.js")
+SCRIPTS = ("written.js", "model.js", "judge.js", "charts.js", "card.js", "main.js")
 CHUNK = 250
 """Cards that are parsed at a time, when one of them is opened."""
 OTHERS = 100
@@ -188,7 +189,7 @@ def _digest(text: str) -> str:
 def _html(title: str, data: dict[str, Any]) -> str:
     title = p.plain(title)
     cards = data.pop("cards")
-    blocks = {"data": data}
+    blocks: dict[str, Any] = {"written": RULES, "data": data}
     for number, start in enumerate(range(0, len(cards), CHUNK)):
         blocks[f"cards-{number}"] = cards[start : start + CHUNK]
     held = "\n".join(

@@ -9,6 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ....schema.operation.limits import Verdict
+from ..plain import number, percent
 from . import style as s
 
 if TYPE_CHECKING:
@@ -54,28 +55,28 @@ def draw_candidates(
     axes.axhspan(0, allowed, facecolor="#f1f1f1", zorder=0)
     axes.axhline(allowed, color=s.INK, linewidth=1.0)
     axes.text(
-        0.995, allowed, f"allowed {allowed:.0%}".replace("%", " %"), ha="right", va="bottom",
+        0.995, allowed, f"allowed {percent(allowed)}", ha="right", va="bottom",
         fontsize=8, transform=axes.get_yaxis_transform(),
     )  # fmt: skip
     shown = sorted(((size[i], i, name) for i, name in names[:LABELLED] if known[i]), reverse=True)
-    for number, (x, i, name) in enumerate(shown):
+    for nth, (x, i, name) in enumerate(shown):
         # a ladder of labels in the free space below the marks
-        at = (x, allowed * (0.08 + 0.105 * number))
+        at = (x, allowed * (0.08 + 0.105 * nth))
         axes.annotate(
             s.literal(name), (x, height[i]), xytext=at, fontsize=8, ha="left", va="center",
             arrowprops={"arrowstyle": "-", "color": s.MUTED, "linewidth": 0.6, "shrinkB": 3},
         )  # fmt: skip
     if known.any() and np.nanmax(size) > 3 * np.nanmin(size[known]):
         axes.set_xscale("log")
-        axes.xaxis.set_major_formatter(lambda value, _: f"{value:g}")
+        axes.xaxis.set_major_formatter(lambda value, _: number(value))
     over = int(((utilisation > HIGHEST) & known).sum())
     axes.set_ylim(
         0, HIGHEST + 0.1 if over else max(1.15, 1.1 * float(height[known].max(initial=1)))
     )
-    axes.yaxis.set_major_formatter(lambda value, _: f"{value:.0%}".replace("%", " %"))
+    axes.yaxis.set_major_formatter(lambda value, _: percent(value))
     axes.set_xlabel(size_label)
     axes.set_ylabel("Utilisation of the limiting limit" + (
-        f" ({over} beyond {HIGHEST:.0%} on the edge)".replace("%", " %") if over else ""
+        f" ({over} beyond {percent(HIGHEST)} on the edge)" if over else ""
     ))  # fmt: skip
     s.title(made, axes, claim, below)
     axes.legend(loc="upper right")

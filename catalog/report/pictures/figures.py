@@ -7,7 +7,7 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 from ..implied import Implied
-from ..plain import words
+from ..plain import departure, number, words
 from . import style as s
 
 if TYPE_CHECKING:
@@ -71,12 +71,4 @@ def _place(log_ratio: float) -> float:
 
 def _tick(log_ratio: float) -> str:
     ratio = math.exp(abs(log_ratio))
-    return "equal" if log_ratio == 0 else f"{'×' if log_ratio > 0 else '÷'}{ratio:.4g}"
-
-
-def departure(ratio: float) -> str:
-    """A ratio in words: '+0.4 %', '×7.18', '÷2.28'."""
-    if abs(math.log(ratio)) > math.log(1.35):
-        return f"×{ratio:.3g}" if ratio > 1 else f"÷{1 / ratio:.3g}"
-    text = f"{ratio - 1:+.1%}".replace("%", " %").replace("-", "−")
-    return "0.0 %" if text in ("+0.0 %", "−0.0 %") else text
+    return "equal" if log_ratio == 0 else f"{'×' if log_ratio > 0 else '÷'}{number(ratio)}"

@@ -17,7 +17,7 @@ from ...search.fleet import load_fleet
 from ...search.run import Found, Shown, search, show
 from ..curves import plane
 from ..implied import implied_figures
-from ..plain import words
+from ..plain import number, percent, words
 from .candidates import draw_candidates
 from .figures import draw_figures
 from .plane import draw_plane
@@ -45,7 +45,8 @@ def plane_of(catalog: Catalog, part: str, requirement: Requirement, *, cycle: bo
     chosen = _chosen(catalog, part, requirement)
     found = plane(chosen.machine, chosen.requirement.demand, chosen.ratio)
     claim = f"{known.part_number}{_supply(requirement)}: {_verdict(chosen.shown, 'the cycle')}"
-    below = "; ".join(filter(None, (f"gear ratio {chosen.ratio:.3g}", _missing(found.missing))))
+    ratio = f"gear ratio {number(chosen.ratio, 3)}"
+    below = "; ".join(filter(None, (ratio, _missing(found.missing))))
     return draw_plane(found, claim, below)
 
 
@@ -92,7 +93,7 @@ def ratios_of(catalog: Catalog, part: str, requirement: Requirement) -> Figure:
     judged = judge.cases(chosen.machine, grid, slice(None), True)
     intervals = chosen.shown.intervals or []
     if intervals:
-        said = " and ".join(f"{low:.3g} to {high:.3g}" for low, high in intervals)
+        said = " and ".join(f"{number(low, 3)} to {number(high, 3)}" for low, high in intervals)
         claim = f"{chosen.shown.name.part_number}: gear ratios from {said} do it"
     else:
         claim = f"{chosen.shown.name.part_number}: no gear ratio does it"
@@ -162,12 +163,12 @@ def _verdict(shown: Shown, what: str) -> str:
     largest = float(judged.largest[0])
     if not np.isfinite(largest):
         return f"{what} leads to thermal runaway"
-    return f"{what} takes {largest:.0%} of the {name} limit".replace("%", " %")
+    return f"{what} takes {percent(largest)} of the {name} limit"
 
 
 def _supply(requirement: Requirement) -> str:
     voltage = requirement.lowest_voltage
-    return "" if voltage is None else f" at {voltage:.4g} V"
+    return "" if voltage is None else f" at {number(voltage)} V"
 
 
 def _missing(missing: list[str]) -> str:

@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from ..plain import words
+from ..plain import number, percent, words
 from . import style as s
 
 if TYPE_CHECKING:
@@ -36,28 +36,28 @@ def draw_ratios(
     """Each limit's utilisation (ratio's shape) over the ratio; `intervals` hold the ratios that
     do, `chosen` the one with the least copper loss among them."""
     made, axes = s.figure()
-    for number, (low, high) in enumerate(intervals):
+    for nth, (low, high) in enumerate(intervals):
         axes.axvspan(
             low, high, facecolor="#ececec", edgecolor="#b5b5b5", hatch="///", linewidth=0,
-            zorder=0, label="ratios that do" if number == 0 else None,
+            zorder=0, label="ratios that do" if nth == 0 else None,
         )  # fmt: skip
     shown = {name: u for name, u in utilisation.items() if np.isfinite(u).any()}
-    for number, (name, u) in enumerate(shown.items()):
-        style, width = _STYLES[number % len(_STYLES)]
+    for nth, (name, u) in enumerate(shown.items()):
+        style, width = _STYLES[nth % len(_STYLES)]
         axes.plot(
             ratio, u, label=words(name), linestyle=style, linewidth=width,
-            color=_GREYS[number % len(_GREYS)],
+            color=_GREYS[nth % len(_GREYS)],
         )  # fmt: skip
     axes.axhline(allowed, color=s.INK, linewidth=1.0)
     axes.text(
-        0.995, allowed, f"allowed {allowed:.0%}".replace("%", " %"), ha="right", va="bottom",
+        0.995, allowed, f"allowed {percent(allowed)}", ha="right", va="bottom",
         fontsize=8, transform=axes.get_yaxis_transform(),
     )  # fmt: skip
     if chosen is not None:
         axes.axvline(chosen, color=s.ALARM, linewidth=1.4, linestyle=(0, (4, 2)))
         left = chosen > np.sqrt(ratio[0] * ratio[-1])
         axes.text(
-            chosen, 0.02, f" {chosen:.3g}: least copper loss ", fontsize=8, color=s.ALARM,
+            chosen, 0.02, f" {number(chosen, 3)}: least copper loss ", fontsize=8, color=s.ALARM,
             ha="right" if left else "left", transform=axes.get_xaxis_transform(),
             bbox={"facecolor": "white", "edgecolor": "none", "alpha": 0.8, "pad": 1},
         )  # fmt: skip
@@ -67,9 +67,9 @@ def draw_ratios(
     if ratio[-1] > 3 * ratio[0]:
         axes.set_xscale("log")
         ticks = _ticks(ratio[0], ratio[-1])
-        axes.set_xticks(ticks, [f"{t:g}" for t in ticks])
+        axes.set_xticks(ticks, [number(t) for t in ticks])
         axes.minorticks_off()
-    axes.yaxis.set_major_formatter(lambda value, _: f"{value:.0%}".replace("%", " %"))
+    axes.yaxis.set_major_formatter(lambda value, _: percent(value))
     axes.set_xlabel("Gear ratio: motor speed over load speed")
     axes.set_ylabel("Utilisation: required over available")
     s.title(made, axes, claim, below)

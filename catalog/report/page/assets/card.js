@@ -1,7 +1,7 @@
 // A motor's card: constants, figures as published, findings, provenance, charts.
 "use strict";
 const card = (() => {
-  const {data, text, words, number, quantity, scale} = model;
+  const {data, text} = model, {words, number, quantity, scale, departure} = written;
   const SIGNS = {error: "✗", warning: "!", note: "·"};
 
   function table(caption, heads, rows) {
@@ -30,12 +30,6 @@ const card = (() => {
       if (corrected) note = `corrected to ${corrected[0]}: ${corrected[1]}`;
       return [name, printed, value === null ? "" : quantity(value, text(unit)), note, [row && `R${row}`, column && `C${column}`].filter(Boolean).join(" ")];
     }));
-  }
-
-  function departure(ratio) {
-    if (Math.abs(Math.log(ratio)) > 0.3) return ratio > 1 ? `×${number(ratio, 3)}` : `÷${number(1 / ratio, 3)}`;
-    const size = Math.abs((ratio - 1) * 100).toFixed(1);
-    return `${size === "0.0" ? "" : ratio > 1 ? "+" : "−"}${size} %`;
   }
 
   // Printed over implied: fine near 1, logarithmic far off.
@@ -75,7 +69,7 @@ const card = (() => {
     parts.push(make("p", {}, kind));
     if (found) {
       const word = {yes: "✓ does it", no: "✗ does not", unknown: "? not known"}[found.verdict];
-      const uses = Object.entries(found.use).filter(([, v]) => !Number.isNaN(v)).map(([k, v]) => `${words(k)} ${model.percent(v)}`);
+      const uses = Object.entries(found.use).filter(([, v]) => !Number.isNaN(v)).map(([k, v]) => `${words(k)} ${written.percent(v)}`);
       parts.push(make("p", {}, make("span", {className: found.verdict}, word),
         ` at gear ratio ${number(m.ratio)}${c.gear ? ` (${c.gear})` : ""}: ${uses.join(", ")}.`));
       if (c.needs) parts.push(make("p", {className: "note"}, `As asked: ${c.needs}`));

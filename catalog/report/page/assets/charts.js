@@ -16,7 +16,7 @@ const charts = (() => {
       const {min, max} = u.scales[u.axes[axisIndex].scale], wide = max / min > 200;
       return splits.map(v => (wide ? [1] : [1, 2, 5]).includes(mantissa(v)) ? v : null);
     },
-    values: (u, splits) => splits.map(v => v === null ? "" : model.number(v)),
+    values: (u, splits) => splits.map(v => v === null ? "" : written.number(v)),
   };
   const axis = (label, log) => ({
     label, ...(log ? LOG : {}), stroke: colour("--ink"), grid: {stroke: colour("--grid"), width: 1},
@@ -105,8 +105,8 @@ const charts = (() => {
     const peak = curve(w => judging.peakTorque(m, d, s, w, T));
     if (peak.some(v => v !== null)) series.push({label: "peak", look: LOOKS[1], y: peak});
     if (U !== null) {
-      series.push({label: `${model.number(U)} V, winding ${model.number(s.ambient, 3)} °C`, look: LOOKS[2], y: curve(w => judging.voltageTorque(m, w, U, s.ambient))});
-      if (Number.isFinite(hot)) series.push({label: `${model.number(U)} V, winding ${model.number(hot, 3)} °C`, look: LOOKS[3], y: curve(w => judging.voltageTorque(m, w, U, hot))});
+      series.push({label: `${written.number(U)} V, winding ${written.number(s.ambient, 3)} °C`, look: LOOKS[2], y: curve(w => judging.voltageTorque(m, w, U, s.ambient))});
+      if (Number.isFinite(hot)) series.push({label: `${written.number(U)} V, winding ${written.number(hot, 3)} °C`, look: LOOKS[3], y: curve(w => judging.voltageTorque(m, w, U, hot))});
     }
     const shown = series.filter(one => one.y.some(v => v !== null));
     if (!shown.length) { place.replaceChildren(make("p", {className: "note"}, "Its sheet tells no limit to draw.")); return; }
@@ -116,7 +116,7 @@ const charts = (() => {
     lines(place, {
       x: rows.map(w => w * RPM), series: shown, hooks: {draw: [u => drawCycle(u, cycle, factor)]}, extra: cycle.length ? ["●─● the cycle"] : [], xLabel: "speed, rpm", yLabel: `torque, ${unit}`,
       xRange: [0, 1.05 * top * RPM], yRange: [least * 1.2, (most || 1) * 1.2],
-      show: {x: v => model.number(v), y: v => `${model.number(v, 3)} ${unit}`},
+      show: {x: v => written.number(v), y: v => `${written.number(v, 3)} ${unit}`},
     });
     if (!judging.voltageKnown(m)) place.append(make("p", {className: "note"}, "Inductance or pole pairs are unknown: the voltage limits are upper bounds."));
   }
@@ -143,7 +143,7 @@ const charts = (() => {
       found.push(judging.judge({...m, ratio: x[i]}, d, s));
     }
     const names = Object.keys(found[0].use).filter(name => found.some(f => Number.isFinite(f.use[name])));
-    const series = names.map(name => ({label: model.words(name), y: found.map(f => gap(f.use[name] * 100))}));
+    const series = names.map(name => ({label: written.words(name), y: found.map(f => gap(f.use[name] * 100))}));
     const allowed = (1 - s.reserve) * 100;
     const inside = found.map(f => f.verdict === "yes");
     const hooks = {drawClear: [u => {
@@ -163,9 +163,9 @@ const charts = (() => {
     lines(place, {
       x, series, hooks, log: span[1] > 3 * span[0], xLabel: "gear ratio", yLabel: "utilisation, %",
       xRange: [span[0], span[1]], yRange: [0, Math.min(Math.max(115, 1.1 * tallest), 200)],
-      show: {x: v => model.number(v, 3), y: v => `${Math.round(v)} %`},
+      show: {x: v => written.number(v, 3), y: v => `${Math.round(v)} %`},
     });
-    place.append(make("p", {className: "note"}, `Shaded: ratios that do it. Line: ${Math.round(allowed)} % allowed. Chosen: ${model.number(m.ratio)}.`));
+    place.append(make("p", {className: "note"}, `Shaded: ratios that do it. Line: ${Math.round(allowed)} % allowed. Chosen: ${written.number(m.ratio)}.`));
   }
 
   // One mark a motor; the nearest one to the pointer is named, a click opens its card.

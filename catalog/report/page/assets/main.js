@@ -1,7 +1,7 @@
 // The table, its filters and order, the settings, and what opens where.
 "use strict";
 const page = (() => {
-  const {data, words, number, percent} = model, get = id => document.getElementById(id);
+  const {data} = model, {words, number, percent} = written, get = id => document.getElementById(id);
   const all = Array.from({length: model.count}, (_, i) => i), demand = data.demand, searching = data.kind === "search";
   const asked = {supply: demand.supply, ambient: demand.ambient, reserve: demand.reserve};
   let setting = {...asked}, found = [], order = null, down = false, shown = all, at = 0, open = null, printing = false;
