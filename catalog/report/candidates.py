@@ -16,6 +16,12 @@ from .safety import SAFETY
 
 Document = Mapping[str, Any]
 
+#: Orders of which no other column tells: heading and factor from SI.
+_ORDERED = {
+    "price": ("price", 1.0),
+    "diameter": ("diameter mm", 1e3),
+    "copper-loss": ("loss W", 1.0),
+}
 _RPM = 60 / (2 * 3.141592653589793)
 
 
@@ -31,7 +37,8 @@ def print_search(document: Document, console: Console) -> None:
     if counts["considered"] and not counts["pass_where"] and document["where"]:
         console.print(Text(plain(_where_passes_none(document))))
     elif candidates:
-        console.print(candidate_table(candidates))
+        order = document["requirement"]["order_by"]
+        console.print(candidate_table(candidates, order))
         for line in _notes(candidates):
             console.print(Text(line), soft_wrap=False)
     else:
@@ -115,15 +122,22 @@ def _miss(miss: Document) -> str:
     return plain(f"{miss['part_number']}{geared}{maker}: {over}. {miss['needs']}")
 
 
-def candidate_table(candidates: Sequence[Document]) -> Table:
-    """The ranked table: fits in 80 columns."""
+def candidate_table(candidates: Sequence[Document], order_by: str = "size") -> Table:
+    """The ranked table: fits in 80 columns. Where they are ordered by a figure that no column
+    shows, it stands in the place of the mass."""
     geared = any("gear" in c for c in candidates)
     table = Table(box=None, pad_edge=False, padding=(0, 1), header_style="bold")
     table.add_column("#", justify="right")
     table.add_column("motor", overflow="fold")
     table.add_column("gear" if geared else "ratio", overflow="fold")
-    for heading in ("mass kg", "peak A", "rms A", "winding °C"):
-        table.add_column(heading, justify="right")
+    heading, factor = "mass kg", 1.0
+    if order_by in _ORDERED:
+        heading, factor = _ORDERED[order_by]
+        units = {c["ranked_by"]["unit"] for c in candidates}
+        if order_by == "price":
+            heading = f"price {units.pop()}" if len(units) == 1 else "price"
+    for name in (heading, "peak A", "rms A", "winding °C"):
+        table.add_column(name, justify="right")
     table.add_column("limit", no_wrap=True)
     for rank, c in enumerate(candidates, start=1):
         mass = c["pair_mass"] if "pair_mass" in c else c["mass"]
@@ -132,13 +146,19 @@ def candidate_table(candidates: Sequence[Document]) -> Table:
             str(rank),
             Text(plain(c["part_number"])),
             Text(plain(c["gear"]["part_number"]) if "gear" in c else _ratio(c)),
-            number(mass["value"], 3),
+            _scaled(c["ranked_by"] if order_by in _ORDERED else mass, factor, heading == "price"),
             number(c["peak_current"]["value"], 3),
             number(c["rms_current"]["value"], 3),
             number(c["winding_temperature"]["value"], 3),
             "–" if use is None else f"{words(c['limiting'])} {percent(use)}",
         )
     return table
+
+
+def _scaled(found: Document, factor: float, with_unit: bool) -> str:
+    value = found["value"]
+    said = number(None if value is None else value * factor, 4 if found["unit"] != "kg" else 3)
+    return f"{said} {found['unit']}" if with_unit and value is not None else said
 
 
 def _ratio(c: Document) -> str:
@@ -169,11 +189,21 @@ def _notes(candidates: Sequence[Document]) -> list[str]:
 def _supply(c: Document) -> str:
     s = c["supply"]
     mean, peak = _si(s["mean_power"], 3), _si(s["peak_power"], 3)
-    said = f"draws {mean}"
-    if peak != mean:
-        said += f" on average and {peak} at most, {_si(s['energy_per_cycle'], 3)} a cycle"
-    if s["energy_returned"]["value"]:
-        said += f", and returns {_si(s['energy_returned'], 3)}"
+    drawn, returned = (s[key]["value"] for key in ("energy_per_cycle", "energy_returned"))
+    if not drawn and returned:
+        said = f"draws nothing: it returns {_si({**s['mean_power'], 'value': -_mean(s)}, 3)}"
+        said += f" on average, {_si(s['energy_returned'], 3)} a cycle"
+    else:
+        said = (
+            f"draws {mean}" if _mean(s) >= 0 else f"draws {_si(s['energy_per_cycle'], 3)} a cycle"
+        )
+        if peak != mean and _mean(s) >= 0:
+            said += f" on average and {peak} at most, {_si(s['energy_per_cycle'], 3)} a cycle"
+        if returned:
+            said += f", and returns {_si(s['energy_returned'], 3)}"
+        if _mean(s) < 0:
+            over = _si({**s["mean_power"], "value": -_mean(s)}, 3)
+            said += f": on balance it returns {over} on average"
     if "bus_capacitance" in s:
         said += (
             f" (a bus that may rise {percent(s['bus_rise'])}: "
@@ -183,6 +213,10 @@ def _supply(c: Document) -> str:
     if c["inertia_ratio"] is not None and c["inertia_ratio"] > 0:
         said += f"; load to rotor inertia {number(c['inertia_ratio'], 3)}"
     return said
+
+
+def _mean(supply: Document) -> float:
+    return supply["mean_power"]["value"] or 0.0
 
 
 def print_requirement(document: Document, console: Console) -> None:

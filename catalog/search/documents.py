@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -95,7 +95,7 @@ def candidate_document(shown: Shown, found: Found, catalog: Catalog) -> Document
     limiting = int(judged.limiting()[0])
     document: Document = {
         "part_number": shown.name.part_number,
-        "maker": shown.name.maker,
+        "maker": shown.name.maker or None,
         "feasible": bool(judged.verdict[0] == Verdict.FEASIBLE),
         "ratio": ratio,
         "ratio_interval": _holding(shown.intervals, ratio),
@@ -119,8 +119,11 @@ def candidate_document(shown: Shown, found: Found, catalog: Catalog) -> Document
         document["ripple_peak_to_peak"] = amount(float(use.ripple_peak_to_peak[0]), "A")
     if judged.corner[0] >= 0:
         document["worst_corner"] = _CORNERS[int(judged.corner[0])]
+    currency = "currency"
     if not np.isnan(column["price"]):
-        document["price"] = amount(column["price"], _currency(shown, found, catalog))
+        currency = _currency(shown, found, catalog)
+        document["price"] = amount(column["price"], currency)
+    document["ranked_by"] = amount(*_ranked_by(shown, column, requirement.order_by, currency))
     if shown.gear is not None:
         document["gear"] = gear_document(shown)
         pair = column["mass"] + (np.nan if shown.gear.mass is None else shown.gear.mass)
@@ -129,6 +132,28 @@ def candidate_document(shown: Shown, found: Found, catalog: Catalog) -> Document
         document |= _supply(machine, shown, requirement)
     document["remarks"] = _remarks(machine, shown, requirement, column, catalog, found)
     return document
+
+
+def _ranked_by(
+    shown: Shown, column: Mapping[str, float], order_by: str, currency: str
+) -> tuple[float, str]:
+    """The figure by which the candidates are ordered, that of motor and gear together."""
+    judged = shown.judged
+    match order_by:
+        case "copper-loss":
+            return float(judged.use.copper_loss[0]), "W"
+        case "winding-temperature":
+            return float(judged.use.winding_temperature[0]), "°C"
+        case "utilisation":
+            return float(judged.largest[0]), "1"
+    name = "mass" if order_by == "size" else order_by
+    unit = {"mass": "kg", "diameter": "m"}.get(name, currency)
+    if shown.gear is None:
+        return column[name], unit
+    own = getattr(shown.gear, name)
+    own = np.nan if own is None else own
+    both = np.maximum if name == "diameter" else np.add
+    return float(both(column[name], own)), unit
 
 
 def _holding(intervals: list[tuple[float, float]] | None, ratio: float) -> list[float] | None:
@@ -144,7 +169,7 @@ def gear_document(shown: Shown) -> Document:
     assert gear is not None
     return {
         "part_number": gear.part_number,
-        "maker": gear.maker,
+        "maker": gear.maker or None,
         "ratio": gear.ratio,
         "stages": gear.stages,
         "efficiency": gear.efficiency,

@@ -31,6 +31,8 @@ _HALVINGS = 20
 _GOLDEN = (np.sqrt(5) - 1) / 2
 #: Steps of the golden section: a minimum is found to 1e-5 of a grid step.
 _SECTIONS = 24
+#: A best ratio as near to an end of its interval is the end.
+_AT_END = 1e-9
 #: Cases of a grid that are held at once.
 _CASES = 1 << 18
 
@@ -197,7 +199,11 @@ class _Search:
             x, y = np.where(at_end < y, end, x), np.fmin(at_end, y)
         order = np.lexsort((y, motor))
         first = order[np.unique(motor[order], return_index=True)[1]]
-        best[motor[first]] = np.clip(np.exp(x), low, high)[first]
+        # an end of the interval is that end, not what is left of it after exp(log(…))
+        ratio = np.clip(np.exp(x), low, high)
+        for end in (low, high):
+            ratio = np.where(np.isclose(ratio, end, rtol=_AT_END, atol=0), end, ratio)
+        best[motor[first]] = ratio[first]
         return best
 
 

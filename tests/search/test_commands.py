@@ -10,9 +10,7 @@ from pathlib import Path
 import pytest
 
 from motorfolio.catalog.cli import main
-from motorfolio.catalog.search.gears import read_gears, store_gears
-from motorfolio.catalog.store import Catalog
-from motorfolio.catalog.tables import read_tables
+from motorfolio.catalog.importing.gears import import_gears
 
 from .made import SAMPLES, sample_catalog
 
@@ -22,8 +20,7 @@ POINT = ["--torque", "0.1 N·m", "--speed", "3000 rpm", "--supply", "24 V"]
 @pytest.fixture(scope="module")
 def file(tmp_path_factory) -> str:
     path = sample_catalog(tmp_path_factory.mktemp("samples") / "c.sqlite")
-    with Catalog.open(path, write=True) as catalog:
-        store_gears(catalog, read_gears(read_tables(SAMPLES / "gears.csv").grids[0]).gears)
+    import_gears(path, [SAMPLES / "gears.csv"])
     return str(path)
 
 
@@ -153,6 +150,51 @@ def test_near_misses_are_only_pointed_to_where_there_are_some(run) -> None:
     assert status == 1
     assert ("Near misses" in out) == ("near misses" in err)
     assert "that pass --where" in err
+
+
+@pytest.mark.parametrize(
+    ("order", "heading", "key", "factor"),
+    [
+        ("diameter", "diameter mm", "diameter", 1e3),
+        ("copper-loss", "loss W", "copper_loss", 1.0),
+        ("price", "price", "price", 1.0),
+        ("mass", "mass kg", "mass", 1.0),
+    ],
+)
+def test_the_table_shows_what_it_is_ordered_by(run, order, heading, key, factor) -> None:
+    words = ["search", *POINT, "--order-by", order, "--limit", "4"]
+    document = json.loads(run(*words, "--json")[1])
+    figures = [c["ranked_by"]["value"] for c in document["candidates"]]
+    known = [f for f in figures if f is not None]
+    assert known == sorted(known)
+    assert figures == [c.get(key, {"value": None})["value"] for c in document["candidates"]]
+    lines = run(*words)[1].splitlines()
+    assert heading in lines[1]
+    column = [line[lines[1].index(heading) :].split()[0] for line in lines[2:6]]
+    shown = [float(f"{factor * f:.4g}") for f in known]
+    assert [float(text) for text in column if text[0].isdigit()] == pytest.approx(shown, rel=6e-3)
+
+
+def test_a_motor_that_only_brakes_returns_power(run) -> None:
+    """50 mN·m against the motion at 3000 rpm drives the motor with 15.7 W, less its losses."""
+    words = ["search", "--torque", "-50 mN·m", "--speed", "3000 rpm", "--limit", "1"]
+    out = run(*words)[1]
+    said = " ".join(out.split())
+    assert "draws nothing: it returns " in said
+    assert "-" not in said.split("returns ")[1].split(".")[0]
+    supply = json.loads(run(*words, "--json")[1])["candidates"][0]["supply"]
+    assert -15.71 < supply["mean_power"]["value"] < 0
+
+
+def test_the_ratio_at_a_range_s_end_is_that_end(run) -> None:
+    """Without inertia the least copper loss is at the largest ratio: exactly what was asked."""
+    words = ["--torque", "1 N·m", "--speed", "10 rpm", "--supply", "48 V", "--ratio", "3..120"]
+    found = json.loads(run("search", *words, "--json")[1])["candidates"]
+    ends = [c for c in found if c["ratio"] > 119.9]
+    assert ends
+    for c in ends:
+        assert c["ratio"] == c["ratio_interval"][1] == 120.0
+    assert all(c["maker"] for c in found)
 
 
 REQUIREMENTS = [
