@@ -4,12 +4,13 @@
 # make bench  the benchmarks, as ratios against a baseline in the same run
 # make bounds the quick tests with the lowest and the newest dependencies, on each of PYTHONS
 # make dist   sdist and wheel, built twice and compared, used from outside; bill of materials
+# make mutants: small faults put into schema/, to see that its tests notice (an hour)
 # make shake  the long runs: a thousand kills, a minute of a crowd at one catalog
 
 PYTHON ?= python3
 BIN = .venv/bin
 
-.PHONY: demo test lint types docs bench clean
+.PHONY: demo test lint types docs bench mutants clean
 
 demo: .venv/installed
 	@PATH="$(CURDIR)/$(BIN):$$PATH" sh sample_entries/demo.sh
@@ -36,6 +37,9 @@ bounds: .venv/tools
 
 dist: .venv/tools
 	$(BIN)/python -m tests.supply.wheel --dist dist --bom dist/bom.json
+
+mutants: .venv/tools
+	OPENBLAS_NUM_THREADS=1 nice $(BIN)/python -m tests.mutation --write
 
 shake: .venv/tools
 	OPENBLAS_NUM_THREADS=1 $(BIN)/python -m tests.robustness.kills --kills 1000

@@ -58,6 +58,8 @@ DEPENDENCIES = {
     "pyarrow": "Parquet files",
     "basedpyright": "types",
     "control": "a reference for the motor's response over time",
+    "cosmic-ray": "small faults put into the code, to see that tests notice",
+    "coverage": "which tests run the line that such a fault is in",
     "hypothesis": "properties over many inputs",
     "jsonschema": "printed documents held against their schemas",
     "openpyxl": "workbooks made for tests",
