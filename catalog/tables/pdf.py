@@ -16,6 +16,7 @@ _MOST_PAGES = 400
 _MOST_RUNS = 20_000
 _MOST_TOTAL = 300_000
 _WORD_GAP = 0.7  # of the type size: what is wider parts two cells
+_LONGEST_SCRIPT = 6  # signs of a raised or lowered text that is not much smaller: "-1", "1),2)"
 _BROKEN = ("\ufffd", "\ufffe", "\uffff")
 
 
@@ -182,20 +183,30 @@ def _attach_scripts(runs: list[_Run]) -> None:
     ends: dict[int, list[_Run]] = {}
     for run in runs:
         ends.setdefault(int(run.x1 // 4), []).append(run)
-    for run in runs:
+    for run in sorted(runs, key=lambda r: r.x0):
         near = int(run.x0 // 4)
-        for base in (r for at in (near - 1, near, near + 1) for r in ends.get(at, ())):
+        for before in (r for at in (near - 1, near, near + 1) for r in ends.get(at, ())):
+            base = before.base or before  # a mark may follow a lowered sign
             height = base.height
             if (
-                base is run
-                or base.base is not None
-                or run.height > 0.72 * height
-                or not -0.1 * height < run.x0 - base.x1 < 0.3 * height
+                run is before
+                or run is base
+                or not -0.1 * height < run.x0 - before.x1 < 0.3 * height
                 or not base.y0 - 0.8 * height < (run.y0 + run.y1) / 2 < base.y1 + 0.5 * height
             ):
                 continue
-            raised = run.y0 > base.y0 + 0.4 * height and run.y1 > base.y1 - 0.2 * height
-            lowered = run.y1 < base.y0 + 0.45 * height and run.text[0].isalnum()
+            small = run.height <= 0.72 * height
+            # Ink of "min" or "n" is hardly higher than that of a small "-1": then both of the
+            # sign's edges must stand off the base's, which no text on the same baseline does.
+            short = len(run.text) <= _LONGEST_SCRIPT
+            over = short and run.y1 > base.y1 + 0.15 * height
+            under = short and run.y0 < base.y0 - 0.3 * height
+            raised = run.y0 > base.y0 + 0.4 * height and (
+                over or (small and run.y1 > base.y1 - 0.2 * height)
+            )
+            lowered = (
+                run.y1 < base.y0 + 0.45 * height and run.text[0].isalnum() and (small or under)
+            )
             if raised or lowered:
                 run.text = superscript(run.text) if raised else subscript(run.text)
                 run.base = base

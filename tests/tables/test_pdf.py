@@ -6,7 +6,9 @@ from pathlib import Path
 import pytest
 from reportlab.lib import colors, pdfencrypt
 from reportlab.lib.pagesizes import A4, landscape
-from reportlab.lib.styles import getSampleStyleSheet
+from reportlab.lib.styles import ParagraphStyle, getSampleStyleSheet
+from reportlab.pdfbase import pdfmetrics
+from reportlab.pdfbase.ttfonts import TTFont
 from reportlab.pdfgen.canvas import Canvas
 from reportlab.platypus import Paragraph, SimpleDocTemplate, Spacer, Table
 
@@ -69,6 +71,31 @@ def test_raised_and_lowered_signs(tmp_path: Path) -> None:
     rows.append([Paragraph("Torque M<sub size=6>0</sub>", style), "7.1", "7.2"])
     grid = one(read(tmp_path / "a.pdf", pdf([Table(rows, colWidths=[120, 60, 60])])))
     assert [row[0] for row in grid.rows[-2:]] == ["Inertia g cm²", "Torque M₀"]
+
+
+def test_raised_and_lowered_signs_of_headings_in_two_lines(tmp_path: Path) -> None:
+    """Small signs beside letters without ascenders: "min" and its "-1" are nearly as high."""
+    pdfmetrics.registerFont(TTFont("Vera", "Vera.ttf"))  # comes with reportlab
+    style = ParagraphStyle("small", fontName="Vera", fontSize=8)
+    heads = [
+        "Type",
+        "Speed n<sub>N</sub><br/>min<super>-1</super>",
+        "Inertia J<br/>10<super>-4</super> kg·m<super>2</super>",
+        "Constant k<sub>T</sub><super>1)</super><br/>N·m/A",
+    ]
+    rows = [
+        heads,
+        ["PX-1", "3000<super>2)</super>", "0.17", "0.41"],
+        ["PX-2", "2000", "0.28", "0.5"],
+    ]
+    cells = [[Paragraph(text, style) for text in row] for row in rows]
+    grid = one(read(tmp_path / "a.pdf", pdf([Table(cells, colWidths=[60, 90, 100, 100])])))
+    assert grid.rows == [
+        ["", "Speed n_N", "Inertia J", "Constant k_T¹⁾"],
+        ["Type", "min⁻¹", "10⁻⁴ kg·m²", "N·m/A"],
+        ["PX-1", "3000²⁾", "0.17", "0.41"],
+        ["PX-2", "2000", "0.28", "0.5"],
+    ]
 
 
 def test_a_drawing_beside_and_text_upward(tmp_path: Path) -> None:
