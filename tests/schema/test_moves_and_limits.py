@@ -47,9 +47,9 @@ def test_edges_of_what_can_be_moved() -> None:
     assert (steep.ramp, steep.cruise) == pytest.approx((1.0, 0.0), abs=1e-9)
     with pytest.raises(MoveError, match="at least 2 s"):
         ramps(1.0, profile="trapezoidal", time=1.99, acceleration=1.0)
-    with pytest.raises(MoveError, match=r"above 0\.5 and at most 1, not 0\.5"):
+    with pytest.raises(MoveError, match=r"above 0\.5 m/s and at most 1 m/s, not 0\.5 m/s"):
         ramps(1.0, profile="trapezoidal", time=2.0, top_speed=0.5)
-    with pytest.raises(MoveError, match=r"above 0\.5 and at most 1, not 1\.01"):
+    with pytest.raises(MoveError, match=r"above 0\.5 m/s and at most 1 m/s, not 1\.01 m/s"):
         ramps(1.0, profile="trapezoidal", time=2.0, top_speed=1.01)
 
 
