@@ -10,6 +10,7 @@ from functools import lru_cache
 
 _SUPERSCRIPTS = str.maketrans("⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻⁽⁾¯ᵃᵇᶜᵈᵉ", "0123456789+-()-abcde")
 _SUPERSCRIPT_RUN = re.compile(r"[⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻⁽⁾¯ᵃᵇᶜᵈᵉ]+")
+_CIRCLED = re.compile(r"[①-⑳]|※\s?(\d)")
 # What NFKC would spoil or leave apart, each with the sign that stands for all of them here.
 _SIGNS = str.maketrans(
     {
@@ -43,6 +44,10 @@ def plain(text: str) -> str:
         visible = visible.translate(_SIGNS)
         visible = _SUPERSCRIPT_RUN.sub(
             lambda run: "^" + run.group().translate(_SUPERSCRIPTS), visible
+        )
+        # Circled numbers mark footnotes; NFKC would leave a bare digit.
+        visible = _CIRCLED.sub(
+            lambda m: f"^{m[1] or unicodedata.normalize('NFKC', m[0])})", visible
         )
         # "½" and its kin would lose the blank that parts them from a whole number.
         visible = re.sub("[¼½¾⅓⅔]", lambda m: " " + m.group(), visible)

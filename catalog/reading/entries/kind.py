@@ -37,14 +37,18 @@ class Notes:
 
 
 _MARK = re.compile(
-    r"(?P<m>[*†‡§]+|\^?\(?\d{1,2}\)|\(\d{1,2}\)|\^\(?\d{1,2}\)?|\(?[a-z]\)|※\d?)\s*:?\s*(?P<t>.+)",
+    r"(?P<m>[*†‡§]+|\^?\(?\d{1,2}\)|\(\d{1,2}\)|\^\(?\d{1,2}\)?|\(?[a-z]\)|※\d?|注\s?\d)\s*[:：]?\s*(?P<t>.+)",
     re.S,
 )
 
 
+_NEXT_MARK = re.compile(r"(?<=[.;。；])\s+(?=(?:[*†‡§]{1,3}|\^?\(?\d{1,2}\)|\(?[a-z]\))\s*[^\W\d])")
+"""Where on one line the next footnote begins."""
+
+
 def _lines(text: str) -> list[str]:
     """The notes of a text: its lines, where a new mark begins."""
-    clean = plain(text)
+    clean = _NEXT_MARK.sub("\n", plain(text))
     parts = re.split(r"\n(?=\s*(?:[*†‡§]|\^?\(?\d{1,2}\)|\(\d|\^\(?\d))", clean)
     return [
         q for p in parts for q in (p.split("\n") if len(parts) > 1 or p.count("\n") < 6 else [p])
@@ -82,7 +86,7 @@ def notes_of(texts: Sequence[str]) -> Notes:
         notes.texts.append(clean)
         mark = _MARK.match(clean)
         if mark:
-            core = re.sub(r"[()^]", "", mark["m"])
+            core = re.sub(r"[()^注\s]", "", mark["m"])
             notes.marked[core] = mark["t"]
             continue
         notes.conventions += clauses_of(clean)
@@ -101,6 +105,13 @@ _SUBJECTS = {
 }
 
 
+_SUBJECT_SYMBOL = re.compile(
+    r"(R|L|I|K[TtEeMm])(?:_?\w{1,3})?(?:\s+(?:and|und|et|e|y|is|are|ist)\b|\s*[:=])"
+)
+_OF_SYMBOL = {"R": "winding", "L": "winding", "I": "current", "KT": "current", "KM": "current",
+              "KE": "voltage"}  # fmt: skip
+
+
 def clauses_of(text: str) -> list[tuple[str | None, dict[str, str]]]:
     """(subject, conventions) for each clause of a note; subject None: of all its figures.
 
@@ -115,6 +126,8 @@ def clauses_of(text: str) -> list[tuple[str | None, dict[str, str]]]:
         said = False
         for clause in re.split(r",\s|、|\s(?:and|und|et|e|y)\s", sentence):
             named = [s for s, w in _SUBJECTS.items() if re.search(w, clause, re.IGNORECASE)]
+            if not named and (symbol := _SUBJECT_SYMBOL.match(clause.strip())):
+                named = [_OF_SYMBOL[symbol[1].upper()]]
             stated = note_conventions(clause)
             # "Resistance and inductance per phase" speaks of both; "currents rms, voltage peak"
             # begins anew with the second.
@@ -124,6 +137,14 @@ def clauses_of(text: str) -> list[tuple[str | None, dict[str, str]]]:
                 said = True
     return found
 
+
+_OTHERWISE = re.compile(
+    r"(?:\b(?:(?:in order )?to (?:obtain|get|convert)|um|pour|per ottenere|para)\b[^.;]*?)?"
+    r"\b(?:divi[ds]\w*|multipl\w*|teil\w*|dividier\w*)\b(?:[^.;]|\.(?=\d))*"
+    r"|\(?\b(?:not|nicht|kein\w*|non|pas)\s+[\w/-]+(?:[ -](?:to|zu)[ -]\w+)?\)?",
+    re.IGNORECASE,
+)
+"""What a note says of other values than the table's: "not rms", "divide by 1.414 for rms"."""
 
 _LEGEND = re.compile(r"[\"']?\s*(?P<symbol>\S{1,10})\s*[:=：]\s*(?P<name>.+)")
 
@@ -138,6 +159,7 @@ def _explains_symbol(sentence: str) -> bool:
 
 def note_conventions(text: str) -> dict[str, str]:
     """Conventions in a clause of a note: rms, peak, line to line, per phase, star, delta."""
+    text = _OTHERWISE.sub(" ", plain(text))
     stated = dict(conventions_of(text, whole=False))
     low = plain(text).casefold()
     whole = conventions_of(text, whole=True)
@@ -145,8 +167,10 @@ def note_conventions(text: str) -> dict[str, str]:
         if stated.get("current") == "dc":
             stated = {k: v for k, v in stated.items() if v != "dc"}
         if stated.get("between") == "phase" and not re.search(
-            r"per phase|phase (?:value|resist|induct|quant)|line to neutral|l-n|pro phase|je phase|"
-            r"strang|par phase|per fase|por fase|valeurs? (?:de|par) phase"
+            r"per phase|phase (?:value|resist|induct|quant)|(?:line|phase)[ -]to[ -]neutral|l-n|"
+            r"phase et neutre|fase[ -](?:e |y |a )?neutr|phase-neutre|phase gegen|pro phase|"
+            r"je phase|相电阻|相電阻|相抵抗|相电感|相電感|strang|par phase|per fase|por fase|"
+            r"valeurs? (?:de|par) phase"
             r"|每相|相あたり|相当り|相值|相値|of one phase|phase-neutr",
             low,
         ):
@@ -154,7 +178,7 @@ def note_conventions(text: str) -> dict[str, str]:
         if stated.get("current") == "peak" and not re.search(
             r"peak[- ]values?|amplitude|scheitel|spitzenwert|crête|crest|cresta|"
             r"valor(?:es|i)? d[ei] picc?o|a\s?(?:pk|peak)|v\s?(?:pk|peak)|波高値|峰值|ピーク値|"
-            r"peak of|are peak|is peak|in peak|peak line|peak, ",
+            r"(?:0|zero)[- ](?:to[- ])?peak|peak of|are peak|is peak|in peak|peak line|peak, ",
             low,
         ):
             stated = {k: v for k, v in stated.items() if v != "peak"}

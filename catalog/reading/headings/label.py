@@ -10,11 +10,11 @@ from ....schema.units.read import unit_of
 from ....schema.vocabulary import quantities
 from .lexicon import find_symbol, lexicon, tokens
 from .phrase import Phrase, conventions_of, match_phrase, variant_of
-from .pieces import bracketed_apart, may_be_unit, ways_to_divide
+from .pieces import bracketed_apart, may_be_unit, unit_pair, ways_to_divide
 
 _NUMBERING = re.compile(r"\(?\d{1,2}[.)]?\s+(?=[^\W\d_]{2})|\(\d{1,2}\)\s*")
 _MARKS = re.compile(
-    r"(?:\s*(?:[*†‡§]+\)?|\^\(?(?:\d{1,2}|[a-z])\)|\^\(?[1456789a-z]\)?|(?<=\w)\s+\d\)|(?<=[^\W\d])\d{1,2}\)))+$"
+    r"(?:\s*(?:[*†‡§]+\)?|\^\(?(?:\d{1,2}|[a-z])\)|\^\(?[1456789a-z]\)?|注\s?\d|(?<=\w)\s+\d\)|(?<=[^\W\d])\d{1,2}\)))+$"
 )
 _TEMPERATURE = re.compile(
     r"(?:(?:@|at|bei|à|a|T(?:amb|ref|w|_?0)?\s*=|ϑ\s*=|θ\s*=|,)\s*)?"
@@ -122,7 +122,28 @@ def parse_label(text: str) -> Label:
             core = f"{core} {content}"
         else:
             label = _bracket(label, content)
-    return _core(label, core)
+    bracketed = len(label.units)
+    return _in_order(_core(label, core), bracketed, core)
+
+
+def _in_order(label: Label, bracketed: int, core: str) -> Label:
+    """Of "N·m (oz-in)" the unit outside the brackets, which stands first, is that of the cells'
+    first figure."""
+    inside, outside = label.units[:bracketed], label.units[bracketed:]
+    if len(inside) != 1 or len(outside) != 1:
+        return label
+    symbol = find_symbol(outside[0].replace(" ", "_"))
+    apart = re.search(rf"[\s,:]{re.escape(outside[0])}[\s,:]*$", core)
+    if not apart or (symbol and symbol.surety > 0.85):
+        return label  # M_N (mN·m) is a symbol and a unit
+    if not _one_dimension(outside[0], inside[0]):
+        return label
+    return replace(label, units=(*outside, *inside))
+
+
+def _one_dimension(first: str, second: str) -> bool:
+    one, two = unit_of(first), unit_of(second)
+    return one is not None and two is not None and one.si == two.si and one.si != "1"
 
 
 def _balanced(text: str, end: int) -> bool:
@@ -145,6 +166,8 @@ def _bracket(label: Label, content: str) -> Label:
     if low in _QUALIFIERS:
         label = replace(label, qualifier=_QUALIFIERS[low])
         return replace(label, units=(*label.units, content)) if low == "min" else label
+    if len(pair := unit_pair(content)) == 2 and _one_dimension(*pair):
+        return replace(label, units=(*label.units, *pair))
     if unit_of(content) is not None:
         return replace(label, units=(*label.units, content))
     whole = conventions_of(content, whole=True)

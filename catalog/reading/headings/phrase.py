@@ -150,6 +150,7 @@ def part_of(text: str) -> str | None:
     """The part built onto the motor (brake, gearbox, encoder) that a caption names, and nothing
     else; None of any other text."""
     clean = re.sub(r"[(（\[【].*?[)）\]】]|^\s*\d{1,2}[.)]?(?=\s)|[:：].*$", " ", plain(text))
+    clean = re.sub(r"(?<=[^\W\d_]{3}\s)(?=\S*\d)[A-Z\d][\w./-]*$", "", clean.strip())  # its type
     form = tuple(t for t in canonical(tokens(clean)) if t not in _BESIDE_A_PART)
     if is_cjk(clean):
         run = re.sub(r"(?:部|部分|参数|參數|数据|特性|仕様|規格|规格|参数表)$", "", squeeze(form))

@@ -2,7 +2,7 @@
 
 import re
 
-from ....schema.units.read import is_unit_like
+from ....schema.units.read import is_unit_like, unit_of
 from .lexicon import find_symbol, symbol_form
 
 _OPENING, _CLOSING = "([{<【", ")]}>】"
@@ -99,3 +99,17 @@ def _name_and_symbol(text: str) -> list[tuple[str, str]]:
         if find_symbol(two) and len(symbol_form(two)) <= 6:
             found.append((text[: text.rindex(pieces[-2])].strip(" ,:=–-"), two))
     return [(n, s) for n, s in found if n]
+
+
+def unit_pair(text: str) -> tuple[str, ...]:
+    """The two units of "N·m (oz-in)", "mm / in" or "kg | lb", the one of any other text."""
+    pair = re.fullmatch(
+        r"(.+?)\s*(?:\((.+)\)|\[(.+)\]|\{(.+)\}|\s/\s(.+)|\|\s*(.+)|\s-\s(.+))", text
+    )
+    if pair:
+        first, second = pair[1].strip(), next(g for g in pair.groups()[1:] if g).strip()
+        one, two = unit_of(first), unit_of(second)
+        bracketed = pair[2] or pair[3] or pair[4]
+        if one is not None and two is not None and (bracketed or one.si == two.si):
+            return (first, second)
+    return (text,)

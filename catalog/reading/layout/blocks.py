@@ -138,14 +138,37 @@ def _side_by_side(block: Block) -> list[Block]:
             ranges.append((start, c))
             start = None
     if len(ranges) < 2:
-        return [block]
+        return _beside_labels(block)
     parts = [_cut(block, a, b) for a, b in ranges]
     kinds = [orientation(p)[0] for p in parts]
     strong = all(
         kind != "text" and _score(part, kind) >= 1.9
         for kind, part in zip(kinds, parts, strict=True)
     )
-    return parts if strong else [block]
+    return [side for part in parts for side in _beside_labels(part)] if strong else [block]
+
+
+def _beside_labels(block: Block) -> list[Block]:
+    """The blocks that labels right of figures begin: "voltage | V | 12 | inertia | gcm² | 11"."""
+    kind, line = orientation(block)
+    if kind != "columns":
+        return [block]
+    scores = column_scores(block)
+    borders, figures = [0], False
+    for c in range(line + 1, len(scores)):
+        texts = [row[c] for row in block.rows if row[c]]
+        numbers = sum(map(is_figure, texts))
+        if figures and not numbers and scores[c] >= 1.9 and _figures_right(block, c):
+            borders.append(c)
+            figures = False
+        elif numbers > 0.5 * len(texts):
+            figures = True
+    return [_cut(block, a, b) for a, b in pairwise([*borders, block.width])]
+
+
+def _figures_right(block: Block, column: int) -> bool:
+    labelled = [row for row in block.rows if row[column]]
+    return sum(any(map(is_figure, row[column + 1 :])) for row in labelled) > 0.5 * len(labelled)
 
 
 def _cut(block: Block, a: int, b: int) -> Block:

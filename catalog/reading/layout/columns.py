@@ -6,7 +6,7 @@ from ....schema.figure.signs import plain
 from ....schema.vocabulary import quantity
 from ..cells import is_caption, is_figure, is_symbol, strength
 from ..headings.label import parse_label
-from ..headings.phrase import match_phrase, section_of
+from ..headings.phrase import match_phrase, part_of, section_of
 from ..model import Table
 from .blocks import Block
 from .columns_head import (
@@ -46,7 +46,10 @@ def lay_out_columns(block: Block) -> Table:
     ]
     if joined is not None:
         table.remarks.append("the part numbers are joined from two rows, type and winding")
-    caption: list[str] = []
+    above = [
+        text for row in rows[:first] if len(texts := {t for t in row if t}) == 1 for text in texts
+    ]
+    caption: list[str] = [text for text in above[-1:] if part_of(text)]
     captioned = -2
     for i, row in enumerate(rows):
         if i in (id_row, condition_row):

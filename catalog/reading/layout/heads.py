@@ -4,10 +4,10 @@ import re
 from dataclasses import replace
 
 from ....schema.figure.signs import plain
-from ....schema.units.read import unit_of
 from ..cells import is_caption, is_symbol, is_unit, strength
 from ..headings.label import Label, parse_label
 from ..headings.phrase import match_phrase, part_of, section_of
+from ..headings.pieces import unit_pair
 from ..model import Field
 
 HeadCell = tuple[str, str]
@@ -47,17 +47,6 @@ def head_field(
         temperature=temperature, variant=variant,
         part=next((part for c in reversed(captions) if (part := part_of(c))), None),
     )  # fmt: skip
-
-
-def unit_pair(text: str) -> tuple[str, ...]:
-    """The two units of "N·m (oz-in)" or "mm / in", the one of any other text."""
-    pair = re.fullmatch(r"(.+)\s*(?:\((.+)\)|\[(.+)\]|\{(.+)\}|\s/\s(.+))", text)
-    if pair:
-        first, second = pair[1], next(g for g in pair.groups()[1:] if g)
-        one, two = unit_of(first), unit_of(second)
-        if one is not None and two is not None and (not pair[5] or one.si == two.si):
-            return (first, second)
-    return (text,)
 
 
 def _shown(text: str) -> str:
