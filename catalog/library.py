@@ -5,7 +5,7 @@ Everything here raises MotorfolioError, one sentence, for whatever can't be used
 
 import json
 import os
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import replace
 from pathlib import Path
 from types import TracebackType
@@ -167,7 +167,8 @@ def open_catalog(path: str | Path, *, create: bool = False) -> "MotorCatalog":
 
 
 class MotorCatalog:
-    """An open catalog: ``catalog["EX-24-100"]`` is a Motor, ``len(catalog)`` their number."""
+    """An open catalog: ``catalog["EX-24-100"]`` is a Motor, ``len(catalog)`` their number, and
+    ``for motor in catalog`` goes through them all."""
 
     def __init__(self, path: Path, store: Catalog | None) -> None:
         self.path = path
@@ -209,6 +210,22 @@ class MotorCatalog:
 
     def __getitem__(self, part: str) -> Motor:
         return Motor.model_validate(self.store.motor(part))
+
+    def __iter__(self) -> Iterator[Motor]:
+        return map(Motor.model_validate, self.store.motors())
+
+    def __contains__(self, part: object) -> bool:
+        """Whether there is a motor of that part number, of one maker or of several."""
+        name = "part_number = :part OR maker || '/' || part_number = :part"
+        return isinstance(part, str) and bool(
+            self.store.connection.execute(
+                f"SELECT count(*) FROM motor WHERE replaced_by IS NULL AND ({name})",
+                {"part": part},
+            ).fetchone()[0]
+        )
+
+    def __repr__(self) -> str:
+        return f"<MotorCatalog {self.path}>"
 
     def motors(self, parts: Sequence[str] | None = None) -> MotorTable:
         """These motors, or all."""

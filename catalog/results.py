@@ -16,7 +16,7 @@ from ..schema.canonical import CANONICAL
 from ..schema.entry import Motor, MotorFinding
 from ..schema.errors import MotorfolioError
 from .documents import Document
-from .report.plain import number
+from .report.plain import many, number, percent, words
 from .report.safety import SAFETY
 
 if TYPE_CHECKING:
@@ -26,7 +26,7 @@ SHOWN = 50
 """A notebook is shown so many rows; the others are counted."""
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, repr=False)
 class Table:
     """Columns of one length by name, numbers as floats (NaN: not known); ``units`` by column."""
 
@@ -36,6 +36,10 @@ class Table:
 
     def __len__(self) -> int:
         return len(next(iter(self.columns.values()), ()))
+
+    def __repr__(self) -> str:
+        named = f"{self.caption}: " if self.caption else ""
+        return f"<Table {named}{many(len(self), 'row')} of {', '.join(self.columns)}>"
 
     def to_numpy(self) -> NDArray[Any]:
         """One structured array: a field a column, float64 for numbers, else text."""
@@ -64,7 +68,7 @@ class Table:
 
     def _repr_html_(self) -> str:
         heads = "".join(
-            f"<th>{escape(name.replace('_', ' '))}"
+            f"<th>{escape(words(name))}"
             + (f"<br>{escape(unit)}" if (unit := self.units.get(name, "")) not in ("", "1") else "")
             + "</th>"
             for name in self.columns
@@ -115,6 +119,9 @@ class MotorTable(Sequence[Motor]):
             return MotorTable(self.documents[key], self.caption)
         return Motor.model_validate(self.documents[key])
 
+    def __repr__(self) -> str:
+        return f"<MotorTable of {many(len(self), 'motor')}>"
+
     @property
     def table(self) -> Table:
         """A row a motor: who it is, its constants, and the figures that any of them publishes
@@ -155,7 +162,7 @@ class MotorTable(Sequence[Motor]):
         return Table({k: table.columns[k] for k in kept}, table.units, self.caption)._repr_html_()
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, repr=False)
 class Sheet:
     """One file as understood: ``headings`` says how each was read and why, ``unread`` lists the
     cells that were not, ``motors`` holds constants and findings. Nothing of it is stored."""
@@ -167,6 +174,12 @@ class Sheet:
     remarks: list[str]
     motors: MotorTable
     findings: list[MotorFinding]
+
+    def __repr__(self) -> str:
+        return (
+            f"<Sheet {self.file}: {many(len(self.motors), 'motor')}, "
+            f"{many(len(self.findings), 'finding')}, {len(self.unread)} unread>"
+        )
 
     def to_numpy(self) -> NDArray[Any]:
         """The motors as one structured array."""
@@ -210,11 +223,15 @@ def _candidates(documents: Sequence[Document], caption: str, *, needs: bool = Fa
     return Table(columns, units, caption)
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, repr=False)
 class SearchResult:
     """What a search found; ``document`` is what ``motorfolio search --json`` prints."""
 
     document: Document
+
+    def __repr__(self) -> str:
+        c = self.counts
+        return f"<SearchResult: {c['feasible']} of {many(c['considered'], 'motor')} do it>"
 
     @property
     def counts(self) -> Mapping[str, Any]:
@@ -250,11 +267,16 @@ class SearchResult:
         )
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, repr=False)
 class Judgement:
     """One motor held against a requirement. A utilisation of 1 is the limit; None is unknown."""
 
     document: Document
+
+    def __repr__(self) -> str:
+        limit = self.limiting
+        largest = "" if limit is None else f", {words(limit)} {percent(self.utilisation[limit])}"
+        return f"<Judgement of {self.document['part_number']}: {self._verdict()}{largest}>"
 
     @property
     def feasible(self) -> bool:
@@ -273,12 +295,17 @@ class Judgement:
 
     def _repr_html_(self) -> str:
         rows = "".join(
-            f"<tr><th>{escape(name.replace('_', ' '))}</th><td>"
-            f"{'unknown' if value is None else f'{value:.0%}'}</td></tr>"
+            f"<tr><th>{escape(words(name))}</th><td>"
+            f"{'not known' if value is None else percent(value)}</td></tr>"
             for name, value in self.utilisation.items()
         )
-        verdict = "does it" if self.feasible else "is not known to do it"
         return (
-            f"<table><caption>{escape(self.document['part_number'])} {verdict}</caption>{rows}"
-            f"</table><p><i>{escape(SAFETY)}</i></p>"
+            f"<table><caption>{escape(self.document['part_number'])} {self._verdict()}</caption>"
+            f"{rows}</table><p><i>{escape(SAFETY)}</i></p>"
         )
+
+    def _verdict(self) -> str:
+        if self.feasible:
+            return "does it"
+        over = any(value is not None and value > 1 for value in self.utilisation.values())
+        return "does not do it" if over else "does not do it, or is not known to"

@@ -201,6 +201,9 @@ def test_search_and_judge_say_what_the_command_says(
     assert len(found.to_numpy()) == len(found.candidates)
     assert "screening aid" in found._repr_html_()
     assert "screening aid" in judged._repr_html_()
+    assert repr(found).startswith("<SearchResult: ")
+    assert repr(judged).startswith("<Judgement of ")
+    assert len(repr(found.candidates)) < 500
 
 
 def test_where_counts_in_a_judgement(catalog: Path) -> None:
@@ -283,3 +286,16 @@ def test_entries_keep_to_their_schema(capsys: pytest.CaptureFixture[str]) -> Non
     with pytest.raises(jsonschema.ValidationError):
         entry.validate({"torque_constant": "30 mN·m/A"})
     assert set(all_quantities()) <= set(json_schema("entry")["properties"])
+
+
+def test_a_catalog_is_gone_through_and_asked_for_a_motor(tmp_path):
+    path = tmp_path / "c.sqlite"
+    with open_catalog(path, create=True) as catalog:
+        (sheet,) = catalog.add(SAMPLES / "grisoulette.csv")
+        assert [motor.part_number for motor in catalog] == [m.part_number for m in sheet.motors]
+        assert "GRILLON-A" in catalog
+        assert f"{sheet.motors[0].maker}/GRILLON-A" in catalog
+        assert "GRILLON-Z" not in catalog
+        assert 0 not in catalog
+        assert "grisoulette.csv: 10 motors" in repr(sheet)
+        assert repr(sheet.motors) == "<MotorTable of 10 motors>"
