@@ -3,7 +3,7 @@
 from collections.abc import Iterable, Mapping
 
 from ...schema.batch import Heading
-from ...schema.errors import MotorfolioError
+from ...schema.errors import MotorfolioError, excerpt
 from ...schema.spelling import nearest
 from ...schema.units.read import read_unit
 from ...schema.vocabulary import quantities
@@ -37,12 +37,27 @@ def check(overrides: Mapping[str, str]) -> None:
 
 
 def check_used(overrides: Mapping[str, str], headings: Iterable[Heading]) -> None:
-    """Raise MotorfolioError for a reading whose heading stands in none of the files."""
+    """Raise MotorfolioError, naming the nearest headings, for a reading whose heading stands in
+    none of the files."""
     found = list(headings)
-    used = {h.quantity for h in found if h.reason.startswith(SAID)}
+    used: dict[str, set[str]] = {}
+    for h in found:
+        if h.quantity and h.reason.startswith(SAID):
+            used.setdefault(h.quantity, set()).add(h.text)
     for heading, reading in overrides.items():
-        if reading.partition(":")[0].strip() not in used:
-            listed = ", ".join(dict.fromkeys(f'"{h.text}"' for h in found))
-            raise MotorfolioError(
-                f'--set "{heading}={reading}": no file has such a heading; they have {listed}.'
-            )
+        key = reading.partition(":")[0].strip()
+        of_key = [other for other, r in overrides.items() if r.partition(":")[0].strip() == key]
+        read = used.get(key, set())
+        # of several readings as one quantity those are in doubt that have no like among the read
+        if read and (len(read) >= len(of_key) or nearest(heading, read, 1, 80)):
+            continue
+        texts = [*dict.fromkeys(h.text for h in found)]
+        near = nearest(heading, texts, 3, 40)
+        hint = f"the nearest are {_quoted(near)}" if near else f"they have {_quoted(texts[:6])}"
+        if not near and len(texts) > 6:
+            hint += f" and {len(texts) - 6} more, which --dry-run lists"
+        raise MotorfolioError(f'--set "{heading}={reading}": no file has such a heading; {hint}.')
+
+
+def _quoted(texts: Iterable[str]) -> str:
+    return ", ".join(f'"{excerpt(text, 40)}"' for text in texts)

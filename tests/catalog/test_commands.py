@@ -167,6 +167,8 @@ def test_a_heading_is_read_as_told(run, tmp_path):
         ("Mass [g]=mass:V", "kg would do"),
         ("Mass [g]=mass:g:sideways", "no convention"),
         ("Weight=mass:g", "no file has such a heading"),
+        ("Masss [g]=mass:g", 'the nearest are "Mass [g]"'),
+        ("質量=mass:g", "which --dry-run lists"),
     ],
 )
 def test_a_reading_that_cannot_be_is_refused(run, sheet, catalog_file, reading, words):

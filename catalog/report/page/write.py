@@ -35,7 +35,8 @@ SCRIPTS = ("written.js", "model.js", "judge.js", "charts.js", "card.js", "main.j
 CHUNK = 250
 """Cards that are parsed at a time, when one of them is opened."""
 OTHERS = 100
-"""Motors beside the candidates and near misses that a search's page holds, the nearest first."""
+"""So many candidates beyond a search's limit its page holds, and so many of the motors that are
+neither candidates nor near misses, the nearest first."""
 
 
 def catalog_page(catalog: Catalog, title: str) -> str:
@@ -56,14 +57,17 @@ def catalog_page(catalog: Catalog, title: str) -> str:
 
 
 def search_page(catalog: Catalog, requirement: Requirement, title: str) -> str:
-    """The page of a search: candidates, near misses, and the nearest of the others."""
+    """The page of a search: candidates, in order of rank beyond its limit too, near misses, and the
+    nearest of the others."""
     from ...search.documents import requirement_document
     from ...search.near_misses import near_misses
     from ...search.run import search, show
 
     found = search(catalog, requirement)
     misses = near_misses(found, catalog)
-    shown = [*found.candidates, *(miss.shown for miss in misses)]
+    further = found.order[len(found.candidates) :][:OTHERS]
+    ranked = [*found.candidates, *show(found, further, catalog)]
+    shown = [*ranked, *(miss.shown for miss in misses)]
     taken = np.array([one.motor for one in shown], np.intp)
     rest = ~found.passed.rejected & ~found.passed.unknown
     rest[taken] = False
@@ -75,7 +79,7 @@ def search_page(catalog: Catalog, requirement: Requirement, title: str) -> str:
     for one, card in zip(shown, data["cards"], strict=True):
         if one.gear is not None:
             card["gear"] = p.plain(one.gear.part_number)
-    for number, miss in enumerate(misses, start=len(found.candidates)):
+    for number, miss in enumerate(misses, start=len(ranked)):
         data["cards"][number]["needs"] = miss.sentence
     rejected = sum(found.rejected.values())
     best = ""
@@ -87,7 +91,7 @@ def search_page(catalog: Catalog, requirement: Requirement, title: str) -> str:
         "claim": f"{found.feasible} of {found.considered} motors do it, {rejected} do not, "
         f"{found.unknown} are not known{best}.",
         "demand": asked.demand_numbers(requirement, shown),
-        "judged": asked.judged_numbers(found, shown, len(found.candidates)),
+        "judged": asked.judged_numbers(found, shown, len(ranked)),
         "requirement": asked.in_words(requirement_document(requirement)),
     }
     return _html(title, data)

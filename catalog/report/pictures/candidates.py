@@ -63,8 +63,9 @@ def draw_candidates(
         # a ladder of labels in the free space below the marks
         at = (x, allowed * (0.08 + 0.105 * nth))
         axes.annotate(
-            s.literal(name), (x, height[i]), xytext=at, fontsize=8, ha="left", va="center",
-            arrowprops={"arrowstyle": "-", "color": s.MUTED, "linewidth": 0.6, "shrinkB": 3},
+            s.literal(name), (x, height[i]), xytext=at, fontsize=8, ha="right", va="center",
+            arrowprops={"arrowstyle": "-", "color": s.MUTED, "linewidth": 0.6, "shrinkB": 3,
+                        "relpos": (1, 0.5)},
         )  # fmt: skip
     if known.any() and np.nanmax(size) > 3 * np.nanmin(size[known]):
         axes.set_xscale("log")
@@ -75,9 +76,8 @@ def draw_candidates(
     )
     axes.yaxis.set_major_formatter(lambda value, _: percent(value))
     axes.set_xlabel(size_label)
-    axes.set_ylabel("Utilisation of the limiting limit" + (
-        f" ({over} beyond {percent(HIGHEST)} on the edge)" if over else ""
-    ))  # fmt: skip
-    s.title(made, axes, claim, below)
-    axes.legend(loc="upper right")
+    axes.set_ylabel("Utilisation of the limiting limit")
+    edge = f"on the upper edge: {over} beyond {percent(HIGHEST)}" if over else ""
+    s.title(made, axes, claim, "; ".join(filter(None, (below, edge))))
+    made.legend(loc="outside lower left", ncols=len(_GROUPS))
     return made

@@ -16,10 +16,10 @@ const charts = (() => {
       const {min, max} = u.scales[u.axes[axisIndex].scale], wide = max / min > 200;
       return splits.map(v => (wide ? [1] : [1, 2, 5]).includes(mantissa(v)) ? v : null);
     },
-    values: (u, splits) => splits.map(v => v === null ? "" : written.number(v)),
   };
   const axis = (label, log) => ({
     label, ...(log ? LOG : {}), stroke: colour("--ink"), grid: {stroke: colour("--grid"), width: 1},
+    values: (u, splits) => splits.map(v => v === null ? "" : written.number(v, 7)),
     ticks: {stroke: colour("--grid"), width: 1}, font: "12px system-ui, sans-serif",
     labelFont: "12px system-ui, sans-serif", labelSize: 22,
   });
