@@ -118,6 +118,7 @@ def _tables(grid: Grid) -> list[Table]:
     """The tables of one grid with the titles and notes that stand about them."""
     tables: list[Table] = []
     loose: list[str] = []
+    beside: set[int] = set()  # rows in which the table before stands
     for block in blocks_of(grid):
         texts = [text_of(row) for row in block.rows] if block.kind == "text" else []
         if block.kind == "text":
@@ -139,13 +140,16 @@ def _tables(grid: Grid) -> list[Table]:
             table = load_points(table, previous)
             if table is None:
                 continue
-        elif previous is not None and goes_with(previous, table):
+        elif previous is not None and goes_with(
+            previous, table, bool(beside & {*block.row_numbers})
+        ):
             take_in(previous, table)
             continue
         if previous is not None and _same_heads(previous, table):
             _append_table(previous, table)
             continue
         tables.append(table)
+        beside = {*block.row_numbers}
     for table in tables:
         table.titles += [grid.sheet] if grid.sheet else []
         table.notes += grid.notes

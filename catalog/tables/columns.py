@@ -146,9 +146,9 @@ def join_split_labels(
     goes on in the row below ("Drehmoment-" + "konstante"); the values stand in either row.
     Tables whose labels all begin in lower case are left alone but for hyphens.
     """
-    firsts = [row[0] for row in rows if row and row[0]]
-    lower = sum(label[0].islower() for label in firsts)
-    by_case = lower <= 0.3 * len(firsts)
+    by_case = _begin_high([row for row in rows if row and row[0]]) or _begin_high(
+        [row for row in rows if row and row[0] and any(row[1:])]
+    )
     out_rows: list[list[str]] = []
     out_numbers: list[int] = []
     moved: list[int] = []
@@ -177,3 +177,8 @@ def join_split_labels(
         if not any(out_rows[s.row][c] for c in range(s.column + 1, s.column + s.columns))
     ]
     return out_rows, out_numbers, kept
+
+
+def _begin_high(rows: list[list[str]]) -> bool:
+    """Whether few labels begin in lower case."""
+    return sum(row[0][0].islower() for row in rows) <= 0.3 * len(rows)

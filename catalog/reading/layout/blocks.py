@@ -150,18 +150,18 @@ def _side_by_side(block: Block) -> list[Block]:
 
 def _beside_labels(block: Block) -> list[Block]:
     """The blocks that labels right of figures begin: "voltage | V | 12 | inertia | gcm² | 11"."""
-    kind, line = orientation(block)
-    if kind != "columns":
+    if orientation(block)[0] != "columns":
         return [block]
-    scores = column_scores(block)
-    borders, figures = [0], False
-    for c in range(line + 1, len(scores)):
+    borders = [0]
+    labels = figures = False
+    for c, score in enumerate(column_scores(block)):
         texts = [row[c] for row in block.rows if row[c]]
         numbers = sum(map(is_figure, texts))
-        if figures and not numbers and scores[c] >= 1.9 and _figures_right(block, c):
-            borders.append(c)
-            figures = False
-        elif numbers > 0.5 * len(texts):
+        if score >= 1.9 and not numbers:
+            if figures and _figures_right(block, c):
+                borders.append(c)
+            labels, figures = True, False
+        elif labels and numbers > 0.5 * len(texts):
             figures = True
     return [_cut(block, a, b) for a, b in pairwise([*borders, block.width])]
 

@@ -30,8 +30,12 @@ def lay_out_columns(block: Block) -> Table:
     roles = roles_of_columns(block, label_column)
     values = [c for c, role in enumerate(roles) if role == "value"]
     first = next((i for i, row in enumerate(rows) if heads_quantity(row, label_column, values)), 0)
+    part = _part_above(rows[:first])
+    first = first if part is None else part + 1
     values = [c for c in values if any(row[c] for row in rows[first:])]
     id_row, condition_row = header_rows(rows, first, label_column, values)
+    if part is not None:
+        id_row = condition_row = None
     conditions = [rows[condition_row][c] for c in values] if condition_row is not None else None
     joined = None
     if id_row is not None and conditions is None:
@@ -46,10 +50,7 @@ def lay_out_columns(block: Block) -> Table:
     ]
     if joined is not None:
         table.remarks.append("the part numbers are joined from two rows, type and winding")
-    above = [
-        text for row in rows[:first] if len(texts := {t for t in row if t}) == 1 for text in texts
-    ]
-    caption: list[str] = [text for text in above[-1:] if part_of(text)]
+    caption = [] if part is None else [text_of(rows[part])]
     captioned = -2
     for i, row in enumerate(rows):
         if i in (id_row, condition_row):
@@ -109,6 +110,12 @@ def lay_out_columns(block: Block) -> Table:
     if conditions is not None:
         fold_conditions(table, conditions)
     return table
+
+
+def _part_above(rows: list[list[str]]) -> int | None:
+    """The row above all figures that says they are another part's ("Encoder EN-5"), or None."""
+    lone = [i for i, row in enumerate(rows) if len({t for t in row if t}) == 1]
+    return lone[-1] if lone and part_of(text_of(rows[lone[-1]])) else None
 
 
 def figure_behind(text: str) -> tuple[str, str] | None:

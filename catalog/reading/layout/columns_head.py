@@ -42,11 +42,17 @@ def roles_of_columns(block: Block, label_column: int) -> list[str]:
             roles.append("symbol")
         elif is_role(head, "remark"):
             roles.append("remark")
+        elif "value" not in roles and share(beside, _is_name) >= 0.6:
+            roles.append("label")  # the names once more, in another language
         else:
             roles.append("value")
     if "value" not in roles:
         roles = ["value" if r in ("unit", "symbol", "remark") else r for r in roles]
     return roles
+
+
+def _is_name(text: str) -> bool:
+    return strength(text) >= 0.5 and not is_figure(text)
 
 
 def _unit_share(texts: list[str]) -> float:

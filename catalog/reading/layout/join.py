@@ -74,14 +74,19 @@ def ids_of(table: Table) -> list[str | None]:
     return [t or None for t in field.texts] if field else [None] * table.count
 
 
-def goes_with(home: Table, table: Table) -> bool:
-    """Whether a table without part numbers gives more figures of the one motor before it."""
+def goes_with(home: Table, table: Table, beside: bool) -> bool:
+    """Whether a table without part numbers gives more figures of the one motor before it; of one
+    that has no part number either if it stands ``beside`` it, with other headings."""
     return (
         home.count == table.count == 1
-        and any(ids_of(home))
+        and (any(ids_of(home)) or (beside and not _headings(home) & _headings(table)))
         and not any(ids_of(table))
         and any(f.label.strength >= 0.5 for f in table.fields)
     )
+
+
+def _headings(table: Table) -> set[str]:
+    return {plain(f.heading).casefold() for f in table.fields}
 
 
 def take_in(home: Table, table: Table) -> None:
