@@ -34,10 +34,10 @@ COMMANDS: dict[str, tuple[str, str]] = {
     "readings": ("readings", "List or remove the readings kept for a maker's headings."),
     "same": ("same", "List motors that may be one, in two sheets."),
     "merge": ("merge", "Say that two motors are one."),
-    "revisions": ("revisions", "List imports, or the earlier revisions of a motor."),
+    "revisions": ("revisions", "List imports, or the earlier revisions of a motor or gear."),
     "diff": ("diff", "Show what an import changed."),
     "undo": ("undo", "Take an import back."),
-    "remove": ("remove", "Take motors out of the catalog."),
+    "remove": ("remove", "Take motors or gears out of the catalog."),
 }
 
 

@@ -1,6 +1,7 @@
 """What differs between two revisions of a motor, or what an import did to the catalog."""
 
-from .documents import Document
+from ..schema.gear import UNITS, Gear
+from .documents import Document, amount
 from .store import Catalog, CatalogError
 
 _FIGURE = ("text", "value", "unit", "low", "high", "convention", "qualifier", "printed_unit")
@@ -26,7 +27,7 @@ def of_import(catalog: Catalog, number: int | None = None) -> list[Document]:
             change = {**change, "change": "merged", "into": stands_for}
         if change["change"] != "unchanged":
             changes.append(change)
-    return changes
+    return changes + [gears_between(a, b) for a, b in catalog.changed_gears(number)]
 
 
 def between(before: Document | None, after: Document | None) -> Document:
@@ -56,6 +57,29 @@ def between(before: Document | None, after: Document | None) -> Document:
         "figures": figures,
         "findings": {"came": came, "went": went},
     }
+
+
+def gears_between(before: Gear | None, after: Gear | None) -> Document:
+    """One gear's change, as ``between`` gives a motor's; ``kind`` is "gear"."""
+    gear = after or before
+    assert gear is not None
+    change: Document = {"part_number": gear.part_number, "maker": gear.maker or None}
+    change["kind"] = "gear"
+    if before is None or after is None:
+        return {**change, "change": "new" if before is None else "removed"}
+    old, new = _gear_figures(before), _gear_figures(after)
+    figures = {
+        key: {"before": old.get(key), "after": new.get(key)}
+        for key in {**old, **new}
+        if old.get(key) != new.get(key)
+    }
+    return {**change, "change": "changed" if figures else "unchanged", "figures": figures}
+
+
+def _gear_figures(gear: Gear) -> dict[str, Document]:
+    units = {**UNITS, "price": gear.currency or UNITS["price"]}
+    values = {key: getattr(gear, key) for key in units}
+    return {key: amount(value, units[key]) for key, value in values.items() if value is not None}
 
 
 def _seen(figure: Document | None) -> tuple | None:

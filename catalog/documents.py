@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
     from ..schema.convention import Convention
+    from ..schema.gear import Gear
     from ..schema.motor import Finding
 
 Document = dict[str, Any]
@@ -210,4 +211,19 @@ def motor(
         ]
     if points:
         document["points"] = list(points)
+    return document
+
+
+def gear(found: "Gear") -> Document:
+    """A gear: its figures in SI, pure numbers bare, null where its sheet gives none."""
+    from ..schema.gear import UNITS
+
+    document: Document = {}
+    for key, unit in ((f, UNITS.get(f)) for f in found.__slots__ if f != "currency"):
+        value = getattr(found, key)
+        if unit == "currency":
+            if value is not None:
+                document[key] = amount(value, found.currency or unit)
+        else:
+            document[key] = value if unit in (None, "1") else amount(value, unit)
     return document

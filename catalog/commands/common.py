@@ -1,12 +1,17 @@
-"""What commands share: the options --catalog and --json, and printing a document."""
+"""What commands share: the options --catalog and --json, printing a document, writing a file."""
 
 import json
+import os
 import sys
-from collections.abc import Callable
+import tempfile
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
 from pathlib import Path
-from typing import Any
+from typing import Any, TextIO
 
 import click
+
+from ...schema.errors import MotorfolioError
 
 Function = Callable[..., Any]
 
@@ -52,3 +57,26 @@ def say(message: str) -> None:
     from ..report.plain import plain
 
     click.echo(plain(message), err=True)
+
+
+@contextmanager
+def replacing(output: Path) -> Iterator[tuple[Path, TextIO]]:
+    """A file beside the output that takes its place when all is written."""
+    if not output.parent.is_dir():
+        raise MotorfolioError(f"There is no folder {output.parent} to write {output.name} into.")
+    handle, name = tempfile.mkstemp(prefix=f".{output.name}.", dir=output.parent)
+    path = Path(name)
+    try:
+        with open(handle, "w", encoding="utf-8", newline="") as out:
+            yield path, out
+        path.chmod(0o666 & ~_umask())
+        path.replace(output)
+    except BaseException:
+        path.unlink(missing_ok=True)
+        raise
+
+
+def _umask() -> int:
+    mask = os.umask(0)
+    os.umask(mask)
+    return mask

@@ -1,16 +1,11 @@
 """motorfolio export: motors out of the catalog."""
 
-import os
 import sys
-import tempfile
-from collections.abc import Iterator
-from contextlib import contextmanager
 from pathlib import Path
-from typing import TextIO
 
 import click
 
-from .common import catalog_option, say
+from .common import catalog_option, replacing, say
 
 
 @click.command(epilog="Example: motorfolio export --format csv --output motors.csv")
@@ -46,31 +41,10 @@ def command(format_: str, units: str, output: Path | None, catalog: Path) -> int
         if output is None:
             export(opened, format_, sys.stdout, chosen)
             return 0
-        with _replacing(output) as (path, out):
+        with replacing(output) as (path, out):
             if format_ == "parquet":
                 n = export_parquet(opened, path, chosen)
             else:
                 n = export(opened, format_, out, chosen)
     say(f"{n} motors written to {output}.")
     return 0
-
-
-@contextmanager
-def _replacing(output: Path) -> Iterator[tuple[Path, TextIO]]:
-    """A file beside the output that takes its place when all is written."""
-    handle, name = tempfile.mkstemp(prefix=f".{output.name}.", dir=output.parent)
-    path = Path(name)
-    try:
-        with open(handle, "w", encoding="utf-8", newline="") as out:
-            yield path, out
-        path.chmod(0o666 & ~_umask())
-        path.replace(output)
-    except BaseException:
-        path.unlink(missing_ok=True)
-        raise
-
-
-def _umask() -> int:
-    mask = os.umask(0)
-    os.umask(mask)
-    return mask

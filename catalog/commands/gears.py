@@ -1,87 +1,99 @@
 """motorfolio gears: read tables of gears, or list those of the catalog."""
 
-from dataclasses import asdict
+from collections.abc import Sequence
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING
 
 import click
 
-from .common import catalog_option, json_option, print_json, say
+from .common import catalog_option, json_option, print_json, replacing, say
+
+if TYPE_CHECKING:
+    from ...schema.gear import Gear
+    from ..importing.gears import GearFile
 
 
 @click.command(epilog="Example: motorfolio gears gears.csv, then motorfolio search --gears …")
 @click.argument("files", nargs=-1, type=click.Path(path_type=Path), metavar="[FILE]...")
 @click.option("--maker", metavar="NAME", help="Maker of the gears.")
 @click.option("--sheet", metavar="NAME", help="Sheet of a workbook.")
+@click.option(
+    "--output",
+    type=click.Path(path_type=Path),
+    metavar="FILE",
+    help="Write the catalog's gears as CSV, which this command reads again.",
+)
 @catalog_option
 @json_option
 def command(
-    files: tuple[Path, ...], maker: str | None, sheet: str | None, catalog: Path, as_json: bool
+    files: tuple[Path, ...],
+    maker: str | None,
+    sheet: str | None,
+    output: Path | None,
+    catalog: Path,
+    as_json: bool,
 ) -> int:
-    """Read tables of gears, one a row with units in the headings (part number, ratio, stages,
-    efficiency, inertia, torques, input speed, backlash, mass, diameter, price) into the catalog;
-    without a FILE list the catalog's gears. All files of a call are stored, or none.
+    """Read tables of gears, one a row or one a column (part number, ratio, stages, efficiency,
+    inertia, torques, input speed, backlash, mass, diameter, price), into the catalog; without a
+    FILE list the catalog's gears. All files of a call are stored, or none.
+
+    That is an import: motorfolio undo takes it back, revisions, diff and remove know gears.
     """
-    from ..search.gears import all_gears, read_gears, store_gears
     from ..store import Catalog
 
+    if files and output is not None:
+        raise click.UsageError("--output writes the catalog's gears; give no FILE to read")
     if not files:
         with Catalog.open(catalog) as opened, opened.at_once():
-            gears = all_gears(opened)
-        _show(gears, [], as_json)
-        return 0
-    from ..search.gears import GearError
-    from ..tables import read_tables
+            gears = opened.gears()
+        if output is None:
+            _show(gears, [], as_json)
+            return 0
+        from ..exporting.gears import gears_as_csv
+        from ..report.plain import many
 
-    found, readings = [], []
-    for path in files:
-        table_file = read_tables(path, sheet=sheet)
-        tables, refused = [], None
-        for grid in table_file.grids:
-            try:
-                tables.append(read_gears(grid, maker))
-            except GearError as error:
-                refused = error
-        if not tables:
-            raise GearError(f"{path}: {refused or 'it holds no table'}.")
-        for table in tables:
-            found += table.gears
-            readings.append((path, table))
-            for row, heading, text, reason in table.unread:
-                say(f"{path}, row {row}: {heading} “{text}” is unread: {reason}")
-            for reading in table.reading:
-                if reading.key is None and reading.heading.strip():
-                    say(f"{path}: the heading “{reading.heading}” is unread")
-    with Catalog.open(catalog, create=True) as opened:
-        stored = store_gears(opened, found)
-    _show(found, readings, as_json)
+        with replacing(output) as (_, out):
+            out.write(gears_as_csv(gears))
+        say(f"{many(len(gears), 'gear')} written to {output}.")
+        return 0
+    from ..importing.gears import import_gears
+    from ..report.plain import many
+
+    found = import_gears(catalog, files, maker=maker, sheet=sheet)
+    for file in found:
+        _print_unread(file)
+    _show([gear for file in found for gear in file.gears], found, as_json)
     if not as_json:
-        click.echo(f"{stored} gears stored in {catalog}")
+        stored, replaced = (sum(getattr(f, n) for f in found) for n in ("stored", "replaced"))
+        also = f", {replaced} of them replaced" if replaced else ""
+        same = sum(len(file.gears) for file in found) - stored
+        kept = f"; {same} in it already, with these figures" if same else ""
+        click.echo(f"{many(stored, 'gear')} stored in {catalog}{also}{kept}")
     return 0
 
 
-def _show(gears: list[Any], readings: list[Any], as_json: bool) -> None:
-    from ..documents import amount
+def _print_unread(file: "GearFile") -> None:
+    for table in file.tables:
+        for cell in table.unread:
+            heading = f"{cell.heading} " if cell.heading else ""
+            say(f"{file.file}, row {cell.row}, column {cell.column}: {heading}“{cell.text}” is "
+                f"unread: {cell.reason}")  # fmt: skip
+        for reading in table.reading:
+            if reading.key is None:
+                say(f"{file.file}: the heading “{reading.heading}” is unread")
 
-    units = {
-        "inertia": "kg·m²", "mass": "kg", "continuous_torque": "N·m", "peak_torque": "N·m",
-        "maximum_input_speed": "rad/s", "backlash": "rad", "diameter": "m", "length": "m",
-    }  # fmt: skip
+
+def _show(gears: "Sequence[Gear]", files: "Sequence[GearFile]", as_json: bool) -> None:
+    from ..documents import gear as gear_document
+
     if as_json:
-        documents = []
-        for gear in gears:
-            values = asdict(gear)
-            currency = values.pop("currency")
-            document = {k: amount(v, units[k]) if k in units else v for k, v in values.items()}
-            if gear.price is not None:
-                document["price"] = amount(gear.price, currency or "currency")
-            documents.append(document)
         reading = [
-            {"file": str(path), "heading": r.heading, "quantity": r.key, "unit": r.unit}
-            for path, table in readings
+            {"file": file.file, "heading": r.heading, "quantity": r.key, "unit": r.unit}
+            for file in files
+            for table in file.tables
             for r in table.reading
         ]
-        print_json({"reading": reading, "gears": documents})
+        print_json({"reading": reading, "gears": [gear_document(gear) for gear in gears]})
         return
     from rich.console import Console
     from rich.table import Table

@@ -1,4 +1,4 @@
-"""motorfolio remove: motors out of the catalog."""
+"""motorfolio remove: motors and gears out of the catalog."""
 
 from pathlib import Path
 
@@ -11,10 +11,10 @@ from .common import catalog_option, say
 @click.argument("parts", nargs=-1, required=True, metavar="PART...")
 @catalog_option
 def command(parts: tuple[str, ...], catalog: Path) -> int:
-    """Take motors out of the catalog. Their figures are kept, and undo brings them back."""
+    """Take motors or gears out of the catalog. Their figures stay, and undo brings them back."""
     from ..store import Catalog
 
     with Catalog.open(catalog, write=True) as opened:
         removed = opened.remove(parts)
-    say(f"Removed: {', '.join(motor.name for motor in removed)}.")
+    say(f"Removed: {', '.join(known.name for known in removed)}.")
     return 0

@@ -19,7 +19,7 @@ if TYPE_CHECKING:
 def command(number: int | None, catalog: Path, yes: bool) -> int:
     """Take the last import (or removal) back, or that of this number from motorfolio revisions.
 
-    Its motors leave the catalog; the revisions that they replaced come back.
+    Its motors and gears leave the catalog; the revisions that they replaced come back.
     """
     from ..report.plain import many
     from ..store import Catalog
@@ -29,7 +29,12 @@ def command(number: int | None, catalog: Path, yes: bool) -> int:
             say(_what_goes(opened, number))
             click.confirm("Take it back?", abort=True, err=True)
         done = opened.undo(number)
-    say(f"Taken back: {many(done.removed, 'motor')} removed, {done.restored} restored.")
+    said = f"{many(done.gears_removed, 'gear')} removed, {done.gears_restored} restored"
+    of_gears = done.gears_removed or done.gears_restored
+    if done.removed or done.restored or not of_gears:
+        motors = f"{many(done.removed, 'motor')} removed, {done.restored} restored"
+        said = f"{motors}; {said}" if of_gears else motors
+    say(f"Taken back: {said}.")
     return 0
 
 
@@ -44,5 +49,7 @@ def _what_goes(opened: "Catalog", number: int | None) -> str:
         return "There is no such import."
     did, concerned = deed(found)
     said = ": ".join(filter(None, (did, ", ".join(concerned))))
-    back = f"; {many(found.replaced, 'motor')} would come back" if found.replaced else ""
+    come = [(found.replaced, "motor"), (found.gears_replaced, "gear")]
+    back = " and ".join(many(n, word) for n, word in come if n)
+    back = f"; {back} would come back" if back else ""
     return f"Number {found.id} of {when(found.at)}: {said}{back}."

@@ -112,11 +112,16 @@ def deed(i: "Import") -> tuple[str, list[str]]:
     """What an import, a merging or a removal did, and the files or motors that it concerned."""
     if i.files:
         replaced = f", {i.replaced} replaced" if i.replaced else ""
-        return p.many(i.motors, "motor") + replaced, list(i.files)
+        of_gears = f", {i.gears_replaced} replaced" if i.gears_replaced else ""
+        said = [p.many(i.gears, "gear") + of_gears] if i.gears else []
+        if i.motors or not said:
+            said.insert(0, p.many(i.motors, "motor") + replaced)
+        return "; ".join(said), list(i.files)
     if i.merged:
         merged = [f"{name} into {into}" for name, into in i.merged]
         return p.many(len(merged), "motor") + " merged", merged
-    return p.many(i.replaced, "motor") + " taken out", []
+    said = [p.many(n, word) for n, word in ((i.replaced, "motor"), (i.gears_replaced, "gear")) if n]
+    return f"{' and '.join(said) or 'nothing'} taken out", []
 
 
 def print_corrections(corrections: Iterable["Correction"]) -> None:
@@ -133,18 +138,18 @@ def print_corrections(corrections: Iterable["Correction"]) -> None:
 def print_changes(changes: Iterable[Document]) -> None:
     """What changed, a motor each; those that merely came or went in a line together."""
     out = console()
-    together: dict[str, list[str]] = {"new": [], "removed": []}
+    together: dict[tuple[str, str], list[str]] = {}
     changed = []
     for change in changes:
-        if change["change"] in together:
-            together[change["change"]].append(p.plain(change["part_number"]))
+        if change["change"] in ("new", "removed"):
+            what = change["change"], change.get("kind", "motor")
+            together.setdefault(what, []).append(p.plain(change["part_number"]))
         else:
             changed.append(change)
-    for word, parts in together.items():
-        if parts:
-            more = f" … and {len(parts) - MOST_NAMED} more" if len(parts) > MOST_NAMED else ""
-            named = ", ".join(parts[:MOST_NAMED])
-            out.print(Text(f"{p.many(len(parts), 'motor')} {word}: {named}{more}"))
+    for (word, kind), parts in together.items():
+        more = f" … and {len(parts) - MOST_NAMED} more" if len(parts) > MOST_NAMED else ""
+        named = ", ".join(parts[:MOST_NAMED])
+        out.print(Text(f"{p.many(len(parts), kind)} {word}: {named}{more}"))
     for change in changed:
         if change["change"] == "merged":
             into = "/".join(filter(None, change["into"].values()))
@@ -166,5 +171,5 @@ def _hanging(text: str) -> Padding:
 def _printed(figure: Document | None) -> str:
     if figure is None:
         return "not given"
-    text = " ".join(filter(None, (figure["text"], figure.get("printed_unit"))))
+    text = " ".join(filter(None, (figure.get("text"), figure.get("printed_unit"))))
     return p.plain(text) or _amount(figure)

@@ -19,10 +19,11 @@ from ...schema.operation.judge import judge, judge_worst
 from ...schema.operation.limits import LIMITS, Utilisations, Verdict
 from ...schema.operation.machines import Machines
 from ...schema.operation.ratios import GRID, ratio_grid
+from ..requirement.fields import Ratios
 from ..requirement.read import Requirement
 
 if TYPE_CHECKING:
-    from .gears import Gear
+    from ...schema.gear import Gear
 
 Array = NDArray[np.float64]
 
@@ -300,7 +301,7 @@ def behind(requirement: Requirement, gear: Gear) -> Requirement:
     gearing = Gearing(
         requirement.demand.gearing.load_inertia, gear.efficiency or 1.0, gear.inertia or 0.0
     )
-    return replace(requirement.with_demand(gearing=gearing), ratios=gear.ratios)
+    return replace(requirement.with_demand(gearing=gearing), ratios=Ratios((gear.ratio,)))
 
 
 def choose_gears(
@@ -320,7 +321,7 @@ def choose_gears(
     fits = np.zeros((len(machines), len(gears)), bool)
     for number, (gear, pair) in enumerate(zip(gears, rank, strict=True)):
         own = Judge(behind(judge_.requirement, gear), judge_.tolerance)
-        found = _on_grid(own, machines, np.array(gear.ratios.values))
+        found = _on_grid(own, machines, np.array([gear.ratio]))
         for name, column in gear_limits.items():
             found.extra[name] = np.full(len(machines), column[number])
         found = own._decided(found)

@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
+from ...schema.gear import Gear
 from ...schema.operation.limits import LIMITS, Verdict
 from ...schema.operation.machines import Machines
 from ...schema.operation.ratios import feasible_ratios
@@ -16,7 +17,7 @@ from ..requirement.read import Requirement, RequirementError
 from ..requirement.where import Passed, apply_where
 from .choice import Judge, Judged, best_of, choose, choose_gears
 from .fleet import Fleet, load_fleet
-from .gears import Gear, gear_utilisations, load_gears
+from .gears import gear_utilisations, load_gears
 
 if TYPE_CHECKING:
     from ..store import Catalog

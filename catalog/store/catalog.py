@@ -16,6 +16,7 @@ if TYPE_CHECKING:
     from collections.abc import Mapping
 
     from ...schema.batch import Batch, Floats
+    from ...schema.gear import Gear
     from ..documents import Document
     from .corrections import Correction
     from .revisions import Import, Undone
@@ -246,6 +247,28 @@ class Catalog:
                 found = dict(zip(ids, load.motors(self.connection, ids), strict=True))
                 yield found.get(old or 0), found.get(new or 0)
 
+    def gears(self) -> "list[Gear]":
+        """The gears by maker and part number."""
+        from . import gears
+
+        with self.at_once():
+            return gears.current(self.connection)
+
+    def changed_gears(self, import_id: int) -> "list[tuple[Gear | None, Gear | None]]":
+        """The gears that an import touched, before and after; None where there is none."""
+        from . import gears
+
+        with self.at_once():
+            return gears.changed(self.connection, import_id)
+
+    def gear_revisions(self, part: str) -> "list[tuple[str | None, Gear]]":
+        """The files and figures of a gear, oldest first; none where there is no such gear."""
+        from . import gears
+
+        with self.at_once():
+            named = gears.named(self.connection, part)
+            return gears.revisions(self.connection, named[0]) if len(named) == 1 else []
+
     # ---- changing
 
     def undo(self, import_id: int | None = None) -> "Undone":
@@ -265,13 +288,23 @@ class Catalog:
         return done
 
     def remove(self, parts: Sequence[str]) -> list[Known]:
-        """Take motors out; undo brings them back."""
-        from . import columns, revisions
+        """Take motors and gears out; undo brings them back."""
+        from . import columns, gears, revisions
 
         with self.changing() as connection:
-            motors = [load.find(connection, part) for part in parts]
-            columns.rebuild(connection, sorted(revisions.remove(connection, motors, now())))
-        return motors
+            motors, of_gears = [], []
+            for part in parts:
+                named = gears.named(connection, part)
+                if len(named) > 1:
+                    names = " or ".join(known.name for known in named)
+                    raise CatalogError(f"More than one gear is called {part}: say {names}.")
+                if named:
+                    of_gears += named
+                else:
+                    motors.append(load.find(connection, part))
+            touched = revisions.remove(connection, motors, of_gears, now())
+            columns.rebuild(connection, sorted(touched))
+        return motors + of_gears
 
     def merge(self, part: str, other: str) -> tuple[Known, Known]:
         """Let ``other`` be a further sheet of ``part``, see same.py; undo parts them again."""

@@ -12,7 +12,7 @@ from pathlib import Path
 from ...schema.errors import MotorfolioError
 
 APPLICATION_ID = 0x4D746F66  # "Mtof": tells a catalog from any other SQLite file
-VERSION = 3
+VERSION = 4
 """The layout of tables that this program writes; kept in the file as ``user_version``."""
 
 BUSY_SECONDS = 60.0

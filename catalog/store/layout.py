@@ -209,7 +209,30 @@ def _layout_3(db: Database) -> None:
     )
 
 
-MIGRATIONS: tuple[Callable[[Database], None], ...] = (_layout_1, _layout_2, _layout_3)
+# ---- layout 4: gears have revisions, and belong to imports
+
+
+def _layout_4(db: Database) -> None:
+    text = dict.fromkeys(("part_number", "maker", "series", "currency"), str)
+    figures = ("ratio", "efficiency", "inertia", "mass", "continuous_torque", "peak_torque",
+               "maximum_input_speed", "backlash", "diameter", "length", "price")  # fmt: skip
+    columns = {**text, "stages": int, **dict.fromkeys(figures, float)}
+    db.table("gear").create(
+        {"id": int, "file": int, **columns, "replaced_by": int},
+        pk="id",
+        not_null={"maker", "part_number", "ratio"},
+        foreign_keys=[("file", "files", "id"), ("replaced_by", "imports", "id")],
+        strict=True,
+    )
+    names = ",".join(columns)
+    db.execute(f"INSERT INTO gear({names}) SELECT {names} FROM gears ORDER BY maker, part_number")
+    db.execute("DROP TABLE gears")
+    db.execute(
+        "CREATE UNIQUE INDEX current_gear ON gear(part_number, maker) WHERE replaced_by IS NULL"
+    )
+
+
+MIGRATIONS: tuple[Callable[[Database], None], ...] = (_layout_1, _layout_2, _layout_3, _layout_4)
 """One function a layout, in order; the last brings a catalog to VERSION."""
 
 
@@ -259,6 +282,7 @@ def _make_views(db: Database) -> None:
         ("motors", _wide_view()),
         ("figures_as_published", _published_view()),
         ("findings_plain", _findings_view()),
+        ("gears", "SELECT * FROM gear WHERE replaced_by IS NULL"),
     ):
         db.create_view(name, sql, replace=True)
 

@@ -9,12 +9,15 @@ from typing import Any
 
 from .. import documents as doc
 from ..documents import Document
+from . import gears
 from .chunk import Chunk, Palettes, rows
 from .database import CatalogError
 from .known import Known
 from .same import stands_for
 
 CHUNK = 400
+MOST_SIMILAR, LEAST_SIMILAR = 3, 60
+"""So many part numbers are offered in place of an unknown one, and how alike in percent."""
 
 
 def find(connection: sqlite3.Connection, part: str) -> Known:
@@ -45,18 +48,34 @@ def find(connection: sqlite3.Connection, part: str) -> Known:
     if found:
         names = ", ".join(known.name for known in found)
         raise CatalogError(f"More than one motor is called {part}: say which of {names}.")
-    raise CatalogError(f"The catalog has no motor {part}{_similar(connection, part)}.")
+    if gears.named(connection, part):
+        raise CatalogError(f"{part} is a gear, not a motor; motorfolio gears lists it.")
+    raise CatalogError(f"The catalog has no motor {part}{_similar(connection, part)}")
 
 
 def _similar(connection: sqlite3.Connection, part: str) -> str:
-    number = part.rsplit("/", 1)[-1]
-    pattern = f"%{number.replace('%', '').replace('_', '')[:5]}%"
-    rows = connection.execute(
-        "SELECT part_number FROM motor WHERE replaced_by IS NULL AND (part_number LIKE ? "
-        "OR part_number = upper(?)) ORDER BY abs(length(part_number) - ?), part_number LIMIT 3",
-        (pattern, number, len(number)),
-    ).fetchall()
-    return f" (it has {', '.join(row[0] for row in rows)})" if rows and len(number) > 1 else ""
+    """The part numbers that may have been meant; case, hyphens and blanks count for nothing."""
+    from ...schema.spelling import nearest
+
+    known: dict[str, list[str]] = defaultdict(list)
+    for (number,) in connection.execute(
+        "SELECT DISTINCT part_number FROM motor WHERE replaced_by IS NULL ORDER BY part_number"
+    ):
+        known[_folded(number)].append(number)
+    for text in (part, part.rpartition("/")[2]):
+        near = nearest(_folded(text), known, most=MOST_SIMILAR, least=LEAST_SIMILAR)
+        if _folded(text) in known:
+            near = [_folded(text)]
+        if near:
+            meant = [number for fold in near for number in known[fold]][:MOST_SIMILAR]
+            return (
+                f"; did you mean {' or '.join(filter(None, [', '.join(meant[:-1]), meant[-1]]))}?"
+            )
+    return "."
+
+
+def _folded(text: str) -> str:
+    return "".join(filter(str.isalnum, text.casefold()))
 
 
 def current_ids(connection: sqlite3.Connection) -> list[int]:

@@ -5,6 +5,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
+from . import gears
 from .known import Known
 from .same import forget, merged_by
 
@@ -15,7 +16,8 @@ OF_SOURCE = "m.id BETWEEN s.first_motor AND s.first_motor + s.motors - 1"
 @dataclass(frozen=True, slots=True)
 class Import:
     """One call that stored something; ``motors`` what it stored, ``replaced`` what it ended,
-    ``merged`` the motors that it took aside, each (name, name of what it stands for)."""
+    ``merged`` the motors that it took aside, each (name, name of what it stands for); ``gears``
+    and ``gears_replaced`` are the same for gears."""
 
     id: int
     at: str
@@ -23,6 +25,8 @@ class Import:
     motors: int
     replaced: int
     merged: tuple[tuple[str, str], ...] = ()
+    gears: int = 0
+    gears_replaced: int = 0
 
 
 @dataclass(slots=True)
@@ -31,6 +35,8 @@ class Undone:
 
     removed: int = 0
     restored: int = 0
+    gears_removed: int = 0
+    gears_restored: int = 0
     sources: set[int] = field(default_factory=set)
 
 
@@ -48,7 +54,8 @@ def imports(connection: sqlite3.Connection) -> list[Import]:
             "SELECT count(*) FROM motor WHERE replaced_by = ?", (number,)
         ).fetchone()[0]
         merged = tuple((a.name, b.name) for a, b in merged_by(connection, number))
-        found.append(Import(number, at, files, motors, replaced, merged))
+        own_gears, gears_replaced = gears.counted(connection, number)
+        found.append(Import(number, at, files, motors, replaced, merged, own_gears, gears_replaced))
     return found
 
 
@@ -96,6 +103,7 @@ def undo(connection: sqlite3.Connection, import_id: int) -> Undone:
     connection.execute(
         'DELETE FROM unread WHERE file IN (SELECT id FROM files WHERE "import" = ?)', (import_id,)
     )
+    done.gears_removed, done.gears_restored = gears.undo(connection, import_id)
     connection.execute('DELETE FROM files WHERE "import" = ?', (import_id,))
     # a motor that came back is ended by whatever followed it, if something did
     back = connection.execute(
@@ -142,10 +150,14 @@ def _delete_source(connection: sqlite3.Connection, source: int, first: int, n: i
     return removed
 
 
-def remove(connection: sqlite3.Connection, motors: Sequence[Known], at: str) -> set[int]:
-    """Take motors out of the catalog; their rows stay as earlier revisions, and undo brings them
-    back. Returns the sources whose cached columns must be made anew."""
+def remove(
+    connection: sqlite3.Connection, motors: Sequence[Known], of_gears: Sequence[Known], at: str
+) -> set[int]:
+    """Take motors and gears out of the catalog; their rows stay as earlier revisions, and undo
+    brings them back. Returns the sources whose cached columns must be made anew."""
     cursor = connection.execute("INSERT INTO imports(at, files, motors) VALUES (?, 0, 0)", (at,))
+    assert cursor.lastrowid is not None
+    gears.remove(connection, cursor.lastrowid, of_gears)
     sources = set()
     for known in motors:
         connection.execute(

@@ -34,13 +34,14 @@ TABLES = {
     "merged": "motors that a person said are one: the name, and the one it stands for",
     "kept_readings": "a reading of a heading, kept for a maker's further files",
     "column_cache": "a column of a source as one block of numbers, for a quick search",
-    "gears": "a gear",
+    "gear": "a gear of a table, current or an earlier revision",
 }
 
 VIEWS = {
     "motors": "a motor that is current: who it is, constants and figures in SI, place",
     "figures_as_published": "a figure: printed text, heading, unit, SI value, place",
     "findings_plain": "a finding with its motor, file and place",
+    "gears": "a gear that is current",
 }
 
 DEPENDENCIES = {

@@ -8,17 +8,16 @@ from pathlib import Path
 import numpy as np
 import pytest
 
+from motorfolio.catalog.importing.gears import import_gears
 from motorfolio.catalog.requirement.fields import RequirementError
 from motorfolio.catalog.requirement.file import read_file
 from motorfolio.catalog.requirement.read import read_requirement
 from motorfolio.catalog.search import choice
 from motorfolio.catalog.search.documents import search_document
 from motorfolio.catalog.search.fleet import load_fleet
-from motorfolio.catalog.search.gears import Gear, read_gears, store_gears
 from motorfolio.catalog.search.near_misses import near_misses
 from motorfolio.catalog.search.run import Found, names_of, search
 from motorfolio.catalog.store import Catalog
-from motorfolio.catalog.tables import read_tables
 from motorfolio.schema.operation.energy import draw
 from motorfolio.schema.operation.judge import Cycle, Demand, Gearing, judge
 from motorfolio.schema.operation.limits import Verdict
@@ -49,9 +48,8 @@ BASE = {
 @pytest.fixture(scope="module")
 def samples(tmp_path_factory) -> Iterator[Catalog]:
     path = sample_catalog(tmp_path_factory.mktemp("samples") / "c.sqlite")
+    import_gears(path, [SAMPLES / "gears.csv"])
     with Catalog.open(path, write=True) as catalog:
-        grid = read_tables(SAMPLES / "gears.csv").grids[0]
-        store_gears(catalog, read_gears(grid).gears)
         yield catalog
 
 
@@ -245,11 +243,15 @@ def test_the_lightest_gear_that_fits_is_taken(samples: Catalog) -> None:
 
 def test_a_gear_without_efficiency_is_not_passed(tmp_path: Path) -> None:
     path = sample_catalog(tmp_path / "c.sqlite")
-    with Catalog.open(path, write=True) as catalog:
-        with pytest.raises(RequirementError, match="motorfolio gears FILE"):
-            of({**BASE, "gear": {"use": "catalog"}}, catalog)
-        bare = Gear("G-10", "Made-up Gears", None, 10.0, continuous_torque=10.0, peak_torque=20.0)
-        store_gears(catalog, [bare])
+    with (
+        Catalog.open(path) as catalog,
+        pytest.raises(RequirementError, match="motorfolio gears FILE"),
+    ):
+        of({**BASE, "gear": {"use": "catalog"}}, catalog)
+    bare = tmp_path / "bare.csv"
+    bare.write_text("Gear,Ratio,Continuous torque [N·m],Peak torque [N·m]\nG-10,10,10,20\n")
+    import_gears(path, [bare], maker="Made-up Gears")
+    with Catalog.open(path) as catalog:
         found = of({**BASE, "gear": {"use": "catalog"}}, catalog)
         assert found.feasible == 0
         assert found.unknown > 0

@@ -3,7 +3,7 @@
     python -m tests.catalog.layouts.write [LAYOUT]
 
 To be run once, before a layout is changed: the text is then what that program wrote. Its motors
-stand in ``keep()``; one figure is corrected.
+stand in ``keep()``; one figure is corrected, and there is a gear.
 """
 
 from __future__ import annotations
@@ -29,6 +29,9 @@ def keep(version: int) -> str:
         table = sheet(Path(name) / "petrel.csv", "PETREL", 3)
         done("import", table, "--maker", "Petrel Motors (invented)", "--catalog", path)
         done("correct", "PETREL-1", "mass", "99 g", "--reason", "weighed", "--catalog", path)
+        gears = Path(name) / "burr.csv"
+        gears.write_text("Part number,Ratio,Mass [g]\nBURR-4,4,60\n", encoding="utf-8")
+        done("gears", gears, "--maker", "Burr Gears (invented)", "--catalog", path)
         connection = sqlite3.connect(path)
         connection.execute("UPDATE files SET file = 'petrel.csv'")
         connection.execute("UPDATE imports SET at = '2025-01-01T00:00:00Z'")
