@@ -6,10 +6,19 @@ import math
 
 import numpy as np
 import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
 
 from motorfolio.schema.convention import Commutation
-from motorfolio.schema.figure.numerals import number_style, readings
+from motorfolio.schema.figure.numerals import (
+    COMMA,
+    POINT,
+    NumberStyle,
+    number_style,
+    readings,
+)
 from motorfolio.schema.figure.pairs import share_power
+from motorfolio.schema.figure.read import FigureError, read_column, read_figure
 from motorfolio.schema.motor import CANONICAL, CONSTANT_BASES
 from motorfolio.schema.operation.axis import Axis
 from motorfolio.schema.operation.cycle import Cycle
@@ -255,3 +264,37 @@ def test_constants_of_portions_share_their_sources() -> None:
         part["torque_constant"].value[0] for part in (first, second, first)
     ]
     assert joined([first]) is first
+
+
+# ---- columns of numbers
+
+
+@settings(max_examples=200, deadline=None)
+@given(
+    st.lists(st.from_regex(r"[0-9]{1,4}([.,][0-9]{1,5})?", fullmatch=True), min_size=1, max_size=8),
+    st.sampled_from([POINT, COMMA, NumberStyle(None)]),
+)
+def test_the_short_way_of_a_column_reads_what_the_long_way_does(texts, style) -> None:
+    column = read_column(texts, style)
+    for i, text in enumerate(texts):
+        try:
+            figure = read_figure(text, style)
+        except FigureError:
+            assert i in column.failures
+            continue
+        assert figure is not None
+        assert i not in column.failures
+        assert (column.value[i], column.low[i], column.high[i]) == pytest.approx(
+            (figure.value, figure.low, figure.high), rel=1e-12
+        )
+        assert (i in column.doubtful) == (figure.other is not None)
+
+
+def test_a_cycle_without_a_gear_loses_nothing() -> None:
+    """As told, and with 50 %: twice the torque where the motor drives, half where it brakes."""
+    cycle = Cycle.from_points([(4.0, 2.0, 1.0), (-4.0, 2.0, 1.0), (4.0, 0.0, 1.0)])
+    assert cycle.pieces().basis[:, 0, 0].tolist() == [4, -4, 4]
+    assert cycle.pieces(0.0, 0.5).basis[:, 0, 0].tolist() == [8, -2, 4]
+    ramp = Cycle.from_rows([0, 1, 2], [0, 3, 0], [0, 0, 0])
+    assert not ramp.pieces().basis[:, :, 0].any()
+    assert ramp.pieces(2.0).basis[:, 0, 0].tolist() == [6, -6]
