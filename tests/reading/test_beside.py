@@ -3,9 +3,14 @@
 All sheets are invented; the layouts are common practice, no source.
 """
 
+from dataclasses import replace
+
 import pytest
 
-from .sheets import sheet
+from motorfolio.catalog.reading import ReadOptions, read
+from motorfolio.catalog.tables.grid import TableFile
+
+from .sheets import Sheet, grid, sheet
 
 RAD = 3.141592653589793 / 30
 
@@ -48,3 +53,45 @@ def test_remarks_and_labels_in_a_second_language_are_no_further_table():
         Torque constant | Drehmomentkonstante | mNm/A | 21.2 | 43.0 |
     """)
     assert {k: len(v) for k, v in s.motors().items()} == {"AA-12": 3, "AA-24": 3}
+
+
+def _page(text: str) -> dict[str, dict[str, float]]:
+    page = replace(grid(text), page=1)
+    reading = read(TableFile("plate.pdf", "0" * 64, "pdf", [page]), ReadOptions())
+    return Sheet(reading, list(reading.batches)).motors()
+
+
+def test_figures_of_the_frame_printed_once_in_the_middle_of_a_page_hold_for_all():
+    motors = _page("""
+        | | AA-12 | AA-24 | AA-48
+        Nominal voltage | V | 12 | 24 | 48
+        Terminal resistance | Ω | 0.86 | 3.45 | 13.7
+        Rotor inertia | gcm² | | 11.4 |
+        Weight | g | | 112 |
+    """)
+    assert [m["mass"] for m in motors.values()] == [0.112] * 3
+    assert [m["rotor_inertia"] for m in motors.values()] == pytest.approx([11.4e-7] * 3)
+
+
+def test_figures_printed_once_between_two_motors_hold_for_both_and_name_no_third():
+    motors = _page("""
+        | | AA-12 | | AA-24
+        Nominal voltage | V | 12 | | 24
+        Terminal resistance | Ω | 0.86 | | 3.45
+        Weight | g | | 112 |
+    """)
+    assert {k: v["mass"] for k, v in motors.items()} == {"AA-12": 0.112, "AA-24": 0.112}
+
+
+def test_a_winding_figure_in_the_middle_alone_is_that_motors():
+    motors = _page("""
+        | | AA-12 | AA-24 | AA-48
+        Nominal voltage | V | 12 | 24 | 48
+        Terminal resistance | Ω | | 3.45 |
+        Weight | g | | 112 |
+    """)
+    assert [set(m) for m in motors.values()] == [
+        {"nominal_voltage"},
+        {"nominal_voltage", "terminal_resistance", "mass"},
+        {"nominal_voltage"},
+    ]

@@ -34,7 +34,8 @@ def _inherited(texts: list[str]) -> list[str]:
 def share_frame(
     table: Table, matches: list[Match], id_field: Field | None, with_dittos: list[Field]
 ) -> None:
-    """A figure of the frame that stands once, at the first of its motors, holds for all.
+    """A figure of the frame that stands once, at the first of its motors, holds for all; on a page
+    also one that stands in the middle under them.
 
     Where a column names the frame (a model printed once, its windings below), it holds
     down to the next model; without one only if no other motor has the figure.
@@ -60,7 +61,8 @@ def share_frame(
 def _frame_groups(
     table: Table, matches: list[Match], id_field: Field | None, with_dittos: list[Field]
 ) -> list[list[int]]:
-    """Motors by frame, in runs of neighbours; none where the table shows no such habit."""
+    """Motors by frame, in runs of neighbours, the one with the figure first; none where the table
+    shows no such habit."""
     figures = [m for m in matches if m.role == "figure"]
     if all(m.field.label.forced for m in figures):
         return []  # headed by the names of quantities, as programs write: every row is whole
@@ -78,11 +80,18 @@ def _frame_groups(
                 )
     if table.layout == "rows" or not 1 < n <= 200:
         return []
-    once = [m for m in figures if m.field.texts[0] and not any(m.field.texts[1:])]
-    frames = [m for m in once if m.key and quantity(m.key).frame]
-    # One lone figure may be a gap in the others; two of the frame are a habit of the sheet.
-    sure = len(frames) == len(once) and (len(frames) > 1 or n > 3)
-    return [list(range(n))] if sure else []
+    alone = [(m, filled[0]) for m in figures if len(filled := _filled(m.field.texts)) == 1]
+    for at in [0, n // 2] if table.page is not None and n % 2 else [0]:
+        once = [m for m, where in alone if where == at]
+        frames = [m for m in once if m.key and quantity(m.key).frame]
+        # One lone figure may be a gap in the others; two of the frame are a habit of the sheet.
+        if len(frames) == len(once) and (len(frames) > 1 or (n > 3 and not at and frames)):
+            return [[at, *(k for k in range(n) if k != at)]]
+    return []
+
+
+def _filled(texts: Sequence[str]) -> list[int]:
+    return [k for k, text in enumerate(texts) if text]
 
 
 def _repeated(texts: Sequence[str]) -> bool:

@@ -36,6 +36,8 @@ def lay_out_columns(block: Block) -> Table:
     id_row, condition_row = header_rows(rows, first, label_column, values)
     if part is not None:
         id_row = condition_row = None
+    between = None if id_row is None else _between(rows, id_row, values)
+    values = [c for c in values if c != between]
     conditions = [rows[condition_row][c] for c in values] if condition_row is not None else None
     joined = None
     if id_row is not None and conditions is None:
@@ -59,7 +61,8 @@ def lay_out_columns(block: Block) -> Table:
             continue
         if i < first and not (row[label_column] and any(is_figure(row[c]) for c in values)):
             continue
-        texts = [row[c] for c in values]
+        shared = "" if between is None else row[between]
+        texts = [shared or row[c] for c in values]
         label = row[label_column]
         pair = figure_behind(label) if len(values) == 1 and not any(texts) else None
         if pair is not None:
@@ -106,10 +109,21 @@ def lay_out_columns(block: Block) -> Table:
         if caption and caption[0] not in field.captions:
             caption = []  # it was the first line of this very name
         field.source = i
+        if shared and between is not None:
+            field.places = [block.column_numbers[between]] * len(values)
         table.fields.append(field)
     if conditions is not None:
         fold_conditions(table, conditions)
     return table
+
+
+def _between(rows: list[list[str]], id_row: int, values: list[int]) -> int | None:
+    """The column without a motor that holds what is printed once, centred under all motors."""
+    lone = [c for c in values if not rows[id_row][c]]
+    if len(lone) != 1 or lone[0] in (values[0], values[-1]):
+        return None
+    beside = [row[c] for row in rows if row[lone[0]] for c in values if c != lone[0]]
+    return None if any(beside) else lone[0]
 
 
 def _part_above(rows: list[list[str]]) -> int | None:
