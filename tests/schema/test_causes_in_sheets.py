@@ -176,3 +176,36 @@ def test_shares_that_are_none() -> None:
     assert (percent(math.inf), percent(-math.inf)) == ("∞", "-∞")
     assert percent(0.1234, 1) == "12.3 %"
     assert (percent(0.05, signed=True), percent(0.05)) == ("+5 %", "5 %")
+
+
+# ---- families
+
+
+@pytest.mark.parametrize("seed", [9, 10])
+@pytest.mark.parametrize(
+    ("key", "factor", "cause"),
+    [("rotor_inertia", 4.0, "inertia-convention"), ("terminal_inductance", 10.0, "power-of-ten"),
+     ("terminal_resistance", 2.0, "unexplained"), ("torque_constant", 10.0, "power-of-ten")],
+)  # fmt: skip
+def test_the_other_windings_of_a_frame_tell(key, factor, cause, seed) -> None:
+    """Motor constant, inertia and La/Ra are the frame's: what no relation of one motor shows, its
+    family does."""
+    keys = ("torque_constant", "terminal_resistance", "rotor_inertia", "terminal_inductance",
+            "no_load_current", "nominal_voltage")  # fmt: skip
+    s = make(np.random.default_rng(seed), 6, BRUSHED, keys)
+    spoil(s.batch, key, ROW, factor)
+    found = only_alarm(s)
+    assert (found.suspect, found.cause) == (key, cause)
+    assert found.relation == "family-" + key.replace("_", "-")
+    assert found.ratio == pytest.approx(factor, rel=0.1)
+    s.batch.series = [f"{row}" for row in range(6)]  # six frames of one winding
+    assert [f for f in reconcile(s.batch).findings if f.severity != "note"] == []
+
+
+def test_a_limit_below_the_rating_s_ambient_says_nothing() -> None:
+    """The sheet's rated current holds up to a temperature that it starts from: no rise to go by."""
+    m = Machines.of(torque_constant=1.0, armature_resistance=1.0, nominal_current=2.0,
+                    rating_ambient=60.0, maximum_winding_temperature=[50.0, 60.0, 100.0])  # fmt: skip
+    found = judge(m, Demand(Cycle.from_points([(1.0, 0.0, 1.0)])))
+    assert np.isnan(found.winding_temperature[:2, 0]).all()
+    assert found.winding_temperature[2, 0] == pytest.approx(25 + 40 / 4)
