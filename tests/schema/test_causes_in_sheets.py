@@ -204,8 +204,10 @@ def test_the_other_windings_of_a_frame_tell(key, factor, cause, seed) -> None:
 
 def test_a_limit_below_the_rating_s_ambient_says_nothing() -> None:
     """The sheet's rated current holds up to a temperature that it starts from: no rise to go by."""
-    m = Machines.of(torque_constant=1.0, armature_resistance=1.0, nominal_current=2.0,
-                    rating_ambient=60.0, maximum_winding_temperature=[50.0, 60.0, 100.0])  # fmt: skip
+    m = Machines.of(
+        torque_constant=1.0, armature_resistance=1.0, nominal_current=2.0, rating_ambient=60.0,
+        maximum_winding_temperature=[50.0, 60.0, 100.0],
+    )  # fmt: skip
     found = judge(m, Demand(Cycle.from_points([(1.0, 0.0, 1.0)])))
     assert np.isnan(found.winding_temperature[:2, 0]).all()
     assert found.winding_temperature[2, 0] == pytest.approx(25 + 40 / 4)
