@@ -114,3 +114,65 @@ def test_a_legend_of_symbols_states_no_convention():
         M0: continuous stall torque; Imax: peak current; I0: continuous stall current
     """)
     assert s.convention("continuous_stall_current").current == "rms"
+
+
+def test_rows_that_sum_up_are_no_motors():
+    s = sheet("""
+        Type | Nominal voltage [V] | Torque constant [mNm/A]
+        A-1 | 12 | 20
+        A-2 | 24 | 40
+        Mittelwert | 18 | 30
+        Max. | 24 | 40
+        Difference % | 0 | 100
+    """)
+    assert set(s.motors()) == {"A-1", "A-2"}
+    assert {"18", "30", "100"} <= s.unread
+
+
+def test_smallest_usual_and_largest_are_one_motors():
+    s = sheet("""
+        Parameter | Symbol | Min | Typ | Max | Unit
+        Supply voltage | U | 18 | 24 | 28 | V
+        Rated torque | Mn | | 0.18 | | Nm
+        Terminal resistance | R | 0.61 | | 0.75 | Ω
+    """)
+    (figures,) = s.motors().values()
+    assert figures == {
+        "nominal_voltage": 24, "nominal_torque": 0.18, "terminal_resistance": pytest.approx(0.68)
+    }  # fmt: skip
+    assert (s.batch.figures["terminal_resistance"].low[0], s.unread >= {"18", "28"}) == (0.61, True)
+
+
+def test_the_motors_own_figure_stands_before_that_with_a_brake():
+    s = sheet("""
+        Motor | Rotor inertia with brake [kgcm²] | Rotor inertia without brake [kgcm²] | Rated torque [Nm]
+        B-1 | 0.22 | 0.17 | 0.64
+    """)  # noqa: E501
+    assert s.motors()["B-1"]["rotor_inertia"] == pytest.approx(0.17e-4)
+
+
+def test_a_caption_right_below_the_part_numbers_counts():
+    s = sheet("""
+        Type | | A-1 | A-2
+        Rated | | |
+        Torque | mNm | 50 | 60
+        Speed | rpm | 3000 | 3100
+        Gearmotor output | | |
+        Rated speed | rpm | 60 | 62
+    """)
+    assert s.motors()["A-1"]["nominal_torque"] == 0.05
+    assert s.motors()["A-1"]["nominal_speed"] == pytest.approx(314.159265)
+
+
+def test_a_gear_beside_the_motors_is_spoken_of():
+    s = sheet("Type | Gear ratio | Nominal voltage [V] | Nominal speed [rpm]\nG | 50 | 12 | 95")
+    assert any("gear" in remark for remark in s.reading.remarks)
+
+
+def test_a_temperature_rise_in_brackets_is_a_condition():
+    s = sheet("""
+        Type | M0 (60 K) [Nm] | M0 (100 K) [Nm] | Mmax [Nm]
+        A | 5.0 | 6.0 | 16
+    """)
+    assert s.motors()["A"]["continuous_stall_torque"] == 5.0
+    assert [c.when for c in s.batch.conditions] == ["100 K"]

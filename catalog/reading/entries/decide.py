@@ -17,7 +17,7 @@ from ..headings.label import parse_label
 from ..headings.lexicon import squeeze, tokens
 from ..layout.join import id_field, ids_of
 from ..matching.match import Match, Matcher
-from ..matching.purpose import is_of_gears, tells_of_a_motor
+from ..matching.purpose import beside_gears, is_of_gears, tells_of_a_motor
 from ..model import Field, ReadOptions, Table, Unread
 from .frame import share_frame, take_up_dittos
 from .identity import by_frame_and_winding, by_voltage
@@ -33,6 +33,7 @@ from .kind import (
     signature,
 )
 from .said import convention_of, temperature_of
+from .summaries import take_out_summaries
 
 REFERENCE_FIGURES = ("terminal_resistance", "torque_constant", "back_emf_constant")
 """Figures whose temperature is the one that a motor's figures hold for."""
@@ -58,6 +59,7 @@ class Decisions:
         self.notes: Notes = notes_of([*table.titles, *table.notes])
         with_dittos = take_up_dittos(table)
         self.id_field = None if table.part_numbers else self._told_ids() or id_field(table)
+        take_out_summaries(table, self.id_field, self.unread)
         if self.id_field is not None:
             by_frame_and_winding(table, self.id_field)
         self.style = self._style()
@@ -72,6 +74,11 @@ class Decisions:
         self.worthwhile = (
             table.count > 0 and not self.of_gears and (bool(figures) or len(known) > 1)
         )
+        if self.worthwhile and beside_gears(self.matches, self._titles()):
+            self.remarks.append(
+                "a gear stands beside the motors: speeds and torques are read as the motor's; "
+                "check that they are not those of its output"
+            )
         if self.of_gears:
             self.why_not = ["a table of gears, passed over: motorfolio gears reads it"]
         elif not self.worthwhile:
@@ -237,6 +244,9 @@ class Decisions:
             f"{m.key} in {unit.text} would be of an impossible size: {unit.remark}",
         )
         m.guesses = (m.key,)
+
+    def _titles(self) -> list[str]:
+        return [*self.table.titles, *self.table.notes]
 
     def texts_about(self) -> list[str]:
         """Titles, notes and captions."""

@@ -166,6 +166,8 @@ def _bracket(label: Label, content: str) -> Label:
     if low in _QUALIFIERS:
         label = replace(label, qualifier=_QUALIFIERS[low])
         return replace(label, units=(*label.units, content)) if low == "min" else label
+    if _CONDITION_ONLY.fullmatch(content) and not _TEMPERATURE.fullmatch(content):
+        return replace(label, conditions=(*label.conditions, content))
     if len(pair := unit_pair(content)) == 2 and _one_dimension(*pair):
         return replace(label, units=(*label.units, *pair))
     if unit_of(content) is not None:

@@ -144,7 +144,8 @@ def lexicon() -> Lexicon:
             for form in _forms(name):
                 lex.roles.setdefault(squeeze(form), set()).add(meaning)
     lex.captions = {squeeze(form) for c in w.captions for form in _forms(c)}
-    lex.parts = {squeeze(form) for part in w.parts for form in _forms(part)}
+    forms = [form for part in w.parts for form in _forms(part)]
+    lex.parts = {squeeze(f) for form in forms for f in (form, without_fillers(form))} - {""}
     for other in w.others:
         for form in _forms(other):
             lex.others.add(squeeze(form))

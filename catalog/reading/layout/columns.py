@@ -60,6 +60,13 @@ def lay_out_columns(block: Block) -> Table:
                 table.part_numbers = list(joined[0]) if joined else [row[c] or None for c in values]
             continue
         if i < first and not (row[label_column] and any(is_figure(row[c]) for c in values)):
+            if (
+                id_row is not None
+                and i > id_row
+                and row[label_column]
+                and not any(row[c] for c in values)
+            ):
+                caption, captioned = [row[label_column]], i
             continue
         shared = "" if between is None else row[between]
         texts = [shared or row[c] for c in values]

@@ -76,13 +76,18 @@ class Matcher(Candidates):
         for group, candidate in zip(groups, chosen, strict=True):
             if candidate is None:
                 continue
-            for i in group:
+            # "With brake" may stand before the motor's own figure: it is the other's condition.
+            for i in sorted(group, key=lambda i: _variant_of(self.fields[i]) == "with_brake"):
                 own = next((c for c in options[i] if c.key == candidate.key), None)
                 if own is not None:
                     matches[i] = self._settle(i, own, options[i], taken)
         for i, match in enumerate(matches):
             if match is None:
                 matches[i] = self._left_over(i, options[i], taken)
+        conditioned = {m.key for m in matches if m is not None and m.role == "condition"}
+        for m in matches:
+            if m is not None and m.role == "figure" and m.key in conditioned and when_of(m.field):
+                m.reason += f'; under the condition "{when_of(m.field)}"'
         return [m for m in matches if m is not None]
 
     def _solve(
@@ -95,9 +100,10 @@ class Matcher(Candidates):
         gain = np.zeros((len(groups), len(keys)))
         for g, group in enumerate(groups):
             top = options[group[0]][0].score
+            late = 0.01 if _variant_of(self.fields[group[0]]) == "with_brake" else 0.0
             for c in options[group[0]]:
                 if c.score >= max(THRESHOLD, top - 0.2):
-                    gain[g, column[c.key]] = c.score + 0.3 - 1e-4 * g
+                    gain[g, column[c.key]] = c.score + 0.3 - late - 1e-4 * g
         assigned = best_assignment(gain)
         out: list[Candidate | None] = []
         for g, j in enumerate(assigned):
@@ -252,9 +258,13 @@ def when_of(f: Field) -> str:
     temperature = f.label.temperature if f.label.temperature is not None else f.temperature
     if temperature is not None and not any(re.search(rf"\b{temperature:g}\b", p) for p in parts):
         parts.append(f"{temperature:g} °C")
-    variant = (
-        f.label.variant or next((p.variant for p in f.label.names if p.variant), None) or f.variant
-    )
+    variant = _variant_of(f)
     if variant and not parts:
         parts.append(variant.replace("_", " "))
     return "; ".join(dict.fromkeys(parts))
+
+
+def _variant_of(f: Field) -> str | None:
+    return (
+        f.label.variant or next((p.variant for p in f.label.names if p.variant), None) or f.variant
+    )

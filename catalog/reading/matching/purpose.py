@@ -39,6 +39,20 @@ def is_of_gears(matches: Sequence[Match]) -> bool:
     return any(_RATIO.search(h) for h in headings) and any(_OF_A_GEAR.search(h) for h in headings)
 
 
+_OUTPUT = re.compile(
+    r"output shaft|gear ?motor|geared motor|getriebemotor|abtriebswelle|motoréducteur|"
+    r"arbre de sortie|motoriduttor|albero di uscita|motorreductor|eje de salida|ギヤードモータ|"
+    r"出力軸|减速电机|齿轮电机|输出轴",
+    re.IGNORECASE,
+)
+
+
+def beside_gears(matches: Sequence[Match], texts: Sequence[str]) -> bool:
+    """Whether a table of motors has a column of gear ratios, or its titles speak of an output."""
+    ratio = any(_RATIO.search(plain(m.field.heading)) and any(m.field.texts) for m in matches)
+    return ratio or any(_OUTPUT.search(plain(text)) for text in texts)
+
+
 def tells_of_a_motor(match: Match) -> bool:
     """Whether a heading gives voltage, speed, current, torque, power, a constant, a resistance."""
     if match.role == "point":
