@@ -11,6 +11,7 @@ from dataclasses import dataclass
 from functools import cache
 
 import numpy as np
+from numpy.typing import NDArray
 
 from ..batch import Floats
 from ..convention import Commutation
@@ -55,15 +56,26 @@ SINUSOIDAL_RATIOS = (
 
 @dataclass(frozen=True, slots=True)
 class Shape:
-    """The factors of one figure as arrays: cause code, log factor, own sd, log prior weight; and
-    the broad causes as (code, lower, upper log ratio, log prior)."""
+    """The factors of one figure as arrays: cause code, log factor, the power of ten that slipped
+    besides, log prior weight; and the broad causes as (code, lower, upper log ratio, log prior)."""
 
     code: np.ndarray
     log_factor: Floats
-    width: Floats
+    power: np.ndarray
     log_prior: Floats
     broad: tuple[tuple[int, float, float, float], ...]
 
+
+NEAR_ONE = math.log(1.25)
+"""A unit taken for another and a slipped decimal point that nearly make up for one another (9.549
+over 10) are no explanation of a ratio near 1: each alone would have been seen."""
+
+FITS, MOST = 3.0, 0.5
+"""A cause may be off the ratio by so many standard deviations, and leave over so much of the
+departure where that is more than one of them: one that leaves more explains nothing."""
+
+OTHERS = 3
+"""So many further causes are named at most."""
 
 UNEXPLAINED_PRIOR = 0.10
 UNEXPLAINED_SCALE = 0.7
@@ -79,18 +91,22 @@ def unexplained(log_ratio: Floats) -> Floats:
 
 class _Collector:
     def __init__(self) -> None:
-        self.rows: list[tuple[int, float, float, float]] = []
+        self.rows: list[tuple[int, float, int, float]] = []
         self.broad: list[tuple[int, float, float, float]] = []
 
-    def add(self, cause: str, factor: float, prior: float, *, slips: bool = False) -> None:
-        """A factor and its inverse; with ``slips`` also with a power of ten."""
-        powers = {0: 1.0}
+    def add(
+        self, cause: str, factor: float, prior: float, *, slips: bool = False, power: int = 0
+    ) -> None:
+        """A factor and its inverse, with a power of ten; with ``slips`` also with others."""
+        powers = {power: 1.0}
         if slips:
             powers |= {3: 0.08, -3: 0.08, 1: 0.02, -1: 0.02, 2: 0.02, -2: 0.02}
         for power, share in powers.items():
+            log_factor = math.log(factor) + power * math.log(10.0)
+            if power and abs(log_factor) < NEAR_ONE:
+                continue
             for sign in (1, -1):
-                log_factor = sign * (math.log(factor) + power * math.log(10.0))
-                self.rows.append((CODE[cause], log_factor, 0.0, prior * share / 2))
+                self.rows.append((CODE[cause], sign * log_factor, sign * power, prior * share / 2))
 
     def between(self, cause: str, low: float, high: float, prior: float) -> None:
         self.broad.append((CODE[cause], math.log(low), math.log(high), math.log(prior)))
@@ -116,6 +132,12 @@ def _unit_evidence(unit: str) -> dict[str, float]:
     return odds
 
 
+def _may_be_weight(unit: str) -> bool:
+    """Whether an inertia in this unit may be one in kgf·m·s²: not if it is in cm² or in inches."""
+    text = unit.lower()
+    return not any(sign in text for sign in ("cm", "mm", "in", "oz", "lb"))
+
+
 @cache
 def shape(figure: str, commutation: int, unit: str) -> Shape:
     """The causes that apply to a figure of such a motor printed in such a unit."""
@@ -131,11 +153,11 @@ def shape(figure: str, commutation: int, unit: str) -> Shape:
     if torque:
         c.add("ounce-inch-vs-millinewton-metre", OUNCE_INCH, 0.15, slips=True)
         c.add("pound-inch-vs-newton-metre", POUND_INCH, 0.10, slips=True)
-    if torque or figure in ("rotor_inertia", "mass"):
+    if torque or figure == "mass" or (figure == "rotor_inertia" and _may_be_weight(unit)):
         c.add("kilogram-force-vs-newton", KILOGRAM_FORCE, 0.08, slips=True)
         for power in (4, 5):
-            for factor in (KILOGRAM_FORCE * 10.0**power, KILOGRAM_FORCE * 10.0**-power):
-                c.add("kilogram-force-vs-newton", factor, 0.004)
+            for slip in (power, -power):
+                c.add("kilogram-force-vs-newton", KILOGRAM_FORCE, 0.004, power=slip)
     if figure == "rotor_inertia":
         c.add("inertia-convention", OUNCE_INCH_SECONDS, 0.10, slips=True)
         c.add("inertia-convention", 4.0, 0.12, slips=True)
@@ -185,7 +207,7 @@ def shape(figure: str, commutation: int, unit: str) -> Shape:
     return Shape(
         code=np.array([r[0] for r in rows]),
         log_factor=np.array([r[1] for r in rows]),
-        width=np.array([r[2] for r in rows]),
+        power=np.array([r[2] for r in rows]),
         log_prior=np.log([r[3] * odds.get(CAUSES[r[0]], 1.0) for r in rows]),
         broad=tuple(c.broad),
     )
@@ -217,8 +239,7 @@ def static_scores(form: Shape, log_ratio: Floats, sd: Floats) -> Floats:
     log_ratio (n,) of printed to implied; sd (n,) its standard deviation.
     """
     out = np.full((len(log_ratio), len(CAUSES)), -np.inf)
-    spread = np.sqrt(sd[:, None] ** 2 + form.width**2)
-    rows = form.log_prior + log_normal(log_ratio[:, None] - form.log_factor, spread)
+    rows = _row_scores(form, log_ratio, sd)
     for code in np.unique(form.code):
         out[:, code] = rows[:, form.code == code].max(axis=1)
     for code, low, high, log_prior in form.broad:
@@ -229,8 +250,33 @@ def static_scores(form: Shape, log_ratio: Floats, sd: Floats) -> Floats:
     return out
 
 
+def _row_scores(form: Shape, log_ratio: Floats, sd: Floats) -> Floats:
+    """The same for every single factor, shape (n, number of factors)."""
+    gap = log_ratio[:, None] - form.log_factor
+    rows = form.log_prior + log_normal(gap, sd[:, None])
+    return np.where(leaves(gap, log_ratio[:, None], sd[:, None]), -np.inf, rows)
+
+
+def leaves(gap: Floats | float, log_ratio: Floats | float, sd: Floats | float) -> NDArray[np.bool_]:
+    """Whether a factor that is off the ratio by gap explains too little of it: beyond what the
+    figures are known to, and most of the departure is left."""
+    gap = np.abs(gap)
+    return (gap > FITS * np.asarray(sd)) | ((gap > sd) & (gap > MOST * np.abs(log_ratio)))
+
+
+def slipped_power(form: Shape, cause: str, log_ratio: float, sd: float) -> int:
+    """The power of ten that slipped besides a cause, where it is a factor; else 0."""
+    rows = _row_scores(form, np.array([log_ratio]), np.array([sd]))[0]
+    rows = np.where(form.code == CODE[cause], rows, -np.inf)
+    if not rows.size or not np.isfinite(rows.max()):
+        return 0
+    return int(form.power[rows.argmax()])
+
+
 def causes_of(scores: Floats, within: float = 4.6) -> tuple[str, ...]:
-    """The causes by likelihood: all that are within a factor of 100 of the likeliest."""
-    order = np.argsort(-scores)
-    best = scores[order[0]]
-    return tuple(CAUSES[c] for c in order.tolist() if scores[c] > best - within)
+    """The causes by likelihood, at most ``OTHERS`` beside the first: all that are within a factor
+    of 100 of the likeliest. "unexplained" is the first or none."""
+    order = np.argsort(-scores).tolist()
+    best, unknown = scores[order[0]], CODE["unexplained"]
+    near = [c for c in order[1:] if scores[c] > best - within and c != unknown]
+    return tuple(CAUSES[c] for c in [order[0], *near[:OTHERS]])

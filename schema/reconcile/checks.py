@@ -2,10 +2,11 @@
 twice, the thermal rating, and the note on scatter."""
 
 import math
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from typing import Any
 
 import numpy as np
+from numpy.typing import NDArray
 
 from ..batch import FigureColumn, Floats
 from ..convention import Commutation
@@ -122,14 +123,16 @@ def frames(narrator: Narrator, family: Bools) -> Found:
                 shape(key, int(batch.commutation[m]), narrator.unit(key, m)[0]),
                 gap[m : m + 1], sd[m : m + 1],
             )[0]  # fmt: skip
-            cause, *others = causes_of(scores)
+            causes = causes_of(scores)
+            cause, *others = causes
             implied = math.exp(median[m])
             departure = abs(math.expm1(abs(float(gap[m]))))
             severe = cause != "unexplained" or departure > max(0.15, 5.0 * float(sd[m]))
             text = (
                 f"{capital(name(key))} {narrator.printed(key, m)}{narrator.place(m, key)} is "
                 f"{number(math.exp(gap[m]))} times that of the other windings of this size "
-                f"({narrator.amount(key, m, implied)}). {narrator.because(cause, others)}"
+                f"({narrator.amount(key, m, implied)}). "
+                f"{narrator.because(m, key, causes, float(gap[m]), float(sd[m]))}"
             )
             out.append((m, _motor(
                 narrator, m, "error" if severe else "warning",
@@ -159,16 +162,17 @@ def repeats(narrator: Narrator) -> Found:
                 off = np.flatnonzero(np.abs(np.expm1(np.abs(gap))) > 0.02 + 3.0 * sd)
             for m in off.tolist():
                 unit = narrator.unit(key, m)[0]
+                spread = np.hypot(sd[m : m + 1], 0.005)
                 scores = static_scores(
-                    shape(key, int(batch.commutation[m]), unit), gap[m : m + 1],
-                    np.hypot(sd[m : m + 1], 0.005),
-                )[0]  # fmt: skip
-                cause, *others = causes_of(scores)
+                    shape(key, int(batch.commutation[m]), unit), gap[m : m + 1], spread
+                )[0]
+                causes = causes_of(scores)
+                cause, *others = causes
                 text = (
                     f"{capital(name(key))} is given twice: {narrator.printed(key, m)}"
                     f"{narrator.place(m, key)} and {second.text[m]} (row {second.row[m]}, column "
                     f"{second.column[m]}), a ratio of {number(math.exp(gap[m]))}; the first "
-                    f"stands. {narrator.because(cause, others)}"
+                    f"stands. {narrator.because(m, key, causes, float(gap[m]), float(spread[0]))}"
                 )
                 large = abs(math.expm1(abs(float(gap[m])))) > DEPARTURE
                 out.append((m, _motor(
@@ -183,6 +187,18 @@ def repeats(narrator: Narrator) -> Found:
 
 def _digits(key: str, column: FigureColumn) -> Floats:
     return np.where(np.isfinite(column.value), printed_sd(key, column), 0.0)
+
+
+HOT_RATING = (
+    "More than permitted: the rating may hold on a cooling plate or with forced air, for which the "
+    "printed resistances are not."
+)
+COOL_RATING = (
+    "Less than permitted: the rating may be a cautious one, for a hotter ambient, or leave room "
+    "for the heat of friction."
+)
+LISTED = 12
+"""So many motors are listed each with its own numbers; of more, the two ends."""
 
 
 def thermal(narrator: Narrator, doubted: Doubted) -> Found:
@@ -212,24 +228,39 @@ def thermal(narrator: Narrator, doubted: Doubted) -> Found:
         "thermal_resistance_housing_ambient", "thermal_resistance", "terminal_resistance",
         "maximum_winding_temperature") if k in batch.figures)  # fmt: skip
     off = off[[not doubted.get(i, set()) & {*figures} for i in off.tolist()]]
-    if not off.size:
-        return []
-    m = int(off[0])
-    text = (
-        "The rated current does not follow from the thermal resistances: T_max − T_amb = "
-        f"(Rth1 + Rth2)·I_N²·Ra(T_max) would be {number(ratio[m] * (hottest[m] - ambient[m]))} K "
-        f"where {number(hottest[m] - ambient[m])} K are permitted"
-        + (f" ({batch.part_number[m]}, and {off.size - 1} more)" if off.size > 1 else "")
-        + ". The rating may be that on a cooling plate."
-    )
-    finding = Finding(
-        part_number=batch.part_number[m] if off.size == 1 else None,
-        scope="motor" if off.size == 1 else "column",
-        part_numbers=() if off.size == 1 else tuple(batch.part_number[i] for i in off),
-        severity="note", relation=THERMAL, figures=figures, ratio=float(ratio[m]),
-        cell=narrator.cell(m, "nominal_current"), message=text,
-    )  # fmt: skip
-    return [(m, finding)]
+    rise = hottest - ambient
+    out: Found = []
+    for some, why in ((off[ratio[off] > 1.0], HOT_RATING), (off[ratio[off] < 1.0], COOL_RATING)):
+        if not some.size:
+            continue
+        m, alone = int(some[0]), some.size == 1
+        text = (
+            "The rated current does not follow from the thermal resistances: (Rth1 + Rth2)·I_N²·"
+            f"Ra(T_max) is a rise of {_rises(batch.part_number, some, ratio * rise, rise)}. {why}"
+        )
+        out.append((m, Finding(
+            part_number=batch.part_number[m] if alone else None,
+            scope="motor" if alone else "column",
+            part_numbers=() if alone else tuple(batch.part_number[i] for i in some),
+            severity="note", relation=THERMAL, figures=figures, ratio=float(ratio[m]),
+            cell=narrator.cell(m, "nominal_current"), message=text,
+        )))  # fmt: skip
+    return out
+
+
+def _rises(parts: Sequence[str], motors: NDArray[np.intp], got: Floats, given: Floats) -> str:
+    """ "62.2 K of 100 K permitted (A-1), 48 K of 100 K (A-2)"; of many the least and the
+    largest share."""
+    order = motors.tolist()
+    if len(order) > LISTED:
+        order.sort(key=lambda i: float(got[i] / given[i]))
+        order = [order[0], order[-1]]
+    said = [f"{number(float(got[i]))} K of {number(float(given[i]))} K" for i in order]
+    if motors.size == 1:
+        return f"{said[0]} permitted"
+    said = [f"{text} ({parts[i]})" for text, i in zip(said, order, strict=True)]
+    said[0] = said[0].replace(" (", " permitted (", 1)
+    return f"{said[0]} to {said[1]}" if motors.size > LISTED else ", ".join(said)
 
 
 def _customary(relation: Relation) -> float:

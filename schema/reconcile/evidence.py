@@ -11,7 +11,7 @@ import numpy as np
 from ..batch import Batch, Floats
 from ..vocabulary import quantity
 from .adjust import Fit, Problem
-from .causes import CAUSES, CODE, log_normal, shape, static_scores
+from .causes import CAUSES, CODE, leaves, log_normal, shape, static_scores
 from .model import FIGURES, I0, IN, INDEX, R, U
 from .observed import copper, magnet_slope
 from .suspects import LeftOut
@@ -149,7 +149,10 @@ class Evidence(TableEvidence):
         key = FIGURES[f]
 
         def offer(cause: str, factor: float, prior: float, extra: float = 0.0) -> None:
-            value = math.log(prior) + float(log_normal(log_ratio - factor, math.hypot(sd, extra)))
+            gap = log_ratio - factor
+            if leaves(gap, log_ratio, sd):
+                return
+            value = math.log(prior) + float(log_normal(gap, math.hypot(sd, extra)))
             row[CODE[cause]] = max(row[CODE[cause]], value)
 
         swaps = transpositions(self.text(m, f))

@@ -1,6 +1,7 @@
 """A finding in an engineer's words: the relation with the numbers put in, the cause, the rivals."""
 
 import math
+from collections.abc import Sequence
 
 import numpy as np
 
@@ -9,11 +10,13 @@ from ..motor import Amount, Cell, Finding
 from ..vocabulary import quantity
 from ..written import in_words as name
 from ..written import number as _number
+from .causes import TORQUES, shape, slipped_power
 from .columns import ColumnFault
 from .inference import Inferred
+from .kin import Kin
 from .model import FIGURES
 from .observed import to_model
-from .relations import CONSTANT_FIGURES, CONVENTION, RELATIONS, Relation, own_relation
+from .relations import CONSTANT_FIGURES, CONVENTION, FAMILY, RELATIONS, Relation, own_relation
 from .suspects import Suspicion
 
 SENTENCES = {
@@ -46,6 +49,9 @@ SENTENCES = {
 }
 """What each cause is, in a few words."""
 
+PRODUCT = "torque constant times current printed as the torque, friction left out"
+"""What friction left out is where the figure is a torque."""
+
 ROLES = {"K": CONSTANT_FIGURES, "R": ("terminal_resistance",)}
 """The figures that may stand for a role of a relation."""
 
@@ -77,8 +83,16 @@ class Narrator:
 
     def __init__(self, batch: Batch) -> None:
         self.batch = batch
+        self._kin: Kin | None = None
         self._factor: dict[str, list[float]] = {}
         self._dc: dict[str, list[float]] = {}
+
+    @property
+    def kin(self) -> Kin:
+        """The families of the batch."""
+        if self._kin is None:
+            self._kin = Kin(self.batch)
+        return self._kin
 
     def cell(self, motor: int, figure: str) -> Cell | None:
         """The place of a figure in the file."""
@@ -191,6 +205,10 @@ class Narrator:
         # the others of the relation that shows the contradiction
         rest = doubted - {figure, *rivals}
         relation, roles = self.relation_of(motor, figure, frozenset(rest | {*partner}))
+        by_family = suspicion.by_family and relation is None and not rivals
+        shown = relation.name if relation else own_relation(figure)
+        if by_family:
+            shown = FAMILY + figure.replace("_", "-")
         ratio = math.exp(suspicion.log_ratio)
         column = self.batch.figures[figure]
         implied = float(column.value[motor]) / ratio
@@ -203,6 +221,13 @@ class Narrator:
                 f"{self.place(motor, partner[0])} seem to be exchanged: with the two numbers in "
                 f"each other's place all figures agree; {name(figure)} would be {amount}."
             )
+        elif rivals:
+            against = [f"{name(r)} {self.printed(r, motor)}{self.place(motor, r)}" for r in rivals]
+            text = f"{', '.join([text, *against[:-1]])} and {against[-1]} contradict one another"
+        elif by_family:
+            unit, factor, _ = self.unit(figure, motor)
+            alike = self.kin.words(motor, figure, implied, factor, unit)
+            text += f" is {_times(ratio)} what its family implies ({amount}): {alike}"
         else:
             text += f" is {_times(ratio)} what the other figures imply ({amount})"
         names: tuple[str, ...] = (figure,)
@@ -214,14 +239,17 @@ class Narrator:
             text += "."
         names = tuple(dict.fromkeys((figure, *partner, *rivals, *names)))
         if rivals:
-            listed = ", ".join(name(r) for r in (figure, *rivals))
-            text += f" Nothing else on the sheet tells which is wrong: {listed}."
+            text += (
+                " Nothing else on the sheet tells which is wrong. The constants are worked out "
+                f"without {name(figure)}: it is {_times(ratio)} what the rest implies ({amount})."
+            )
             names = (figure, *rivals)
-        text += f" {self.because(cause, others)}"
+        because = self.because(motor, figure, suspicion.causes, suspicion.log_ratio, suspicion.sd)
+        text += f" {because}"
         return Finding(
             part_number=self.batch.part_number[motor],
             severity=severity,
-            relation=relation.name if relation else own_relation(figure),
+            relation=shown,
             figures=names,
             suspect=None if rivals else figure,
             ratio=ratio,
@@ -266,6 +294,8 @@ class Narrator:
         if rivals:
             listed = ", ".join(name(r) for r in names)
             text += f" Nothing else in the table tells which is wrong: {listed}."
+            text += f" The constants are worked out without {name(figure)}."
+        because = self.because(first, figure, fault.causes, fault.log_ratio, fault.sd)
         return first, Finding(
             part_number=None,
             scope="column",
@@ -279,7 +309,7 @@ class Narrator:
             other_causes=tuple(others),
             implied=Amount(value=implied, unit=quantity(figure).unit),
             cell=self.cell(first, figure),
-            message=f"{text} {self.because(cause, others)}",
+            message=f"{text} {because}",
         )
 
     def inference(self, inferred: Inferred) -> Finding:
@@ -317,13 +347,21 @@ class Narrator:
             f"the worst is off by {number(100 * misfit, 2)} %.",
         )  # fmt: skip
 
-    def because(self, cause: str, others: list[str]) -> str:
-        """The cause in a sentence, with the likeliest others."""
-        if cause == "unexplained":
-            text = "None of the usual mistakes explains the ratio"
-        else:
-            text = f"Likely {SENTENCES[cause]}"
-        usual = [SENTENCES[o] for o in others if o != "unexplained"]
-        if usual:
-            text += "; also possible: " + ", ".join(usual[:3])
-        return text + "."
+    def because(
+        self, motor: int, figure: str, causes: Sequence[str], log_ratio: float, sd: float
+    ) -> str:
+        """The likeliest cause of a figure's ratio in a sentence, with the others."""
+        form = shape(figure, int(self.batch.commutation[motor]), self.unit(figure, motor)[0])
+        first, *others = (_cause(c, figure, slipped_power(form, c, log_ratio, sd)) for c in causes)
+        text, also = f"Likely {first}", "; also possible: "
+        if causes[0] == "unexplained":
+            text, also = "None of the usual mistakes explains the ratio", "; the nearest: "
+        return f"{text}{also if others else ''}{', '.join(others)}."
+
+
+def _cause(cause: str, figure: str, power: int) -> str:
+    """What a cause is, for a figure, with the power of ten that slipped besides."""
+    text = PRODUCT if cause == "friction-ignored" and figure in TORQUES else SENTENCES[cause]
+    if power:
+        text += f" with a decimal point {abs(power)} place{'s' * (abs(power) > 1)} off"
+    return text

@@ -14,6 +14,9 @@ CHANCE = {"unexplained", "digits-transposed", "continuous-stall", "neighbouring-
 GEARED = 0.8
 """The least logarithm of a gear's ratio."""
 
+OF_A_CELL = {"digits-transposed", "neighbouring-column", "figures-swapped"}
+"""Mistakes in one cell: no reason for a whole column that is wrong by one factor."""
+
 Merged = list[tuple[ColumnFault, np.ndarray]]
 
 
@@ -55,7 +58,7 @@ def shared_causes(suspicions: list[Suspicion]) -> None:
 
 
 def _lead(s: Suspicion, cause: str) -> None:
-    s.causes = (cause, *(c for c in s.causes if c != cause))
+    s.causes = (cause, *(c for c in s.causes if c not in (cause, "unexplained")))
 
 
 def shared_faults(batch: Batch, suspicions: list[Suspicion]) -> tuple[Merged, list[Suspicion]]:
@@ -76,7 +79,8 @@ def shared_faults(batch: Batch, suspicions: list[Suspicion]) -> tuple[Merged, li
         best = max(alike, key=lambda s: s.saved)
         sd = float(np.median([s.sd for s in alike]))
         implied_sd = float(np.median([s.implied_sd for s in alike]))
-        fault = ColumnFault(figure, tuple(sorted(rivals)), ratio, implied_sd, sd, best.causes)
+        causes = tuple(c for c in best.causes if c not in OF_A_CELL) or ("unexplained",)
+        fault = ColumnFault(figure, tuple(sorted(rivals)), ratio, implied_sd, sd, causes)
         merged.append((fault, np.array(sorted(s.motor for s in alike))))
         gone.update(id(s) for s in alike)
     return merged, [s for s in suspicions if id(s) not in gone]

@@ -21,6 +21,7 @@ from .evidence import Evidence, TableEvidence
 from .explain import Narrator
 from .families import groups, observe_families, stands_off
 from .inference import Inferred, infer
+from .kin import told_by_family
 from .merge import exchanged_neighbours, shared_causes, shared_faults
 from .model import FIGURES, Readings
 from .observed import observe
@@ -111,6 +112,7 @@ def _portion(
     judged, unsure = _with_family(problem, base, unsure)
     suspicions, removed = judge(Evidence(batch, problem, judged), np.flatnonzero(unsure))
     _refit(problem, base, removed)
+    told_by_family(suspicions, problem, family)
     return suspicions, constants(batch, problem, base), family
 
 

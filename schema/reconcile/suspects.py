@@ -43,7 +43,8 @@ class Suspicion:
 
     figure is the likeliest one; rivals the others that might be it just as well (none: it is
     named); log_ratio of printed to implied with the implied value's sd; saved is the χ² that
-    leaving it out saves; causes the likeliest first; partner the other figure of a swap.
+    leaving it out saves; causes the likeliest first; partner the other figure of a swap;
+    by_family where only the other windings of the motor's size tell.
     """
 
     motor: int
@@ -56,6 +57,7 @@ class Suspicion:
     causes: tuple[str, ...]
     partner: int | None = None
     odds: float = 0.0
+    by_family: bool = False
 
 
 @dataclass(slots=True)

@@ -125,7 +125,8 @@ def _verdict(
     value, sd = predicted(part, fitted, np.array([a]))
     ratio = float(part.y[0, a] - value[0])
     model = known.get(a, suspicions[0])
-    others = tuple(c for c in model.causes if c != "figures-swapped") if a in known else ()
+    unsaid = ("figures-swapped", "unexplained")
+    others = tuple(c for c in model.causes if c not in unsaid) if a in known else ()
     return replace(
         model,
         figure=a,
