@@ -28,7 +28,7 @@ def main() -> None:
     seed = secrets.randbelow(1_000_000) if chosen.seed is None else chosen.seed
     trial.load_libraries()
     operators()  # all that is imported is imported before the first fork
-    with ThreadPoolExecutor() as pool:
+    with ThreadPoolExecutor(chosen.workers + 1) as pool:
         learning = [pool.submit(_learnt, files()[k :: chosen.workers])
                     for k in range(chosen.workers)]  # fmt: skip
         mutants, places = sample(chosen.sample, seed)
