@@ -37,12 +37,13 @@ class Covering:
     def tests_of(self, mutant: Mutant) -> list[str]:
         """Tests that run the statement changed, the quickest first.
 
-        A statement that runs when the module is imported may matter to every test.
+        A statement that runs when the module is imported may matter to every test, but first to
+        those that call something of the module.
         """
-        found = self._contexts(mutant)
-        if IMPORT in found or not _statement(mutant.source, mutant.line)[2]:
-            found = set(self.seconds)
-        return sorted(found, key=self.seconds.__getitem__)
+        if not self.at_import(mutant):
+            return sorted(self._contexts(mutant), key=self.seconds.__getitem__)
+        near = set().union(*self.lines.get(mutant.module, {}).values()) - {IMPORT}
+        return sorted(self.seconds, key=lambda test: (test not in near, self.seconds[test]))
 
     def add(self, other: "Covering") -> None:
         """What another run has learnt of other tests."""
