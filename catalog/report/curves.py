@@ -40,9 +40,9 @@ class Plane:
     """A motor's torque–speed plane: speeds (rad/s), limits, friction torque (N·m) over the speeds,
     and what its sheet lacks for more.
 
-    `cycle` holds, if there is a requirement, lines of (speed, torque) at the motor's shaft, one a
-    piece of the cycle; `rms` its root mean square speed and torque; `maximum_speed` in rad/s, NaN
-    if not published.
+    `cycle` holds, if there is a requirement, lines (2, n) of speed and torque at the motor's shaft,
+    one a stretch of the cycle; `rms` its root mean square speed and torque; `maximum_speed` in
+    rad/s, NaN if not published.
     """
 
     speed: Array
@@ -52,6 +52,21 @@ class Plane:
     maximum_speed: float
     cycle: list[Array]
     rms: tuple[float, float] | None
+
+    def lasting(self) -> tuple[Array, Array]:
+        """The edge of what may last, speeds and torques from 0: within the continuous limit, the
+        voltage (cold and hot) and the permissible speed, at which it ends."""
+        curves = [c.torque for c in self.limits if c.kind.split()[0] in ("continuous", "voltage")]
+        if not any(c.kind == "continuous" for c in self.limits):
+            return np.empty(0), np.empty(0)
+        torque = np.min(np.clip(np.nan_to_num(curves), 0, None), axis=0)
+        top = self.maximum_speed
+        if np.isnan(top) or top >= self.speed[-1]:
+            return self.speed, torque
+        inside = self.speed < top
+        return np.append(self.speed[inside], top), np.append(
+            torque[inside], np.interp(top, self.speed, torque)
+        )
 
 
 def plane(machine: Machines, demand: Demand, ratio: float | None = None) -> Plane:
@@ -205,7 +220,8 @@ def voltage_torque(machine: Machines, speed: Array, voltage: float, temperature:
 def cycle_at_motor(
     machine: Machines, demand: Demand, ratio: float
 ) -> tuple[list[Array], tuple[float, float]]:
-    """The cycle at the motor's shaft: lines (2, 2) of speed and torque, and its rms values."""
+    """The cycle at the motor's shaft: a line (2, n) of speed and torque for each of its stretches,
+    and its rms values."""
     pieces = demand.cycle.pieces(demand.gearing.load_inertia, demand.gearing.efficiency)
     inertia = float(machine.rotor_inertia[0]) + demand.gearing.inertia
     accelerates = pieces.gram[1, 1] > 0
@@ -213,7 +229,9 @@ def cycle_at_motor(
     torque = pieces.basis[:, :, 0] / ratio + np.where(accelerates, pieces.basis[:, :, 1], 0) * swing
     speed = pieces.basis[:, :, 3] * ratio
     sign = np.where(pieces.basis[:, :, 2] < 0, -1.0, 1.0)
-    lines = list(np.stack([np.abs(speed), torque * sign], axis=1))
+    ends = np.stack([np.abs(speed), torque * sign], axis=1)
+    cuts = np.flatnonzero(np.diff(pieces.stretch)) + 1
+    lines = [np.concatenate([*piece], axis=1) for piece in np.split(ends, cuts)]
 
     def rms(values: Array) -> float:
         a, b = values.T

@@ -157,5 +157,5 @@ def one_after_the_other(parts: list[Cycle]) -> Cycle:
     """The parts as one cycle."""
     begin = np.cumsum([0, *(part.stretches[-1] + 1 for part in parts[:-1])])
     stretches = [part.stretches + first for part, first in zip(parts, begin, strict=True)]
-    columns = (np.concatenate([getattr(part, name) for part in parts]) for name in COLUMNS)
-    return Cycle(*columns, np.concatenate(stretches))
+    columns = {name: np.concatenate([getattr(part, name) for part in parts]) for name in COLUMNS}
+    return Cycle(**columns, stretch=np.concatenate(stretches))

@@ -1,5 +1,6 @@
 """The torque–speed plane and implied figures, held against the judgement they must agree with."""
 
+from dataclasses import replace
 from pathlib import Path
 
 import numpy as np
@@ -12,6 +13,7 @@ from motorfolio.catalog.store import Catalog
 from motorfolio.schema.operation.cycle import Cycle
 from motorfolio.schema.operation.demand import Demand, Drive, Gearing, Supply, Surroundings
 from motorfolio.schema.operation.judge import judge
+from motorfolio.schema.operation.moves import move
 
 PARTS = ("MARMOT-1", "TERN-45L", "CIGALE-B", "DACHS-24", "IGEL-12", "KODAMA-B")
 
@@ -84,6 +86,31 @@ def test_the_cycle_at_the_motor_has_the_judgement_s_peaks(catalog):
     t = np.linspace(0, 1, 200_001)
     speed = np.interp(t, [0, 0.2, 0.5, 0.7, 1.0], [0, 30, 30, 0, 0]) * 8
     assert rms[0] == pytest.approx(np.sqrt(np.trapezoid(speed**2, t)), rel=1e-6)
+
+
+def test_what_lasts_ends_at_the_permissible_speed(catalog):
+    machine = machine_of(catalog, "CIGALE-A")
+    top = float(machine.maximum_speed[0])
+    found = curves.plane(machine, demand_at(0.0, 0.0))
+    wide = curves.plane(machine, replace(demand_at(0.0, 0.0), supply=Supply(60.0)))
+    assert found.speed[-1] < top < wide.speed[-1]
+    assert found.lasting()[0][-1] == found.speed[-1]
+    speed, torque = wide.lasting()
+    assert speed[-1] == top
+    assert (torque > 0).all()
+    use = judge(machine, demand_at(float(torque[-1]), top * 1.001))
+    assert use.speed[0, 0] > 1
+    assert judge(machine, demand_at(float(torque[-1]), top)).speed[0, 0] == pytest.approx(1)
+
+
+def test_a_bent_ramp_is_one_line(catalog):
+    machine = machine_of(catalog, "CIGALE-B")
+    demand = Demand(move(9.0, profile="s-curve", time=1.0, effort=0.1), Gearing(1e-3))
+    lines, _ = curves.cycle_at_motor(machine, demand, 2.0)
+    ends = [(float(line[0, 0]), float(line[0, -1])) for line in lines]
+    top = 2 * 9.0 / (1 - 1 / 3)
+    assert np.allclose(ends, [(0, top), (top, top), (top, 0)])
+    assert lines[0].shape[1] > 10
 
 
 def test_only_the_planted_figure_stands_apart(catalog):

@@ -3,6 +3,7 @@
 import xml.etree.ElementTree as ET
 from pathlib import Path
 
+import numpy as np
 import pytest
 
 from motorfolio.catalog.cli import main
@@ -45,19 +46,19 @@ def test_png_is_written_by_its_suffix(catalog, tmp_path):
     assert path.read_bytes().startswith(b"\x89PNG")
 
 
-def figure_of(catalog: Path, name: str):
+def figure_of(catalog: Path, name: str, asked=ASKED, part="DACHS-24"):
     from motorfolio.catalog.commands.requirement_options import requirement_of
     from motorfolio.catalog.commands.search import command as search
     from motorfolio.catalog.report.pictures import make
     from motorfolio.catalog.store import Catalog
 
-    options = search.make_context("search", list(ASKED), **HELP).params
+    options = search.make_context("search", list(asked), **HELP).params
     with Catalog.open(catalog) as opened:
         requirement = requirement_of(options)
         if name == "plane":
-            return make.plane_of(opened, "DACHS-24", requirement, cycle=True)
+            return make.plane_of(opened, part, requirement, cycle=True)
         if name == "ratios":
-            return make.ratios_of(opened, "DACHS-24", requirement)
+            return make.ratios_of(opened, part, requirement)
         if name == "figures":
             return make.figures_of(opened, "PIKA-3")
         return make.candidates_of(opened, requirement)
@@ -91,6 +92,69 @@ def test_lines_differ_without_colour(catalog):
         looks = [(repr(line._dash_pattern), line.get_linewidth(), line.get_marker())
                  for line in lines]  # fmt: skip
         assert len(set(looks)) == len(looks) > 1
+
+
+def texts_of(axes) -> str:
+    return " ".join(text.get_text() for text in axes.texts)
+
+
+def legend_of(made) -> list[str]:
+    legends = [*made.legends, *(axes.get_legend() for axes in made.axes)]
+    return [text.get_text() for legend in legends if legend for text in legend.get_texts()]
+
+
+def test_lines_over_the_ratio_end_where_the_winding_runs_away_and_say_so(catalog):
+    asked = ("--torque", "3 N·m", "--speed", "30 rpm", "--supply", "24 V", "--ratio", "2..120")
+    made = figure_of(catalog, "ratios", asked)
+    axes = made.axes[0]
+    assert "thermal runaway" in texts_of(axes)
+    assert any("thermal runaway" in label for label in legend_of(made))
+    (line,) = [line for line in axes.get_lines() if line.get_label() == "voltage"]
+    x, y = (np.asarray(v, float) for v in line.get_data())
+    assert np.isnan(y[x < 50]).all()
+    assert np.isfinite(y[x > 60]).all()
+    hopeless = (*asked[:1], "9000 N·m", *asked[2:])
+    assert "thermal runaway" in texts_of(figure_of(catalog, "ratios", hopeless).axes[0])
+    assert "thermal runaway" not in texts_of(figure_of(catalog, "ratios").axes[0])
+
+
+def test_the_plane_has_the_nominal_point_and_ends_at_the_permissible_speed(catalog):
+    asked = ("--torque", "0.2 N·m", "--speed", "3000 rpm", "--supply", "60 V")
+    made = figure_of(catalog, "plane", asked, "CIGALE-A")
+    axes = made.axes[0]
+    assert "nominal point, as published" in legend_of(made)
+    assert "permissible speed" in texts_of(axes)
+    area = axes.collections[0].get_paths()[0].vertices
+    assert area[:, 0].max() == pytest.approx(8000)
+    assert axes.get_xlim()[1] > 8000
+
+
+def test_candidates_keep_clear_of_marks_lines_and_each_other(catalog):
+    from matplotlib.text import Text
+
+    asked = (*ASKED, "--where", "mass < 1 kg", "--reserve", "10 %")
+    made = figure_of(catalog, "candidates", asked)
+    axes = made.axes[0]
+    made.draw_without_rendering()
+    names = [text for text in axes.texts if not text.get_text().startswith("allowed")]
+    boxes = [Text.get_window_extent(text) for text in names]  # without the leading line
+    assert len(boxes) >= 3
+    marks = np.concatenate(
+        [
+            axes.transData.transform(c.get_offsets())
+            for c in axes.collections
+            if len(c.get_offsets())
+        ]
+    )
+    level = axes.transData.transform((1.0, 0.9))[1]
+    for number, box in enumerate(boxes):
+        assert not any(box.overlaps(other) for other in boxes[number + 1 :])
+        assert not any(box.contains(*mark) for mark in marks)
+        assert not box.y0 < level < box.y1
+    said = " ".join(legend_of(made))
+    assert "refused by --where: " in said
+    frame = axes.get_window_extent()
+    assert made.legends[0].get_window_extent().y1 <= frame.y0
 
 
 def test_an_empty_catalog_is_one_sentence(tmp_path, capsys):

@@ -330,7 +330,9 @@ def test_a_bent_ramp_is_one_row_of_many_pieces() -> None:
         said = io.StringIO()
         print_requirement(requirement_document(asked), Console(file=said, width=80))
         table = said.getvalue().split("power W")[1].split("Peak torque")[0]
-        rows = [line for line in table.splitlines() if re.match(r" *[\d.]+ +[\d.]+ +-?[\d.]+ ", line)]
+        rows = [
+            line for line in table.splitlines() if re.match(r" *[\d.]+ +[\d.]+ +-?[\d.]+ ", line)
+        ]
         assert len(rows) == 8
         assert ("judged in up to 17 straight pieces" in said.getvalue()) == (pieces == 17)
 

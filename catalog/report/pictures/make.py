@@ -15,7 +15,7 @@ from ....schema.operation.ratios import ratio_grid
 from ...search.choice import Judge, behind
 from ...search.fleet import load_fleet
 from ...search.run import Found, Shown, search, show
-from ..curves import plane
+from ..curves import Plane, plane
 from ..implied import implied_figures
 from ..plain import number, percent, words
 from .candidates import draw_candidates
@@ -41,13 +41,22 @@ def plane_of(catalog: Catalog, part: str, requirement: Requirement, *, cycle: bo
         at = np.flatnonzero(fleet.ids == known.id)
         found = plane(fleet.machines.take(at), requirement.demand)
         claim = f"{known.part_number}{_supply(requirement)}: what its shaft can give"
-        return draw_plane(found, claim, _missing(found.missing))
+        return draw_plane(found, claim, _missing(found.missing), _rated(catalog, part, found))
     chosen = _chosen(catalog, part, requirement)
     found = plane(chosen.machine, chosen.requirement.demand, chosen.ratio)
     claim = f"{known.part_number}{_supply(requirement)}: {_verdict(chosen.shown, 'the cycle')}"
     ratio = f"gear ratio {number(chosen.ratio, 3)}"
     below = "; ".join(filter(None, (ratio, _missing(found.missing))))
-    return draw_plane(found, claim, below)
+    return draw_plane(found, claim, below, _rated(catalog, part, found))
+
+
+def _rated(catalog: Catalog, part: str, found: Plane) -> tuple[float, float] | None:
+    """Nominal speed and torque as published, if both are and the plane reaches that far."""
+    figures = catalog.motor(part)["figures"]
+    speed, torque = (
+        figures.get(key, {}).get("value") for key in ("nominal_speed", "nominal_torque")
+    )
+    return (speed, torque) if speed and torque and speed <= found.speed[-1] else None
 
 
 def candidates_of(catalog: Catalog, requirement: Requirement) -> Figure:
@@ -59,7 +68,6 @@ def candidates_of(catalog: Catalog, requirement: Requirement) -> Figure:
         )
     verdict = found.judged.verdict.copy()
     verdict[found.passed.unknown & (verdict == Verdict.FEASIBLE)] = Verdict.UNKNOWN
-    verdict[found.passed.rejected] = Verdict.REJECTED
     mass = found.fleet.columns["mass"]
     size, label = mass * 1e3, "Mass in g"
     lacking = np.isnan(mass)
@@ -71,9 +79,17 @@ def candidates_of(catalog: Catalog, requirement: Requirement) -> Figure:
     claim = f"{found.feasible} of {found.considered} motors do it"
     if found.candidates:
         claim += f"; by {requirement.order_by} {found.candidates[0].name.part_number} comes first"
-    without = f"{int(lacking.sum())} without that figure are not shown" if lacking.any() else ""
+    blank = np.isnan(found.judged.largest) & ~lacking
+    without = "; ".join(
+        f"{int(these.sum())} {why}"
+        for these, why in (
+            (lacking, "without that figure are not shown"),
+            (blank, "of which no limit is known are not shown"),
+        )
+        if these.any()
+    )
     return draw_candidates(
-        size, label, found.judged.largest, verdict,
+        size, label, found.judged.largest, verdict, found.passed.rejected,
         [(c.motor, c.name.part_number) for c in found.candidates],
         requirement.allowed, claim, without,
     )  # fmt: skip
@@ -101,9 +117,12 @@ def ratios_of(catalog: Catalog, part: str, requirement: Requirement) -> Figure:
         name: np.where(judged.use.runaway, np.nan, judged.utilisation(name))
         for name in judged.names()
     }
+    below = "at each ratio the worse of cold and hot"
+    if judged.use.runaway.any():
+        below = "the worse of cold and hot; hatched: thermal runaway, no working point"
     return draw_ratios(
         grid, utilisation, intervals, chosen.ratio if intervals else None, requirement.allowed,
-        claim, "at each ratio the worse of cold and hot",
+        claim, below, judged.use.runaway,
     )  # fmt: skip
 
 

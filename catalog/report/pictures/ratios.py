@@ -32,14 +32,24 @@ def draw_ratios(
     allowed: float,
     claim: str,
     below: str,
+    runaway: NDArray[np.bool_],
 ) -> Figure:
     """Each limit's utilisation (ratio's shape) over the ratio; `intervals` hold the ratios that
-    do, `chosen` the one with the least copper loss among them."""
+    do, `chosen` the one with the least copper loss among them; where `runaway` tells of thermal
+    runaway there is nothing to draw, and that is said."""
     made, axes = s.figure()
     for nth, (low, high) in enumerate(intervals):
         axes.axvspan(
             low, high, facecolor="#ececec", edgecolor="#b5b5b5", hatch="///", linewidth=0,
             zorder=0, label="ratios that do" if nth == 0 else None,
+        )  # fmt: skip
+    for run, (low, high) in enumerate(_runs(ratio, runaway)):
+        axes.axvspan(low, high, facecolor="none", edgecolor="#d9b8ac", hatch="xxx", linewidth=0,
+                     zorder=0, label="" if run else "thermal runaway")  # fmt: skip
+        axes.text(
+            np.sqrt(low * high), 0.97, "thermal runaway", fontsize=8, color=s.ALARM, rotation=90,
+            ha="center", va="top", transform=axes.get_xaxis_transform(), clip_on=True,
+            bbox={"facecolor": "white", "edgecolor": "none", "alpha": 0.8, "pad": 1},
         )  # fmt: skip
     shown = {name: u for name, u in utilisation.items() if np.isfinite(u).any()}
     for nth, (name, u) in enumerate(shown.items()):
@@ -75,6 +85,12 @@ def draw_ratios(
     s.title(made, axes, claim, below)
     made.legend(loc="outside right upper")
     return made
+
+
+def _runs(ratio: Array, where: NDArray[np.bool_]) -> list[tuple[float, float]]:
+    """The ratios from and to which something holds without a break."""
+    edges = np.flatnonzero(np.diff(where, prepend=False, append=False))
+    return [(float(ratio[a]), float(ratio[b - 1])) for a, b in edges.reshape(-1, 2)]
 
 
 def _ticks(low: float, high: float) -> list[float]:
