@@ -6,12 +6,23 @@ import math
 
 import numpy as np
 import pytest
+from scipy.integrate import quad
 
 from motorfolio.schema.batch import Batch, Heading, empty_figures
 from motorfolio.schema.convention import Commutation, Convention
 from motorfolio.schema.reconcile import checks
-from motorfolio.schema.reconcile.causes import CAUSES, causes_of, shape, static_scores
+from motorfolio.schema.reconcile.causes import (
+    CAUSES,
+    UNEXPLAINED_PRIOR,
+    UNEXPLAINED_SCALE,
+    causes_of,
+    shape,
+    static_scores,
+    unexplained,
+)
 from motorfolio.schema.reconcile.explain import SENTENCES, Narrator
+from motorfolio.schema.reconcile.model import INDEX
+from motorfolio.schema.reconcile.observed import observe, usable
 from motorfolio.schema.reconcile.run import reconcile
 
 from .simulated_sheets import RPM, put, restate, single
@@ -373,3 +384,37 @@ def test_findings_of_direct_checks_reach_the_result() -> None:
     (finding,) = reconcile(batch).findings
     assert finding.part_number == "X1"
     assert reconcile(batch).finding_motor == [1]
+
+
+def test_the_widest_relation_may_be_any() -> None:
+    """Is = U/Ra off by a fifth where nothing publishes Km; relations without all of their figures
+    are passed over."""
+    batch = sheet(1, nominal_voltage=24.0, terminal_resistance=1.2, stall_current=24.0)
+    ((_, note),) = checks.scatter(Narrator(batch), lambda m: False)
+    assert note.figures == ("stall_current", "nominal_voltage", "terminal_resistance")
+    assert note.ratio == pytest.approx(1.2, rel=2e-3)
+    both = sheet(1, nominal_voltage=24.0, terminal_resistance=1.2, stall_current=23.0,
+                 torque_constant=0.03, speed_constant=1.4 / 0.03)  # fmt: skip
+    ((_, note),) = checks.scatter(Narrator(both), lambda m: False)
+    assert note.figures == ("torque_constant", "speed_constant")
+
+
+def test_an_unexplained_ratio_has_a_density() -> None:
+    """Cauchy's over the logarithm: with its prior it integrates to the prior weight, it is even,
+    and falls to half at its scale (definition of the distribution)."""
+    whole, _ = quad(lambda t: float(np.exp(unexplained(np.array(t)))), -math.inf, math.inf)
+    assert whole == pytest.approx(UNEXPLAINED_PRIOR, rel=1e-6)
+    at = np.exp(unexplained(np.array([0.0, UNEXPLAINED_SCALE, -UNEXPLAINED_SCALE])))
+    assert at[1] == at[2] == pytest.approx(at[0] / 2)
+
+
+def test_a_bound_measures_nothing() -> None:
+    """ "≤ 0.1 A" is no no-load current; nothing negative and no gap is a measurement."""
+    batch = sheet(6, no_load_current=[0.1, 0.1, 0.1, 0.1, 0.1, math.nan])
+    column = batch.figures["no_load_current"]
+    column.qualifiers = {0: "at most", 1: "at least", 2: "about"}
+    column.value[4] = -0.1
+    assert usable("no_load_current", column).tolist() == [False, False, True, True, False, False]
+    assert observe(batch).present[:, INDEX["no_load_current"]].tolist() == [
+        False, False, True, True, False, False,
+    ]  # fmt: skip
