@@ -70,3 +70,55 @@ def test_of_two_units_the_first_is_that_of_the_first_figure(heading, cell, torqu
     s = sheet(f"Type | Torque constant [Nm/A] | {heading}\nA | 0.3 | {cell}")
     assert s.motors()["A"]["peak_torque"] == pytest.approx(torque, rel=1e-12)
     assert not s.reading.remarks
+
+
+@pytest.mark.parametrize(("note", "current"), [
+    ("Currents in A peak, not in A rms.", "peak"),
+    ("These are no rms values: peak of sine", "peak"),
+    ("peak of sine instead of rms", "peak"),
+    ("Peak value. RMS value = 0.707 x peak value.", "peak"),
+    ("Amplitude; for rms, multiply by 0.707", "peak"),
+    ("RMS (x1.414 for peak values)", "rms"),
+    ("Currents are not peak values, they are rms", "rms"),
+    ("If not stated otherwise currents are rms", "rms"),
+    ("No rms values are published", None),
+    ("rms × √2 = peak value", None),
+    ("Scheitelwert, kein Effektivwert", "peak"),
+    ("Effektivwert statt Scheitelwert", "rms"),
+    ("Scheitelwert; für den Effektivwert durch 1,414 teilen", "peak"),
+    ("valeur de crête au lieu de la valeur efficace", "peak"),
+    ("valeur efficace, non la valeur de crête", "rms"),
+    ("valore di picco, non valore efficace", "peak"),
+    ("valor de pico (no eficaz)", "peak"),
+    ("ピーク値です。実効値ではありません。", "peak"),
+    ("峰值，除以1.414得有效值", "peak"),
+    ("有效值，而不是峰值", "rms"),
+])  # fmt: skip
+def test_what_a_note_denies_or_converts_is_not_stated(note, current):
+    s = sheet(f"{HEADINGS}\nA | 0.92 | 3.1 | 35.9 | 1.9\n\n1) {note}")
+    convention = s.convention("continuous_stall_current")
+    assert (convention.current if convention.basis == "stated" else None) == current
+
+
+@pytest.mark.parametrize(("note", "between"), [
+    ("Phase to neutral, not phase to phase", "phase"),
+    ("terminal to star point", "phase"),
+    ("Line to line, not line to neutral", "lines"),
+    ("Außenleiter gegen Sternpunkt", "phase"),
+    ("zwischen zwei Klemmen, nicht pro Strang", "lines"),
+    ("entre phase et neutre à 20 °C", "phase"),
+    ("entre phases (et non phase-neutre)", "lines"),
+    ("tra due fasi, non fase-neutro", "lines"),
+    ("fase-neutro a 20 °C", "phase"),
+    ("por fase (no entre fases)", "phase"),
+    ("entre fase y neutro", "phase"),
+    ("線間ではなく相値", "phase"),
+    ("相对中性点", "phase"),
+    ("线-线（非相值）", "lines"),
+    ("Star connected, neutral point not brought out", None),
+])  # fmt: skip
+def test_between_which_points_a_note_says_a_resistance_is_measured(note, between):
+    s = sheet(f"{HEADINGS}\nA | 0.92 | 3.1 | 35.9 | 1.9\n\n3) {note}")
+    convention = s.convention("terminal_resistance")
+    stated = convention.between if convention.basis == "stated" else None
+    assert stated == between or (between is None and convention.between == "lines")

@@ -12,6 +12,7 @@ from ....schema.vocabulary import words
 from ..headings.lexicon import canonical, find_symbol, is_cjk, squeeze, tokens
 from ..headings.phrase import conventions_of, match_phrase
 from ..matching.match import Match
+from .asides import without_asides
 
 TOLD, STATED, INFERRED, ASSUMED = (
     MODEL_BASES.index(b) for b in ("told", "stated", "inferred", "assumed")
@@ -112,6 +113,9 @@ _OF_SYMBOL = {"R": "winding", "L": "winding", "I": "current", "KT": "current", "
               "KE": "voltage"}  # fmt: skip
 
 
+_AND = re.compile(r",\s|、|\s(?:and|und|et|e|y)\s(?!(?:the |le |il |el )?neutr)")
+
+
 def clauses_of(text: str) -> list[tuple[str | None, dict[str, str]]]:
     """(subject, conventions) for each clause of a note; subject None: of all its figures.
 
@@ -119,12 +123,12 @@ def clauses_of(text: str) -> list[tuple[str | None, dict[str, str]]]:
     "brushed DC motor") state nothing here.
     """
     found: list[tuple[str | None, dict[str, str]]] = []
-    for sentence in re.split(r"[;；。]|\.\s", text):
+    for sentence in re.split(r"[;；。]|\.\s", without_asides(text)):
         if _explains_symbol(sentence):
             continue
         subjects: list[str] = []
         said = False
-        for clause in re.split(r",\s|、|\s(?:and|und|et|e|y)\s", sentence):
+        for clause in _AND.split(sentence):
             named = [s for s, w in _SUBJECTS.items() if re.search(w, clause, re.IGNORECASE)]
             if not named and (symbol := _SUBJECT_SYMBOL.match(clause.strip())):
                 named = [_OF_SYMBOL[symbol[1].upper()]]
@@ -138,13 +142,14 @@ def clauses_of(text: str) -> list[tuple[str | None, dict[str, str]]]:
     return found
 
 
-_OTHERWISE = re.compile(
-    r"(?:\b(?:(?:in order )?to (?:obtain|get|convert)|um|pour|per ottenere|para)\b[^.;]*?)?"
-    r"\b(?:divi[ds]\w*|multipl\w*|teil\w*|dividier\w*)\b(?:[^.;]|\.(?=\d))*"
-    r"|\(?\b(?:not|nicht|kein\w*|non|pas)\s+[\w/-]+(?:[ -](?:to|zu)[ -]\w+)?\)?",
+_TO_NEUTRAL = re.compile(
+    r"(?:\b(?:to|gegen|zum?|gegenüber|et|e|y|à|al?|vers)\s|[-–/])\s*(?:the |dem |le |il |el )?"
+    r"(?:point |punto )?(?:neutr|sternpunkt|star[ -]?point|cent(?:re|er)[ -]tap|centro stella)"
+    r"|(?:neutr\w*|sternpunkt|star[ -]?point|cent(?:re|er)[ -]tap)\s(?:to|zu|et|e|y|und|and)\s"
+    r"|[相线線].{0,3}中性点|中性点.{0,3}[相线線]",
     re.IGNORECASE,
 )
-"""What a note says of other values than the table's: "not rms", "divide by 1.414 for rms"."""
+"""Phase to neutral, however it is put."""
 
 _LEGEND = re.compile(r"[\"']?\s*(?P<symbol>\S{1,10})\s*[:=：]\s*(?P<name>.+)")
 
@@ -159,19 +164,20 @@ def _explains_symbol(sentence: str) -> bool:
 
 def note_conventions(text: str) -> dict[str, str]:
     """Conventions in a clause of a note: rms, peak, line to line, per phase, star, delta."""
-    text = _OTHERWISE.sub(" ", plain(text))
+    text = without_asides(plain(text))
     stated = dict(conventions_of(text, whole=False))
     low = plain(text).casefold()
     whole = conventions_of(text, whole=True)
     if not whole:
         if stated.get("current") == "dc":
             stated = {k: v for k, v in stated.items() if v != "dc"}
-        if stated.get("between") == "phase" and not re.search(
-            r"per phase|phase (?:value|resist|induct|quant)|(?:line|phase)[ -]to[ -]neutral|l-n|"
-            r"phase et neutre|fase[ -](?:e |y |a )?neutr|phase-neutre|phase gegen|pro phase|"
-            r"je phase|相电阻|相電阻|相抵抗|相电感|相電感|strang|par phase|per fase|por fase|"
+        if _TO_NEUTRAL.search(low):
+            stated["between"] = "phase"
+        elif stated.get("between") == "phase" and not re.search(
+            r"per phase|phase (?:value|resist|induct|quant)|l-n|phase gegen|pro phase|je phase|"
+            r"相电阻|相電阻|相抵抗|相电感|相電感|strang|par phase|per fase|por fase|"
             r"valeurs? (?:de|par) phase"
-            r"|每相|相あたり|相当り|相值|相値|of one phase|phase-neutr",
+            r"|每相|相あたり|相当り|相值|相値|of one phase",
             low,
         ):
             stated.pop("between")
@@ -185,6 +191,8 @@ def note_conventions(text: str) -> dict[str, str]:
     if re.search(
         r"(?<![a-z])rms(?![a-z])|[av]rms|effektiv|efficace|eficaz|effic\.|有效值|実効値", low
     ):
+        if stated.get("current") == "peak":
+            return {k: v for k, v in stated.items() if v != "peak"}  # both: it tells neither
         stated = {**stated, "current": "rms", "voltage": "rms"}
     return stated
 
