@@ -15,6 +15,7 @@ from ..documents import amount, number
 from ..requirement.read import Requirement
 from .choice import Judge, behind, true_drop
 from .near_misses import Miss
+from .rating import beyond_rating
 from .run import Found, Shown
 
 if TYPE_CHECKING:
@@ -234,6 +235,19 @@ def _remarks(
         said.append("its inductance is unknown: current ripple left out")
     if np.isnan(machine.magnet_coefficient[0]) or machine.magnet_coefficient[0] == 0:
         said.append("its magnets are unknown: taken as keeping their flux when hot")
+    torque = catalog.connection.execute(
+        "SELECT nominal_torque FROM figure_value WHERE id = ?",
+        (int(found.fleet.ids[shown.motor]),),
+    ).fetchone()[0]
+    rated = beyond_rating(
+        machine,
+        shown.judged,
+        requirement.demand.cycle,
+        requirement.demand.surroundings.thermal_resistance_housing_ambient is not None,
+        np.nan if torque is None else torque,
+    )
+    if rated is not None:
+        said.append(rated)
     nominal = column["nominal_voltage"]
     if requirement.lowest_voltage is not None and requirement.lowest_voltage > 2 * nominal:
         said.append(

@@ -88,7 +88,9 @@ def heating(m: Machines, load: Load, demand: Demand, *, periodic: bool) -> Heati
         m.maximum_winding_temperature,
     )
     # Another mounting than the sheet's plate says nothing about the sheet's continuous current.
-    continuous = np.full(len(m), np.nan) if own is not None else _continuous_current(m, load)
+    continuous = np.full(len(m), np.nan)
+    if own is None:
+        continuous = continuous_current(m, load.pieces.gram[3, 3] * load.ratio**2)
     allowed = np.where(limit > rated_ambient, limit - rated_ambient, np.nan)
     per_square = np.where(
         balance, total * m.armature_resistance, allowed / continuous**2
@@ -151,14 +153,13 @@ def heating(m: Machines, load: Load, demand: Demand, *, periodic: bool) -> Heati
     return Heating(temperature, runaway, use, cold, hot, swing, missing)
 
 
-def _continuous_current(m: Machines, load: Load) -> Array:
-    """Continuous current at the cycle's rms speed, armature amperes.
+def continuous_current(m: Machines, mean_square: Array) -> Array:
+    """Continuous current at a mean square speed ((rad/s)², per motor), armature amperes.
 
     Of nominal and continuous stall current the one published; of both, the line between them over
     speed, which above the nominal speed goes on falling but never rises.
     """
     nominal, stall = m.nominal_current, m.continuous_stall_current
-    mean_square = load.pieces.gram[3, 3] * load.ratio**2
     line = stall + (nominal - stall) * np.sqrt(mean_square) / m.nominal_speed
     line = np.clip(line, 0.0, np.maximum(nominal, stall))
     line = np.where(np.isnan(line), np.fmin(nominal, stall), line)
