@@ -55,6 +55,18 @@ class LazyGroup(click.Group):
         module = importlib.import_module(f".commands.{COMMANDS[cmd_name][0]}", __package__)
         return module.command
 
+    def resolve_command(
+        self, ctx: click.Context, args: list[str]
+    ) -> tuple[str | None, click.Command | None, list[str]]:
+        """As click does; for an unknown name the nearest are offered."""
+        if args and args[0] not in COMMANDS and not args[0].startswith("-"):
+            from ..schema.spelling import nearest
+
+            near = nearest(args[0].lower(), COMMANDS, most=2)
+            hint = f" Did you mean {' or '.join(near)}?" if near else ""
+            raise click.UsageError(f'There is no command "{args[0]}".{hint}', ctx)
+        return super().resolve_command(ctx, args)
+
     def format_commands(self, ctx: click.Context, formatter: click.HelpFormatter) -> None:
         """The list of commands in --help, without importing any."""
         with formatter.section("Commands"):

@@ -71,9 +71,12 @@ def command(
 
 
 def _print_list(opened: "Catalog", as_json: bool) -> None:
-    found = opened.corrections()
+    found = [(correction, opened.not_applied(correction)) for correction in opened.corrections()]
     if as_json:
-        print_json({"corrections": [{**asdict(c), "maker": c.maker or None} for c in found]})
+        documents = [
+            {**asdict(c), "maker": c.maker or None, "not_applied": why or None} for c, why in found
+        ]
+        print_json({"corrections": documents})
     elif found:
         from ..report import terminal
 

@@ -70,6 +70,8 @@ class FileResult:
 
     ``severities`` counts all findings; ``findings`` and ``documents`` hold all of them when
     documents were asked for, else the first MOST_FINDINGS that are more than notes, and none.
+    ``as_before`` of the ``replaced`` motors have the same figures; ``left_behind`` names motors of
+    an earlier file of this name that are not in it.
     """
 
     file: str
@@ -87,6 +89,8 @@ class FileResult:
     motors: int = 0
     stored: int = 0
     replaced: int = 0
+    as_before: int = 0
+    left_behind: list[str] = field(default_factory=list)
     unchanged: bool = False
 
     def as_json(self) -> Document:
@@ -112,6 +116,8 @@ class FileResult:
             "findings": self.findings,
             "stored": self.stored,
             "replaced": self.replaced,
+            "as_before": self.as_before,
+            "left_behind": self.left_behind,
             "unchanged": self.unchanged,
         }
 

@@ -8,7 +8,7 @@ from pathlib import Path
 
 from ...schema.batch import Batch
 from ...schema.motor import Reconciled
-from ..store import Catalog, CatalogError, columns, same
+from ..store import Catalog, CatalogError, columns, revisions, same
 from ..store.catalog import now
 from ..store.corrections import Correction
 from ..store.database import in_words
@@ -19,6 +19,10 @@ from .result import FileResult, Options
 BUFFERED_MOTORS = 40_000
 """Up to so many motors are read before the catalog is opened, so that a call which can't be used
 touches no file; with more, memory counts for more."""
+
+
+STANDARD_INPUT = "standard input"
+"""What a file without a name is called."""
 
 
 @dataclass(slots=True)
@@ -202,6 +206,10 @@ class Store:
     def _finish_file(self, file_id: int, result: FileResult) -> None:
         assert self.writer is not None
         connection = self.writer.connection
+        if result.replaced:
+            result.as_before = revisions.stored_as_before(connection, file_id)
+        if result.file != STANDARD_INPUT:  # a name that unlike files share
+            result.left_behind = [m.name for m in revisions.left_behind(connection, file_id)]
         remarks = json.dumps(result.remarks, ensure_ascii=False) if result.remarks else None
         connection.execute(
             "UPDATE files SET layout = ?, remarks = ? WHERE id = ?",

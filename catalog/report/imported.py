@@ -23,6 +23,7 @@ if TYPE_CHECKING:
 
 MOST_UNREAD = 15
 MOST_FINDINGS = 5
+MOST_LEFT = 8
 SHARED = "; printed once for the motors of a frame"
 BASES = {"assumed": "?", "inferred": "~", "stated": ""}
 LEGEND = {
@@ -71,7 +72,25 @@ def _print_file(out: Console, file: "FileResult", *, dry_run: bool) -> None:
     if file.unchanged:
         out.print("Already in the catalog, read the same way: nothing changed.")
     elif file.replaced:
-        out.print(f"{p.many(file.replaced, 'motor')} replaced; motorfolio diff shows what changed.")
+        changed = file.replaced - file.as_before
+        kept = f", {file.as_before} as before" if file.as_before else ""
+        hint = "; motorfolio diff shows what changed" if changed else ""
+        said = f"{p.many(changed, 'motor')} changed{kept}" if changed else "All as before"
+        out.print(f"{said}{hint}.")
+    if file.left_behind:
+        out.print(_hanging(f"Remark: {left(file.file, file.left_behind)}"))
+    if "" in file.makers and not file.unchanged:
+        of = "" if file.makers == {""} else " of some motors"
+        out.print(_hanging(f"Remark: the maker{of} is not known; --maker NAME tells it."))
+
+
+def left(file: str, names: Sequence[str]) -> str:
+    """Motors that a newer file of a name does not have, in a sentence."""
+    more = f" and {len(names) - MOST_LEFT} more" if len(names) > MOST_LEFT else ""
+    return p.plain(
+        f"an earlier {file} also had {', '.join(names[:MOST_LEFT])}{more}; still in the catalog, "
+        "motorfolio remove takes them out."
+    )
 
 
 def _hanging(text: str) -> Padding:

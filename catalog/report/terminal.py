@@ -124,15 +124,17 @@ def deed(i: "Import") -> tuple[str, list[str]]:
     return f"{' and '.join(said) or 'nothing'} taken out", []
 
 
-def print_corrections(corrections: Iterable["Correction"]) -> None:
-    """The corrections that stand, each with what it stands for, why and since when."""
+def print_corrections(corrections: Iterable[tuple["Correction", str]]) -> None:
+    """The corrections, each with what it stands for, why and since when, or why it does not."""
     out = console()
-    for c in corrections:
+    for c, not_applied in corrections:
         who = f"{c.maker}/{c.part_number}" if c.maker else c.part_number
         head = f"{who}: {p.words(c.quantity)} (since {p.when(c.at)})"
         out.print(Text(p.plain(head), style="bold"))
         said = f"{c.published_text or 'not given'} → {c.text}: {c.reason}"
         out.print(_hanging(p.plain(said)))
+        if not_applied:
+            out.print(_hanging(p.plain(f"Not applied: {not_applied}.")))
 
 
 def print_changes(changes: Iterable[Document]) -> None:

@@ -198,6 +198,13 @@ class Catalog:
         with self.at_once():
             return corrections.stored(self.connection, revoked=revoked)
 
+    def not_applied(self, correction: "Correction") -> str:
+        """Why a correction that stands is not in use, in words; "" where it is."""
+        from . import corrections
+
+        with self.at_once():
+            return corrections.not_applied(self.connection, correction)
+
     def kept_readings(self) -> list[tuple[str, str, str]]:
         """Readings kept for a maker's headings: (maker, heading, reading as --set takes it)."""
         with self.at_once():
@@ -246,6 +253,18 @@ class Catalog:
                 ids = [i for i in (old, new) if i is not None]
                 found = dict(zip(ids, load.motors(self.connection, ids), strict=True))
                 yield found.get(old or 0), found.get(new or 0)
+
+    def left_behind(self, import_id: int) -> list[tuple[str, list[Known]]]:
+        """Files of an import with the current motors of earlier files of their names that they do
+        not have."""
+        from . import revisions
+
+        with self.at_once():
+            files = self.connection.execute(
+                'SELECT id, file FROM files WHERE "import" = ? ORDER BY id', (import_id,)
+            ).fetchall()
+            found = [(file, revisions.left_behind(self.connection, n)) for n, file in files]
+            return [(file, motors) for file, motors in found if motors]
 
     def gears(self) -> "list[Gear]":
         """The gears by maker and part number."""
@@ -346,7 +365,11 @@ class Catalog:
                 "DELETE FROM kept_readings WHERE maker = ? AND heading = ?", (maker, heading)
             ).rowcount
             if not gone:
-                raise CatalogError(
-                    f'No reading of "{heading}" is kept for {maker or "no maker"}; '
-                    "see motorfolio readings."
-                )
+                makers = [row[0] for row in connection.execute(
+                    "SELECT maker FROM kept_readings WHERE heading = ? ORDER BY maker", (heading,)
+                )]  # fmt: skip
+                whose = f" for {maker}" if maker else " where the maker is not known"
+                has = "; see motorfolio readings" if not makers else (
+                    f"; one is for {' and '.join(m or 'an unknown maker' for m in makers)}"
+                )  # fmt: skip
+                raise CatalogError(f'No reading of "{heading}" is kept{whose}{has}.')

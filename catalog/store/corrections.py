@@ -42,6 +42,23 @@ def stored(connection: sqlite3.Connection, *, revoked: bool = False) -> list[Cor
     ]
 
 
+def not_applied(connection: sqlite3.Connection, correction: Correction) -> str:
+    """Why a correction that stands is not in use, in words; "" where it is."""
+    row = connection.execute(
+        f'SELECT m.id, t."{correction.quantity}", a.correction FROM motor m '
+        "JOIN figure_text t ON t.id = m.id "
+        "LEFT JOIN applied_corrections a ON a.motor = m.id AND a.quantity = ? "
+        "WHERE m.maker = ? AND m.part_number = ? AND m.replaced_by IS NULL",
+        (correction.quantity, correction.maker, correction.part_number),
+    ).fetchone()
+    if row is None:
+        return "the catalog has no such motor now"
+    _, text, applied = row
+    if applied == correction.id:
+        return ""
+    return f"the sheet now prints {text}" if text else "the sheet no longer gives it"
+
+
 def corrected(
     batch: Batch, corrections: Sequence[Correction]
 ) -> tuple[Batch, list[AppliedCorrection], list[str]]:

@@ -5,6 +5,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
+from ...schema.canonical import CANONICAL
 from . import gears
 from .known import Known
 from .same import forget, merged_by
@@ -88,6 +89,46 @@ def changed_motors(
         "SELECT id FROM motor WHERE replaced_by = ? ORDER BY id", (import_id,)
     ).fetchall()
     return [*rows, *((old, None) for (old,) in gone if old not in seen)]
+
+
+def stored_as_before(connection: sqlite3.Connection, file_id: int) -> int:
+    """How many motors of a file replaced one with the same printed texts, values and constants."""
+    alike = [
+        f'{table}_a."{name}" IS {table}_b."{name}"'
+        for table in ("figure_text", "figure_value")
+        for _, name, *_ in connection.execute(f"PRAGMA table_info({table})")
+        if name != "id"
+    ]
+    # a convention told otherwise moves the constants; the last bits depend on the table's size
+    alike += [
+        f'ifnull(abs(constants_a."{key}" - constants_b."{key}") <= 1e-9 * constants_a."{key}", '
+        f'constants_a."{key}" IS constants_b."{key}")'
+        for key in CANONICAL
+    ]
+    joined = " ".join(
+        f"JOIN {table} {table}_a ON {table}_a.id = m.id "
+        f"JOIN {table} {table}_b ON {table}_b.id = old.id"
+        for table in ("figure_text", "figure_value", "constants")
+    )
+    return connection.execute(
+        "WITH ended AS (SELECT * FROM motor WHERE replaced_by = "
+        '(SELECT "import" FROM files WHERE id = :file)) '
+        f"SELECT count(*) FROM sources s JOIN motor m ON {OF_SOURCE} "
+        "JOIN ended old ON old.part_number = m.part_number AND old.maker = m.maker "
+        f"AND old.id < m.id AND old.series IS m.series {joined} "
+        f"WHERE s.file = :file AND m.replaced_by IS NULL AND {' AND '.join(alike)}",
+        {"file": file_id},
+    ).fetchone()[0]
+
+
+def left_behind(connection: sqlite3.Connection, file_id: int) -> list[Known]:
+    """Current motors of earlier files of this file's name, which it does not have any more."""
+    return [Known(*row) for row in connection.execute(
+        "SELECT m.id, m.maker, m.part_number FROM files own JOIN files f "
+        f"ON f.file = own.file AND f.id < own.id JOIN sources s ON s.file = f.id "
+        f"JOIN motor m ON {OF_SOURCE} WHERE own.id = ? AND m.replaced_by IS NULL ORDER BY m.id",
+        (file_id,),
+    )]  # fmt: skip
 
 
 def undo(connection: sqlite3.Connection, import_id: int) -> Undone:

@@ -92,6 +92,13 @@ def _motors(document: Any, name: str, kind: str) -> list[_Object]:
     """The list of objects in a document, with what stands beside the list given to each."""
     shared = _Object()
     if isinstance(document, _Object):
+        if {key for key, _ in document} & {"load", "supply", "drive"} and any(
+            key in ("point", "move", "cycle") for key, _ in document
+        ):
+            raise TableError(
+                f"{name}: a machine's requirement, not motors; it goes to: "
+                f"motorfolio search --requirement {name}"
+            )
         lists = [(key, value) for key, value in document if _is_objects(value)]
         if len(lists) == 1:
             shared = _Object((k, v) for k, v in document if k != lists[0][0])
