@@ -38,8 +38,8 @@ def print_comparison(motors: Sequence[Document], out: Console) -> None:
         out.print(_block([first, *others[start : start + room]], motors))
     out.print(
         Text(
-            f"{BETTER} better than all others that give it, beyond their intervals; per cent: against "
-            f"{p.plain(first['part_number'])}; = no more apart than the intervals; ≁ another "
+            f"{BETTER} better than all others that give it, beyond their intervals; per cent: "
+            f"against {p.plain(first['part_number'])}; = no more apart than the intervals; ≁ another "
             f"convention; {SIGNS['error']} doubted by a finding."
         )
     )
