@@ -39,8 +39,8 @@ def print_comparison(motors: Sequence[Document], out: Console) -> None:
     out.print(
         Text(
             f"{BETTER} better than all others that give it, beyond their intervals; per cent: "
-            f"against {p.plain(first['part_number'])}; = no more apart than the intervals; ≁ another "
-            f"convention; {SIGNS['error']} doubted by a finding."
+            f"against {p.plain(first['part_number'])}; = no more apart than the intervals; "
+            f"≁ another convention; {SIGNS['error']} doubted by a finding."
         )
     )
     out.print(Text(SAFETY, style="dim"))
