@@ -49,6 +49,8 @@ def test_a_group_of_headings_under_another_part_gives_no_figure():
     ("Lastdrehmoment", "Nm"), ("Rotorgewicht", "kg"), ("Statorgewicht", "kg"),
     ("Vorwiderstand", "Ohm"), ("Bremsspannung", "V"), ("Getriebedrehzahl", "1/min"),
     ("Fremdträgheitsmoment", "kgcm²"), ("Drosselinduktivität", "mH"), ("Heizleistung", "W"),
+    ("Lagerträgheitsmoment", "kgcm²"), ("Lüfterinduktivität", "mH"), ("Netzdrehmoment", "Nm"),
+    ("Nebenspannung", "V"), ("Raddrehmoment", "Nm"), ("Geberspannungskonstante", "V/1000 1/min"),
     ("Constante del tacogenerador", "V/1000 rpm"), ("許容慣性モーメント", "kg·cm²"),
 ])  # fmt: skip
 def test_another_first_part_of_a_compound_is_another_word(heading, unit):
@@ -176,3 +178,45 @@ def test_a_temperature_rise_in_brackets_is_a_condition():
     """)
     assert s.motors()["A"]["continuous_stall_torque"] == 5.0
     assert [c.when for c in s.batch.conditions] == ["100 K"]
+
+
+@pytest.mark.parametrize("heading", ["Frame", "Package", "Part #", "物料编码", "MLFB-Nr."])
+def test_a_first_column_of_unlike_codes_names_the_motors(heading):
+    s = sheet(f"{heading} | Torque constant [Nm/A] | Weight [kg]\nEB-20 | 0.2 | 1\nEB-40 | 0.4 | 2")
+    assert set(s.motors()) == {"EB-20", "EB-40"}
+
+
+def test_stillstand_at_the_end_of_a_curve_is_stall_and_lines_above_count():
+    s = sheet("""
+        Nennspannung: 12 V
+        Gewicht: 220 g
+
+        Betriebspunkt | Drehzahl [min-1] | Strom [A] | Drehmoment [mNm]
+        Leerlauf | 5900 | 0.38 | 0
+        Max. Wirkungsgrad | 5050 | 2.28 | 37.2
+        Stillstand | 0 | 13.6 | 258
+    """)
+    (figures,) = s.motors().values()
+    assert figures["stall_current"] == 13.6
+    assert figures["nominal_voltage"] == 12
+    assert figures["mass"] == pytest.approx(0.22)
+    assert "continuous_stall_current" not in figures
+
+
+@pytest.mark.parametrize(("headings", "values", "key", "value"), [
+    ("Type | Mo [Nm] | Mmax [Nm] | IN [A] | Io [A]", "A | 1.3 | 4.6 | 1.4 | 1.55",
+     "continuous_stall_current", 1.55),
+    ("Type | Kv [rpm/V] | Kt [Nm/A] | Io [A]", "A | 316 | 0.03 | 0.12", "no_load_current", 0.12),
+    ("Type | Kv [rpm/V] | Encoder | I0 [A]", "A | 316 | 1024 | 0.12", "no_load_current", 0.12),
+    ("Type | Mo [Nm] | Ip A", "A | 1.3 | 35.6", "peak_current", 35.6),
+    ("Type | Cont. torque at stall [Nm] | Cont. current at stall [Arms] | Max. torque at stall [Nm]",
+     "A | 3.5 | 2.6 | 10.8", "peak_torque", 10.8),
+])  # fmt: skip
+def test_symbols_and_words_by_the_kind_of_sheet(headings, values, key, value):
+    assert sheet(f"{headings}\n{values}").motors()["A"][key] == value
+
+
+def test_a_starting_voltage_is_no_point_at_stall():
+    s = sheet("Type | Torque constant [Nm/A] | Starting voltage [V]\nA | 0.2 | 0.4")
+    assert not s.batch.points
+    assert "Starting voltage [V]" in s.unread

@@ -5,7 +5,7 @@ from dataclasses import dataclass, field
 from functools import lru_cache
 
 from rapidfuzz import fuzz, process
-from rapidfuzz.distance import OSA
+from rapidfuzz.distance import OSA, Postfix
 
 from ....schema.figure.signs import plain
 from .lexicon import canonical, is_cjk, lexicon, squeeze, tokens, without_fillers
@@ -371,18 +371,28 @@ def _near(form: tuple[str, ...]) -> tuple[tuple[str, ...], float]:
     return tuple(sorted(k for k, v in best.items() if v >= top - 0.05)), TYPO
 
 
+_FIRST_PART = 6
+"""Letters in which the first parts of two compounds differ that are no slip of the pen."""
+
+
 def _misspelt(word: str, name: str) -> float:
     """How like a word is to a name that it may be a slip of the pen for; 0 where it is none.
 
     A slip is one wrong, missing or doubled letter, two in a long word, two neighbours changed
     over. Another first letter, or another first part of a compound (Last-, Rastdrehmoment), is
-    another word.
+    another word; so are two slips there (Netz-, Nennmoment), and the name of another part
+    (Lager-, Läuferträgheitsmoment).
     """
     slips = OSA.distance(word, name)
     likeness = fuzz.ratio(word, name) / 100
     if len(word) >= 8 and name.startswith(word):
         return likeness if likeness >= 0.8 else 0.0  # cut short: Drehmomentkonst.
     if word[0] != name[0] or slips > (2 if len(name) >= 9 and not is_cjk(word) else 1):
+        return 0.0
+    same = Postfix.similarity(word, name)
+    if slips == 2 and same >= 5 and max(len(word), len(name)) - same <= _FIRST_PART:
+        return 0.0
+    if any(word.startswith(o) != name.startswith(o) for o in lexicon().others if len(o) >= 4):
         return 0.0
     return likeness if likeness >= (0.85 if len(name) <= 5 or is_cjk(word) else 0.8) else 0.0
 
