@@ -53,12 +53,14 @@ BESIDE_A_SEARCH = ("mass", "diameter", "motor_constant")
 """The few that stand in the table of a search, beside what it worked out."""
 
 
-def number_column(key: str, label: str, unit: str, values: Array) -> dict[str, Any] | None:
-    """A column of numbers, None where no motor has one."""
-    known = np.abs(values[np.isfinite(values)])
-    if known.size == 0:
+def number_column(
+    key: str, label: str, unit: str, values: Array, alike: Array
+) -> dict[str, Any] | None:
+    """A column of numbers, None where no motor has one. Its unit reads well for those that are
+    ``alike``: the columns of one dimension have one prefix."""
+    if not np.isfinite(values).any():
         return None
-    median = float(np.median(known))
+    median = float(np.median(np.abs(alike[np.isfinite(alike)])))
     choices = _UNITS.get(unit, ((unit, 1.0),))
     shown, scale = next((c for c in choices if median * c[1] >= 1), choices[-1])
     return {

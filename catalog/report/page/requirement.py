@@ -61,7 +61,11 @@ def demand_numbers(requirement: Requirement, shown: list[Shown]) -> dict[str, An
 
 def _pieces(demand: Demand, gearing: Gearing) -> dict[str, Any]:
     found = demand.cycle.pieces(gearing.load_inertia, gearing.efficiency)
-    return {"duration": found.duration.tolist(), "basis": found.basis.tolist()}
+    return {
+        "duration": found.duration.tolist(),
+        "basis": found.basis.tolist(),
+        "stretch": found.stretch.tolist(),
+    }
 
 
 def _gearing(requirement: Requirement, shown: Shown) -> Gearing:

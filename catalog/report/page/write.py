@@ -29,6 +29,7 @@ from .cards import Strings, pack_card, rounded
 
 if TYPE_CHECKING:
     from ...requirement.read import Requirement
+    from ...search.run import Found
     from ...store import Catalog
 
 SCRIPTS = ("written.js", "model.js", "judge.js", "charts.js", "card.js", "main.js")
@@ -89,12 +90,30 @@ def search_page(catalog: Catalog, requirement: Requirement, title: str) -> str:
     data |= {
         "kind": "search",
         "claim": f"{found.feasible} of {found.considered} motors do it, {rejected} do not, "
-        f"{found.unknown} are not known{best}.",
+        f"{found.unknown} are not known{best}.{_left_out(found, len(shown))}",
         "demand": asked.demand_numbers(requirement, shown),
         "judged": asked.judged_numbers(found, shown, len(ranked)),
         "requirement": asked.in_words(requirement_document(requirement)),
     }
     return _html(title, data)
+
+
+def _left_out(found: Found, shown: int) -> str:
+    """Why the page holds fewer motors than the search looked at."""
+    missing = found.considered - shown
+    if not missing:
+        return ""
+    refused, unsure = int(found.passed.rejected.sum()), int(found.passed.unknown.sum())
+    reasons = [
+        f"{count} {why}"
+        for count, why in (
+            (refused, "that the limits on figures refuse"),
+            (unsure, "whose figures for those limits are not known"),
+            (missing - refused - unsure, "that are farthest from doing it"),
+        )
+        if count > 0
+    ]
+    return f" The page holds {shown} of them, without {' and '.join(reasons)}."
 
 
 def _motors(
@@ -125,10 +144,14 @@ def _motors(
     extra = catalog.columns([key for key, _, _ in wanted if key not in fleet.columns])
     place = {number: i for i, number in enumerate(extra["id"].astype(np.int64).tolist())}
     rows = np.array([place[number] for number in ids], np.intp)
+    figures = {
+        key: fleet.columns[key][order] if key in fleet.columns else extra[key][rows]
+        for key, _, _ in wanted
+    }
     table = [
         columns.number_column(
-            key, label, unit,
-            fleet.columns[key][order] if key in fleet.columns else extra[key][rows],
+            key, label, unit, figures[key],
+            np.concatenate([figures[other] for other, _, same in wanted if same == unit]),
         )
         for key, label, unit in wanted
     ]  # fmt: skip

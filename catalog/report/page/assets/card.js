@@ -5,10 +5,10 @@ const card = (() => {
   const SIGNS = {error: "✗", warning: "!", note: "·"};
 
   function table(caption, heads, rows) {
-    return make("table", {}, make("caption", {className: "note"}, caption),
+    return make("div", {className: "scroll", tabIndex: 0, role: "region", ariaLabel: caption}, make("table", {}, make("caption", {className: "note"}, caption),
       make("thead", {}, make("tr", {}, ...heads.map(h => make("th", {scope: "col"}, h)))),
       make("tbody", {}, ...rows.map(cells => make("tr", {}, ...cells.map((cell, i) =>
-        make(i === 0 ? "th" : "td", i === 0 ? {scope: "row"} : {}, cell))))));
+        make(i === 0 ? "th" : "td", i === 0 ? {scope: "row"} : {}, cell)))))));
   }
 
   function interval(low, high, unit, value) {
@@ -93,7 +93,9 @@ const card = (() => {
     parts.push(make("h3", {}, "As published"), figures(c.figures, doubts, c.source));
     for (const [when, list] of c.conditions) parts.push(figures(list, new Map(), when));
     body.replaceChildren(...parts);
-    charts.plane(planePlace, m, data.demand, setting, found);
+    const published = name => (c.figures.find(f => text(f[0]) === name) || [])[3];
+    const rated = [published("nominal speed"), published("nominal torque")];
+    charts.plane(planePlace, m, data.demand, setting, found, rated.every(v => v > 0) ? rated : null);
     if (ratioPlace.isConnected) charts.ratios(ratioPlace, m, data.demand, setting, data.demand.ratio_range);
   }
 

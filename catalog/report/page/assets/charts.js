@@ -84,8 +84,9 @@ const charts = (() => {
 
   const gap = v => Number.isFinite(v) ? v : null;
 
-  // Torque over speed with what limits it, and the cycle if there is one.
-  function plane(place, m, d, s, found) {
+  // Torque over speed with what limits it, the nominal point as published, and the cycle if there
+  // is one.
+  function plane(place, m, d, s, found, rated) {
     const U = judging.available(d, s);
     const work = m.pieces !== undefined && m.pieces !== null ? judging.atMotor(m, d) : null;
     const hot = found && Number.isFinite(found.temperature) ? found.temperature : m.maximum_winding_temperature;
@@ -101,7 +102,9 @@ const charts = (() => {
     const factor = Math.max(...[...cycle.flat().map(c => c[1]), judging.lastingTorque(m, d, s, 0) || 0]) < 1 ? 1e3 : 1;
     const unit = factor === 1 ? "N·m" : "mN·m";
     const curve = f => rows.map(w => gap(f(w) * factor));
-    const series = [{label: "continuous", look: LOOKS[0], y: curve(w => judging.lastingTorque(m, d, s, w))}];
+    const fastest = m.maximum_speed, ends = fastest < rows[rows.length - 1];
+    if (ends && !rows.includes(fastest)) { rows.push(fastest); rows.sort((a, b) => a - b); }
+    const series = [{label: "continuous", look: LOOKS[0], y: curve(w => ends && w > fastest ? NaN : judging.lastingTorque(m, d, s, w))}];
     const peak = curve(w => judging.peakTorque(m, d, s, w, T));
     if (peak.some(v => v !== null)) series.push({label: "peak", look: LOOKS[1], y: peak});
     if (U !== null) {
@@ -110,28 +113,62 @@ const charts = (() => {
     }
     const shown = series.filter(one => one.y.some(v => v !== null));
     if (!shown.length) { place.replaceChildren(make("p", {className: "note"}, "Its sheet tells no limit to draw.")); return; }
-    const asked = cycle.flat().map(c => c[1] * factor), lasting = Math.max(0, ...shown[0].y.filter(v => v !== null));
+    const point = rated && rated[0] <= 1.05 * top ? rated : null;
+    const asked = [...cycle.flat().map(c => c[1] * factor), ...(point ? [point[1] * factor] : [])], lasting = Math.max(0, ...shown[0].y.filter(v => v !== null));
     const most = Math.max(peak.some(v => v !== null) ? Math.max(...peak.filter(v => v !== null)) : 3 * lasting, ...asked);
     const least = Math.min(0, ...asked);
     lines(place, {
-      x: rows.map(w => w * RPM), series: shown, hooks: {draw: [u => drawCycle(u, cycle, factor)]}, extra: cycle.length ? ["●─● the cycle"] : [], xLabel: "speed, rpm", yLabel: `torque, ${unit}`,
+      x: rows.map(w => w * RPM), series: shown, 
+      hooks: {draw: [u => {
+        if (ends) drawEdge(u, fastest * RPM);
+        drawCycle(u, cycle, work ? work.stretch : [], factor);
+        if (point) drawPoint(u, point[0] * RPM, point[1] * factor);
+      }]},
+      extra: [...(cycle.length ? ["●─● the cycle"] : []), ...(ends ? [`│ permissible speed, ${written.number(fastest * RPM)} rpm`] : []), ...(point ? ["□ nominal point, as published"] : [])],
+      xLabel: "speed, rpm", yLabel: `torque, ${unit}`,
       xRange: [0, 1.05 * top * RPM], yRange: [least * 1.2, (most || 1) * 1.2],
       show: {x: v => written.number(v), y: v => `${written.number(v, 3)} ${unit}`},
     });
     if (!judging.voltageKnown(m)) place.append(make("p", {className: "note"}, "Inductance or pole pairs are unknown: the voltage limits are upper bounds."));
   }
 
-  function drawCycle(u, cycle, factor) {
+  // The permissible speed: an upright line.
+  function drawEdge(u, rpm) {
+    const pen = u.ctx, x = u.valToPos(rpm, "x", true);
+    pen.save();
+    pen.setLineDash([]);
+    pen.strokeStyle = colour("--ink");
+    pen.lineWidth = devicePixelRatio;
+    pen.beginPath(); pen.moveTo(x, u.bbox.top); pen.lineTo(x, u.bbox.top + u.bbox.height); pen.stroke();
+    pen.restore();
+  }
+
+  function drawPoint(u, rpm, torque) {
+    const pen = u.ctx, half = 4 * devicePixelRatio;
+    const x = u.valToPos(rpm, "x", true), y = u.valToPos(torque, "y", true);
+    pen.save();
+    pen.setLineDash([]);
+    pen.fillStyle = colour("--sheet");
+    pen.strokeStyle = colour("--strong");
+    pen.lineWidth = 1.5 * devicePixelRatio;
+    pen.fillRect(x - half, y - half, 2 * half, 2 * half);
+    pen.strokeRect(x - half, y - half, 2 * half, 2 * half);
+    pen.restore();
+  }
+
+  // Lines between the ends of all pieces, dots at those of the stretches.
+  function drawCycle(u, cycle, stretch, factor) {
     const pen = u.ctx;
     pen.save();
     pen.setLineDash([]);
     pen.strokeStyle = pen.fillStyle = colour("--line-3");
     pen.lineWidth = 1.5 * devicePixelRatio;
-    for (const ends of cycle) {
+    cycle.forEach((ends, p) => {
       const [a, b] = ends.map(([w, t]) => [u.valToPos(w * RPM, "x", true), u.valToPos(t * factor, "y", true)]);
       pen.beginPath(); pen.moveTo(...a); pen.lineTo(...b); pen.stroke();
-      for (const end of [a, b]) { pen.beginPath(); pen.arc(...end, 3 * devicePixelRatio, 0, 7); pen.fill(); }
-    }
+      const outer = [stretch[p - 1] === stretch[p] ? null : a, stretch[p + 1] === stretch[p] ? null : b];
+      for (const end of outer) if (end) { pen.beginPath(); pen.arc(...end, 3 * devicePixelRatio, 0, 7); pen.fill(); }
+    });
     pen.restore();
   }
 
@@ -142,8 +179,10 @@ const charts = (() => {
       x.push(span[0] * (span[1] / span[0]) ** (i / 120));
       found.push(judging.judge({...m, ratio: x[i]}, d, s));
     }
-    const names = Object.keys(found[0].use).filter(name => found.some(f => Number.isFinite(f.use[name])));
-    const series = names.map(name => ({label: written.words(name), y: found.map(f => gap(f.use[name] * 100))}));
+    const names = Object.keys(found[0].use).filter(name => found.some(f => !f.runaway && Number.isFinite(f.use[name])));
+    const lost = x.filter((_, i) => found[i].runaway);
+    if (!names.length) { place.replaceChildren(make("p", {className: "note"}, "At every ratio the winding runs away thermally: there is no working point to draw.")); return; }
+    const series = names.map(name => ({label: written.words(name), y: found.map(f => f.runaway ? null : gap(f.use[name] * 100))}));
     const allowed = (1 - s.reserve) * 100;
     const inside = found.map(f => f.verdict === "yes");
     const hooks = {drawClear: [u => {
@@ -166,6 +205,7 @@ const charts = (() => {
       show: {x: v => written.number(v, 3), y: v => `${Math.round(v)} %`},
     });
     place.append(make("p", {className: "note"}, `Shaded: ratios that do it. Line: ${Math.round(allowed)} % allowed. Chosen: ${written.number(m.ratio)}.`));
+    if (lost.length) place.append(make("p", {className: "note"}, `No lines from ratio ${written.number(lost[0], 3)} to ${written.number(lost[lost.length - 1], 3)}: there the winding runs away thermally, so that no working point exists.`));
   }
 
   // One mark a motor; the nearest one to the pointer is named, a click opens its card.

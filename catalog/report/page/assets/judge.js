@@ -35,7 +35,7 @@ const judging = (() => {
 
   // The cycle at the motor: torque with friction, speed, shaft torque at the ends of each piece.
   function atMotor(m, d) {
-    const {duration, basis} = d.pieces[m.pieces], N = m.ratio;
+    const {duration, basis, stretch} = d.pieces[m.pieces], N = m.ratio;
     const accelerates = basis.some(ends => ends[0][1] || ends[1][1]);
     const J = accelerates ? m.rotor_inertia + m.gear_inertia : 0;
     const Tc = zero(m.coulomb_torque), b = zero(m.viscous_damping) * N;
@@ -54,7 +54,7 @@ const judging = (() => {
     });
     const first = JSON.stringify(basis[0][0]);
     return {
-      duration, basis, torque, shaft, speed, period, J, Tc, b: zero(m.viscous_damping),
+      duration, basis, stretch, torque, shaft, speed, period, J, Tc, b: zero(m.viscous_damping),
       square: square / period, rmsSpeed: Math.sqrt(speedSquare / period),
       friction: Tc * distance / period + zero(m.viscous_damping) * speedSquare / period,
       constant: basis.every(ends => ends.every(e => JSON.stringify(e) === first)),

@@ -19,8 +19,9 @@ const page = (() => {
     });
     const doing = found.filter(f => f.verdict === "yes").length;
     const before = data.judged.verdict.filter(v => v === "yes").length;
-    get("now").textContent = same ? `As asked: ${before} of these ${all.length} motors do it.`
-      : `Now ${doing} of these ${all.length} motors do it; as asked ${before}.`;
+    const free = setting.supply === null && asked.supply !== null ? " Without a supply its voltage is no limit." : "";
+    get("now").textContent = (same ? `As asked: ${before} of these ${all.length} motors do it.`
+      : `Now ${doing} of these ${all.length} motors do it; as asked ${before}.`) + free;
   }
 
   function limiting(i) {
@@ -68,7 +69,7 @@ const page = (() => {
     });
   }
 
-  const look = column => [column.number ? "number" : column.who ? "who" : "", column.detail ? "detail" : ""].join(" ").trim();
+  const look = column => [column.number ? "number" : column.who ? "who" : column.head ? "head" : "", column.detail ? "detail" : ""].join(" ").trim();
 
   function drawHeads() {
     get("heads").replaceChildren(...columns.map((column, c) => {
@@ -212,6 +213,11 @@ const page = (() => {
   // ---- settings
 
   const FIELDS = {supply: 1, ambient: 1, reserve: 100};
+  const REFUSED = {
+    supply: v => v > 0 ? "" : "A supply has more than 0 V; empty the field for no limit by voltage.",
+    ambient: v => v > -273.15 ? "" : "No ambient is as cold; give more than −273.15 °C.",
+    reserve: v => v >= 0 && v < 100 ? "" : "A reserve lies between 0 and 99 %.",
+  };
   function setUpSettings() {
     get("asked").hidden = false;
     get("verdict-field").hidden = false;
@@ -225,10 +231,16 @@ const page = (() => {
       const fill = () => {
         field.value = asked[name] === null ? "" : Number((asked[name] * factor).toPrecision(7));
         slider.value = field.value || slider.min;
+        field.setCustomValidity("");
+        field.removeAttribute("aria-invalid");
       };
       fill();
       fills.push(fill);
       const change = value => {
+        const refused = value === "" ? "" : REFUSED[name](Number(value));
+        field.setCustomValidity(refused);
+        field.setAttribute("aria-invalid", refused !== "");
+        if (refused) { get("now").textContent = refused; return; }
         const typed = value === "" ? (name === "supply" ? null : asked[name]) : Number(value) / factor;
         setting = {...setting, [name]: typed};
         rejudge();
