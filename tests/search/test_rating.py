@@ -59,7 +59,8 @@ def test_a_mounting_that_was_given_is_named(tmp_path: Path) -> None:
     figures = {"nominal_current": 3.0, "thermal_resistance": NAN,
                "thermal_resistance_winding_housing": 0.5,
                "thermal_resistance_housing_ambient": 1.5}  # fmt: skip
-    (said,) = remarks(tmp_path / "c", {**POINT, "mounting": {"thermal_resistance": "1 K/W"}}, **figures)
+    plate = {"mounting": {"thermal_resistance": "1 K/W"}}
+    (said,) = remarks(tmp_path / "c", {**POINT, **plate}, **figures)
     assert "the mounting that was given allows it" in said
 
 

@@ -56,13 +56,19 @@ def draw_figures(figures: Sequence[Implied], claim: str, below: str) -> Figure:
     axes.set_xticks([_place(t) for t in ticks], [_tick(t) for t in ticks])
     axes.set_yticks(
         range(len(order)),
-        [words(f.key) + (f" ({f.severity})" if f.severity else "") for f in order],
+        [words(f.key) + _label(f) for f in order],
     )
     axes.grid(False, axis="y")
     axes.set_ylim(-0.7, len(order) - 0.3)
     axes.set_xlabel("Printed value over the value that the motor's other figures imply")
     s.title(made, axes, claim, below)
     return made
+
+
+def _label(f: Implied) -> str:
+    if f.severity is None:
+        return ""
+    return f" ({f.severity}{', by its family' if f.by_family else ''})"
 
 
 def _place(log_ratio: float) -> float:

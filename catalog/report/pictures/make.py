@@ -16,7 +16,7 @@ from ...search.choice import Judge, behind
 from ...search.fleet import load_fleet
 from ...search.run import Found, Shown, search, show
 from ..curves import Plane, plane
-from ..implied import implied_figures
+from ..implied import doubted, implied_figures
 from ..plain import number, percent, words
 from .candidates import draw_candidates
 from .figures import draw_figures
@@ -129,16 +129,19 @@ def ratios_of(catalog: Catalog, part: str, requirement: Requirement) -> Figure:
 def figures_of(catalog: Catalog, part: str) -> Figure:
     """Published against implied figures of a motor."""
     known = catalog.find(part)
-    found = implied_figures(catalog, {known.id: catalog.motor(part)})[known.id]
+    motor = catalog.motor(part)
+    found = implied_figures(catalog, {known.id: motor})[known.id]
     if not found:
         raise MotorfolioError(
             f"{known.name} has no figure that its other figures imply: there is nothing to compare."
         )
-    wrong = [f for f in found if f.severity]
+    wrong = doubted(motor)
     if wrong:
-        said = " and ".join(words(f.key) for f in wrong)
+        said = " and ".join(map(words, wrong))
         claim = f"{known.part_number}: the printed {said} disagrees with the rest"
         claim = claim.replace("disagrees", "disagree") if len(wrong) > 1 else claim
+    elif any(f["severity"] != "note" for f in motor["findings"]):
+        claim = f"{known.part_number}: a finding doubts its operating points"
     else:
         claim = f"{known.part_number}: its printed figures agree with one another"
     return draw_figures(
