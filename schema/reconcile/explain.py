@@ -49,6 +49,10 @@ SENTENCES = {
 }
 """What each cause is, in a few words."""
 
+CENTIMETRES = "gf·cm and mN·m, or kgf·cm and N·m, taken for one another (0.0980665)"
+FAR = math.log(30.0)
+"""Kilogram-force for newton with 9.80665 over 100, not times 100: a logarithm below this."""
+
 PRODUCT = "torque constant times current printed as the torque, friction left out"
 """What friction left out is where the figure is a torque."""
 
@@ -352,15 +356,19 @@ class Narrator:
     ) -> str:
         """The likeliest cause of a figure's ratio in a sentence, with the others."""
         form = shape(figure, int(self.batch.commutation[motor]), self.unit(figure, motor)[0])
-        first, *others = (_cause(c, figure, slipped_power(form, c, log_ratio, sd)) for c in causes)
+        first, *others = (
+            _cause(c, figure, slipped_power(form, c, log_ratio, sd), log_ratio) for c in causes
+        )
         text, also = f"Likely {first}", "; also possible: "
         if causes[0] == "unexplained":
             text, also = "None of the usual mistakes explains the ratio", "; the nearest: "
         return f"{text}{also if others else ''}{', '.join(others)}."
 
 
-def _cause(cause: str, figure: str, power: int) -> str:
+def _cause(cause: str, figure: str, power: int, log_ratio: float) -> str:
     """What a cause is, for a figure, with the power of ten that slipped besides."""
+    if cause == "kilogram-force-vs-newton" and abs(power) == 2 and abs(log_ratio) < FAR:
+        return CENTIMETRES
     text = PRODUCT if cause == "friction-ignored" and figure in TORQUES else SENTENCES[cause]
     if power:
         text += f" with a decimal point {abs(power)} place{'s' * (abs(power) > 1)} off"

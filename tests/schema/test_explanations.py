@@ -94,6 +94,17 @@ def test_the_sentence_names_the_causes_of_the_document_and_no_others(seed):
         assert named == {finding.cause, *finding.other_causes}
 
 
+@pytest.mark.parametrize("ratio", [0.0980665, 1 / 0.0980665])
+def test_gram_force_centimetres_for_millinewton_metres_are_no_decimal_slip(ratio):
+    """1 gf·cm = 0.0980665 mN·m (NIST SP 811, appendix B.8: 1 kgf·m = 9.80665 N·m)."""
+    batch = single()
+    put(batch, "stall_torque", 0, 0.3)
+    cause = ("kilogram-force-vs-newton",)
+    text = Narrator(batch).because(0, "stall_torque", cause, math.log(ratio), 0.004)
+    assert "gf·cm and mN·m" in text
+    assert "decimal point" not in text
+
+
 def test_friction_left_out_of_a_torque_is_not_said_of_a_torque_constant():
     batch = single()
     put(batch, "nominal_torque", 0, 0.03)
