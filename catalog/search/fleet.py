@@ -12,38 +12,12 @@ from numpy.typing import NDArray
 from ...schema.operation.machines import Machines, coulomb_torque
 from ..requirement.read import Requirement, RequirementError
 from ..requirement.where import columns_of
+from ..store.columns import ARMATURE, CURRENTS, ENDS, FURTHER, JUDGED, SHOWN
 
 if TYPE_CHECKING:
     from ..store import Catalog
 
 Array = NDArray[np.float64]
-
-_SAME = (
-    "torque_constant",
-    "armature_resistance",
-    "armature_inductance",
-    "rotor_inertia",
-    "viscous_damping",
-    "pole_pairs",
-    "magnet_coefficient",
-    "thermal_resistance_winding_housing",
-    "thermal_resistance_housing_ambient",
-    "thermal_resistance",
-    "thermal_time_constant_winding",
-    "thermal_time_constant_housing",
-    "maximum_winding_temperature",
-    "rated_temperature_rise",
-    "rating_ambient",
-    "nominal_speed",
-    "peak_torque",
-    "maximum_speed",
-)
-_CURRENTS = ("nominal_current", "continuous_stall_current", "peak_current")
-_OTHERS = ("commutation", "no_load_current", "friction_torque", "nominal_voltage", "motor_constant")
-_SHOWN = ("mass", "price", "diameter")
-_ENDS = tuple(
-    f"{key}_{end}" for key in ("torque_constant", "armature_resistance") for end in ("low", "high")
-)
 
 
 @dataclass
@@ -72,8 +46,8 @@ def machines_of(columns: Mapping[str, Array]) -> Machines:
         columns["armature_resistance"],
         columns["nominal_voltage"],
     )
-    built = {key: columns[key] for key in _SAME}
-    built |= {key: columns[f"armature_{key}"] for key in _CURRENTS}
+    built = {key: columns[key] for key in JUDGED}
+    built |= {key: columns[f"{ARMATURE}{key}"] for key in CURRENTS}
     return Machines(
         **built,
         coulomb_torque=np.broadcast_to(friction, (n,)),
@@ -84,15 +58,15 @@ def machines_of(columns: Mapping[str, Array]) -> Machines:
 def load_fleet(catalog: Catalog, requirement: Requirement | None = None) -> Fleet:
     """All motors of the catalog with the columns that a requirement needs."""
     names: Sequence[str] = [
-        *_SAME,
-        *(f"armature_{key}" for key in _CURRENTS),
-        *_OTHERS,
-        *_SHOWN,
+        *JUDGED,
+        *(f"{ARMATURE}{key}" for key in CURRENTS),
+        *FURTHER,
+        *SHOWN,
     ]
     if requirement is not None:
         names = [*names, *columns_of(requirement.where)]
         if requirement.tolerance == "printed":
-            names = [*names, *_ENDS]
+            names = [*names, *ENDS]
     try:
         columns = catalog.columns(names)
     except KeyError as error:

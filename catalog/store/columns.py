@@ -25,17 +25,14 @@ ARMATURE = "armature_"
 AMBIENT_WIDTH = 2.0
 """A wider printed interval of the ambient, K, is a permissible range, not a rating ambient."""
 
-CACHED: tuple[str, ...] = (
-    *CANONICAL,
-    "torque_constant_low",
-    "torque_constant_high",
-    "armature_resistance_low",
-    "armature_resistance_high",
-    "commutation",
-    "magnet_coefficient",
-    "nominal_voltage",
-    "friction_torque",
+JUDGED: tuple[str, ...] = (
+    "torque_constant",
+    "armature_resistance",
+    "armature_inductance",
+    "rotor_inertia",
+    "viscous_damping",
     "pole_pairs",
+    "magnet_coefficient",
     "thermal_resistance_winding_housing",
     "thermal_resistance_housing_ambient",
     "thermal_resistance",
@@ -45,15 +42,24 @@ CACHED: tuple[str, ...] = (
     "rated_temperature_rise",
     "rating_ambient",
     "nominal_speed",
-    "armature_nominal_current",
-    "armature_continuous_stall_current",
-    "armature_peak_current",
     "peak_torque",
     "maximum_speed",
-    "mass",
-    "diameter",
-    "price",
-)  # fmt: skip
+)
+"""What a motor at work is judged by, under the names that it has there."""
+CURRENTS = ("nominal_current", "continuous_stall_current", "peak_current")
+"""The same for currents, which are kept in armature amperes."""
+FURTHER = ("commutation", "no_load_current", "friction_torque", "nominal_voltage", "motor_constant")
+"""What the friction and the order of rank follow from."""
+SHOWN = ("mass", "price", "diameter")
+ENDS = tuple(
+    f"{key}_{end}" for key in ("torque_constant", "armature_resistance") for end in ("low", "high")
+)
+"""The intervals of a worst case."""
+CACHED: tuple[str, ...] = tuple(
+    dict.fromkeys(
+        (*CANONICAL, *ENDS, *JUDGED, *(f"{ARMATURE}{key}" for key in CURRENTS), *FURTHER, *SHOWN)
+    )
+)
 
 # another set of cached columns, or another meaning of one, needs another name here
 _MARK = "id.1"
