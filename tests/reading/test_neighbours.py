@@ -209,7 +209,7 @@ def test_stillstand_at_the_end_of_a_curve_is_stall_and_lines_above_count():
     ("Type | Kv [rpm/V] | Kt [Nm/A] | Io [A]", "A | 316 | 0.03 | 0.12", "no_load_current", 0.12),
     ("Type | Kv [rpm/V] | Encoder | I0 [A]", "A | 316 | 1024 | 0.12", "no_load_current", 0.12),
     ("Type | Mo [Nm] | Ip A", "A | 1.3 | 35.6", "peak_current", 35.6),
-    ("Type | Cont. torque at stall [Nm] | Cont. current at stall [Arms] | Max. torque at stall [Nm]",
+    ("Type | Cont. torque at stall [Nm] | Cont. current at stall [Arms] | Max. torque at stall Nm",
      "A | 3.5 | 2.6 | 10.8", "peak_torque", 10.8),
 ])  # fmt: skip
 def test_symbols_and_words_by_the_kind_of_sheet(headings, values, key, value):

@@ -20,7 +20,7 @@ from ..matching.match import Match, Matcher
 from ..matching.purpose import beside_gears, is_of_gears, tells_of_a_motor
 from ..model import Field, ReadOptions, Table, Unread
 from .frame import share_frame, take_up_dittos
-from .identity import by_frame_and_winding, by_voltage
+from .identity import by_frame_and_winding, by_voltage, first_codes
 from .kind import (
     ASSUMED,
     INFERRED,
@@ -33,6 +33,7 @@ from .kind import (
     signature,
 )
 from .said import convention_of, temperature_of
+from .stated import stated_figures
 from .summaries import take_out_summaries
 
 REFERENCE_FIGURES = ("terminal_resistance", "torque_constant", "back_emf_constant")
@@ -58,7 +59,11 @@ class Decisions:
         self.remarks = table.remarks
         self.notes: Notes = notes_of([*table.titles, *table.notes])
         with_dittos = take_up_dittos(table)
-        self.id_field = None if table.part_numbers else self._told_ids() or id_field(table)
+        self.id_field = (
+            None
+            if table.part_numbers
+            else self._told_ids() or id_field(table) or first_codes(table)
+        )
         take_out_summaries(table, self.id_field, self.unread)
         if self.id_field is not None:
             by_frame_and_winding(table, self.id_field)
@@ -67,6 +72,8 @@ class Decisions:
         by_voltage(table, self.matches, self.id_field, self.style)
         share_frame(table, self.matches, self.id_field, with_dittos)
         self._stated_voltage()
+        if position is None:
+            self.matches += stated_figures(table, self.matches)
         self.why_not: list[str] = []
         figures = [m for m in self.matches if tells_of_a_motor(m)]
         known = [m for m in self.matches if m.score >= 0.85 and m.guesses]

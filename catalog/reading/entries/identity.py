@@ -1,5 +1,6 @@
 """Rows with one part number that are other motors: frame and winding, winding and voltage."""
 
+import re
 from collections import defaultdict
 from collections.abc import Sequence
 
@@ -7,6 +8,7 @@ import numpy as np
 
 from ....schema.figure.read import NumberStyle
 from ....schema.figure.signs import plain
+from ..cells import is_figure
 from ..matching.match import Match
 from ..matching.samples import sample_values
 from ..model import Field, Table
@@ -16,6 +18,28 @@ _WINDING = ("terminal_resistance", "torque_constant", "back_emf_constant", "term
 
 _APART = 1.1
 """So far apart two figures are of two windings: a warm winding's resistance is named as such."""
+
+
+_CODE = re.compile(r"(?=.*\d)(?=.*[^\W\d_]).{2,40}")
+
+
+def first_codes(table: Table) -> Field | None:
+    """The first column where its texts are unlike codes and no heading says "part number"."""
+    if table.layout != "rows" or table.part_numbers or table.count < 2 or not table.fields:
+        return None
+    first = min(table.fields, key=lambda f: f.source)
+    keys = {k for p in first.label.names for k in p.keys}
+    if keys - {"series"} or first.units or first.part or first.label.other:
+        return None
+    if not _distinct(first.texts) or not all(first.texts):
+        return None
+    codes = sum(1 for t in first.texts if _CODE.fullmatch(plain(t)) and not is_figure(t))
+    if codes < 0.9 * table.count:
+        return None
+    table.remarks.append(
+        f'"{plain(first.heading)}" is taken for the part numbers: the first column, a code a motor'
+    )
+    return first
 
 
 def by_frame_and_winding(table: Table, ids: Field) -> None:

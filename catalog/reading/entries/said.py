@@ -29,6 +29,7 @@ def convention_of(m: Match, commutation: Commutation, notes: Notes) -> Conventio
     for mark in m.field.label.marks:
         if mark in notes.marked:
             said.update(note_conventions(notes.marked[mark]))
+    noted = dict(said)
     phrases = dict(
         pair for p in m.field.label.names if p.keys or p.generic for pair in p.conventions
     )
@@ -45,7 +46,8 @@ def convention_of(m: Match, commutation: Commutation, notes: Notes) -> Conventio
     for word in m.forced_convention:
         said.update(conventions_of(word, whole=False))
     peak = m.key.startswith("peak_") or m.key.startswith("maximum_")
-    explicit = label.current or (m.units and m.units[0].marks & {"rms", "peak", "dc"})
+    in_unit = m.units and m.units[0].marks & {"rms", "peak", "dc"}
+    explicit = label.current or in_unit or noted.get("current") == "peak"
     if peak and said.get("current") == "peak" and not explicit and not m.forced_convention:
         said.pop("current")
     kept = {

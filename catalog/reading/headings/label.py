@@ -286,6 +286,12 @@ def _is_rather_symbol(text: str, phrase: Phrase) -> bool:
     )
 
 
+def _symbol_and_unit(text: str) -> bool:
+    symbol, _, unit = text.partition(" ")
+    hit = find_symbol(symbol)
+    return hit is not None and hit.surety > 0.95 and may_be_unit(unit.strip())
+
+
 def _named(label: Label, core: str) -> Label:
     """A name with, perhaps, a symbol and a unit beside it."""
     if not core:
@@ -299,6 +305,14 @@ def _named(label: Label, core: str) -> Label:
         p = match_phrase(name) if name else Phrase(name)
         if name and _is_rather_symbol(name, p):
             p = Phrase("")
+        if (
+            name
+            and unit == symbol == ""
+            and _symbol_and_unit(core)
+            and p.keys
+            and all(quantities()[k].text for k in p.keys)
+        ):
+            p = Phrase("")  # "Ip A" is a current, no IP
         score = p.score if name else 0.0
         if symbol and (not name or only):
             hit = find_symbol(symbol)

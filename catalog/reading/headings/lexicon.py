@@ -188,7 +188,10 @@ def find_symbol(text: str) -> SymbolHit | None:
     lex = lexicon()
     generic = GENERIC_SYMBOLS.get(form)
     if form in lex.symbols or generic:
-        return SymbolHit(tuple(lex.symbols.get(form, ())), 1.0, generic)
+        keys = lex.symbols.get(form, [])
+        if "o" in form[1:].casefold():  # Io is I0 as well, whichever of them a sheet means
+            keys = [*keys, *(k for k in lex.loose_symbols.get(_loose(form), ()) if k not in keys)]
+        return SymbolHit(tuple(keys), 1.0, generic)
     if _loose(form) in lex.loose_symbols:
         return SymbolHit(tuple(lex.loose_symbols[_loose(form)]), 0.9)
     if len(form) > 1 and _loose(form).casefold() in lex.folded_symbols:

@@ -9,6 +9,8 @@ from ..model import Table
 from .blocks import Block
 from .heads import HeadCell, head_field
 
+_ON_THE_CURVE = ("no_load", "maximum_efficiency", "maximum_power")
+
 
 def points_table(block: Block) -> Table | None:
     """One motor's points as a table of fields, if the block is such a matrix; else None."""
@@ -53,6 +55,7 @@ def _matrix(
     table = Table(layout, [], [lines[points[0]]])
     name_at = columns[0] - 1 if across else 0
     between = [k for k in range(head + 1, points[0]) if not section_of(rows[k][name_at])]
+    loaded = any(section_of(rows[i][name_at]) in _ON_THE_CURVE for i in points)
     for i in points:
         for c in range(name_at + 1, len(rows[head])):
             if not rows[i][c] or not rows[head][c]:
@@ -62,6 +65,8 @@ def _matrix(
             place = (others[c], lines[head]) if across else (lines[head], others[c])
             field = head_field(cells, [rows[i][c]], *place, joins=False)
             field.places = [lines[i]]
+            if field.section == "continuous_stall" and loaded:
+                field.section = "stall"  # the end of the curve that begins at no load
             field.source = c
             table.fields.append(field)
     if across:

@@ -54,7 +54,9 @@ class Candidates:
 
     def _median_of(self, key: str) -> float | None:
         for f, values in zip(self.fields, self.values, strict=True):
-            if values and any(key in p.keys for p in f.label.names):
+            hits = [hit.keys for s in f.label.symbols if (hit := find_symbol(s))]
+            named = any(key in p.keys for p in f.label.names) or (key,) in hits
+            if values and named and not f.part:
                 for text in f.units:
                     unit = unit_of(text)
                     if unit is not None and unit.si == quantity(key).unit:

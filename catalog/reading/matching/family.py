@@ -6,6 +6,9 @@ from ....schema.units.read import unit_of
 from ..headings.lexicon import symbol_form
 from ..model import Field
 
+_FEEDBACK = 0.7
+"""The weight of an encoder; small dc motors have one too, so that it never decides alone."""
+
 
 def family_of(fields: list[Field]) -> str | None:
     """ "servo" or "dc" by headings that only one of them has, None where they balance.
@@ -18,6 +21,7 @@ def family_of(fields: list[Field]) -> str | None:
         keys = {k for p in f.label.names if p.score >= 0.9 for k in p.keys}
         generics = {(f.section, p.generic) for p in f.label.names if p.generic}
         symbols = {symbol_form(s) for s in f.label.symbols}
+        symbols |= {s[0] + s[1:].replace("o", "0").replace("O", "0") for s in symbols if s}
         marks = {m for u in f.units if (unit := unit_of(u)) for m in unit.marks}
         cells = " ".join(f.texts[:3])
         if (
@@ -58,7 +62,7 @@ def family_of(fields: list[Field]) -> str | None:
         if any(s == "no_load" for s, _ in generics):
             dc += 1.5
         if re.search(r"resolver|encoder|feedback|geber|codeur|编码器|エンコーダ", f.heading, re.I):
-            servo += 0.7
-    if servo > dc:
+            servo += _FEEDBACK
+    if servo > max(dc, _FEEDBACK):
         return "servo"
     return "dc" if dc > servo else None

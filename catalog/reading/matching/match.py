@@ -204,6 +204,8 @@ class Matcher(Candidates):
             return None
         for phrase in f.label.names:
             section = phrase.section or f.section
+            if phrase.generic == "voltage" and phrase.section == "stall":
+                return None  # the voltage at which it starts is none of a point at stall
             if phrase.generic and section:
                 return section, phrase.generic
         for symbol in f.label.symbols:

@@ -1,0 +1,41 @@
+"""Figures that lines above a table state for all its motors: "Nominal voltage: 24 V"."""
+
+import re
+from collections.abc import Sequence
+
+from ....schema.figure.read import FigureError, NumberStyle, read_figure
+from ....schema.figure.signs import plain
+from ....schema.units.read import UnitError, read_unit
+from ....schema.vocabulary import quantity
+from ..headings.label import parse_label
+from ..matching.match import Match
+from ..model import Field, Table
+
+_LINE = re.compile(r"(?P<heading>[^\d:=：][^:=：]{1,40}?)\s*[:=：]\s*(?P<figure>[<>≤≥~]?\s?\d.*)")
+
+
+def stated_figures(table: Table, matches: Sequence[Match]) -> list[Match]:
+    """The figures of title lines, of quantities that the table itself does not give."""
+    known = {m.key for m in matches}
+    found: list[Match] = []
+    for line in (line for title in table.titles for line in title.split("\n")):
+        at = _LINE.fullmatch(plain(line))
+        if at is None:
+            continue
+        label = parse_label(at["heading"])
+        keys = {k for p in label.names if p.score >= 0.96 for k in p.keys}
+        if len(keys) != 1 or label.other or keys & known or quantity(min(keys)).text:
+            continue
+        q = quantity(keys.pop())
+        try:
+            figure = read_figure(at["figure"], NumberStyle(None))
+            own = figure.unit if figure is not None else ""
+            unit = read_unit(own or (label.units[0] if label.units else ""), q.accepts)
+        except (FigureError, UnitError):
+            continue
+        known.add(q.key)
+        field = Field(at["heading"], label, [at["figure"]] * table.count, 0, 0)
+        field.places, field.layout = [0] * table.count, "rows"
+        reason = "a line above the table states it for all its motors"
+        found.append(Match(field, "figure", q.key, 0.9, [unit], reason))
+    return found
