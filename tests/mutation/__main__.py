@@ -6,13 +6,15 @@ import os
 import secrets
 import sys
 import tempfile
-from concurrent.futures import Executor, ThreadPoolExecutor
 from functools import partial
 from pathlib import Path
 
 from . import report, trial
 from .covering import Covering, files, learn
 from .mutants import ROOT, Mutant, operators, sample
+
+LONG = 86_400.0
+"""Seconds that no part of a run takes."""
 
 
 def main() -> None:
@@ -28,21 +30,23 @@ def main() -> None:
     seed = secrets.randbelow(1_000_000) if chosen.seed is None else chosen.seed
     trial.load_libraries()
     operators()  # all that is imported is imported before the first fork
-    with ThreadPoolExecutor(chosen.workers + 1) as pool:
-        learning = [pool.submit(_learnt, files()[k :: chosen.workers])
-                    for k in range(chosen.workers)]  # fmt: skip
-        mutants, places = sample(chosen.sample, seed)
-        if chosen.only:
-            mutants = [mutant for mutant in mutants if chosen.only in mutant.module]
-        print(f"{len(mutants)} mutants, seed {seed}", flush=True)
-        covering = Covering()
-        for part in learning:
-            covering.add(part.result())
-        if covering.failed:
-            sys.exit(f"without any mutant these fail: {', '.join(covering.failed)}")
-        total = sum(covering.seconds.values())
-        print(f"{len(covering.seconds)} tests in {total:.0f} s", flush=True)
-        rows = _outcomes(mutants, covering, chosen.workers, chosen.results, pool)
+    learning = [trial.Fork(partial(learn, files()[k :: chosen.workers]))
+                for k in range(chosen.workers)]  # fmt: skip
+    mutants, places = sample(chosen.sample, seed)
+    if chosen.only:
+        mutants = [mutant for mutant in mutants if chosen.only in mutant.module]
+    print(f"{len(mutants)} mutants, seed {seed}", flush=True)
+    covering = Covering()
+    for part in learning:
+        status, learnt = part.wait(LONG)
+        if status != 0:
+            sys.exit("the tests can't be run")
+        covering.add(learnt)
+    if covering.failed:
+        sys.exit(f"without any mutant these fail: {', '.join(covering.failed)}")
+    total = sum(covering.seconds.values())
+    print(f"{len(covering.seconds)} tests in {total:.0f} s", flush=True)
+    rows = _outcomes(mutants, covering, chosen.workers, chosen.results)
     tests = len(covering.seconds)
     page = report.page(rows, places, seed=seed, tests=tests)
     if chosen.write:
@@ -52,7 +56,7 @@ def main() -> None:
 
 
 def _outcomes(
-    mutants: list[Mutant], covering: Covering, workers: int, path: Path | None, pool: Executor
+    mutants: list[Mutant], covering: Covering, workers: int, path: Path | None
 ) -> list[report.Row]:
     """The rows of all mutants that change something, in any order; kept in a file by the way."""
     known = {mutant.name: mutant for mutant in mutants}
@@ -69,38 +73,25 @@ def _outcomes(
             return [report.Row(known[row["name"]], row["outcome"], row["tests"])
                     for row in map(json.loads, lines) if row["name"] in known]  # fmt: skip
 
-        sound = pool.submit(trial.all_pass, covering)
         done = {row.mutant.name for row in read()}
         left = [mutant for mutant in mutants if mutant.name not in done]
         slow = [mutant for mutant in left if covering.at_import(mutant)]
         quick = [mutant for mutant in left if mutant not in slow]
-        running = [
-            pool.submit(
-                trial.in_a_fork,
-                partial(trial.calling, quick[k::workers], covering, told),
-                float("inf"),
-            )
-            for k in range(workers)
-        ]
+        sound = trial.Fork(partial(trial.all_pass, covering))
+        running = [trial.Fork(partial(trial.calling, quick[k::workers], covering, told))
+                   for k in range(workers)]  # fmt: skip
         for mutant in slow:
             told(mutant, trial.importing(mutant, covering))
         for worker in running:
-            if worker.result()[0] != 0:
+            if worker.wait(LONG)[0] != 0:
                 sys.exit("a worker has failed")
         rows = read()
         for row in rows:
             if row.outcome == trial.ELSEWHERE:
                 told(row.mutant, trial.importing(row.mutant, covering))
-        if not sound.result():
+        if sound.wait(LONG) != (0, trial.SURVIVED):
             sys.exit("the tests fail, in the order of their time, without any mutant")
         return [row for row in read() if row.outcome not in (trial.VOID, trial.ELSEWHERE)]
-
-
-def _learnt(some: list[str]) -> Covering:
-    status, covering = trial.in_a_fork(partial(learn, some), wall=7200)
-    if status != 0:
-        sys.exit("the tests can't be run")
-    return covering
 
 
 if __name__ == "__main__":

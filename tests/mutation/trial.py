@@ -61,33 +61,39 @@ def load_libraries() -> None:
     settings.load_profile("mutants")
 
 
-def in_a_fork(work: Callable[[], Any], wall: float) -> tuple[int | None, Any]:
-    """Exit status of ``work`` in a fork, ``None`` after ``wall`` seconds, and what it returned."""
-    with tempfile.TemporaryDirectory() as folder:
-        result = Path(folder) / "result"
-        pid = os.fork()
-        if pid == 0:
+class Fork:
+    """Work in a forked process. To be made where no other thread runs: their locks are copied."""
+
+    def __init__(self, work: Callable[[], Any]) -> None:
+        self.folder = tempfile.TemporaryDirectory()
+        self.result = Path(self.folder.name) / "result"
+        self.pid = os.fork()
+        if self.pid == 0:
             os.setsid()  # the kernel shares time out by sessions
             sink = os.open(os.devnull, os.O_WRONLY)
             os.dup2(sink, 1)
             os.dup2(sink, 2)
             status = 3
             with contextlib.suppress(BaseException):
-                result.write_bytes(pickle.dumps(work()))
+                self.result.write_bytes(pickle.dumps(work()))
                 status = 0
             os._exit(status)
+
+    def wait(self, wall: float) -> tuple[int | None, Any]:
+        """Exit status, ``None`` after ``wall`` seconds, and what the work returned."""
         end = time.monotonic() + wall
         pause = 0.001
-        while True:
-            done, status = os.waitpid(pid, os.WNOHANG)
-            if done:
-                break
-            if time.monotonic() > end:
-                os.kill(pid, signal.SIGKILL)
-                os.waitpid(pid, 0)
-                return None, None
-            time.sleep(pause := min(0.05, 1.5 * pause))
-        returned = pickle.loads(result.read_bytes()) if result.exists() else None
+        with self.folder:
+            while True:
+                done, status = os.waitpid(self.pid, os.WNOHANG)
+                if done:
+                    break
+                if time.monotonic() > end:
+                    os.kill(self.pid, signal.SIGKILL)
+                    os.waitpid(self.pid, 0)
+                    return None, None
+                time.sleep(pause := min(0.05, 1.5 * pause))
+            returned = pickle.loads(self.result.read_bytes()) if self.result.exists() else None
         return os.waitstatus_to_exitcode(status), returned
 
 
@@ -145,13 +151,11 @@ def _judged(found: tuple[int | None, Any]) -> str:
     return returned if status == 0 and returned else KILLED
 
 
-def all_pass(covering: Covering) -> bool:
-    """Whether every test passes, as the mutants meet them, without a mutant."""
+def all_pass(covering: Covering) -> str:
+    """Whether every test passes, as the mutants meet them, without a mutant. To be called in a
+    fork."""
     tests = sorted(covering.seconds, key=covering.seconds.__getitem__)
-    found = in_a_fork(
-        lambda: _collected(covering, lambda runner: runner.run(tests, 1e9), test_files()), wall=7200
-    )
-    return _judged(found) == SURVIVED
+    return _collected(covering, lambda runner: runner.run(tests, 1e9), test_files())
 
 
 def importing(mutant: Mutant, covering: Covering) -> str:
@@ -167,7 +171,7 @@ def importing(mutant: Mutant, covering: Covering) -> str:
         files = sorted({name.split("::")[0] for name in tests})
         return _collected(covering, lambda runner: runner.run(tests, PATIENCE), files)
 
-    return _judged(in_a_fork(work, wall=WALL)) if tests else SURVIVED
+    return _judged(Fork(work).wait(WALL)) if tests else SURVIVED
 
 
 def calling(mutants: list[Mutant], covering: Covering, told: Callable[[Mutant, str], None]) -> None:
@@ -196,7 +200,7 @@ def calling(mutants: list[Mutant], covering: Covering, told: Callable[[Mutant, s
                 caches.append(thing)
         gc.freeze()
         for mutant in mutants:
-            found = _judged(in_a_fork(lambda m=mutant: one(runner, m), wall=WALL))
+            found = _judged(Fork(lambda m=mutant: one(runner, m)).wait(WALL))
             told(mutant, found)
 
     _collected(covering, work, test_files())
