@@ -19,6 +19,7 @@ from .columns_head import (
 from .conditions import fold_conditions
 from .heads import HeadCell, head_field
 from .lines import text_of
+from .parts import mark_other_parts
 
 _LABEL_AND_FIGURE = re.compile(r"([^\d:]{3,40}?)\s+([<>≤≥~]?\s?\d[\d.,]*\s?\S.*)$")
 
@@ -119,6 +120,8 @@ def lay_out_columns(block: Block) -> Table:
         if shared and between is not None:
             field.places = [block.column_numbers[between]] * len(values)
         table.fields.append(field)
+    if id_row is not None:
+        mark_other_parts(table, rows[id_row][label_column])
     if conditions is not None:
         fold_conditions(table, conditions)
     return table

@@ -10,6 +10,7 @@ from .blocks import Block, is_data
 from .captions import settle_sections
 from .heads import HeadCell, classify, head_field
 from .lines import left_of, share, text_of
+from .parts import mark_other_parts
 
 _MOST_HEAD_ROWS = 7
 
@@ -59,6 +60,8 @@ def lay_out_rows(block: Block) -> Table:
         field.source = c
         table.fields.append(field)
     settle_sections(table)
+    if table.fields and not any(map(is_figure, table.fields[0].texts[:20])):
+        mark_other_parts(table, table.fields[0].heading)
     if end_sections:
         table.remarks += end_sections
     return table
@@ -111,7 +114,7 @@ def _names_quantity(text: str) -> bool:
 
 def is_short_figure(text: str) -> bool:
     """Whether a lone cell is a figure rather than a note that begins with a number."""
-    return is_figure(text) and len(text) < 20 and not re.match(r"\S{1,4}\)", text)
+    return is_figure(text) and len(text) < 20 and not re.match(r"\S{1,4}\)", plain(text))
 
 
 def _body(block: Block, start: int, head_rows: list[list[str]]):
