@@ -230,6 +230,29 @@ def test_settings_judge_anew_and_come_back(search_html: Path) -> None:
         assert page.locator("#rows").inner_text() == before
 
 
+def test_what_the_page_refuses_and_leaves_out_is_said(catalog: Path, tmp_path: Path) -> None:
+    path = tmp_path / "search.html"
+    call = ["page", "--torque", "3 N·m", "--speed", "30 rpm", "--supply", "24 V",
+            "--ratio", "2..120", "--where", "mass < 2 kg", "--limit", "2"]  # fmt: skip
+    assert main([*call, "-o", str(path), "--catalog", str(catalog)]) == 0
+    with opened(path) as page:
+        claim = page.locator("#claim").inner_text()
+        held = page.evaluate("model.count")
+        assert f"The page holds {held} of them, without " in claim
+        assert "that the limits on figures refuse" in claim
+        doing = page.evaluate("model.data.judged.verdict.filter(v => v === 'yes').length")
+        ranks = page.evaluate("model.data.judged.rank.filter(r => r !== null).length")
+        assert 2 < ranks <= doing
+        page.get_by_label("Supply at its lowest, V", exact=True).first.fill("-3")
+        assert "more than 0 V" in page.locator("#now").inner_text()
+        assert page.evaluate("page.state().setting.supply") == 24
+        page.locator("button.part", has_text="DACHS-24").first.click()
+        assert "runs away thermally" in page.locator("#card").inner_text()
+        assert "nominal point, as published" in page.locator("#card").inner_text()
+        page.get_by_label("Supply at its lowest, V", exact=True).first.fill("")
+        page.wait_for_function("document.querySelector('#now').textContent.includes('no limit')")
+
+
 @pytest.mark.parametrize("scheme", ["light", "dark"])
 def test_text_stands_out_in_either_theme(search_html: Path, scheme: str) -> None:
     # WCAG 2.2, success criterion 1.4.3: a contrast of 4.5 for text

@@ -61,7 +61,7 @@ const charts = (() => {
     const options = () => ({
       height: 270, legend: {show: false}, cursor: {drag: {x: false, y: false}},
       scales: {x: {time: false, range: xRange, distr: log ? 3 : 1}, y: {range: yRange}},
-      axes: [axis(xLabel, log), {...axis(yLabel), size: 58}],
+      axes: [{...axis(xLabel, log), size: 30}, {...axis(yLabel), size: 58}],
       series: [{}, ...series.map((s, i) => {
         const look = s.look || LOOKS[i % LOOKS.length];
         return {
@@ -220,7 +220,7 @@ const charts = (() => {
     const options = () => ({
       height: 300, legend: {show: false}, cursor: {drag: {x: false, y: false}, points: {show: false}},
       scales: {x: {time: false, distr: 3}, y: yRange ? {range: yRange} : {distr: 3}},
-      axes: [axis(xLabel, true), {...axis(yLabel, !yRange), size: 62}],
+      axes: [{...axis(xLabel, true), size: 30}, {...axis(yLabel, !yRange), size: 62}],
       series: [{}, ...groups.map(g => ({
         label: g.label, stroke: colour(g.colour), width: 0, paths: () => null,
         points: {show: true, size: g.size, width: 1.6, stroke: colour(g.colour), fill: g.filled ? colour(g.colour) : colour("--sheet")},
