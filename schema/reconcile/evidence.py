@@ -149,10 +149,10 @@ class Evidence(TableEvidence):
         key = FIGURES[f]
 
         def offer(cause: str, factor: float, prior: float, extra: float = 0.0) -> None:
-            gap = log_ratio - factor
-            if leaves(gap, log_ratio, sd):
+            gap, spread = log_ratio - factor, math.hypot(sd, extra)
+            if leaves(gap, log_ratio, spread):
                 return
-            value = math.log(prior) + float(log_normal(gap, math.hypot(sd, extra)))
+            value = math.log(prior) + float(log_normal(gap, spread))
             row[CODE[cause]] = max(row[CODE[cause]], value)
 
         swaps = transpositions(self.text(m, f))

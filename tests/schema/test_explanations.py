@@ -140,6 +140,27 @@ def test_a_cell_s_cause_does_not_hang_on_the_other_rows():
     assert seen == {("warning", "unexplained", ())}
 
 
+def test_friction_that_is_itself_printed_roundly_still_explains_a_torque_constant():
+    """Kt printed as T/I where I0 is 22 % of I, and I0 printed 10 % high (its customary scatter)."""
+    rows = 5
+    batch = single(n=rows)
+    batch.series = ["K"] * rows
+    for i in range(rows):
+        u, km, i_n = 12.0 * 1.3**i, 0.0142 * 1.3**i, 2.9 / 1.3**i
+        ra, i_0 = 0.58 * 1.3 ** (2 * i), 0.222 * i_n
+        for key, value in (
+            ("nominal_voltage", u), ("no_load_speed", (u - ra * i_0) / km),
+            ("no_load_current", i_0 * (1.1 if i == 2 else 1.0)),
+            ("nominal_speed", (u - ra * i_n) / km), ("nominal_torque", km * (i_n - i_0)),
+            ("nominal_current", i_n), ("stall_current", u / ra),
+            ("stall_torque", km * (u / ra - i_0)), ("terminal_resistance", ra),
+            ("torque_constant", km * (0.778 if i == 2 else 1.0)), ("speed_constant", 1 / km),
+        ):  # fmt: skip
+            put(batch, key, i, value, 3)
+    (finding,) = [f for f in alarms(reconcile(batch)) if f.suspect == "torque_constant"]
+    assert "friction-ignored" in (finding.cause, *finding.other_causes)
+
+
 def test_a_column_of_equal_cells_is_not_the_neighbour_s_value():
     """Two alike delta windings whose back-EMF is printed as that of a star: 1/√3."""
     batch = single(SINE, n=2)
