@@ -40,3 +40,38 @@ def test_beside_motors_its_figures_are_listed(table):
 def test_motors_whose_names_stand_under_another_parts_word_are_read():
     s = sheet("Drive | Torque constant [Nm/A] | Resistance [Ω]\nM-1 | 0.4 | 2.2")
     assert len(s.motors()) == 1
+
+
+@pytest.mark.parametrize("name", [
+    "Std. dev.", "σ", "Δ %", "Required", "Lower limit", "Soll", "Standardabweichung", "Écart-type",
+    "Requisito", "Valor medio", "標準偏差", "目标值",
+])  # fmt: skip
+def test_rows_and_columns_that_sum_up_are_no_motors_but_listed(name):
+    down = sheet(f"""
+        Type | Torque constant [mNm/A] | Resistance [Ω]
+        C-12 | 21.2 | 0.86
+        C-24 | 43.0 | 3.45
+        {name} | 32.1 | 2.16
+    """)
+    across = sheet(f"""
+        Parameter | Unit | C-12 | C-24 | {name}
+        Torque constant | mNm/A | 21.2 | 43.0 | 32.1
+        Resistance | Ω | 0.86 | 3.45 | 2.16
+    """)
+    for s in (down, across):
+        assert set(s.motors()) == {"C-12", "C-24"}
+        assert {"32.1", "2.16"} <= s.unread
+
+
+def test_of_smallest_usual_and_largest_figures_of_two_motors_the_usual_are_read():
+    s = sheet("""
+        Parameter | Unit | A-1 | | | A-2 | |
+         | | min | typ | max | min | typ | max
+        Torque constant | mNm/A | 20 | 21.2 | 22 | 42 | 43 | 44
+        Resistance | Ω | 0.8 | 0.86 | 0.9 | 3.3 | 3.45 | 3.6
+    """)
+    assert s.motors() == {
+        "A-1": {"torque_constant": 0.0212, "terminal_resistance": 0.86},
+        "A-2": {"torque_constant": 0.043, "terminal_resistance": 3.45},
+    }
+    assert {"20", "22", "42", "44", "0.8", "0.9", "3.3", "3.6"} <= s.unread

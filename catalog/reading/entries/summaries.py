@@ -3,19 +3,9 @@
 import re
 
 from ....schema.figure.signs import plain
+from ..headings.ends import end_of
 from ..headings.lexicon import canonical, lexicon, squeeze, tokens
 from ..model import Field, Table, Unread
-
-_ENDS = {
-    "min": "least", "minimum": "least", "mindest": "least", "minimal": "least", "minimo": "least",
-    "minimum value": "least", "最小": "least", "最小值": "least",
-    "typ": "usual", "typical": "usual", "nom": "usual", "nominal": "usual", "value": "usual",
-    "typisch": "usual", "nenn": "usual", "typique": "usual", "tipico": "usual", "標準": "usual",
-    "典型": "usual", "典型值": "usual", "wert": "usual", "nennwert": "usual",
-    "max": "most", "maximum": "most", "maximal": "most", "massimo": "most", "maximo": "most",
-    "最大": "most", "最大值": "most",
-}  # fmt: skip
-"""What heads the smallest, the usual and the largest figure of one motor."""
 
 
 def take_out_summaries(table: Table, ids: Field | None, unread: list[Unread]) -> None:
@@ -29,7 +19,7 @@ def take_out_summaries(table: Table, ids: Field | None, unread: list[Unread]) ->
     names = list(table.part_numbers) or (ids.texts if ids is not None else [])
     if len(names) != table.count or not any(names):
         return
-    ends = [_ENDS.get(_word(name or "")) for name in names]
+    ends = [end_of(name or "") for name in names]
     if all(ends) and len(set(ends)) > 1 and len(set(ends)) == len(ends):
         _fold(table, ids, [end or "" for end in ends], unread)
         return
@@ -44,11 +34,9 @@ def take_out_summaries(table: Table, ids: Field | None, unread: list[Unread]) ->
     _keep(table, [k for k in range(len(names)) if k not in odd])
 
 
-def _word(name: str) -> str:
-    return plain(name).casefold().strip(" .:*").replace("í", "i").replace("á", "a")
-
-
 def _sums_up(name: str) -> bool:
+    if re.fullmatch(r"[Δ∆σ\s%]+", name):
+        return True
     form = canonical(tokens(re.sub(r"[%±.:Δ]", " ", plain(name))))
     return "summary" in lexicon().roles.get(squeeze(form), ())
 

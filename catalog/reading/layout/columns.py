@@ -15,6 +15,7 @@ from .columns_head import (
     joined_ids,
     roles_of_columns,
     spread_conditions,
+    usual_columns,
 )
 from .conditions import fold_conditions
 from .heads import HeadCell, head_field
@@ -34,7 +35,11 @@ def lay_out_columns(block: Block) -> Table:
     part = _part_above(rows[:first])
     first = first if part is None else part + 1
     values = [c for c in values if any(row[c] for row in rows[first:])]
+    ends = usual_columns(rows, first, values)
+    values = values if ends is None else ends[2]
     id_row, condition_row = header_rows(rows, first, label_column, values)
+    if ends is not None:
+        id_row, condition_row = ends[0], None
     if part is not None:
         id_row = condition_row = None
     between = None if id_row is None else _between(rows, id_row, values)
@@ -51,6 +56,8 @@ def lay_out_columns(block: Block) -> Table:
         for i, row in enumerate(rows[:first])
         if i not in (id_row, condition_row) and not (joined and i == joined[1])
     ]
+    if ends is not None:
+        table.remarks.append("of smallest, usual and largest figures the usual ones are read")
     if joined is not None:
         table.remarks.append("the part numbers are joined from two rows, type and winding")
     caption = [] if part is None else [text_of(rows[part])]

@@ -4,6 +4,7 @@ import re
 
 from ....schema.figure.signs import plain
 from ..cells import is_figure, is_role, is_symbol, is_unit, missing, strength
+from ..headings.ends import end_of
 from ..headings.label import names_part, parse_label
 from ..headings.phrase import conventions_of, variant_of
 from .blocks import Block
@@ -108,6 +109,27 @@ def header_rows(
     if best is None and conditions:
         return conditions[0], None
     return best, conditions[0] if conditions else None
+
+
+def usual_columns(
+    rows: list[list[str]], first: int, values: list[int]
+) -> tuple[int, int, list[int]] | None:
+    """(row of motors, row of "min typ max", the columns of the usual figures) where several motors
+    have such columns each; None elsewhere. The names are spread over their columns."""
+    for i in range(1, first):
+        ends = [end_of(rows[i][c]) for c in values]
+        usual = [c for c, end in zip(values, ends, strict=True) if end == "usual"]
+        if not all(ends) or len(usual) < 2 or len(set(ends)) < 2:
+            continue
+        names: list[str] = []
+        for c in values:
+            names.append(rows[i - 1][c] or (names[-1] if names else ""))
+        spread = dict(zip(values, names, strict=True))
+        if len({spread[c] for c in usual}) == len(usual) and all(names):
+            for c in values:
+                rows[i - 1][c] = spread[c]
+            return i - 1, i, usual
+    return None
 
 
 def joined_ids(
