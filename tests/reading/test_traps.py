@@ -159,3 +159,34 @@ def test_a_prefix_adds_no_digits():
         "mass": 0.118,
         "nominal_current": 0.0357,
     }
+
+
+def test_a_column_of_another_decimal_sign_is_read_by_its_own_evidence():
+    s = sheet("""
+        Type | No-load speed [rpm] | Torque constant [Nm/A] | Weight [kg]
+        A | 3000.5 | 0,305 | 1,25
+        B | 4500.5 | 0,255 | 1,34
+    """)
+    assert s.motors()["A"]["no_load_speed"] == pytest.approx(3000.5 * RPM)
+    assert s.motors()["A"]["torque_constant"] == 0.305
+    assert any("3000.5" in remark for remark in s.reading.remarks)
+
+
+def test_a_figure_that_only_the_other_sign_makes_possible_is_listed():
+    s = sheet("""
+        Type | No-load speed [rpm] | Torque constant [Nm/A] | Weight [kg]
+        A | 3,000 | 0.305 | 1,250
+    """)
+    assert set(s.motors()["A"]) == {"no_load_speed", "torque_constant"}
+    assert [u.guesses for u in s.reading.unread] == [("1250", "1.25")]
+
+
+@pytest.mark.parametrize(("heading", "cell"), [
+    ("Nominal voltage [V]", "24/36"), ("Nominal voltage", "24 V / 36 V"),
+    ("No-load speed 24 V / 36 V [rpm]", "3000 / 4500"), ("Max. speed [×103 min-1]", "6"),
+    ("Rotor inertia [×104 kgm2]", "0.35"),
+])  # fmt: skip
+def test_options_and_lost_powers_are_listed(heading, cell):
+    s = sheet(f"Type | Torque constant [Nm/A] | {heading}\nA | 0.3 | {cell}")
+    assert s.motors() == {"A": {"torque_constant": 0.3}}
+    assert cell in s.unread

@@ -159,7 +159,7 @@ class TableReader(Decisions):
         """The cells of a column in SI; those that are not read are listed."""
         m = column.match
         marks = frozenset(self.notes.marked)
-        values = read_values(column.texts, q, m.units, self.style, marks, tolerance)
+        values = read_values(column.texts, q, m.units, self.style_of(m), marks, tolerance)
         if q.key in ("nominal_voltage", "mains_voltage"):
             plainly = [i for i in range(len(column.texts)) if i not in values.qualifiers]
             values.low[plainly] = values.high[plainly] = values.value[plainly]

@@ -68,6 +68,7 @@ class Decisions:
         if self.id_field is not None:
             by_frame_and_winding(table, self.id_field)
         self.style = self._style()
+        self._styles: dict[int, NumberStyle] = {}
         self.matches = self._match()
         by_voltage(table, self.matches, self.id_field, self.style)
         share_frame(table, self.matches, self.id_field, with_dittos)
@@ -148,6 +149,17 @@ class Decisions:
                 f"against it: {cells}"
             )
         return style
+
+    def style_of(self, m: Match) -> NumberStyle:
+        """The decimal sign of one column: its own where the table's columns differ and it tells."""
+        if not self.style.conflicts:
+            return self.style
+        if id(m) not in self._styles:
+            texts = [t for t in m.field.texts[:STYLE_ROWS] if t and not isinstance(t, Stored)]
+            own = number_style(texts)
+            sure = own.decimal is not None and not own.conflicts
+            self._styles[id(m)] = own if sure else self.style
+        return self._styles[id(m)]
 
     def _match(self) -> list[Match]:
         fields = self.table.fields

@@ -94,6 +94,7 @@ def read_values(
         for i in np.flatnonzero(bare).tolist():
             _refuse(out, i, texts[i], "no unit is given")
     _impossible(out, texts, q)
+    _wrong_by_thousand(out, column, texts, q)
     if tolerance:
         for i in np.flatnonzero(~np.isnan(out.value)).tolist():
             if int(i) not in out.qualifiers:
@@ -145,6 +146,25 @@ def _impossible(out: Values, texts: list[str], q: Quantity) -> None:
         whole = np.isnan(out.value) | (out.value == np.round(out.value))
         for i in np.flatnonzero(~whole).tolist():
             _refuse(out, i, texts[i], "not a whole number")
+
+
+def _wrong_by_thousand(out: Values, column: ColumnFigures, texts: list[str], q: Quantity) -> None:
+    """Cells that only the table's decimal sign decides ("1,250") and that would be of an
+    impossible size by it, but of a plausible one by the other sign."""
+    lo, hi = q.plausible
+    for i in column.doubtful:
+        value = out.value[i]
+        if np.isnan(value) or lo / 3 <= value <= hi * 3:
+            continue
+        others = [x for x in (value / 1000, value * 1000) if lo <= x <= hi]
+        if others:
+            printed = column.value[i]
+            factor = others[0] / value
+            _refuse(
+                out, i, texts[i],
+                "of an impossible size by the table's decimal sign, not so by the other",
+                (f"{printed:.12g}", f"{printed * factor:.12g}"),
+            )  # fmt: skip
 
 
 def _cells_with_more(
