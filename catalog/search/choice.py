@@ -18,7 +18,7 @@ from ...schema.operation.energy import draw
 from ...schema.operation.judge import judge, judge_worst
 from ...schema.operation.limits import LIMITS, Utilisations, Verdict
 from ...schema.operation.machines import Machines
-from ...schema.operation.ratios import GRID, ratio_grid
+from ...schema.operation.ratios import GRID, least, ratio_grid, reach
 from ..requirement.fields import Ratios
 from ..requirement.read import Requirement
 
@@ -241,7 +241,10 @@ def choose(judge_: Judge, machines: Machines) -> Judged:
     assert ratios.low is not None
     assert ratios.high is not None
     if len(machines) * GRID <= _FEW:
-        return best_of(judge_, machines, ratio_grid(ratios.low, ratios.high), periodic=True)
+        grid = ratio_grid(ratios.low, ratios.high)
+        found = best_of(judge_, machines, grid, periodic=True)
+        _look_between(judge_, machines, found, grid, periodic=True)
+        return found
     steps = int(np.ceil(np.log(ratios.high / ratios.low) / np.log(_STEP)))
     grid = np.geomspace(ratios.low, ratios.high, min(max(steps, 2), _MOST - 1) + 1)
     found = best_of(judge_, machines, grid, periodic=False)
@@ -258,7 +261,41 @@ def choose(judge_: Judge, machines: Machines) -> Judged:
             | (closer.verdict == found.verdict[near]) & (closer.largest < largest[near])
         )
         found.put(near[better], closer.take(better))
+    _look_between(judge_, machines, found, grid, periodic=False)
     return _with_swings(judge_, machines, found, grid)
+
+
+def _look_between(
+    judge_: Judge, machines: Machines, found: Judged, grid: Array, *, periodic: bool
+) -> None:
+    """Put motors that no ratio of the grid admits, but one between two of them does, at that one.
+
+    They are few: the largest utilisation of the grid's best ratio is within one step's reach of
+    what is allowed.
+    """
+    if grid.size < 2:
+        return
+    step = grid[1] / grid[0]
+    allowed = judge_.requirement.allowed
+    near = np.flatnonzero(
+        (found.verdict == Verdict.REJECTED) & (found.largest <= allowed * reach(step))
+    )
+    if near.size == 0:
+        return
+    some, own, at = machines.take(near), _rows(judge_, near), found.ratio[near]
+
+    def largest(x: Array) -> Array:
+        judged = own.cases(some, np.exp(x)[:, None], slice(None), periodic)
+        return np.nan_to_num(judged.largest, nan=0.0, posinf=np.finfo(float).max)
+
+    ends = np.maximum(at / step, grid[0]), np.minimum(at * step, grid[-1])
+    x, most = least(largest, np.log(ends[0]), np.log(ends[1]))
+    good = np.flatnonzero(most <= allowed)
+    if good.size:
+        rows = near[good]
+        ratio = np.exp(x[good])[:, None]
+        exact = best_of(_rows(judge_, rows), machines.take(rows), ratio, periodic=periodic)
+        found.put(rows, exact)
 
 
 def _on_grid(judge_: Judge, machines: Machines, grid: Array) -> Judged:

@@ -42,7 +42,7 @@ def ratio_grid(low: float, high: float) -> Array:
     return np.geomspace(low, high, GRID) if high > low else np.array([low])
 
 
-def _reach(step: float) -> float:
+def reach(step: float) -> float:
     """How far a utilisation can fall, as a factor, from one ratio of the grid to the next: the
     heat goes with the square of a torque that goes with the ratio or its inverse, and a little
     further where warm copper and magnets take part."""
@@ -154,13 +154,13 @@ class _Search:
             padded = np.pad(h, ((0, 0), (1, 1)), constant_values=np.inf)
             local = (h > 0) & np.isfinite(h) if sign > 0 else (h >= 0) & np.isfinite(h)
             local &= (h <= padded[:, :-2]) & (h <= padded[:, 2:])
-            reach = _reach(float(np.exp(grid[1] - grid[0])))
-            local &= np.abs(excess) <= (1 - self.reserve) * (reach - 1)
+            change = reach(float(np.exp(grid[1] - grid[0]))) - 1
+            local &= np.abs(excess) <= (1 - self.reserve) * change
             motor, at = np.nonzero(local)
             if motor.size == 0:
                 continue
             low, high = grid[np.maximum(at - 1, 0)], grid[np.minimum(at + 1, grid.size - 1)]
-            x, y = _golden(
+            x, y = least(
                 lambda x, motor=motor, sign=sign: sign * self.excess(motor, np.exp(x)), low, high
             )
             rank = np.arange(motor.size) - np.searchsorted(motor, motor)
@@ -193,7 +193,7 @@ class _Search:
             return self._judge(motor, np.exp(x)).copper_loss
 
         ends = np.log(low), np.log(high)
-        x, y = _golden(loss, *ends)
+        x, y = least(loss, *ends)
         for end in ends:
             at_end = loss(end)
             x, y = np.where(at_end < y, end, x), np.fmin(at_end, y)
@@ -207,7 +207,7 @@ class _Search:
         return best
 
 
-def _golden(function: Callable[[Array], Array], low: Array, high: Array) -> tuple[Array, Array]:
+def least(function: Callable[[Array], Array], low: Array, high: Array) -> tuple[Array, Array]:
     """Minimum between `low` and `high` by golden section, elementwise: where, and how low."""
     a, b = low.copy(), high.copy()
     c, d = b - _GOLDEN * (b - a), a + _GOLDEN * (b - a)

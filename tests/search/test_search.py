@@ -92,6 +92,26 @@ def test_no_rejected_motor_is_feasible_at_any_ratio(samples: Catalog) -> None:
     assert (judge(machines, found.requirement.demand, grid).verdict() == Verdict.REJECTED).all()
 
 
+@pytest.mark.parametrize("few", [0, choice._FEW])
+def test_an_interval_narrower_than_a_step_of_the_grid_is_found(
+    samples: Catalog, monkeypatch, few: int
+) -> None:
+    """The reserve is put so that a motor does it at hardly more than one ratio, by a fine grid."""
+    monkeypatch.setattr(choice, "_FEW", few)
+    asked = of(BASE, samples)
+    grid = np.geomspace(3, 40, 3001)
+    largest = judge(asked.fleet.machines, asked.requirement.demand, grid).largest
+    least, at = largest.min(axis=1), largest.argmin(axis=1)
+    inside = (asked.judged.verdict == Verdict.FEASIBLE) & (at > 0) & (at < grid.size - 1)
+    inside &= least > 0.3
+    assert inside.sum() >= 3
+    for motor in np.flatnonzero(inside):
+        reserve = f"{100 * (1 - least[motor] * 1.0001):.6f} %"
+        document = {**BASE, "wanted": {"reserve": reserve}}
+        found = of(document, samples)
+        assert found.judged.verdict[motor] == Verdict.FEASIBLE, (motor, grid[at[motor]])
+
+
 def test_many_motors_are_judged_as_few_are(samples: Catalog, monkeypatch) -> None:
     """The coarse look that is taken over many motors finds the same motors."""
     few = of(BASE, samples)
