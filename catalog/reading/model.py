@@ -62,7 +62,8 @@ class Field:
     ``layout`` is that of its own table where it came from another one.
     ``texts`` has one text a motor; ``row`` and ``column`` are the heading's place in the file.
     In layout "rows" the motors' cells stand in ``column``, in layout "columns" in ``row``.
-    ``part`` is the part built onto the motor that a caption says the figures are of.
+    ``part`` is the part built onto the motor that a caption says the figures are of; ``aside``
+    says why the figures are listed and not read.
     """
 
     heading: str
@@ -77,6 +78,7 @@ class Field:
     temperature: float | None = None
     variant: str | None = None
     part: str | None = None
+    aside: str | None = None
     source: int = 0
     places: list[int] | None = None
     layout: str | None = None

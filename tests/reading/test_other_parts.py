@@ -1,5 +1,7 @@
 """Tables of encoders, brakes and drives are none of motors. All sheets are invented."""
 
+import math
+
 import pytest
 
 from motorfolio.catalog.reading import ReadingError
@@ -75,3 +77,32 @@ def test_of_smallest_usual_and_largest_figures_of_two_motors_the_usual_are_read(
         "A-2": {"torque_constant": 0.043, "terminal_resistance": 3.45},
     }
     assert {"20", "22", "42", "44", "0.8", "0.9", "3.3", "3.6"} <= s.unread
+
+
+@pytest.mark.parametrize(
+    "heads",
+    [
+        "No-load speed [rpm] | | \n | min | typ | max",
+        "No-load speed min [rpm] | No-load speed typ [rpm] | No-load speed max [rpm]",
+        "Min. no-load speed [rpm] | No-load speed [rpm] | Max. no-load speed [rpm]",
+    ],
+)
+def test_under_headings_of_smallest_usual_and_largest_figures_the_usual_is_read(heads):
+    first, _, second = heads.partition("\n")
+    lines = [f"Model | {first} | Resistance [Ω]"]
+    lines += [f"{second} | "] if second else []
+    s = sheet("\n".join([*lines, "A-1 | 5500 | 6000 | 6500 | 1.2", "A-2 | 45 | 50 | 55 | 1.5"]))
+    assert s.motors()["A-1"]["no_load_speed"] == pytest.approx(6000 * math.pi / 30)
+    assert s.motors()["A-2"]["no_load_speed"] == pytest.approx(50 * math.pi / 30)
+    assert {"5500", "6500"} <= s.unread
+
+
+def test_smallest_and_largest_figure_alone_are_a_range():
+    s = sheet("""
+        Model | No-load speed [rpm] | | Resistance [Ω] | Nominal torque [Nm] | Maximum torque [Nm]
+         | min | max | | |
+        A-1 | 5500 | 6500 | 1.2 | 0.1 | 0.3
+        A-2 | 4500 | 5500 | 1.5 | 0.2 | 0.6
+    """)
+    assert s.motors()["A-1"]["no_load_speed"] == pytest.approx(6000 * math.pi / 30)
+    assert s.motors()["A-2"]["peak_torque"] == 0.6

@@ -35,6 +35,7 @@ from .kind import (
 from .said import convention_of, temperature_of
 from .stated import stated_figures
 from .summaries import take_out_summaries
+from .usual import set_ends_aside
 
 REFERENCE_FIGURES = ("terminal_resistance", "torque_constant", "back_emf_constant")
 """Figures whose temperature is the one that a motor's figures hold for."""
@@ -65,6 +66,7 @@ class Decisions:
             else self._told_ids() or id_field(table) or first_codes(table)
         )
         take_out_summaries(table, self.id_field, self.unread)
+        set_ends_aside(table)
         if self.id_field is not None:
             by_frame_and_winding(table, self.id_field)
         self.style = self._style()

@@ -75,6 +75,9 @@ class Candidates:
         if f.part:
             self.refusals[i] = (f'"{f.part}" stands over it: no figure of the motor', ())
             return []
+        if f.aside:
+            self.refusals[i] = (f.aside, ())
+            return []
         if f.label.forced:
             offer(f.label.forced, EXACT, "the heading is the quantity's own name")
         for phrase in f.label.names:

@@ -200,7 +200,7 @@ class Matcher(Candidates):
         return Match(f, "unread", None, cands[0].score if cands else 0.0, [], reason, guesses)
 
     def _point(self, f: Field) -> tuple[str, str] | None:
-        if f.part:
+        if f.part or f.aside:
             return None
         for phrase in f.label.names:
             section = phrase.section or f.section
@@ -245,7 +245,7 @@ class Matcher(Candidates):
         return "not understood", guesses or self._by_unit(f)
 
     def _by_unit(self, f: Field) -> tuple[str, ...]:
-        if f.label.other or f.part:
+        if f.label.other or f.part or f.aside:
             return ()
         for text in f.units:
             unit = unit_of(text)
