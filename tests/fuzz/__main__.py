@@ -1,4 +1,4 @@
-"""``python -m tests.fuzz --inputs N --seed S``: of N inputs 1 in 500 is a file, 1 in 200 a table."""
+"""``python -m tests.fuzz --inputs N --seed S``: 1 in 500 inputs is a file, 1 in 200 a table."""
 
 from __future__ import annotations
 

@@ -391,7 +391,8 @@ def test_quantity_of_a_requirement(text: str, accepts: tuple[str, ...], value: f
 @pytest.mark.parametrize(
     ("text", "accepts", "words"),
     [
-        ("0.3", TORQUE, "N·m would do"), ("0.3 V", TORQUE, "another quantity; N·m"), ("3000", SPEED, "rad/s"),
+        ("0.3", TORQUE, "N·m would do"), ("0.3 V", TORQUE, "another quantity; N·m"),
+        ("3000", SPEED, "rad/s"),
         ("50 Hz", SPEED, "radians or turns"), ("0,3 N·m", TORQUE, "decimal sign"),
         ("1,500 rpm", SPEED, "comma"), ("< 5 A", ("A",), "one plain number"),
         ("-", ("A",), "wanted"),
