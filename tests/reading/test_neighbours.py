@@ -52,8 +52,11 @@ def test_a_group_of_headings_under_another_part_gives_no_figure():
     ("Lagerträgheitsmoment", "kgcm²"), ("Lüfterinduktivität", "mH"), ("Netzdrehmoment", "Nm"),
     ("Nebenspannung", "V"), ("Raddrehmoment", "Nm"), ("Geberspannungskonstante", "V/1000 1/min"),
     ("Constante del tacogenerador", "V/1000 rpm"), ("許容慣性モーメント", "kg·cm²"),
+    ("Load torque", "Nm"), ("Load speed", "rpm"), ("Acceleration torque", "Nm"),
+    ("Lastmoment", "Nm"), ("Beschleunigungsmoment", "Nm"), ("Spulenwiderstand", "Ohm"),
+    ("Vitesse de charge", "tr/min"), ("负载转矩", "Nm"), ("負荷回転数", "rpm"),
 ])  # fmt: skip
-def test_another_first_part_of_a_compound_is_another_word(heading, unit):
+def test_what_is_another_parts_or_the_loads_is_no_figure_of_the_motor(heading, unit):
     s = sheet(f"Type | Torque constant [Nm/A] | {heading} [{unit}]\nA | 0.4 | 7")
     assert s.motors() == {"A": {"torque_constant": 0.4}}
     assert heading in " ".join(s.unread)

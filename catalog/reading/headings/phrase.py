@@ -197,6 +197,8 @@ def _exact(form: tuple[str, ...]) -> tuple[tuple[str, ...], str | None, float]:
     if names or generic:
         return tuple(sorted(names or ())), generic, EXACT
     core = without_fillers(form)
+    if key in lex.others:
+        return (), None, 0.0  # "vitesse de charge" is none en charge
     if core and core != form:
         short = squeeze(core)
         names = lex.names.get(short) or lex.short.get(short)
@@ -227,6 +229,8 @@ def match_phrase(text: str) -> Phrase:
     section = section_of(text)
     if section:
         return Phrase(text, (), 0.0, section=section)
+    if squeeze(form) in lexicon().others:
+        return Phrase(text, rest=form, other=text)  # "load torque" is no torque under load
     stripped = _stripped(text, form)
     if stripped is not None:
         return stripped
@@ -323,7 +327,7 @@ def _other(text: str, form: tuple[str, ...]) -> str | None:
             if squeeze(form[i : i + n]) in lex.others:
                 return " ".join(form[i : i + n])
     if is_cjk(text):
-        run = squeeze(form)
+        run = re.sub(r"[無无](?:負荷|负载|負載)", "", squeeze(form))  # no load is no load's figure
         hits = [w for w in lex.others if is_cjk(w) and w in run]
         return max(hits, key=len) if hits else None
     return None
