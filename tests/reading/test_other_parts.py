@@ -106,3 +106,47 @@ def test_smallest_and_largest_figure_alone_are_a_range():
     """)
     assert s.motors()["A-1"]["no_load_speed"] == pytest.approx(6000 * math.pi / 30)
     assert s.motors()["A-2"]["peak_torque"] == 0.6
+
+
+@pytest.mark.parametrize("heads", ["Specified | Measured", "Sollwert | Messwert"])
+def test_specified_and_measured_figures_are_one_motors(heads):
+    s = sheet(f"""
+        Parameter | Unit | {heads}
+        No-load speed | rad/s | 600 | 610
+        Torque constant | mNm/A | 30 | 31
+        Resistance | Ω | 1.2 | 1.25
+    """)
+    (figures,) = s.motors().values()
+    assert figures == {"no_load_speed": 600, "torque_constant": 0.03, "terminal_resistance": 1.2}
+    assert {"610", "31", "1.25"} <= s.unread
+
+
+def test_bare_figures_under_tolerance_are_listed():
+    s = sheet("""
+        Parameter | Unit | A-1 | Tolerance
+        Torque constant | mNm/A | 30 | 3
+        Resistance | Ω | 1.2 | 0.15
+    """)
+    assert s.motors() == {"A-1": {"torque_constant": 0.03, "terminal_resistance": 1.2}}
+    assert {"3", "0.15"} <= s.unread
+
+
+@pytest.mark.parametrize("title", ["シリーズ Series NW", "NW series", "Baureihe NW"])
+def test_a_line_without_a_colon_names_the_series(title):
+    s = sheet(f"""
+        {title} | |
+        Parameter | Unit | A-1
+        Torque constant | mNm/A | 30
+        Resistance | Ω | 1.2
+    """)
+    assert s.batch.series == ["NW"]
+
+
+def test_cells_of_two_values_are_listed_as_such():
+    s = sheet("""
+        Model | Voltage | Torque constant [mNm/A] | Resistance [Ω]
+        A-1 | 24 V/36 V | 30 | 1.2
+        A-2 | 24 V/48 V | 31 | 1.3
+    """)
+    assert "nominal_voltage" not in s.motors()["A-1"]
+    assert [u.reason for u in s.reading.unread] == ["more than one number"]

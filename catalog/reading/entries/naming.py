@@ -11,6 +11,13 @@ _SENTENCE_END = re.compile(r"[;；。]|(?:(?<=[a-z]{4})|(?<=\)))\.\s+(?=\w)")
 """Where a name in a title line ends; "Co." and "Corp." end none."""
 
 
+_SERIES = re.compile(
+    r"(?:^|\s)(?:(?:(?i:series|baureihe|serie|série)|シリーズ名?|系列)\s+)+([A-Z][A-Z\d-]+)$"
+    r"|^([A-Z][A-Z\d-]+)\s+(?:(?i:series|baureihe|serie|série)|シリーズ|系列)$"
+)
+"""A line that names the series without a colon: the name is a code in capitals."""
+
+
 def motor_names(
     table: Table,
     stem: str,
@@ -57,7 +64,9 @@ def titled(table: Table, key: str) -> str | None:
                 continue
             if any(key in p.keys for p in parse_label(heading).names):
                 return _SENTENCE_END.split(text.strip())[0].strip()
-    return None
+    lines = (plain(t).strip() for title in table.titles for t in title.split("\n"))
+    named = (_SERIES.search(line) for line in lines if key == "series")
+    return next((found[1] or found[2] for found in named if found), None)
 
 
 def _title_name(table: Table) -> str | None:

@@ -12,18 +12,25 @@ def take_out_summaries(table: Table, ids: Field | None, unread: list[Unread]) ->
     """Take rows and columns that are no motors out of a table; their cells are listed.
 
     Columns "Min", "Typ", "Max" without any motor beside them are one motor's: its usual figures
-    stay, or the range between the others.
+    stay, or the range between the others. Of "Specified" beside "Measured" the first stays.
     """
     if table.continuation is not None:
         return
-    names = list(table.part_numbers) or (ids.texts if ids is not None else [])
+    names: list[str | None] = list(table.part_numbers) or (
+        list(ids.texts) if ids is not None else []
+    )
     if len(names) != table.count or not any(names):
         return
     ends = [end_of(name or "") for name in names]
     if all(ends) and len(set(ends)) > 1 and len(set(ends)) == len(ends):
         _fold(table, ids, [end or "" for end in ends], unread)
         return
-    odd = [k for k, name in enumerate(names) if name and _sums_up(name)]
+    stated = [k for k, name in enumerate(names) if name and _is_role(name, "specified")]
+    found = [k for k, name in enumerate(names) if name and _is_role(name, "measured")]
+    if len(stated) == 1 and found and all(n and (_sums_up(n) or _origin(n)) for n in names):
+        _keep_stated(table, ids, names, stated[0], unread)
+        return
+    odd = [k for k, name in enumerate(names) if name and (_sums_up(name) or _origin(name))]
     if not odd or len(odd) == len(names):
         return
     for f in table.fields:
@@ -37,8 +44,37 @@ def take_out_summaries(table: Table, ids: Field | None, unread: list[Unread]) ->
 def _sums_up(name: str) -> bool:
     if re.fullmatch(r"[Δ∆σ\s%]+", name):
         return True
+    return _is_role(name, "summary")
+
+
+def _origin(name: str) -> bool:
+    return _is_role(name, "specified") or _is_role(name, "measured")
+
+
+def _is_role(name: str, role: str) -> bool:
     form = canonical(tokens(re.sub(r"[%±.:Δ]", " ", plain(name))))
-    return "summary" in lexicon().roles.get(squeeze(form), ())
+    return role in lexicon().roles.get(squeeze(form), ())
+
+
+def _keep_stated(
+    table: Table, ids: Field | None, names: list[str | None], kept: int, unread: list[Unread]
+) -> None:
+    """One motor of columns "Specified", "Measured" and the like: what is specified stands."""
+    reason = f'the figure under "{plain(names[kept] or "")}" is taken'
+    for f in table.fields:
+        for k in range(len(names)):
+            if f.texts[k] and f is not ids and k != kept:
+                _list(table, f, k, reason, unread)
+    _nameless(table, ids, kept)
+    table.remarks.append("columns of specified and measured figures are read as one motor")
+
+
+def _nameless(table: Table, ids: Field | None, kept: int) -> None:
+    _keep(table, [kept])
+    if table.part_numbers:
+        table.part_numbers = [None]
+    if ids is not None:
+        ids.texts = [""]
 
 
 def _list(table: Table, f: Field, k: int, reason: str, unread: list[Unread]) -> None:
@@ -71,9 +107,5 @@ def _fold(table: Table, ids: Field | None, ends: list[str], unread: list[Unread]
                     _list(table, f, k or 0, "the usual figure beside it is taken", unread)
         elif low or high:
             f.texts[first] = f"{low}…{high}" if low and high else f"≥ {low}" if low else f"≤ {high}"
-    _keep(table, [first])
-    if table.part_numbers:
-        table.part_numbers = [None]
-    if ids is not None:
-        ids.texts = [""]
+    _nameless(table, ids, first)
     table.remarks.append("columns of smallest, usual and largest figures are read as one motor")

@@ -24,6 +24,9 @@ from .parts import mark_other_parts
 
 _LABEL_AND_FIGURE = re.compile(r"([^\d:]{3,40}?)\s+([<>≤≥~]?\s?\d[\d.,]*\s?\S.*)$")
 
+_BARE = re.compile(r"[\d.,\s]+")
+"""A figure under "Tolerance" or "Remark" that says nothing of the heading: it is listed."""
+
 
 def lay_out_columns(block: Block) -> Table:
     """The table of a block whose headings stand in a column."""
@@ -109,7 +112,7 @@ def lay_out_columns(block: Block) -> Table:
                 if kind == "symbol" and not is_symbol(row[c]) and strength(row[c]) > 0.8:
                     kind = "name"
                 cells.append((kind, row[c]))
-            elif role == "remark" and row[c]:
+            elif role == "remark" and row[c] and not _BARE.fullmatch(plain(row[c])):
                 cells.append(("caption", row[c]))
         cells.sort(key=lambda cell: cell[0] != "caption")
         if not label and not [k for k, _ in cells if k in ("name", "symbol")]:

@@ -13,7 +13,7 @@ from ..headings.phrase import guesses_for
 from ..model import Field
 from .assignment import best_assignment
 from .candidates import Candidate, Candidates
-from .samples import in_cell_units
+from .samples import in_cell_units, why_unreadable
 
 THRESHOLD = 0.6
 CLOSE = 0.03
@@ -146,7 +146,8 @@ class Matcher(Candidates):
             taken[c.key] = i
             return Match(f, "text", c.key, min(c.score, 1.0), [], reason)
         if c.unitless:
-            return Match(f, "unread", None, c.score, [], f"no unit is given for {c.key}", (c.key,))
+            why = why_unreadable(f.texts, self.style) or f"no unit is given for {c.key}"
+            return Match(f, "unread", None, c.score, [], why, (c.key,))
         if c.key in taken:
             return self._again(i, c, taken)
         taken[c.key] = i

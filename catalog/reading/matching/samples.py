@@ -44,3 +44,15 @@ def sample_values(texts: list[str], style: NumberStyle, most: int = 25) -> list[
         if len(values) >= most:
             break
     return values
+
+
+def why_unreadable(texts: list[str], style: NumberStyle) -> str:
+    """Why the first cells under a heading are no figures, where none of them is ('' elsewhere)."""
+    reason = ""
+    for text in texts[:200]:
+        try:
+            if text and read_figure(text, POINT if isinstance(text, Stored) else style):
+                return ""
+        except FigureError as error:
+            reason = reason or error.reason
+    return reason
