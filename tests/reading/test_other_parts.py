@@ -150,3 +150,23 @@ def test_cells_of_two_values_are_listed_as_such():
     """)
     assert "nominal_voltage" not in s.motors()["A-1"]
     assert [u.reason for u in s.reading.unread] == ["more than one number"]
+
+
+@pytest.mark.parametrize(
+    ("caption", "name"),
+    [
+        ("Frein à manque de courant", "Tension nominale"),
+        ("Ruhestrombremse", "Nennspannung"),
+        ("Spring-applied brake", "Rated voltage"),
+        ("無励磁作動ブレーキ", "定格電圧"),
+    ],
+)
+def test_figures_under_a_kind_of_brake_are_not_the_motors(caption, name):
+    s = sheet(f"""
+        Type | | A-1 | A-2
+        Torque constant | Nm/A | 0.4 | 0.8
+        {caption} | | |
+        {name} | V | 24 | 24
+    """)
+    assert s.motors() == {"A-1": {"torque_constant": 0.4}, "A-2": {"torque_constant": 0.8}}
+    assert "24" in s.unread
