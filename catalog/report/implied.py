@@ -8,10 +8,11 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from ...schema.reconcile.adjust import Problem, fit
+from ...schema.reconcile.adjust import fit
 from ...schema.reconcile.inference import infer
 from ...schema.reconcile.model import FIGURES, INDEX
 from ...schema.reconcile.observed import observe
+from ...schema.reconcile.problem import Problem
 from ...schema.reconcile.relations import FAMILY
 from ...schema.reconcile.suspects import leave_out, own_sd, predicted
 from ...schema.reconcile.table import readings, sample, scale

@@ -6,10 +6,11 @@ from dataclasses import dataclass
 import numpy as np
 
 from ..batch import Floats
-from .adjust import Problem, misfit
+from .adjust import misfit
 from .causes import causes_of
 from .evidence import TableEvidence
 from .model import F
+from .problem import Problem
 from .suspects import DEPARTURE, GAIN, leave_out, own_sd
 from .verdicts import CLEAR_ALL, CLEAR_FIT, IMPLAUSIBLE
 

@@ -5,10 +5,11 @@ from numpy.typing import NDArray
 
 from ..batch import Batch, Floats
 from ..motor import CANONICAL, CONSTANT_BASES, ConstantColumn
-from .adjust import Fit, Problem
+from .adjust import Fit
 from .equations import product
 from .model import FIGURES, I0, B, J, K, L, P, R, linear_matrix
 from .observed import copper, magnet_slope
+from .problem import Problem
 
 ROWS: dict[str, dict[int, float]] = {
     "torque_constant": {K: 1.0},

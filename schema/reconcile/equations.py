@@ -1,7 +1,6 @@
 """The normal equations of a chunk of motors, laid out motor by motor in memory's fastest axis."""
 
 from collections.abc import Iterator
-from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import NDArray
@@ -9,9 +8,7 @@ from numpy.typing import NDArray
 from ..batch import Floats
 from .cholesky import Factor, factor
 from .model import P, Slopes, family_matrix, linear_matrix, nonlinear_rows, ridge
-
-if TYPE_CHECKING:
-    from .adjust import Problem
+from .problem import Problem
 
 Rows = Iterator[tuple[Floats, Floats, Slopes]]
 
@@ -39,7 +36,7 @@ class Equations:
     as (A·(A+1)/2, n): a nonlinear row then adds whole contiguous vectors.
     """
 
-    def __init__(self, problem: "Problem", active: NDArray[np.int64] | None = None) -> None:
+    def __init__(self, problem: Problem, active: NDArray[np.int64] | None = None) -> None:
         self.problem = problem
         self.all_weights = problem.weights()
         self.laws = problem.law_weights()

@@ -10,10 +10,11 @@ import numpy as np
 
 from ..batch import Batch, Floats
 from ..vocabulary import quantity
-from .adjust import Fit, Problem
+from .adjust import Fit
 from .causes import CAUSES, CODE, leaves, log_normal, shape, static_scores
 from .model import FIGURES, I0, IN, INDEX, R, U
 from .observed import copper, magnet_slope
+from .problem import Problem
 from .suspects import LeftOut
 
 SLACK = 0.7

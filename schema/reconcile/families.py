@@ -11,8 +11,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..batch import Batch, Floats
-from .adjust import Fit, Problem, fit
+from .adjust import Fit, fit
 from .model import family_matrix
+from .problem import Problem
 
 TOLERANCE = np.array([0.05, 0.05, 0.05, 0.10])
 """Agreement of a family about its median: motor constant, inertia, La/Ra, friction torque."""

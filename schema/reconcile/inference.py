@@ -13,10 +13,11 @@ import numpy as np
 
 from ..batch import Batch, FigureColumn
 from ..convention import Commutation, Convention
-from .adjust import Problem, misfit
+from .adjust import misfit
 from .causes import CURRENTS
 from .model import FIGURES
 from .observed import to_model, usable
+from .problem import Problem
 from .table import sample
 
 SURE = 9.0

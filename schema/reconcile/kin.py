@@ -4,8 +4,9 @@ import numpy as np
 
 from ..batch import Batch, Floats
 from ..written import number
-from .adjust import Problem, fit
+from .adjust import fit
 from .families import groups
+from .problem import Problem
 from .suspects import Bools, Suspicion, predicted
 
 UNTOLD = 0.35

@@ -9,8 +9,8 @@ from numpy.typing import NDArray
 from ..batch import MAGNETS, Batch, FigureColumn, Floats
 from ..convention import Commutation, Convention, to_dc
 from ..vocabulary import quantity
-from .adjust import Problem, bound_laws
 from .model import FAMILY_ROWS, FIGURES, POINT_FIGURES, F, Readings
+from .problem import Problem, bound_laws
 
 EXACT = 1e-3
 """Relative standard deviation of a figure that counts as exact: the voltage of the sheet."""

@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 from ..batch import Batch
 from ..motor import CONSTANT_BASES, ConstantColumn, Finding, Reconciled
 from . import checks
-from .adjust import Fit, Problem, fit
+from .adjust import Fit, fit
 from .columns import ColumnFault, column_faults
 from .constants import constants, joined
 from .evidence import Evidence, TableEvidence
@@ -27,6 +27,7 @@ from .model import FIGURES, Readings
 from .observed import observe
 from .operating_points import fit_points
 from .portion import portion
+from .problem import Problem
 from .suspects import Suspicion, doubtful
 from .table import readings, sample, scale
 from .verdicts import judge

@@ -11,9 +11,10 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..batch import Floats
-from .adjust import Fit, Problem, fit, relinearised
+from .adjust import Fit, fit, relinearised
 from .equations import product
 from .model import I0, IN, INDEX, IPK, NN, PEAK_BAND, F, K, R, U, linear_matrix
+from .problem import Problem
 
 GAIN = 12.0
 """χ² that leaving a figure out must save before it counts as a contradiction."""

@@ -14,9 +14,10 @@ from numpy.typing import NDArray
 
 from ..batch import Floats
 from ..vocabulary import quantity
-from .adjust import Problem, fit, misfit
+from .adjust import fit, misfit
 from .evidence import Evidence
 from .model import FIGURES
+from .problem import Problem
 from .suspects import Suspicion, predicted
 
 FAULT = -4.0

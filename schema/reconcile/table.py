@@ -6,8 +6,9 @@ from dataclasses import replace
 import numpy as np
 
 from ..batch import Floats
-from .adjust import Problem, misfit
+from .adjust import misfit
 from .model import INDEX, LAW_BINDS, LAW_SCATTER, Readings
+from .problem import Problem
 
 SAMPLE = 240
 """Motors of a table that decide what concerns the whole table."""

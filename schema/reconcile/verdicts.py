@@ -6,9 +6,10 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..batch import Floats
-from .adjust import Problem, misfit
+from .adjust import misfit
 from .causes import causes_of
 from .evidence import Evidence
+from .problem import Problem
 from .suspects import (
     GAIN,
     Bools,
