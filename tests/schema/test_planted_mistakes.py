@@ -83,6 +83,11 @@ def written(key: str, value: float) -> str:
     return f"{number(value / factor, 3)} {unit}".strip()
 
 
+def times(ratio: float | None) -> str:
+    assert ratio is not None
+    return f"{number(ratio, 3)} times" if ratio > 0.2 else f"1/{number(1 / ratio, 3)} of"
+
+
 def sources(result: Reconciled, row: int) -> set[str]:
     return {key for c in result.constants.values() for key in c.sources[c.source[row]]}
 
@@ -124,11 +129,10 @@ def test_one_wrong_figure(kind: Commutation, cause: str, key: str, factor: float
     assert sources(result, ROW)
     holds(s, result, ROW)
     # the sentence
-    text, r = found.message, found.ratio
-    times = f"{number(r, 3)} times" if r > 0.2 else f"1/{number(1 / r, 3)} of"
+    text = found.message
     start = f"{in_words(key)} {printed(s, key)} (row {ROW + 2}, column {column.column[ROW]}) is "
     assert text.lower().startswith(start.lower())
-    assert f"is {times} what " in text
+    assert f"is {times(found.ratio)} what " in text
     assert f" ({written(key, found.implied.value)}): " in text
     said = "None of the usual mistakes" if cause == "unexplained" else f"Likely {SENTENCES[cause]}"
     assert text.count(said) == 1
@@ -255,9 +259,7 @@ def test_a_whole_column(kind: Commutation, key: str, factor: float, cause: str) 
     assert found.implied.value == pytest.approx(s.figures[key][0], rel=0.05)
     assert found.cell is not None
     assert found.cell.row == 2
-    assert f'under the heading "{key}" is {number(found.ratio, 3)} times' in found.message or (
-        f'under the heading "{key}" is 1/{number(1 / found.ratio, 3)} of' in found.message
-    )
+    assert f'under the heading "{key}" is {times(found.ratio)} what ' in found.message
     assert f"alike for 6 motors: X0 has {printed(s, key, 0)} (row 2, " in found.message
     assert f"implied is {written(key, found.implied.value)} (" in found.message
     assert "One mistake in the heading" in found.message
