@@ -170,3 +170,15 @@ def test_figures_under_a_kind_of_brake_are_not_the_motors(caption, name):
     """)
     assert s.motors() == {"A-1": {"torque_constant": 0.4}, "A-2": {"torque_constant": 0.8}}
     assert "24" in s.unread
+
+
+def test_minutes_of_a_time_constant_are_no_smallest_figure():
+    s = sheet("""
+Part No. | Thermal time constant winding [s] | Thermal time constant housing [s] | \
+Thermal time constant housing [min] | Torque constant [mNm/A] | Terminal resistance [Ω]
+TT-1 | 9 | 600 | | 20 | 1.2
+TT-2 | 9 | | 22 | 40 | 4.8
+""")
+    motors = s.motors()
+    assert motors["TT-1"]["thermal_time_constant_housing"] == 600
+    assert motors["TT-2"]["thermal_time_constant_housing"] == 22 * 60

@@ -6,6 +6,7 @@ from collections import defaultdict
 from dataclasses import replace
 
 from ....schema.figure.signs import plain
+from ....schema.vocabulary import quantity
 from ..headings.ends import end_of
 from ..headings.label import parse_label
 from ..headings.lexicon import find_symbol, tokens
@@ -63,12 +64,20 @@ def _divided(f: Field) -> tuple[tuple[str, ...], str, bool]:
     text = " \n ".join((*f.captions, f.label.text))
     text = re.sub(r"[\[(]([^\[\]()]*)[\])]", _not_a_unit, plain(text))
     words = tokens(text)
+    if _in_minutes(f):
+        return words, "", False
     for at in (len(words) - 1, 0):
         end = end_of(words[at]) if len(words) > 1 else None
         weak = end is not None and words[at] in _WEAK
         if end and not (weak and at == 0):
             return words[:at] + words[at + 1 :], end, not weak
     return words, "", False
+
+
+def _in_minutes(f: Field) -> bool:
+    """Whether "min" is the unit of a time: a thermal time constant [min]."""
+    keys = {f.label.forced} if f.label.forced else _names_of(f)
+    return f.label.units[:1] == ("min",) and any(k and "s" in quantity(k).accepts for k in keys)
 
 
 def _not_a_unit(bracket: re.Match[str]) -> str:
