@@ -18,7 +18,11 @@ class ChosenUnit:
     unit: Unit
 
     def in_convention(self, convention: dict[str, Any] | None) -> Convention | None:
-        """The convention to convert to, or None where the unit names none."""
+        """The convention to convert to, or None where the unit names none.
+
+        Lines and phase differ by star or delta: where that is not known, the figure stays as
+        it is, and its heading says so.
+        """
         marks = self.unit.marks
         if not marks:
             return None
@@ -29,7 +33,7 @@ class ChosenUnit:
             changes["current"] = kind
         if kind and old.voltage is not None and old.current is None:
             changes["voltage"] = kind
-        if "lines" in marks or "phase" in marks:
+        if old.between and old.connection and ("lines" in marks or "phase" in marks):
             changes["between"] = "lines" if "lines" in marks else "phase"
         return old.with_(**changes)
 

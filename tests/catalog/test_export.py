@@ -9,6 +9,8 @@ from pathlib import Path
 import pytest
 
 from motorfolio.catalog.exporting import inert
+from motorfolio.catalog.exporting.units import ChosenUnit
+from motorfolio.schema.units.read import read_unit
 
 from .conftest import TABLE
 
@@ -203,3 +205,17 @@ def test_a_parquet_file_that_is_damaged_stores_nothing(run, tmp_path, catalog_fi
     assert "the Parquet file is damaged" in err
     assert err.count("\n") == 1
     assert not catalog_file.exists()
+
+
+@pytest.mark.parametrize(
+    ("printed", "asked", "kept"),
+    [
+        ({"between": "lines", "connection": "delta"}, "Ω phase", "phase"),
+        ({"between": "lines"}, "Ω phase", "lines"),
+        ({}, "Ω phase", None),
+    ],
+)
+def test_lines_become_a_phase_only_where_star_or_delta_is_known(printed, asked, kept):
+    wanted = ChosenUnit(read_unit(asked, ("Ω",))).in_convention(printed)
+    assert wanted is not None
+    assert wanted.between == kept
