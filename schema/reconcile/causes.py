@@ -39,7 +39,6 @@ CURRENTS = frozenset({
     "peak_current",
 })  # fmt: skip
 POWERS = frozenset({"rated_power", "maximum_power"})
-EFFICIENCIES = frozenset({"maximum_efficiency", "rated_efficiency"})
 
 OUNCE_INCH = 7.06155181422604  # mN·m
 POUND_INCH = 0.112984829027617  # N·m

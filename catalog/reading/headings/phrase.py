@@ -10,7 +10,7 @@ from rapidfuzz.distance import OSA, Postfix
 from ....schema.figure.signs import plain
 from .lexicon import canonical, is_cjk, lexicon, squeeze, tokens, without_fillers
 
-EXACT, SHORTENED, TYPO, CONTAINED = 1.0, 0.96, 0.85, 0.45
+EXACT, SHORTENED, TYPO = 1.0, 0.96, 0.85
 
 COMPOSED: dict[tuple[str, str], str] = {
     ("no_load", "speed"): "no_load_speed",

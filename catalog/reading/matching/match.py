@@ -50,7 +50,6 @@ class Match:
     when: str = ""
     point: tuple[str, str] | None = None
     forced_convention: tuple[str, ...] = ()
-    factor_repair: float | None = None
 
 
 class Matcher(Candidates):
