@@ -49,7 +49,7 @@ def _published(motor: Document) -> Iterator[RenderableType]:
     yield _figures(motor["figures"], _marks(motor["findings"]), "As published")
     for key, repeats in motor.get("repeats", {}).items():
         for figure in repeats:
-            yield Text(f"  {p.words(key)}, given again: {_printed(figure)}")
+            yield Text(f"  {p.words(key)}, given again: {p.printed(figure)}")
     for condition in motor.get("conditions", ()):
         yield _figures(condition["figures"], {}, f"When {p.plain(condition['when'])}")
     for point in motor.get("points", ()):
@@ -149,12 +149,8 @@ def _figures(figures: Mapping[str, Document], marks: Mapping[str, str], title: s
         si = "" if isinstance(value, str) else p.quantity(value, unit)
         severity = marks.get(key)
         sign = Text(SIGNS[severity], style=STYLES[severity]) if severity else ""
-        table.add_row(*_cells((sign, p.words(key), _printed(f), si, p.plain(note), p.place(f))))
+        table.add_row(*_cells((sign, p.words(key), p.printed(f), si, p.plain(note), p.place(f))))
     return table
-
-
-def _printed(f: Document) -> str:
-    return p.plain(" ".join(filter(None, (f["text"], f.get("printed_unit")))))
 
 
 def finding_lines(findings: Sequence[Document]) -> Iterator[Text]:

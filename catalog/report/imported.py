@@ -244,10 +244,9 @@ def _print_cells(out: Console, motors: Iterable[Document]) -> None:
                 (f"{key} ({condition['when']})", f) for key, f in condition["figures"].items()
             ]
         for key, figure in figures:
-            printed = " ".join(filter(None, (figure["text"], figure.get("printed_unit"))))
             value = figure["value"]
             si = value if isinstance(value, str) else p.quantity(value, figure["unit"], 6)
-            cells = (f"  {brief(key)}", p.place(figure), printed, si)
+            cells = (f"  {brief(key)}", p.place(figure), p.printed(figure), si)
             shown.add_row(*(Text(p.plain(cell)) for cell in cells))
     out.print(shown)
 

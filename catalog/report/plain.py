@@ -14,6 +14,7 @@ __all__ = [
     "percent",
     "place",
     "plain",
+    "printed",
     "quantity",
     "scale",
     "when",
@@ -29,6 +30,20 @@ _UNSAFE = re.compile("[\x00-\x1f\x7f-\x9f\u061c\u200e\u200f\u2028-\u202e\u2066-\
 def plain(text: str) -> str:
     """The text with control characters made visible, so that a sheet can't steer the terminal."""
     return _UNSAFE.sub(lambda sign: " " if sign[0] in "\n\t\r" else f"\\x{ord(sign[0]):02x}", text)
+
+
+_UNIT_OF_ITS_OWN = re.compile(
+    r"\d[\d.,'’\s]*(?:[eE][+-]?\d+)?\s*(?!(?:maxi?|mini?|typ|ca|approx)\b|[eE][+-]?\d)[^\W\d_Ø×]"
+    r"|\d\s*[%°\"]"
+)
+
+
+def printed(figure: dict) -> str:
+    """A figure as the sheet has it, with its heading's unit where the cell has none of its own."""
+    text, unit = figure.get("text") or "", figure.get("printed_unit")
+    if not unit or _UNIT_OF_ITS_OWN.search(text):
+        return plain(text)
+    return plain(f"{text} {unit}".strip())
 
 
 def interval(low: float | None, high: float | None, digits: int = 4) -> str:

@@ -173,5 +173,4 @@ def _hanging(text: str) -> Padding:
 def _printed(figure: Document | None) -> str:
     if figure is None:
         return "not given"
-    text = " ".join(filter(None, (figure.get("text"), figure.get("printed_unit"))))
-    return p.plain(text) or _amount(figure)
+    return p.printed(figure) or _amount(figure)

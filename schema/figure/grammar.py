@@ -34,6 +34,7 @@ class Figure:
     ``tolerance`` holds the printed deviations (lower, upper) in the figure's own unit.
     ``other`` is the value under the other decimal sign, where the digits alone allow it.
     ``also`` is a second figure of the same cell: "0.28 (39.6)", "24 V (28 V)".
+    ``condition`` is the text of what the value holds under: "0.9 A @ 10 V", "85 A/60 s".
     """
 
     text: str
@@ -46,6 +47,7 @@ class Figure:
     marks: tuple[str, ...] = ()
     tolerance: tuple[float, float] | None = None
     other: float | None = None
+    condition: str = ""
 
 
 _QUALIFIERS = {
@@ -81,6 +83,14 @@ _RANGE = re.compile(
     r"\s*(?:\.{2,3}|~|÷)\s*|\s+(?:to|bis|à|a|al|do)\s+|\s+-\s+|(?<![\s^])-(?=[\d.,])|至|から"
 )
 _BRACKET = re.compile(r"\s*(?:\((?P<a>[^()]*)\)|\[(?P<b>[^\[\]]*)\]|\{(?P<c>[^{}]*)\})\s*")
+# "@ 10 V", "(at 3000 rpm)", "/60 s": another amount, in another unit, behind the figure. A bare
+# "/" also divides units (V/1000 rpm), so only what no unit has stands behind it.
+_CONDITION = re.compile(
+    r"\s*(?P<open>\()?\s*(?:(?P<at>@|(?<![^\W\d_])(?:at|bei)(?=[\s\d]))|(?P<for>(?<![^\W\d_])"
+    r"(?:à|a|con|for|für|pour|per|during|während|sous)(?=\s))|[/,])\s*"
+    rf"(?P<amount>[+-]?{DIGITS})\s*(?P<unit>(?(at)[^\d\s()]|(?(for)[^\d\s()]|(?:V(?:\s?[AD]C)?|s|sec)$))"
+    r"[^\d()]*(?:\^?-1)?|1/min)(?(open)\))$"
+)
 # Digits that belong to a unit: powers, "V/1000 rpm", "10^-4 kgm2", "1/min".
 _UNIT_DIGITS = re.compile(
     r"(?<=[/(×x* ])1[., ']?000(?!\d)|(?:(?<=[/(×x*· ])|^)10\^?[+-]?\d\b"
@@ -250,6 +260,9 @@ class CellReader:
         """What follows the first number: tolerance, second end of a range, second figure, unit."""
         if re.match(r"_|[xX][\dA-Fa-f]|(?![AV]_(?:rms|eff|pk|peak)\b)[^\W\d_]*\d*_", tail):
             raise self.fail("not written as a decimal number")
+        found = self._under_condition(figure, tail)
+        if found is not None:
+            return found
         for step in (self._with_tolerance, self._with_unequal, self._with_range, self._with_second):
             found = step(figure, tail)
             if found is not None:
@@ -267,6 +280,17 @@ class CellReader:
                 tail = tail[: end.start()]
         figure = replace(figure, unit=self._unit(figure, tail))
         return self._qualified(figure, qualifier)
+
+    def _under_condition(self, figure: Figure, tail: str) -> Figure | None:
+        """A figure behind which another amount says when it holds."""
+        at = _CONDITION.search(tail)
+        if at is None:
+            return None
+        own, unit = tail[: at.start()].strip(), at["unit"].strip()
+        if own.endswith(unit) or (at["at"] is None and not re.search(r"[^\W\d_]", own)):
+            return None  # "24 V/36 V", "12 a 24 V": two of one kind
+        found = self._tail(figure, own)
+        return replace(found, condition=f"{at['amount']} {unit}")
 
     def _unit(self, figure: Figure, tail: str) -> str:
         """The unit text behind a number; refuses further numbers, which it would hide."""

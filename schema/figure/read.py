@@ -126,7 +126,7 @@ def read_column(
         others[i] = figure
         if figure.other is not None:
             column.doubtful.append(i)
-        if figure.qualifier or figure.unit or figure.also or figure.marks:
+        if figure.qualifier or figure.unit or figure.also or figure.marks or figure.condition:
             column.figures[i] = figure
     column.value = np.array(value)
     column.low, column.high = column.value - half, column.value + half

@@ -190,3 +190,22 @@ def test_options_and_lost_powers_are_listed(heading, cell):
     s = sheet(f"Type | Torque constant [Nm/A] | {heading}\nA | 0.3 | {cell}")
     assert s.motors() == {"A": {"torque_constant": 0.3}}
     assert cell in s.unread
+
+
+@pytest.mark.parametrize(("heading", "key", "cell", "expected"), [
+    ("n nom [rpm]", "nominal_speed", "3000", 3000 * RPM),
+    ("M nom [mNm]", "nominal_torque", "100", 0.1),
+    ("I nom [A]", "nominal_current", "2.1", 2.1),
+    ("tau_m [ms]", "mechanical_time_constant", "5", 0.005),
+    ("tau el [ms]", "electrical_time_constant", "0.5", 0.0005),
+])  # fmt: skip
+def test_symbols_spelled_out(heading, key, cell, expected):
+    s = sheet(f"Type | Ra [Ohm] | {heading}\nA | 1.2 | {cell}")
+    assert s.motors()["A"][key] == pytest.approx(expected)
+
+
+def test_value_is_no_part_number_and_a_code_in_the_corner_is_one():
+    body = "\n".join(("Nominal voltage | 24 | V", "Torque constant | 49.5 | mNm/A"))
+    assert set(sheet(f"Part | Value | Unit\n{body}").motors()) == {"plate"}
+    assert set(sheet(f"QX-22 | Value | Unit\n{body}").motors()) == {"QX-22"}
+    assert set(sheet(f"Parameter | Value | Unit\n{body}").motors()) == {"plate"}

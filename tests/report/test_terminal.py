@@ -10,7 +10,7 @@ from pathlib import Path
 import pytest
 from rich.console import Console
 
-from motorfolio.catalog.report import card, comparison
+from motorfolio.catalog.report import card, comparison, plain
 from motorfolio.catalog.report.screen import paged
 from motorfolio.catalog.store import Catalog
 
@@ -122,3 +122,13 @@ def test_show_with_json_imports_no_terminal_library(catalog):
     )
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, check=False)
     assert done.returncode == 0, done.stderr
+
+
+@pytest.mark.parametrize(("text", "unit", "printed"), [
+    ("24", "V", "24 V"), ("24 V", "V", "24 V"), ("250 g", "kg", "250 g"),
+    ("max 24", "V", "max 24 V"),
+    ("24 typ.", "V", "24 typ. V"), ("1.2e-3", "kg", "1.2e-3 kg"), ("85 %", "1", "85 %"),
+    ("0.9 A @ 10 V", "A", "0.9 A @ 10 V"), ("24", None, "24"), ("1,5", "kg", "1,5 kg"),
+])  # fmt: skip
+def test_a_cell_with_its_own_unit_is_not_given_its_headings_too(text, unit, printed):
+    assert plain.printed({"text": text, "printed_unit": unit}) == printed

@@ -528,3 +528,34 @@ def test_no_likely_text_breaks_the_reader(text: str) -> None:
     assert figure is None or math.isfinite(figure.value)
     column = read_column([text], POINT, note_marks=frozenset({"1", "a"}))
     assert not column.failures
+
+
+@pytest.mark.parametrize(("text", "value", "unit", "condition"), [
+    ("0.9 A @ 10 V", 0.9, "A", "10 V"), ("0.9A/10V", 0.9, "A", "10 V"),
+    ("85 A/60 s", 85, "A", "60 s"), ("40 A, 10 s", 40, "A", "10 s"),
+    ("1.2 Ω at 25 °C", 1.2, "Ω", "25 °C"), ("3000 (at 24V)", 3000, "", "24 V"),
+    ("0.18 N·m bei 3000 min-1", 0.18, "N·m", "3000 min-1"), ("0.42@12V", 0.42, "", "12 V"),
+    ("6 A pour 10 s", 6, "A", "10 s"),
+])  # fmt: skip
+def test_what_a_figure_holds_under_stands_apart(
+    text: str, value: float, unit: str, condition: str
+) -> None:
+    """Common practice, no source: a current at a voltage, a peak for some seconds."""
+    figure = read_figure(text, POINT)
+    assert figure is not None
+    assert (figure.value, figure.unit, figure.condition) == (value, unit, condition)
+
+
+@pytest.mark.parametrize("text", [
+    "24 V/36 V", "12 V at 24 V", "24/36 V", "2.4/60 s", "12 V, 24 V", "5 @ 3 @ 2 V",
+])  # fmt: skip
+def test_two_of_one_kind_are_no_figure_under_a_condition(text: str) -> None:
+    with pytest.raises(FigureError):
+        read_figure(text, POINT)
+
+
+@pytest.mark.parametrize("text", ["5.2 V/1000 rpm", "5.2 V/krpm", "12 a 24 V", "12 V à 24 V"])
+def test_a_divided_unit_and_a_range_are_no_condition(text: str) -> None:
+    figure = read_figure(text, POINT)
+    assert figure is not None
+    assert figure.condition == ""

@@ -198,7 +198,8 @@ class Decisions:
         return np.full(len(lines), f.row, dtype=np.int32), along
 
     def _override(self, f: Field) -> Match | None:
-        names = {squeeze(tokens(t)) for t in (f.heading, f.label.text, *f.label.symbols) if t}
+        spelled = (*f.label.symbols, *(p.text for p in f.label.names))
+        names = {squeeze(tokens(t)) for t in (f.heading, f.label.text, *spelled) if t}
         for table, said in (
             (self.options.overrides, "set by --set"),
             (self.options.kept, "kept for this maker"),

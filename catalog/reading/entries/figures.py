@@ -8,7 +8,7 @@ from typing import TypeVar
 import numpy as np
 
 from ....schema.batch import FigureColumn, Floats, Ints
-from ....schema.figure.read import POINT, ColumnFigures, NumberStyle, read_column
+from ....schema.figure.read import POINT, ColumnFigures, Figure, NumberStyle, read_column
 from ....schema.figure.signs import plain
 from ....schema.units.read import Unit, UnitError, read_unit, unit_of
 from ....schema.vocabulary import Quantity
@@ -35,7 +35,8 @@ class Failure:
 @dataclass(slots=True)
 class Values:
     """One heading's cells in SI; NaN where nothing was read. ``second`` are the figures that
-    stood behind the first in the same cell: in another unit, or with a brake."""
+    stood behind the first in the same cell: in another unit, or with a brake. ``temperatures``
+    in °C are those that single cells hold at."""
 
     value: Floats
     low: Floats
@@ -47,6 +48,7 @@ class Values:
     remarks: list[str] = field(default_factory=list)
     marks: dict[int, tuple[str, ...]] = field(default_factory=dict)
     cell_units: dict[int, Unit] = field(default_factory=dict)
+    temperatures: dict[int, float] = field(default_factory=dict)
 
 
 def _in_si(x: Number, factor: float, offset: float) -> Number:
@@ -198,9 +200,13 @@ def _cells_with_more(
             out.qualifiers[i] = figure.qualifier
         if figure.marks:
             out.marks[i] = figure.marks
-        if figure.also is None:
-            continue
         also = figure.also
+        condition = figure.condition or _of_another_kind(also, q)
+        if condition:
+            _put_condition(out, i, texts[i], q, condition)
+            continue
+        if also is None:
+            continue
         other = units[1] if len(units) > 1 else None
         if also.unit:
             try:
@@ -239,6 +245,30 @@ def _cells_with_more(
             for i, (value, low, high) in found.items():
                 out.second.value[i], out.second.low[i], out.second.high[i] = value, low, high
             break
+
+
+_CONDITIONS = ("V", "s", "°C", "K", "rad/s")
+"""Units of what a figure may hold under."""
+
+
+def _of_another_kind(also: Figure | None, q: Quantity) -> str:
+    """The second amount of "0.42 A (24 V)" as the condition that it is."""
+    unit = unit_of(also.unit) if also is not None and also.unit else None
+    if also is None or unit is None or unit.si in q.accepts or unit.si not in _CONDITIONS:
+        return ""
+    return f"{also.value:.12g} {also.unit}"
+
+
+def _put_condition(out: Values, i: int, text: str, q: Quantity, condition: str) -> None:
+    """What a cell's figure holds under: a temperature is kept as such, all else is told."""
+    amount, _, unit_text = condition.partition(" ")
+    unit = unit_of(unit_text)
+    if unit is not None and unit.si in q.accepts:
+        _refuse(out, i, text, "two figures of one kind")
+    elif unit is not None and unit.si == "°C" and "temperature" in q.carries:
+        out.temperatures[i] = _in_si(float(amount.replace(",", ".")), unit.factor, unit.offset)
+    else:
+        out.remarks.append(f'"{plain(text)}": its condition "{condition}" is not used')
 
 
 def _swapped(first: float, second: float, one: Unit, two: Unit) -> bool:

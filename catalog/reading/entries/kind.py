@@ -157,9 +157,10 @@ _LEGEND = re.compile(r"[\"']?\s*(?P<symbol>\S{1,10})\s*[:=：]\s*(?P<name>.+)")
 def _explains_symbol(sentence: str) -> bool:
     """Whether a clause tells what a symbol means ("Imax: peak current"), not how others hold."""
     found = _LEGEND.match(plain(sentence).strip())
-    return found is not None and bool(
-        find_symbol(found["symbol"]) and match_phrase(found["name"]).keys
-    )
+    if found is None or not find_symbol(found["symbol"]):
+        return False
+    languages = re.split(r"\s/\s", found["name"])
+    return any(match_phrase(name).keys for name in (found["name"], *languages))
 
 
 def note_conventions(text: str) -> dict[str, str]:

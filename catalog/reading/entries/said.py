@@ -78,8 +78,10 @@ def convention_of(m: Match, commutation: Commutation, notes: Notes) -> Conventio
 def cell_conventions(
     figure: FigureColumn, values: Values, q: Quantity, base: Convention, notes: Notes
 ) -> None:
-    """Conventions that single cells state, by their own unit or by a footnote mark."""
-    said: dict[int, dict[str, str]] = {}
+    """Conventions that single cells state: by their own unit, a footnote mark, a temperature."""
+    said: dict[int, dict[str, str | float]] = {
+        i: {"temperature": t} for i, t in values.temperatures.items()
+    }
     if not q.carries:
         return
     for i, unit in values.cell_units.items():

@@ -23,6 +23,8 @@ _TEMPERATURE = re.compile(
 _TOLERANCE = re.compile(r"(?:±|\+/-|\+-)\s*(?P<tol>\d+(?:[.,]\d+)?)\s*%")
 _CONDITION = re.compile(
     r"(?:(?:@|at|bei|à|a|con|sous)\s+)?(?P<c>\b\d{1,3}(?:[.,]\d+)?\s*(?:k?V\s*(?:AC|DC)?|VAC|VDC|K)\b|\bS[1-9](?:[\s-]*\d+\s*%)?)"
+    r"|(?:@|\b(?:at|bei|à|a)\b)\s*(?P<speed>\d[\d.,' ]*"
+    r"(?:rpm|r/min|min-1|min\^-1|1/min|U/min|tr/min|giri/min))"
 )
 _CONDITION_ONLY = re.compile(
     r"(?:(?:@|at|bei|à)\s+)?(?:[^\W\d]{1,6}\s*=\s*)?\d{1,3}(?:[.,]\d+)?\s*(?:V\s*(?:AC|DC)?|VAC|VDC|K|°C|℃)"
@@ -123,7 +125,25 @@ def parse_label(text: str) -> Label:
         else:
             label = _bracket(label, content)
     bracketed = len(label.units)
-    return _in_order(_core(label, core), bracketed, core)
+    return _at_speed(_in_order(_core(label, core), bracketed, core))
+
+
+_ONLY_VOLTS = re.compile(r"m?V\s?(?:AC|DC|_?rms|_?eff|_?pk|_?peak)?", re.IGNORECASE)
+_A_SPEED = re.compile(r"\d[\d.,' ]*(?=rpm|r/min|min|1/min|U/min|tr/min|giri/min)")
+
+
+def _at_speed(label: Label) -> Label:
+    """A voltage at a speed is a back-EMF: "EMF at 1000 rpm [V]" is in V/1000 rpm."""
+    speed = next((c for c in label.conditions if _A_SPEED.match(c)), None)
+    if speed is None:
+        return label
+    keys = {key for name in label.names for key in name.keys}
+    if "nominal_voltage" in keys:
+        return replace(label, names=(), other=label.other or speed)
+    if "back_emf_constant" not in keys:
+        return label
+    units = (f"{u}/{speed}" if _ONLY_VOLTS.fullmatch(u) else u for u in label.units)
+    return replace(label, units=tuple(units))
 
 
 def _in_order(label: Label, bracketed: int, core: str) -> Label:
@@ -175,6 +195,10 @@ def _bracket(label: Label, content: str) -> Label:
     whole = conventions_of(content, whole=True)
     if whole:
         return _with_convention(label, whole)
+    spread = _TOLERANCE.search(content)
+    if spread and (of := content[: spread.start()].strip(" ,;")) and unit_of(of) is not None:
+        label = replace(label, tolerance=float(spread["tol"].replace(",", ".")) / 100)
+        return replace(label, units=(*label.units, of))
     if may_be_unit(content):
         return replace(label, units=(*label.units, content))
     for piece in (
@@ -253,7 +277,7 @@ def _core(label: Label, core: str) -> Label:
             core = (core[: at.start()] + " " + core[at.end() :]).strip(" ,;@")
     at = _CONDITION.search(core)
     if at and at.start() > 0 and not find_symbol(core):
-        label = replace(label, conditions=(*label.conditions, at["c"]))
+        label = replace(label, conditions=(*label.conditions, at["c"] or at["speed"]))
         core = (core[: at.start()] + " " + core[at.end() :]).strip(" ,;@")
     if re.search(r"\s/\s", core):  # the slash parts the languages, not the line break
         core = re.sub(r"\s*\n\s*", " ", core)

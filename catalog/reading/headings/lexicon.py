@@ -170,6 +170,17 @@ def without_fillers(form: tuple[str, ...]) -> tuple[str, ...]:
     return tuple(t for t in form if t not in fillers)
 
 
+_GREEK = {"tau": "τ", "omega": "ω", "eta": "η"}
+_GREEK_WORD = re.compile(r"(tau|omega|eta)(?=$|[\s_{(]|[A-Z])")
+_NOMINAL = re.compile(r"(?<=^[A-Za-z])[\s_](?:nom|rated|rat)$")
+
+
+def _spelled_out(text: str) -> str:
+    """The form of a symbol whose Greek letter or index is a word: "tau_m", "n nom"."""
+    clean = _GREEK_WORD.sub(lambda word: _GREEK[word[1]], plain(text).strip(), count=1)
+    return symbol_form(_NOMINAL.sub("_N", clean))
+
+
 @dataclass(frozen=True, slots=True)
 class SymbolHit:
     """The quantities that a symbol may stand for; surety 1.0 as written … 0.7 without its case."""
@@ -182,7 +193,7 @@ class SymbolHit:
 @lru_cache(maxsize=16384)
 def find_symbol(text: str) -> SymbolHit | None:
     """What a text means if it is a symbol; None if it is none."""
-    form = symbol_form(text)
+    form = _spelled_out(text)
     if not form or len(form) > 8:
         return None
     lex = lexicon()

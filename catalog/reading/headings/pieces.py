@@ -101,11 +101,15 @@ def _name_and_symbol(text: str) -> list[tuple[str, str]]:
     return [(n, s) for n, s in found if n]
 
 
+_PAIR = re.compile(
+    r"((?:[^()]|\([^()]*\))+?)\s*"
+    r"(?:\(((?:[^()]|\([^()]*\))+)\)|\[(.+)\]|\{(.+)\}|\s/\s(.+)|\|\s*(.+)|\s-\s(.+))"
+)
+
+
 def unit_pair(text: str) -> tuple[str, ...]:
     """The two units of "N·m (oz-in)", "mm / in" or "kg | lb", the one of any other text."""
-    pair = re.fullmatch(
-        r"(.+?)\s*(?:\((.+)\)|\[(.+)\]|\{(.+)\}|\s/\s(.+)|\|\s*(.+)|\s-\s(.+))", text
-    )
+    pair = _PAIR.fullmatch(text)
     if pair:
         first, second = pair[1].strip(), next(g for g in pair.groups()[1:] if g).strip()
         one, two = unit_of(first), unit_of(second)

@@ -4,7 +4,7 @@ import re
 
 from ....schema.figure.signs import plain
 from ....schema.vocabulary import quantity
-from ..cells import is_caption, is_figure, is_symbol, strength
+from ..cells import is_caption, is_figure, is_role, is_symbol, strength
 from ..headings.label import parse_label
 from ..headings.phrase import match_phrase, part_of, section_of
 from ..model import Table
@@ -130,6 +130,8 @@ def lay_out_columns(block: Block) -> Table:
         if shared and between is not None:
             field.places = [block.column_numbers[between]] * len(values)
         table.fields.append(field)
+    if id_row is None and len(values) == 1 and (code := _corner(rows[:first], label_column)):
+        table.part_numbers = [code]
     if id_row is not None:
         mark_other_parts(table, rows[id_row][label_column])
     if conditions is not None:
@@ -144,6 +146,19 @@ def _between(rows: list[list[str]], id_row: int, values: list[int]) -> int | Non
         return None
     beside = [row[c] for row in rows if row[lone[0]] for c in values if c != lone[0]]
     return None if any(beside) else lone[0]
+
+
+_CODE = re.compile(r"(?=\S*\d)(?=\S*[^\W\d_])[\w./+-]{3,30}")
+
+
+def _corner(head: list[list[str]], label_column: int) -> str | None:
+    """The part number that stands where the heading of the names would: "QX-22, Value, Unit"."""
+    for row in head:
+        corner = plain(row[label_column])
+        roles = all(any(is_role(t, r) for r in ("value", "unit")) for t in row if t and t != corner)
+        if _CODE.fullmatch(corner) and roles and strength(corner) < 0.5:
+            return corner
+    return None
 
 
 def _part_above(rows: list[list[str]]) -> int | None:

@@ -87,6 +87,8 @@ def header_rows(
         texts = [row[c] for c in values if row[c]]
         if not texts:
             continue
+        if all(is_role(t, "value") for t in texts):
+            continue  # "Part, Value, Unit"
         if names_part(parse_label(row[label_column])):
             if i > first and named:
                 continue
@@ -97,7 +99,7 @@ def header_rows(
                 continue
             if all(_is_condition(t) for t in texts):
                 conditions.append(i)
-            elif not all(is_role(t, "value") for t in texts):
+            else:
                 plain_rows.append(i)
     best = None
     if named:

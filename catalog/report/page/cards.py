@@ -105,12 +105,11 @@ def _figures(figures: Iterable[tuple[str, Document]], strings: Strings) -> Itera
     """[key, printed, unit, value, convention, row, column] and, if there is one, the correction."""
     for key, f in figures:
         value, unit = f["value"], f.get("unit", "")
-        printed = " ".join(filter(None, (f["text"], f.get("printed_unit"))))
         corrected = f.get("corrected")
         if corrected:
             value, unit = corrected["value"], corrected["unit"]
         packed = [
-            strings(p.words(key)), p.plain(printed), strings(unit),
+            strings(p.words(key)), p.printed(f), strings(unit),
             None if isinstance(value, str) else rounded(value),
             strings(p.plain(p.convention(f.get("convention")))), *_place(f.get("cell")),
         ]  # fmt: skip

@@ -1,0 +1,6 @@
+"""How properties are tried: no test measures time, so a busy machine fails none."""
+
+from hypothesis import HealthCheck, settings
+
+settings.register_profile("any speed", deadline=None, suppress_health_check=[HealthCheck.too_slow])
+settings.load_profile("any speed")
