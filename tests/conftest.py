@@ -2,5 +2,10 @@
 
 from hypothesis import HealthCheck, settings
 
-settings.register_profile("any speed", deadline=None, suppress_health_check=[HealthCheck.too_slow])
+settings.register_profile(
+    "any speed",
+    parent=settings.default,
+    deadline=None,
+    suppress_health_check={*settings.default.suppress_health_check, HealthCheck.too_slow},
+)
 settings.load_profile("any speed")
