@@ -64,6 +64,7 @@ class Words:
     names: Mapping[str, tuple[str, ...]]
     generic: Mapping[str, tuple[str, ...]]
     sections: Mapping[str, tuple[str, ...]]
+    at_load: Mapping[str, tuple[str, ...]]
     conventions: Mapping[str, tuple[str, ...]]
     variants: Mapping[str, tuple[str, ...]]
     roles: Mapping[str, tuple[str, ...]]

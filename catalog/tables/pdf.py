@@ -1,5 +1,6 @@
 """PDF pages by their text layer: runs of text with places, put into lines and columns."""
 
+import re
 import statistics
 from collections.abc import Iterator
 from dataclasses import dataclass
@@ -14,6 +15,7 @@ from .text import read_text
 _MOST_BYTES = 200_000_000
 _MOST_PAGES = 400
 _MOST_RUNS = 20_000
+_MOST_SIGNS = 200_000
 _MOST_TOTAL = 300_000
 _WORD_GAP = 0.7  # of the type size: what is wider parts two cells
 _LONGEST_SCRIPT = 6  # signs of a raised or lowered text that is not much smaller: "-1", "1),2)"
@@ -143,7 +145,7 @@ def _runs(page) -> tuple[list[_Run], int]:
         broken = 0
         seen: set[tuple[int, int, str]] = set()
         turn = _turn(page)
-        for box in boxes:
+        for box in _inked(text_page, boxes):
             raw = text_page.get_text_bounded(*box)
             text = clean(raw.replace("\ufffe", "-")).replace("\n", " ")
             broken += sum(raw.count(sign) for sign in _BROKEN[:1])
@@ -159,6 +161,40 @@ def _runs(page) -> tuple[list[_Run], int]:
     finally:
         text_page.close()
     return runs, broken
+
+
+_EAST_ASIAN = re.compile("[\u3040-\u30ff\u3400-\u9fff\uac00-\ud7af]")
+_FLAT = 0.05  # points: no sign is as low as this
+_INK = 0.2, 0.9  # where the ink of a sign begins and ends in its line's height, about
+
+
+def _inked(text_page, boxes: list[tuple[float, ...]]) -> list[tuple[float, ...]]:
+    """The boxes of a page's runs, with a height where they have none: East Asian fonts are often
+    not part of the file, and without them the library tells the width of a sign only, or leaves
+    a run out. The height is then that of the line."""
+    if not _EAST_ASIAN.search(text_page.get_text_range()):
+        return boxes
+    known = [box for box in boxes if box[3] - box[1] > _FLAT]
+    inked: dict[int, list[tuple[float, ...]]] = {}
+    for box in known:
+        for at in range(int(box[1]), int(box[3]) + 1):
+            inked.setdefault(at, []).append(box)
+    found: list[tuple[float, ...]] = []
+    for i in range(min(text_page.count_chars(), _MOST_SIGNS)):
+        x0, y0, x1, y1 = text_page.get_charbox(i)
+        if y1 - y0 > _FLAT or x1 - x0 < _FLAT:
+            continue
+        beside = inked.get(int(y0), ())
+        if any(a <= x0 and x1 <= b and low <= y0 <= high for a, low, b, high in beside):
+            continue  # part of a run that other signs give a height
+        _, bottom, _, top = text_page.get_charbox(i, loose=True)
+        low, high = (bottom + share * (top - bottom) for share in _INK)
+        last = found[-1] if found else None
+        if last and abs(last[1] - low) < 0.1 and abs(x0 - last[2]) < 0.3 * (high - low):
+            found[-1] = (last[0], last[1], x1, last[3])
+        else:
+            found.append((x0, low, x1, high))
+    return known + found
 
 
 def _turn(page):
@@ -205,7 +241,9 @@ def _attach_scripts(runs: list[_Run]) -> None:
                 over or (small and run.y1 > base.y1 - 0.2 * height)
             )
             lowered = (
-                run.y1 < base.y0 + 0.45 * height and run.text[0].isalnum() and (small or under)
+                base.y0 < run.y1 < base.y0 + 0.45 * height
+                and run.text[0].isalnum()
+                and (small or under)
             )
             if raised or lowered:
                 run.text = superscript(run.text) if raised else subscript(run.text)

@@ -24,7 +24,10 @@ _HARD = re.compile(
 _COMMA = re.compile(r"[,，·][ \xa0]+(?=[^\W\d])")
 _SIGN_IN = re.compile(_SIGN)
 _BULLET = re.compile(r"^[•·▪◦*\-–][ \xa0]+")
-_WIDE = re.compile(r"[ \xa0\u2000-\u200a\u3000]{2,}|\t+|[ ]*│[ ]*")
+_LEADER = r"(?:\.{4,}|…{2,}|_{4,}|·{4,}|(?:[.·] ){3,}[.·]?)"
+_WIDE = re.compile(
+    rf"[ \xa0]*{_LEADER}[ \xa0]*:?[ \xa0]*|[ \xa0\u2000-\u200a\u3000]{{2,}}|\t+|[ ]*│[ ]*"
+)
 _NOTE = re.compile(r"\s*(?:[*†‡¹²³⁴⁵]|\(?\d{1,2}\)|note|anm)", re.IGNORECASE)
 _FIGURE = re.compile(
     r"(?:[<>≤≥~±≈]?[+\-−]?[.,]?\d[\d.,'’…/–\-]*(?:[eE][+\-]?\d+)?%?[*†¹²³]*|[-–—]+|n/a)$"
@@ -183,6 +186,7 @@ def _logical_lines(paragraph: list[str], start: int) -> list[tuple[int, str]]:
 
 
 def _read_columns(lines: list[str]) -> list[Grid]:
+    lines = _colons_parted(lines)
     blocks: list[_Block] = []
     prose: list[tuple[int, str]] = []
     for start, paragraph in _paragraphs(lines):
@@ -206,6 +210,18 @@ def _read_columns(lines: list[str]) -> list[Grid]:
             return [even([[clean(line)] for _, line in prose], [n for n, _ in prose])]
         blocks[-1].add(prose)
     return [block.grid() for block in blocks]
+
+
+def _colons_parted(lines: list[str]) -> list[str]:
+    """Lines whose label is so long that its value is glued to the colon, parted as the others
+    are: "Voltage:      24 V" over "Maximum permissible speed:9000 rpm"."""
+    wide = [bool(re.search(r"\S:[ \xa0]{2,}\S", line)) for line in lines]
+    if sum(wide) < 3 or sum(wide) < 0.3 * len(lines):
+        return lines
+    return [
+        line if parted else re.sub(r"(?<=[^\s\d]):(?=[ \xa0]?[<>≤≥~±+-]?\d)", ":  ", line, count=1)
+        for line, parted in zip(lines, wide, strict=True)
+    ]
 
 
 class _Block:

@@ -37,7 +37,8 @@ _MARKS: list[tuple[str, re.Pattern[str]]] = [
         ("peak", _BEFORE + r"(?:0\s*-\s*)(?:peak|pk|p)" + _AFTER),
         (
             "peak",
-            _BEFORE + r"(?:peak|pk|crest|crête|Spitze|Scheitel|pico|picco|amplitude)" + _AFTER,
+            _BEFORE + r"(?:(?:peak|pk)(?:\s+(?:of\s+)?(?:the\s+)?sine(?:\s?wave)?)?"
+            r"|crest|crête|Spitze|Scheitel|pico|picco|amplitude)" + _AFTER,
         ),
         ("peak", r"(?<=[AV])_?p" + _AFTER + "|峰值|ピーク"),
         ("rms", _BEFORE + r"(?:r\.?m\.?s\.?|eff(?:ective|ektiv|icaces?)?\.?)" + _AFTER),

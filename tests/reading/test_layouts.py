@@ -269,7 +269,8 @@ KV | 920
     (motor,) = s.motors().values()
     assert motor["no_load_speed"] == pytest.approx(4000 * RPM)
     assert motor["no_load_current"] == 0.5
-    assert {"Speed", "KV"} <= s.unread
+    assert motor["speed_constant"] == pytest.approx(920 * RPM)
+    assert "Speed" in s.unread
 
 
 def test_a_second_block_with_the_other_half_of_the_columns():

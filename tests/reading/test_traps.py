@@ -209,3 +209,120 @@ def test_value_is_no_part_number_and_a_code_in_the_corner_is_one():
     assert set(sheet(f"Part | Value | Unit\n{body}").motors()) == {"plate"}
     assert set(sheet(f"QX-22 | Value | Unit\n{body}").motors()) == {"QX-22"}
     assert set(sheet(f"Parameter | Value | Unit\n{body}").motors()) == {"plate"}
+
+
+def test_groups_over_names_and_a_row_of_units_are_no_matrix_of_points():
+    s = sheet("""
+        Model | | No Load | | Rated Load | | Stall
+        Part No. | Rated Voltage | Speed | Current | Speed | Torque | Torque
+         | VDC | rpm | A | rpm | mN·m | mN·m
+        A-12 | 12 | 5600 | 0.089 | 4744 | 18 | 118
+        A-24 | 24 | 5500 | 0.044 | 4659 | 18 | 118
+    """)
+    assert set(s.motors()) == {"A-12", "A-24"}
+    assert s.motors()["A-12"]["nominal_torque"] == pytest.approx(0.018)
+    assert s.motors()["A-24"]["stall_torque"] == pytest.approx(0.118)
+
+
+def test_a_named_voltage_over_rows_is_what_they_hold_for():
+    s = sheet("""
+        Type | | S-1 | S-2
+        Stillstandsdrehmoment M0 | Nm | 1.2 | 2.2
+        Netzspannung 230 VAC | | |
+        Nenndrehzahl nN | 1/min | 1740 | 1750
+        Netzspannung 400 VAC | | |
+        Nenndrehzahl nN | 1/min | 3000 | 3100
+    """)
+    found = {c.when for c in s.batch.conditions} | set(s.reading.remarks)
+    assert any("400 VAC" in text for text in found)
+    speeds = {c.figures[0]["nominal_speed"].value for c in s.batch.conditions if c.figures}
+    both = sorted({*speeds, s.motors()["S-1"]["nominal_speed"]})
+    assert both == pytest.approx([1740 * RPM, 3000 * RPM])
+
+
+def test_a_gear_under_its_own_caption_makes_no_table_of_gears():
+    s = sheet("""
+        Motor model | Unit | P-1 | P-2
+        Rated torque | Nm | 1.09 | 2.09
+        Rated speed | rpm | 3000 | 3000
+        Gearbox (option) | | |
+        Ratio | | 10:1 | 10:1
+        Rated torque | Nm | 22 | 45
+    """)
+    assert s.motors()["P-2"] == pytest.approx({"nominal_torque": 2.09, "nominal_speed": 3000 * RPM})
+
+
+def test_codes_under_a_frame_size_are_the_names_where_there_are_no_others():
+    s = sheet("""
+        Baugröße | Einheit | TQ 85-17 | TQ 85-30
+        Spitzendrehmoment | Nm | 4.1 | 7.8
+        Motorkonstante | Nm/√W | 0.175 | 0.338
+    """)
+    assert set(s.motors()) == {"TQ 85-17", "TQ 85-30"}
+
+
+def test_gear_motor_over_the_part_numbers_is_no_other_part():
+    s = sheet("""
+        Gear motor | Motor only | Motor only
+        Part number | No-load speed, rpm | Stall torque, mNm
+        G-19 | 6000 | 78.5
+        G-50 | 6000 | 78.5
+    """)
+    assert set(s.motors()) == {"G-19", "G-50"}
+
+
+@pytest.mark.parametrize(("title", "name"), [
+    ("Specification FT-20-06", "FT-20-06"), ("Brushed motor 24VDC", "plate"),
+    ("Servo motor IP65", "plate"), ("Technical data", "plate"),
+])  # fmt: skip
+def test_a_title_that_ends_in_a_code_names_the_motor(title, name):
+    s = sheet(f"{title} | | \nItem | Unit | Value\nStall torque | mNm | 3\nStall current | A | 0.8")
+    assert set(s.motors()) == {name}
+
+
+def test_load_speed_beside_no_load_speed_is_of_the_rated_point():
+    """Common practice on sheets of small motors, no source."""
+    s = sheet("""
+        型号 | 空载转速 [rpm] | 负载转速 [rpm] | 负载电流 [mA]
+        A | 6000 | 5082 | 468
+    """)
+    motor = s.motors()["A"]
+    assert motor["nominal_speed"] == pytest.approx(5082 * RPM)
+    assert motor["nominal_current"] == pytest.approx(0.468)
+    alone = sheet("Type | Load speed [rpm] | Torque constant [Nm/A]\nA | 5082 | 0.1")
+    assert alone.motors() == {"A": {"torque_constant": 0.1}}
+    both = sheet(
+        "Type | No-load speed [rpm] | Rated speed [rpm] | Load speed [rpm]\nA | 60 | 40 | 9"
+    )
+    assert "9" in both.unread
+
+
+@pytest.mark.parametrize(("heading", "cell", "key", "expected"), [
+    ("Vitesse a vide (tr/mn)", "4200", "no_load_speed", 4200 * RPM),
+    ("n0 rpm", "4200", "no_load_speed", 4200 * RPM),
+    ("Resistencia en bornes", "2.04 ohmios", "terminal_resistance", 2.04),
+    ("Vnom [V]", "12", "nominal_voltage", 12), ("NL speed [rpm]", "60", "no_load_speed", 60 * RPM),
+    ("Peak current (A peak of sine)", "3.4", "peak_current", 3.4),
+    ("KV", "1950", "speed_constant", 1950 * RPM),
+])  # fmt: skip
+def test_usual_abbreviations(heading, cell, key, expected):
+    s = sheet(f"Part no. | Rated torque [Nm] | {heading}\nA | 0.3 | {cell}")
+    assert s.motors()["A"][key] == pytest.approx(expected)
+
+
+def test_a_small_number_under_kv_is_listed():
+    s = sheet("Part no. | Rated torque [Nm] | Kv\nA | 0.3 | 9.1")
+    assert s.motors() == {"A": {"nominal_torque": 0.3}}
+    assert "9.1" in s.unread
+
+
+def test_two_phase_resistance_is_that_between_lines():
+    s = sheet("Part no. | Rated torque [Nm] | R2ph [Ohm] | L2ph [mH]\nA | 0.3 | 9.1 | 20")
+    assert s.convention("terminal_resistance").between == "lines"
+    assert s.convention("terminal_inductance").between == "lines"
+
+
+def test_a_unit_that_is_unknown_is_named():
+    s = sheet("Part no. | Rated torque [Nm] | Stall current [A wobble]\nA | 0.3 | 9.1")
+    (listed,) = s.reading.unread
+    assert "wobble" in listed.reason

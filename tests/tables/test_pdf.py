@@ -8,6 +8,7 @@ from reportlab.lib import colors, pdfencrypt
 from reportlab.lib.pagesizes import A4, landscape
 from reportlab.lib.styles import ParagraphStyle, getSampleStyleSheet
 from reportlab.pdfbase import pdfmetrics
+from reportlab.pdfbase.cidfonts import UnicodeCIDFont
 from reportlab.pdfbase.ttfonts import TTFont
 from reportlab.pdfgen.canvas import Canvas
 from reportlab.platypus import Paragraph, SimpleDocTemplate, Spacer, Table
@@ -207,3 +208,30 @@ def test_a_damaged_document_says_so(tmp_path: Path) -> None:
     (tmp_path / "b.pdf").write_bytes(content[: len(content) // 3])
     with pytest.raises(TableError, match=r"damaged|no text"):
         read_tables(tmp_path / "b.pdf")
+
+
+def test_signs_of_a_font_that_is_not_at_hand_are_read(tmp_path: Path) -> None:
+    """STSong-Light is never part of the file; without it such signs have a width only."""
+    pdfmetrics.registerFont(UnicodeCIDFont("STSong-Light"))
+    style = [("FONTNAME", (0, 0), (-1, -1), "STSong-Light")]
+    rows = [["参数", "单位", "RB-06", "RB-12"], ["额定电压", "V", "6", "12"],
+            ["空载转速 n0", "rpm", "6170", "6100"], ["相电阻", "mΩ", "53", "51"]]  # fmt: skip
+    grid = one(read(tmp_path / "a.pdf", pdf([Table(rows, style=style)])))
+    assert [row[0] for row in grid.rows] == ["参数", "额定电压", "空载转速 n0", "相电阻"]
+    assert [row[2:] for row in grid.rows] == [row[2:] for row in rows]
+
+
+def test_a_line_below_a_large_title_is_no_lowered_sign(tmp_path: Path) -> None:
+    buffer = io.BytesIO()
+    canvas = Canvas(buffer, pagesize=A4)
+    canvas.setFont("Helvetica-Bold", 15)
+    canvas.drawString(60, 700, "RB 25 brushed, 10 Watt by gears")
+    end = 60 + canvas.stringWidth("RB 25 brushed, 10 Watt by gears")
+    canvas.setFont("Helvetica", 7)
+    for y, line in ((686, ("Part number", "41", "42")), (674, ("Nominal voltage", "6", "12")),
+                    (662, ("Torque constant", "8.1", "9.2"))):  # fmt: skip
+        for x, text in zip((60, 180, end + 1), line, strict=True):
+            canvas.drawString(x, y, text)
+    canvas.save()
+    grid = one(read(tmp_path / "a.pdf", buffer.getvalue()))
+    assert grid.rows[-3] == ["Part number", "41", "42"]

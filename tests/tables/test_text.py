@@ -174,3 +174,18 @@ def test_a_long_bilingual_label_is_a_label() -> None:
     label = "Thermal time constant winding / Constante de temps thermique du bobinage"
     (grid,) = read_text(f"Type: A1\n{label} : 21.3 s\n")
     assert grid.rows[1] == [label, "21.3 s"]
+
+
+def test_leaders_part_a_name_from_its_figure(tmp_path: Path) -> None:
+    text = "Model ........ MX-30\nRated voltage ........ 3.0 V\nWeight . . . . . . . . 8.8 g\n"
+    grid = one(read(tmp_path / "a.txt", text))
+    assert grid.rows == [["Model", "MX-30"], ["Rated voltage", "3.0 V"], ["Weight", "8.8 g"]]
+
+
+def test_a_figure_glued_to_the_colon_of_a_long_name(tmp_path: Path) -> None:
+    text = (
+        "Part number:                MX-30\nNominal voltage:            24 V\n"
+        "Nominal torque (maximum):120 mNm\nNo load speed:              3800 rpm\n"
+    )
+    grid = one(read(tmp_path / "a.txt", text))
+    assert ["Nominal torque (maximum):", "120 mNm"] in grid.rows

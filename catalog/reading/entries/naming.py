@@ -78,4 +78,19 @@ def _title_name(table: Table) -> str | None:
         )  # fmt: skip
         if found:
             return found[1].strip()
+    for title in table.titles:
+        found = _CODED.search(plain(title))
+        if found and not _AMOUNT.fullmatch(found["code"]):
+            return found["code"]
     return None
+
+
+_CODED = re.compile(
+    r"(?:motor|moteur|motore|motori|specifications?|data ?sheet|datenblatt|fiche technique|"
+    r"scheda tecnica|hoja de datos|ficha técnica|规格书|仕様書|データシート)s?\s*[:–-]?\s+"
+    r"(?P<code>(?=\S*\d)(?=\S*[A-Za-z])[\w./+-]{4,})$",
+    re.IGNORECASE,
+)
+"""A title that ends in a code: "Specification AX-12"."""
+_AMOUNT = re.compile(r"\d+(?:[.,]\d+)?[A-Za-z]{1,4}|IP\d\d", re.IGNORECASE)
+"""24VDC, 42mm: no code."""

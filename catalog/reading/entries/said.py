@@ -143,7 +143,7 @@ def _symbol_conventions(symbol: str, key: str) -> dict[str, str]:
     if key in ("terminal_resistance", "terminal_inductance"):
         if re.fullmatch(r"[RL](?:ph|PH|Ph|s)\d*", form):
             said["between"] = "phase"
-        elif re.fullmatch(r"[RL](?:LL|ll|pp|PP|tt|TT|12|uv|UV|u-v|U-V|mt)\d*", form):
+        elif re.fullmatch(r"[RL](?:LL|ll|pp|PP|tt|TT|12|uv|UV|u-v|U-V|mt|2ph)\d*", form):
             said["between"] = "lines"
     if re.search(r"(?i)rms$|eff$", form) and key != "mains_voltage":
         said["current"] = said["voltage"] = "rms"

@@ -325,6 +325,8 @@ def _named(label: Label, core: str) -> Label:
         return replace(label, names=(*label.names, phrase), other=label.other or phrase.other)
     best: tuple[float, Phrase, str, str] | None = None
     for name, symbol, unit in ways_to_divide(core):
+        if name and symbol and not unit and may_be_unit(name):
+            continue  # "n0 rpm" is a symbol and its unit
         only = symbol and name and conventions_of(name, whole=True)
         p = match_phrase(name) if name else Phrase(name)
         if name and _is_rather_symbol(name, p):

@@ -84,6 +84,7 @@ class Lexicon:
     phrases: dict[str, tuple[str, ...]] = field(default_factory=dict)
     generic: dict[str, str] = field(default_factory=dict)
     sections: dict[str, str] = field(default_factory=dict)
+    at_load: dict[str, str] = field(default_factory=dict)
     conventions: dict[str, str] = field(default_factory=dict)
     variants: dict[str, str] = field(default_factory=dict)
     roles: dict[str, set[str]] = field(default_factory=dict)
@@ -131,6 +132,7 @@ def lexicon() -> Lexicon:
     for group, table in (
         ("generic", lex.generic),
         ("sections", lex.sections),
+        ("at_load", lex.at_load),
         ("conventions", lex.conventions),
         ("variants", lex.variants),
     ):
@@ -172,7 +174,7 @@ def without_fillers(form: tuple[str, ...]) -> tuple[str, ...]:
 
 _GREEK = {"tau": "τ", "omega": "ω", "eta": "η"}
 _GREEK_WORD = re.compile(r"(tau|omega|eta)(?=$|[\s_{(]|[A-Z])")
-_NOMINAL = re.compile(r"(?<=^[A-Za-z])[\s_](?:nom|rated|rat)$")
+_NOMINAL = re.compile(r"(?<=^[A-Za-z])[\s_]?(?:nom|rated)$")
 
 
 def _spelled_out(text: str) -> str:

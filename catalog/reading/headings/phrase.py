@@ -156,6 +156,8 @@ def part_of(text: str) -> str | None:
         run = re.sub(r"(?:部|部分|参数|參數|数据|特性|仕様|規格|规格|参数表)$", "", squeeze(form))
         return clean.strip() if run in lexicon().parts else None
     core = without_fillers(form)
+    if squeeze(form) in lexicon().captions:
+        return None  # "Gear motor" is a motor
     return clean.strip() if core and squeeze(core) in lexicon().parts else None
 
 

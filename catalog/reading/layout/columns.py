@@ -22,7 +22,7 @@ from .heads import HeadCell, head_field
 from .lines import text_of
 from .parts import mark_other_parts
 
-_LABEL_AND_FIGURE = re.compile(r"([^\d:]{3,40}?)\s+([<>≤≥~]?\s?\d[\d.,]*\s?\S.*)$")
+_LABEL_AND_FIGURE = re.compile(r"([^\d:]{3,60}?)(?:\s*[:=]\s*|\s+)([<>≤≥~]?\s?\d[\d.,]*\s?\S.*)$")
 
 _BARE = re.compile(r"[\d.,\s]+")
 """A figure under "Tolerance" or "Remark" that says nothing of the heading: it is listed."""
@@ -97,7 +97,8 @@ def lay_out_columns(block: Block) -> Table:
                 continue  # a quantity with no figure for any motor
             keys = {k for p in parse_label(label).names for k in p.keys}
             measured = any(not quantity(k).text for k in keys)
-            if measured and not spanning and not section_of(label) and not is_caption(label):
+            bare = not re.search(r"\d", label)  # "Mains voltage 400 VAC" heads what it holds for
+            if measured and bare and not (spanning or section_of(label) or is_caption(label)):
                 continue
             caption, captioned = [label], i
             continue

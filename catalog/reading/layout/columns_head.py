@@ -108,9 +108,19 @@ def header_rows(
         )
     elif plain_rows:
         best = max(plain_rows, key=lambda i: (_distinct(rows[i], values), i))
+    if best is None and _names_by_size(rows[first], label_column, values):
+        return first, None
     if best is None and conditions:
         return conditions[0], None
     return best, conditions[0] if conditions else None
+
+
+def _names_by_size(row: list[str], label_column: int, values: list[int]) -> bool:
+    """Whether the only names that motors have are codes under "Frame size" or "Series"."""
+    keys = {k for p in parse_label(row[label_column]).names for k in p.keys}
+    texts = [row[c] for c in values]
+    coded = all(re.search(r"\d", t) and re.search(r"[^\W\d_]", t) for t in texts)
+    return keys == {"series"} and len(texts) > 1 and len(set(texts)) == len(texts) and coded
 
 
 def usual_columns(

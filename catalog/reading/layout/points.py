@@ -22,11 +22,13 @@ def points_table(block: Block) -> Table | None:
     ):
         for r in range(min(3, len(rows) - 1)):
             head = rows[r]
-            generics = [
-                c
+            named = {
+                c: found
                 for c in range(1, len(head))
-                if any(p.generic and not p.section for p in parse_label(head[c]).names)
-            ]
+                if (found := {p.generic for p in parse_label(head[c]).names
+                              if p.generic and not p.section})
+            }  # fmt: skip
+            generics = list(named)
             down = [
                 i
                 for i in range(r + 1, len(rows))
@@ -35,7 +37,8 @@ def points_table(block: Block) -> Table | None:
                 )
             ]
             body = [i for i in range(r + 1, len(rows)) if any(is_figure(t) for t in rows[i][1:])]
-            if len(generics) >= 2 and len(down) >= 2 and len(down) >= 0.7 * len(body):
+            different = len(set().union(*named.values()))  # "Speed" over "rpm" is one
+            if different >= 2 and len(down) >= 2 and len(down) >= 0.7 * len(body):
                 return _matrix(block, layout, rows, r, generics, down)
     return None
 

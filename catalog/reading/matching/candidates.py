@@ -11,7 +11,7 @@ from ....schema.figure.read import NumberStyle
 from ....schema.figure.signs import plain
 from ....schema.units.read import GD2_TO_INERTIA, Unit, UnitError, read_unit, unit_of
 from ....schema.vocabulary import Quantity, quantity
-from ..headings.lexicon import find_symbol, lexicon, symbol_form
+from ..headings.lexicon import canonical, find_symbol, lexicon, squeeze, symbol_form, tokens
 from ..headings.phrase import COMPOSED, EXACT, Phrase
 from ..model import Field
 from .family import family_of
@@ -27,6 +27,10 @@ class Candidate:
     reason: str
     units: list[Unit] = made(default_factory=list)
     unitless: bool = False
+
+
+_LEAST_KV = 50
+"""rpm/V; as V/krpm a motor would turn at 100 rpm on 5 V."""
 
 
 class Candidates:
@@ -100,7 +104,10 @@ class Candidates:
                 elif not named:
                     weight = _symbol_weight(f.label.names)
                     offer(key, weight * hit.surety, f'symbol "{symbol}"')
-        if f.label.other and (
+        loaded = self._at_load(f)
+        if loaded is not None:
+            offer(loaded, 0.9, f'"{f.label.other}" beside a figure at no load: the rated point')
+        elif f.label.other and (
             len(f.label.names) > 1 or not any(s >= EXACT for s, _ in named.values())
         ):
             self.refusals[i] = (f'"{f.label.other}" makes it none of the motor\'s figures', ())
@@ -113,6 +120,16 @@ class Candidates:
         ]
         found.sort(key=lambda c: -c.score)
         return found
+
+    def _at_load(self, f: Field) -> str | None:
+        """The rated figure that "load speed" is where a no-load figure stands beside it and
+        itself is not given; elsewhere it may be the load's, and None."""
+        generic = lexicon().at_load.get(squeeze(canonical(tokens(f.label.other or ""))))
+        keys = {k for g in self.fields for p in g.label.names for k in p.keys}
+        if generic is None or not keys & {"no_load_speed", "no_load_current"}:
+            return None
+        key = COMPOSED["rated", generic]
+        return None if key in keys else key
 
     def _of_phrase(
         self, f: Field, phrase: Phrase, offer: Callable[[str, float, str], None]
@@ -157,6 +174,11 @@ class Candidates:
             if hard:
                 self.refusals.setdefault(i, (refused, (q.key,)))
                 return None
+        if not given and not inside and self._is_kv(i):
+            units.append(read_unit("KV", ("rad/(s·V)",)))
+            if q.key != "speed_constant":
+                return None
+            reason += ", KV without a unit read as rpm/V"
         if not given or not units:
             for text in inside:
                 try:
@@ -191,6 +213,13 @@ class Candidates:
         if units and "dc" in units[0].marks and q.key == "mains_voltage":
             score -= 0.3
         return Candidate(q.key, score, reason, units, unitless)
+
+    def _is_kv(self, i: int) -> bool:
+        """Whether a heading is the bare KV by which hobby motors go: a number of rpm/V, far above
+        any back-EMF constant's (common practice, no source)."""
+        spelled = {symbol_form(s) for s in self.fields[i].label.symbols}
+        values = self.values[i]
+        return bool(spelled & {"KV", "Kv", "kv"}) and bool(values) and min(values) >= _LEAST_KV
 
     def _sized(self, q: Quantity, values: list[float], units: list[Unit]) -> float:
         if not values or not units:

@@ -146,6 +146,8 @@ class Matcher(Candidates):
             return Match(f, "text", c.key, min(c.score, 1.0), [], reason)
         if c.unitless:
             why = why_unreadable(f.texts, self.style) or f"no unit is given for {c.key}"
+            if f.label.conditions and why.startswith("no unit"):
+                why += f', for "{f.label.conditions[-1]}" is none that is known'
             return Match(f, "unread", None, c.score, [], why, (c.key,))
         if c.key in taken:
             return self._again(i, c, taken)

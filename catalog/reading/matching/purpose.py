@@ -35,7 +35,7 @@ def is_of_gears(matches: Sequence[Match]) -> bool:
     """Whether the headings are a gear's: a ratio, what else a gear has, nothing electrical."""
     if any(m.key and _ELECTRICAL.search(m.key) for m in matches):
         return False
-    headings = [plain(m.field.heading) for m in matches]
+    headings = [plain(m.field.heading) for m in matches if not m.field.part]
     return any(_RATIO.search(h) for h in headings) and any(_OF_A_GEAR.search(h) for h in headings)
 
 
