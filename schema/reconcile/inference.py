@@ -117,6 +117,16 @@ def _assumed(column: FigureColumn, members: np.ndarray) -> bool:
     return any(column.conventions[i].basis == "assumed" for i in used.tolist())
 
 
+def _inferred(column: FigureColumn, option: Option, members: np.ndarray) -> FigureColumn:
+    """The column with what these motors' figures mean; those of other motors mean what they did."""
+    changed = _changed(column, option, "inferred")
+    if members.size == column.convention.size:
+        return replace(column, conventions=changed)
+    index = column.convention.copy()
+    index[members] += len(column.conventions)
+    return replace(column, conventions=[*column.conventions, *changed], convention=index)
+
+
 def _changed(column: FigureColumn, option: Option, basis: str) -> list[Convention]:
     return [
         c.with_(**dict(option.changes), basis=basis) if c.basis == "assumed" else c
@@ -140,9 +150,8 @@ def _infer_kind(
     if not dimensions:
         return batch, []
     combos = list(itertools.product(*(range(len(o)) for _, o in dimensions)))
-    shifts = np.stack([_shift(batch, chosen, dimensions, combo) for combo in combos])
     stacked = problem.take(np.tile(chosen, len(combos)))
-    stacked.y = stacked.y + shifts.reshape(-1, shifts.shape[2])
+    stacked.y += np.concatenate([_shift(batch, chosen, dimensions, combo) for combo in combos])
     loss = misfit(stacked, robust=True)[0].reshape(len(combos), chosen.size)
     cost = np.minimum(loss - loss.min(axis=0), CAP).sum(axis=1)
     prior = np.array([sum(o[c].cost for c, (_, o) in zip(combo, dimensions, strict=True))
@@ -169,8 +178,7 @@ def _infer_kind(
         if own:
             departs.append(options[own].words)
         for key in keys:
-            column = figures[key]
-            figures[key] = replace(column, conventions=_changed(column, options[own], "inferred"))
+            figures[key] = _inferred(figures[key], options[own], members)
     if not words:
         return batch, []
     rivals = tuple(_words(dimensions, combos[i], combos[best]) for i in near[:3])
