@@ -69,10 +69,9 @@ def majority(
     low, high = start + (count - 1) // 2, start + count // 2
     median[have] = (v[low[have]] + v[high[have]]) / 2.0
     near = np.abs(value - median[group]) < np.log1p(tolerance)
-    agree = np.bincount(group[near & known], minlength=n)
-    family = (agree >= part * np.maximum(count, 1)) & (agree >= LEAST - (count == LEAST))
-    family &= count >= LEAST
-    square = np.where(near & known, (value - median[group]) ** 2, 0.0)
+    agree = np.bincount(group[near], minlength=n)
+    family = (agree >= part * count) & (agree >= LEAST - (count == LEAST)) & (count >= LEAST)
+    square = np.where(near, (value - median[group]) ** 2, 0.0)
     spread = np.sqrt(np.bincount(group, square, minlength=n) / np.maximum(agree - 1, 1))
     return Shared(np.where(family, median, np.nan), spread, agree)
 

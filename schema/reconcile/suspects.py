@@ -134,7 +134,7 @@ def shortlist(problem: Problem) -> Bools:
             gap[:, figure], spread[:, figure] = problem.y[:, figure] - value, sd**2
     free = np.clip(1.0 - weight * spread, 1e-6, 1.0)
     rest = np.where(problem.present, linear.chi2[:, None] - weight * gap**2 / free, np.inf)
-    best = np.sort(rest, axis=1)[:, [0, min(KEEP, F) - 1]]
+    best = np.sort(rest, axis=1)[:, [0, KEEP - 1]]
     within = WITHIN + PART * np.maximum(linear.chi2[:, None] - best[:, :1], 0.0)
     worth = (rest <= best[:, :1] + within) | (rest <= best[:, 1:])
     worth[:, NOMINAL] |= worth[:, NOMINAL].any(axis=1, keepdims=True)

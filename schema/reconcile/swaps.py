@@ -79,11 +79,9 @@ def _candidates(
         pairs = itertools.combinations(present, 2)
         return [(a, b) for a, b in pairs if abs(printed[a] - printed[b]) > 0.01]
     suspect = suspicions[0]
-    out: list[tuple[int, int]] = []
-    for s, sd in [(suspect.figure, suspect.sd)]:
-        wanted = printed[s] - suspect.log_ratio
-        out += [(s, b) for b in present if b != s and abs(printed[b] - wanted) < 4.0 * sd + 0.01]
-    return out
+    s, reach = suspect.figure, 4.0 * suspect.sd + 0.01
+    wanted = printed[s] - suspect.log_ratio
+    return [(s, b) for b in present if b != s and abs(printed[b] - wanted) < reach]
 
 
 def _costs(
@@ -109,7 +107,7 @@ def _prior(evidence: Evidence, part: Problem, local: int, motor: int, a: int, b:
         {"torque_constant", "speed_constant"}, {"terminal_resistance", "terminal_inductance"},
     )  # fmt: skip
     closeness = (BESIDE if beside else 0.0) + (BESIDE if alike else UNLIKE)
-    return SWAP - math.log(max(n * (n - 1) / 2, 1)) + closeness
+    return SWAP - math.log(n * (n - 1) / 2) + closeness
 
 
 def _verdict(

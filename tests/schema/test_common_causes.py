@@ -106,11 +106,21 @@ def test_a_gear_is_of_torques_and_of_two_of_them() -> None:
     one = [suspicion(1, "nominal_torque", 5.0), suspicion(1, "rotor_inertia", 5.0)]
     shared_causes(one)
     assert [s.causes[0] for s in one] == ["unexplained"] * 2
-    three = [suspicion(1, "nominal_torque", 5.0), suspicion(1, "nominal_speed", 5.0),
-             suspicion(1, "stall_torque", 5.0), suspicion(1, "peak_torque", 0.2)]  # fmt: skip
-    shared_causes(three)
+    some = [suspicion(1, "nominal_torque", 5.0), suspicion(1, "nominal_speed", 5.0),
+            suspicion(1, "stall_torque", 5.0), suspicion(1, "peak_torque", 0.2),
+            suspicion(1, "friction_torque", 5.0)]  # fmt: skip
+    shared_causes(some)
     gear, none = "gear-output-side", "unexplained"
-    assert [s.causes[0] for s in three] == [gear, none, gear, none]
+    assert [s.causes[0] for s in some] == [gear, none, gear, none, gear]
+
+
+def test_a_gear_takes_the_place_of_a_chance_as_the_first_cause_only() -> None:
+    """That one ratio is in two torques makes exchanged digits unlikely, no power of ten."""
+    both = [suspicion(1, "nominal_torque", 10.0, ("power-of-ten", "digits-transposed")),
+            suspicion(1, "stall_torque", 10.0, ("digits-transposed", "power-of-ten"))]  # fmt: skip
+    shared_causes(both)
+    assert both[0].causes == ("power-of-ten", "digits-transposed")
+    assert both[1].causes == ("gear-output-side", "digits-transposed", "power-of-ten")
 
 
 # ---- one mistake of a column

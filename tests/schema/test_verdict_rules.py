@@ -14,6 +14,9 @@ import pytest
 
 from motorfolio.schema.reconcile import verdicts
 from motorfolio.schema.reconcile.causes import CAUSES, CODE
+from motorfolio.schema.reconcile.columns import ColumnFault
+from motorfolio.schema.reconcile.families import Shared
+from motorfolio.schema.reconcile.inference import Inferred
 from motorfolio.schema.reconcile.model import FIGURES, F
 from motorfolio.schema.reconcile.problem import Problem
 from motorfolio.schema.reconcile.suspects import LeftOut, Suspicion
@@ -239,6 +242,14 @@ def test_the_suspect_is_the_likeliest_by_fit_and_causes(monkeypatch, fit, odds, 
     assert t.found() == [taken]
 
 
+@pytest.mark.parametrize(("fit", "odds", "rival"), [
+    (2.4, -9.0, True), (2.6, -9.0, False), (20.0, 7.1, True), (20.0, 6.9, False),
+])  # fmt: skip
+def test_a_rival_fits_or_is_as_likely_nearly(fit, odds, rival) -> None:
+    """Worse by less than 2.5 in χ², or by less than 6 with the causes counted in."""
+    assert rivals({5: -1.0 + odds}, {}, {3: 1.0, 5: 1.0 + fit}) == ((5,) if rival else ())
+
+
 def rivals(scores: dict[int, float], odd: dict[int, float], fits: dict[int, float]):
     chi2, total = np.full((1, F), np.inf), np.full((1, F), np.inf)
     for f, value in fits.items():
@@ -314,6 +325,15 @@ def test_who_is_right_after_all_gives_way_to_who_is_not(monkeypatch) -> None:
 def test_what_looked_worst_stays_if_the_other_is_no_better(monkeypatch) -> None:
     assert looked_at_again(monkeypatch, {"ab": 30.0, "cd": 30.0, "b": 1.9}, "ad") == "ad"
     assert looked_at_again(monkeypatch, {"ab": 30.0, "cd": 30.0, "b": 2.1}, "ad") == "bd"
+
+
+@pytest.mark.parametrize("kind", [
+    verdicts._Ranking, Suspicion, LeftOut, ColumnFault, Shared, Inferred,
+])  # fmt: skip
+def test_what_is_filled_in_bit_by_bit_has_its_fields_only(kind: type) -> None:
+    """A misspelt one would be lost silently."""
+    with pytest.raises(AttributeError):
+        object.__new__(kind).misspelt = 1
 
 
 def test_only_motors_with_several_suspects_are_looked_at_again(monkeypatch) -> None:
