@@ -7,7 +7,7 @@ and from Kt) and NEMA's divisor 13.662 of sine back-EMF with sine current; see c
 
 import itertools
 from collections.abc import Sequence
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -85,7 +85,7 @@ OPTIONS: dict[Commutation, tuple[tuple[tuple[str, ...], tuple[Option, ...]], ...
 class Inferred:
     """What was found for the motors of one kind: figures concerned, the words of the meaning, of
     its rivals, whether it is the default, the loss of the default beyond the best, and the
-    number of motors looked at."""
+    number of motors looked at, all of them, and what is told besides."""
 
     kind: Commutation
     figures: tuple[str, ...]
@@ -94,8 +94,8 @@ class Inferred:
     departs: tuple[str, ...]
     against: float
     motors: int
-    signature: str = ""
-    entries: np.ndarray = field(default_factory=lambda: np.zeros(0, dtype=np.int64))
+    entries: np.ndarray
+    signature: str
 
 
 def infer(batch: Batch, problem: Problem) -> tuple[Batch, list[Inferred]]:
@@ -183,8 +183,8 @@ def _infer_kind(
         return batch, []
     rivals = tuple(_words(dimensions, combos[i], combos[best]) for i in near[:3])
     inferred = Inferred(kind, tuple(touched), tuple(words), rivals, tuple(departs),
-                        float(cost[0] - cost[best]), int(chosen.size), entries=members)  # fmt: skip
-    inferred.signature = _signature(batch, chosen)
+                        float(cost[0] - cost[best]), int(chosen.size), members,
+                        _signature(batch, chosen))  # fmt: skip
     return replace(batch, figures=figures), [inferred]
 
 

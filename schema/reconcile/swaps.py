@@ -59,7 +59,7 @@ def find_swaps(
         for (local, a, b), cost in zip(some, _costs(evidence, motors, some), strict=True):
             cost -= 2.0 * _prior(evidence, part, local, int(motors[local]), a, b)
             cost += 2.0 * sum(math.log(s.sd) + 0.919 for s in found[local])
-            if cost < best.get(local, (math.inf, 0, 0))[0]:
+            if local not in best or cost < best[local][0]:
                 best[local] = (cost, a, b)
     out: dict[int, list[Suspicion]] = {}
     for local, (cost, a, b) in best.items():

@@ -112,6 +112,15 @@ def test_an_exchange_may_explain_two_wrong_figures(monkeypatch, more, taken) -> 
         assert (s.figure, s.partner, s.saved) == (KM, KN, 200.0)
 
 
+def test_a_suspicion_that_says_nothing_of_its_odds_has_even_ones(monkeypatch) -> None:
+    for more, taken in ((-0.05, True), (0.05, False)):
+        evidence = made()
+        s = suspicion(0, "torque_constant", 30 / 318, sd=0.03)
+        chi2 = 2 * 4.0 + 2 * PRIOR_KM_KN - 2 * math.log(0.03 * math.sqrt(2 * math.pi)) + more
+        Misfits(monkeypatch, evidence, {pair(KM, KN): chi2})
+        assert bool(found(evidence, {0: [s]}, [0.0])) == taken
+
+
 def test_of_several_exchanges_the_likeliest_is_taken(monkeypatch) -> None:
     """By χ² and prior: Km with I0 stands side by side (4 times likelier), yet is unlike (e⁻²)."""
     evidence = made()
@@ -265,6 +274,7 @@ def test_like_figures_are_exchanged_rather(a: str, b: str, alike: bool) -> None:
     (KM, KN, ("torque_constant",), KM, True), (KN, KM, ("torque_constant",), KM, True),
     (KM, KN, ("speed_constant", "torque_constant"), KM, True), (KM, KN, ("rotor_inertia",), KM,
      False), (U, KN, ("speed_constant", "rotor_inertia"), KN, True),
+    (U, I0, ("rotor_inertia", "speed_constant"), U, False),
 ])  # fmt: skip
 def test_an_exchange_is_told_of_the_figure_that_was_suspect(
     monkeypatch, a, b, known, first, others

@@ -230,6 +230,14 @@ def test_a_group_is_named_only_if_it_departs_or_is_sure(monkeypatch) -> None:
         assert one.figures == ((KE, RA) if len(words) > 1 else (KE,))
 
 
+def test_a_group_of_which_nothing_is_known_ends_no_search(monkeypatch) -> None:
+    """Whether the back-EMF is of a peak nobody can tell; of the winding the star is sure."""
+    told = {(True, True): 0.0, (True, False): 24.0, (False, False): 24.0, (False, True): 0.0}
+    after, (one,) = both(monkeypatch, told)
+    assert (one.figures, one.words, one.rivals) == ((RA,), (STAR_WORDS,), (PEAK_WORDS,))
+    assert after.figures[KE].conventions[0].basis == "assumed"
+
+
 def test_rivals_are_three_in_the_order_of_their_odds_and_told_by_what_differs(monkeypatch) -> None:
     """The default is no rival where it is worse by nine."""
     rms_phase = {"voltage": "rms", "between": "phase"}

@@ -24,10 +24,21 @@ LOW, HIGH = math.log(0.5), math.log(1.05)
 
 SINGLE = {"rotor_inertia": J, "terminal_inductance": L, "terminal_resistance": R,
           "nominal_voltage": U, "no_load_speed": N0, "stall_torque": TS, "peak_current": IPK,
-          "torque_constant": K}  # fmt: skip
+          "torque_constant": K, "friction_torque": TF, "viscous_damping": B,
+          "continuous_stall_current": ICS, "nominal_current": IN, "nominal_torque": TN,
+          "nominal_speed": NN, "no_load_current": I0}  # fmt: skip
 """Figures that are one unknown each."""
 
 SD = 0.02
+
+
+def laws(x: np.ndarray) -> np.ndarray:
+    """What figures of these motors are that are one unknown, and P_max = n0·Ts/4; others 0."""
+    y = np.zeros((len(x), F))
+    for key, unknown in SINGLE.items():
+        y[:, INDEX[key]] = x[:, unknown]
+    y[:, INDEX["maximum_power"]] = x[:, N0] + x[:, TS] - math.log(4)
+    return y
 
 
 def nowhere(n: int, variance: float = 0.0) -> Fit:
@@ -124,6 +135,9 @@ def test_figures_left_out_in_any_portion_are_refitted_one_by_one(pairs: int) -> 
 def listed(monkeypatch, part: Problem, chi2, variance: float = 0.0, steep: bool = False):
     robust, linear = nowhere(len(part), variance), nowhere(len(part), variance)
     linear.chi2[:] = chi2
+    linear.x[:] = np.linspace(-0.5, 0.7, P)  # laws and gaps: away from 1 it is told which is which
+    part = part.take(slice(None))
+    part.y = part.y + laws(linear.x)
 
     def once(some: Problem, robust_too: bool = False, **named: bool) -> Fit:
         assert named == {"robust": True}
@@ -221,6 +235,7 @@ def test_curved_figures_are_held_to_their_own_law(monkeypatch, key) -> None:
     ({R: math.log(0.19)}, (), False, False), ({R: math.log(0.21)}, (), False, True),
     ({I0: math.log(0.21)}, (), False, True), ({U: -math.log(0.21)}, (), False, True),
     ({U: -math.log(0.19)}, (), False, False), ({R: math.log(0.21)}, (), True, True),
+    ({R: 0, I0: 0, IN: 0}, (2,), False, True),  # on two counts
     # I0 over I_N, where the nominal torque is bound
     ({R: -9, I0: 0, IN: -math.log(0.39)}, (2,), False, False),
     ({R: -9, I0: 0, IN: -math.log(0.41)}, (2,), False, True),
@@ -263,12 +278,14 @@ def in_doubt(
     key: str, gap: float, chi2: float, variance: float = 0.0, more: int = 9, sd=SD
 ) -> bool:
     """Whether a motor is whose one figure is off by gap; ``more`` others fit."""
-    others = [k for k in INDEX if k not in (key, "maximum_efficiency", "peak_torque")][:more]
+    others = ["maximum_power", *(k for k in SINGLE if k != key)][:more]
     part, base = problem(1, key, *others, sd=sd), nowhere(1)
+    base.x[:] = np.linspace(-0.5, 0.7, P)
+    base.x[:, [K, IPK]] = 0.2, -0.2
+    part.y = laws(base.x)
     if key in SINGLE:
         base.covariance[0, SINGLE[key], SINGLE[key]] = variance
-    part.y[0, INDEX[key]] = gap
-    part.y[0, INDEX["maximum_power"]] = -math.log(4)
+    part.y[0, INDEX[key]] += gap
     base.chi2[:] = chi2
     found = doubtful(part, base)
     assert found.shape == (1,)

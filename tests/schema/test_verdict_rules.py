@@ -194,6 +194,7 @@ def test_a_verdict_in_numbers(monkeypatch) -> None:
     assert s.saved == pytest.approx(40)
     assert s.odds == pytest.approx(-0.5)
     assert s.causes == ("power-of-ten", "peak-vs-rms")
+    assert not s.by_family
     assert t.asked[0] == (0, 0, pytest.approx(s.log_ratio), pytest.approx(s.sd))
 
 
