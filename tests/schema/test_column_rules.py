@@ -81,15 +81,16 @@ def test_half_of_few_motors_must_fit_badly(monkeypatch, others, n, found) -> Non
     assert bool(t.faults()) == found
 
 
-@pytest.mark.parametrize(("wrong", "found"), [(7, False), (8, True)])
-def test_more_than_a_third_must_contradict_themselves(monkeypatch, wrong, found) -> None:
+@pytest.mark.parametrize(("wrong", "n", "found"), [(7, 22, False), (7, 20, True), (8, 22, True)])
+def test_more_than_a_third_must_contradict_themselves(monkeypatch, wrong, n, found) -> None:
     """35 %: half of the part that must share the factor; others may hide it by scatter."""
-    t = Table(monkeypatch, [200.0] * wrong + [11.9] * (22 - wrong), stall_torque=GOOD)
+    t = Table(monkeypatch, [200.0] * wrong + [11.9] * (n - wrong), stall_torque=GOOD)
     assert bool(t.faults()) == found
 
 
 def test_a_contradiction_is_worth_more_than_twelve(monkeypatch) -> None:
     assert Table(monkeypatch, [11.9] * 6, stall_torque=GOOD).faults() == []
+    assert Table(monkeypatch, [12.0] * 6, stall_torque=GOOD).faults() == []
     assert Table(monkeypatch, [12.1] * 6, stall_torque=GOOD).named() == [TORQUE]
 
 

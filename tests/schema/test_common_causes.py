@@ -30,6 +30,16 @@ def test_neighbours_have_each_other_s_value_within_two_and_a_half_deviations(
         assert {s.causes[0] for s in pair} == {"neighbouring-column" if led else "unexplained"}
 
 
+def test_just_two_and_a_half_deviations_are_too_many() -> None:
+    batch = printed("stall_current", 1.0, 1.0)
+    for off in ((0.1, 0.0), (0.0, -0.1), (0.0, 0.1)):
+        pair = [suspicion(0, "stall_current", 1.0, sd=0.04),
+                suspicion(1, "stall_current", 1.0, sd=0.04)]  # fmt: skip
+        pair[0].log_ratio, pair[1].log_ratio = off
+        exchanged_neighbours(batch, pair)
+        assert {s.causes[0] for s in pair} == {"unexplained"}
+
+
 def test_a_suspicion_without_a_neighbour_ends_no_search() -> None:
     """A pair is found after one without a neighbour, and after one of another series."""
     batch = printed("stall_current", 3.0, 1.0, 4.0, 1.0, 1.5)
@@ -82,7 +92,9 @@ def test_other_motors_are_looked_at_after_one_with_one_suspicion() -> None:
     assert alone.causes == ("unexplained",)
 
 
-@pytest.mark.parametrize(("ratio", "geared"), [(2.30, True), (2.15, False), (1 / 2.3, False)])
+@pytest.mark.parametrize(("ratio", "geared"), [
+    (2.30, True), (2.15, False), (1 / 2.3, False),
+])  # fmt: skip
 def test_a_gear_is_of_more_than_about_two_to_one(ratio: float, geared: bool) -> None:
     """Its ratio's logarithm above 0.8: gears of less are rare (common practice, no source)."""
     both = [suspicion(1, "nominal_torque", ratio), suspicion(1, "peak_torque", ratio)]

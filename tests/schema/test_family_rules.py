@@ -230,3 +230,7 @@ def test_a_motor_stands_off_by_two_deviations_of_both_together() -> None:
     base.covariance[:] = 0.0
     base.covariance[:3, J, J] = 0.04**2  # with 0.03 of the family 0.05
     assert stands_off(part, base).tolist() == [False, True, True, False, True, False]
+    part.family_sd[:], base.covariance[:] = 0.5, 0.0
+    base.x[:] = 0.0
+    part.family[:] = [(0, 1.0, 0, 0), (0, -1.0, 0, 0), (0, 0, 1.0, 0.25)] * 2  # 4, and a little
+    assert stands_off(part, base).tolist() == [False, False, True] * 2

@@ -94,7 +94,7 @@ UNUSUAL = [
 
 
 @pytest.mark.parametrize(("kind", "key", "changes", "cost", "words"), UNUSUAL)
-@pytest.mark.parametrize("more", [0.1, -0.1])
+@pytest.mark.parametrize("more", [0.1, 0.0, -0.1])
 def test_an_unusual_convention_must_fit_better_by_nine_and_its_cost(
     monkeypatch, kind, key, changes, cost, words, more
 ) -> None:

@@ -12,7 +12,13 @@ from motorfolio.schema.reconcile.adjust import Fit, fit
 from motorfolio.schema.reconcile.model import INDEX, UNKNOWNS, F, P, Readings
 from motorfolio.schema.reconcile.observed import observe
 from motorfolio.schema.reconcile.problem import Problem
-from motorfolio.schema.reconcile.suspects import doubtful, leave_out, predicted, shortlist
+from motorfolio.schema.reconcile.suspects import (
+    LeftOut,
+    doubtful,
+    leave_out,
+    predicted,
+    shortlist,
+)
 
 from .made_up_suspicions import problem
 from .simulated_sheets import make
@@ -236,6 +242,8 @@ def test_curved_figures_are_held_to_their_own_law(monkeypatch, key) -> None:
     ({I0: math.log(0.21)}, (), False, True), ({U: -math.log(0.21)}, (), False, True),
     ({U: -math.log(0.19)}, (), False, False), ({R: math.log(0.21)}, (), True, True),
     ({R: 0, I0: 0, IN: 0}, (2,), False, True),  # on two counts
+    ({R: math.log(0.2)}, (), False, False), ({R: -9, I0: math.log(0.4)}, (2,), False, False),
+    ({I0: -20, R: math.log(0.5)}, (3,), False, False), ({I0: -20}, (3,), True, False),
     # I0 over I_N, where the nominal torque is bound
     ({R: -9, I0: 0, IN: -math.log(0.39)}, (2,), False, False),
     ({R: -9, I0: 0, IN: -math.log(0.41)}, (2,), False, True),
@@ -271,6 +279,20 @@ def test_laws_are_far_from_straight_where_losses_are_great(
     assert suspects._steep(part, fitted).tolist() == [expected]
 
 
+# ---- what contradicts
+
+
+@pytest.mark.parametrize(("saved", "gap", "sd", "expected"), [
+    (12.1, 0.2, 0.01, True), (12.0, 0.2, 0.01, False), (12.1, math.log(1.071), 0.01, True),
+    (12.1, math.log(1.069), 0.01, False), (12.1, -math.log(1.071), 0.01, True),
+    (12.1, -math.log(1.069), 0.01, False), (12.1, math.log(1.171), 0.06, True),
+    (12.1, math.log(1.169), 0.06, False), (np.nan, 0.2, 0.01, False), (90.0, 800.0, 0.01, True),
+])  # fmt: skip
+def test_a_contradiction_saves_twelve_and_departs_by_two_deviations_more(saved, gap, sd, expected):
+    left = LeftOut(np.array([[8.0]]), np.array([[gap]]), np.array([[sd]]))
+    assert suspects.contradicts(np.array([8.0 + saved]), left).tolist() == [[expected]]
+
+
 # ---- who is in doubt
 
 
@@ -298,7 +320,7 @@ def test_a_figure_brings_doubt_if_it_saves_four_fifths_of_a_contradiction(varian
         gap = sign * math.sqrt(9.6 * (SD**2 - variance))  # of 12
         for factor, doubt in ((1.01, True), (0.99, False)):
             assert in_doubt("rotor_inertia", factor * gap, 13.0, variance) == doubt
-            assert not in_doubt("rotor_inertia", factor * gap, 11.9, variance)
+            assert not in_doubt("rotor_inertia", factor * gap, 12.0, variance)
 
 
 @pytest.mark.parametrize("variance", [0.0, 0.00003, 0.00005])
@@ -318,6 +340,7 @@ def test_a_motor_that_fits_badly_as_a_whole_is_in_doubt(more: int, fits: int) ->
     """χ² above twice the number of its figures."""
     assert in_doubt("rotor_inertia", 0.0, 2 * fits + 0.1, more=more)
     assert not in_doubt("rotor_inertia", 0.0, 2 * fits - 0.1, more=more)
+    assert not in_doubt("rotor_inertia", 0.0, 2 * fits, more=more)
 
 
 def test_a_peak_torque_within_its_band_brings_no_doubt() -> None:

@@ -205,30 +205,30 @@ def test_candidates_are_within_sixteen_of_the_best_suspect(monkeypatch) -> None:
     """Of every motor its own best, and of those that contradict."""
     t = Sheet(monkeypatch, {}, {}, {})
     left = LeftOut(*(np.full((2, F), np.nan) for _ in range(3)))
-    left.chi2[:, :5] = [[30, 45.9, 46.1, 20, 300], [5, 20.9, 21.1, 4, 7]]
-    left.log_ratio[:, :5] = np.arange(10).reshape(2, 5) / 10
-    left.implied_sd[:, :5] = 0.04
+    left.chi2[:, :6] = [[30, 45.9, 46.1, 20, 300, 46], [5, 20.9, 21.1, 4, 7, 21]]
+    left.log_ratio[:, :6] = np.arange(12).reshape(2, 6) / 10
+    left.implied_sd[:, :6] = 0.04
     bad = np.zeros((2, F), dtype=bool)
     bad[:, [0, 4]] = True
     t.odd[1, 1], t.odd[2, 0], t.odd[2, 4] = 1, 2, 1
-    t.scores[:5] = (-1.0, -2.0, -3.0, -4.0, -5.0)
+    t.scores[:6] = (-1.0, -2.0, -3.0, -4.0, -5.0, -6.0)
     part = t.problem.take(np.array([1, 2]))
     ranking = verdicts._rank(t.evidence, np.array([1, 2]), part, left, bad)
     expected = np.full((2, F), np.inf)
-    expected[0, [0, 1, 3]] = 30, 45.9 + 6, 20
-    expected[1, [0, 1, 3, 4]] = 5 + 12, 20.9, 4, 7 + 6
+    expected[0, [0, 1, 3, 5]] = 30, 45.9 + 6, 20, 46
+    expected[1, [0, 1, 3, 4, 5]] = 5 + 12, 20.9, 4, 7 + 6, 21
     assert ranking.chi2 == pytest.approx(expected)
-    for f in range(5):
+    for f in range(6):
         expected[:, f] -= 2 * t.scores[f]
     assert ranking.total == pytest.approx(expected)
-    pairs = [(0, 0), (0, 1), (0, 3), (1, 0), (1, 1), (1, 3), (1, 4)]
+    pairs = [(0, 0), (0, 1), (0, 3), (0, 5), (1, 0), (1, 1), (1, 3), (1, 4), (1, 5)]
     assert sorted(ranking.scores) == pairs
     for i, f in pairs:
         assert ranking.scores[i, f][CODE["power-of-ten"]] == pytest.approx(
             t.scores[f] - math.log(2)
         )
     sd = math.hypot(0.04, DIGITS)
-    assert ranking.sd[:, :5] == pytest.approx(np.full((2, 5), sd))
+    assert ranking.sd[:, :6] == pytest.approx(np.full((2, 6), sd))
     assert t.asked == [
         (i + 1, f, pytest.approx(left.log_ratio[i, f]), pytest.approx(sd)) for i, f in pairs
     ]
@@ -244,7 +244,8 @@ def test_the_suspect_is_the_likeliest_by_fit_and_causes(monkeypatch, fit, odds, 
 
 
 @pytest.mark.parametrize(("fit", "odds", "rival"), [
-    (2.4, -9.0, True), (2.6, -9.0, False), (20.0, 7.1, True), (20.0, 6.9, False),
+    (2.4, -9.0, True), (2.5, -9.0, False), (2.6, -9.0, False), (20.0, 7.1, True),
+    (20.0, 7.0, False), (20.0, 6.9, False),
 ])  # fmt: skip
 def test_a_rival_fits_or_is_as_likely_nearly(fit, odds, rival) -> None:
     """Worse by less than 2.5 in χ², or by less than 6 with the causes counted in."""
@@ -325,6 +326,7 @@ def test_who_is_right_after_all_gives_way_to_who_is_not(monkeypatch) -> None:
 
 def test_what_looked_worst_stays_if_the_other_is_no_better(monkeypatch) -> None:
     assert looked_at_again(monkeypatch, {"ab": 30.0, "cd": 30.0, "b": 1.9}, "ad") == "ad"
+    assert looked_at_again(monkeypatch, {"ab": 30.0, "cd": 30.0, "b": 2.0}, "ad") == "ad"
     assert looked_at_again(monkeypatch, {"ab": 30.0, "cd": 30.0, "b": 2.1}, "ad") == "bd"
 
 
