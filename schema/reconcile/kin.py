@@ -75,7 +75,8 @@ class Kin:
         if len(texts) == 1 and (text := texts.pop()):
             said = text
         else:
-            said = f"{number(float(values.min()), 3)} to {number(float(values.max()), 3)}"
+            least, most = (number(float(v), 3) for v in (values.min(), values.max()))
+            said = least if least == most else f"{least} to {most}"
         unit = "" if unit in said else f" {unit}"
         plural = "windings" if others.size > 1 else "winding"
         verb = "print" if others.size > 1 else "prints"

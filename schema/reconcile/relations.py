@@ -29,8 +29,6 @@ class Relation:
     others: tuple[str, ...]
     template: str
     right: Callable[[Mapping[str, Floats]], Floats]
-    fault: bool = True
-    """False where a departure is worth a note only."""
 
     @property
     def figures(self) -> tuple[str, ...]:
