@@ -15,7 +15,7 @@ from ..vocabulary import quantity
 from .causes import causes_of, shape, static_scores
 from .explain import ROLES, Narrator, capital, name, number
 from .families import DIRECT, groups, majority
-from .model import FIGURES, INDEX, LAW_SCATTER
+from .model import FIGURES, LAW_SCATTER
 from .observed import copper, printed_sd, to_model
 from .relations import (
     BOUNDS,
@@ -301,7 +301,7 @@ def scatter(narrator: Narrator, skip: Callable[[int], bool]) -> Found:
     for i, relation in enumerate(RELATIONS):
         if not all(f in values for f in relation.figures) or "≈" in relation.formula:
             continue
-        if relation.left not in INDEX or relation.left in ("peak_torque", "friction_torque"):
+        if relation.left in ("peak_torque", "friction_torque"):
             continue
         with np.errstate(all="ignore"):
             gap = np.abs(np.log(values[relation.left] / relation.right(values)))

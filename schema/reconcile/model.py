@@ -57,7 +57,7 @@ LINEAR: dict[str, tuple[dict[int, float], float]] = {
     "peak_current": ({IPK: 1}, 0.0),
     "maximum_power": ({N0: 1, TS: 1}, -np.log(4.0)),
     # the two that are not sums of logarithms; their slopes are computed
-    "peak_torque": ({K: 1, IPK: 1}, 0.0),
+    "peak_torque": ({}, 0.0),
     "maximum_efficiency": ({}, 0.0),
 }  # fmt: skip
 
@@ -144,7 +144,6 @@ def linear_matrix(readings: Readings) -> tuple[Floats, Floats]:
         i = INDEX["maximum_power"]
         matrix[i] = 0.0
         matrix[i, U], matrix[i, R] = 2.0, -1.0
-    matrix[INDEX["peak_torque"]] = 0.0
     return matrix, constant
 
 
