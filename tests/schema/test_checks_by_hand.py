@@ -267,6 +267,18 @@ def test_a_rating_in_words() -> None:
     )
 
 
+def test_the_ends_of_many_ratings_are_shares_of_what_is_permitted() -> None:
+    """Not rises: 171 K of 80 K is a larger share than 200 K of 100 K."""
+    batch = rated(13)
+    figures = batch.figures
+    figures["nominal_current"].value[7] = 0.94
+    figures["nominal_current"].value[6] = 0.5
+    figures["thermal_resistance"].value[6] = 261.4  # · 0.25 A² · 2 Ω · 339.5/259.5 = 171 K
+    figures["maximum_winding_temperature"].value[6] = 105.0
+    ((_, note),) = checks.thermal(Narrator(batch), {})
+    assert "a rise of 177 K of 100 K permitted (X7) to 171 K of 80 K (X6)." in note.message
+
+
 @pytest.mark.parametrize(
     "missing", ["nominal_current", "terminal_resistance", "maximum_winding_temperature"]
 )

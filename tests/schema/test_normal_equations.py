@@ -331,3 +331,52 @@ def test_readings_change_their_rows_only() -> None:
     net = v["torque_constant"] * (v["voltage"] / v["resistance"] - v["no_load_current"])
     gap = np.log(gross / v["stall_torque"]) ** 2 - np.log(net / v["stall_torque"]) ** 2
     assert Equations(p).chi2(x) - plain == pytest.approx(gap / 0.02**2, rel=1e-6)
+
+
+def stepped(p: Problem, x: np.ndarray, most: int) -> tuple[np.ndarray, np.ndarray]:
+    """Gauss-Newton by numpy until no logarithm moves by 1e-4; the last inverse."""
+    equations = Equations(p)
+    x = x.copy()
+    inverse = np.empty(0)
+    for _ in range(most):
+        factors, right = equations.normal(x)
+        inverse = factors.inverse()
+        step = np.clip(np.einsum("ijn,jn->in", inverse, right), -3.0, 3.0)
+        x[equations.active] += step
+        if np.abs(step).max() < 1e-4:
+            break
+    return x, inverse
+
+
+@pytest.mark.parametrize("off", [1e-7, 0.01, 0.3, 3.0, 9.0])
+def test_further_steps_are_six_at_most_or_until_rest(off: float) -> None:
+    p = sheet(n=2)
+    start = fit(p).x.T
+    start[Equations(p).active] += off
+    x, factors, chi2 = adjust._further(p, Equations(p), start.copy())
+    wanted, inverse = stepped(p, start, 6)
+    assert x == pytest.approx(wanted, abs=1e-10)
+    assert factors.inverse() == pytest.approx(inverse, rel=1e-6, abs=1e-12)
+    assert chi2 == pytest.approx(Equations(p).chi2(wanted), rel=1e-9)
+
+
+def test_a_quiet_motor_keeps_its_first_matrix_and_one_that_moves_gets_its_own() -> None:
+    """By a fifth of any logarithm in the first step from the log-linear start."""
+    s = make(np.random.default_rng(4), 2, BRUSHED, FULL, scatter=0.1)
+    s.batch.series = ["A", "B"]
+    for key, factor in (("torque_constant", 1e3), ("no_load_current", 0.05)):
+        spoil(s.batch, key, 1, factor)
+    p = observe(s.batch)
+    equations = Equations(p)
+    start, _ = adjust._loglinear(equations)
+    first, right = equations.normal(start)
+    moved = np.abs(first.solve(right)).max(axis=0)
+    assert moved[0] < 0.2 < moved[1]
+    found = fit(p)
+    before = equations.covariance(first)
+    after = equations.covariance(equations.normal(found.x.T)[0])
+    assert found.covariance[0] == pytest.approx(before[0], rel=1e-9, abs=1e-15)
+    assert found.covariance[1] == pytest.approx(after[1], rel=1e-2, abs=1e-6)
+    for m, other in ((0, after), (1, before)):
+        gap = np.abs(found.covariance[m] / np.where(other[m] == 0, np.inf, other[m]) - 1)
+        assert gap[other[m] != 0].max() > 1e-5

@@ -171,9 +171,12 @@ def test_points_become_constants() -> None:
 def test_a_published_constant_comes_before_points() -> None:
     batch = points(at(1.0), at(5.0), at(9.0))
     put(batch, "terminal_resistance", 0, 2.0, 4)
-    column = reconcile(batch).constants["armature_resistance"]
+    result = reconcile(batch)
+    column = result.constants["armature_resistance"]
     assert column.value[0] == pytest.approx(2.0, rel=0.01)
     assert column.sources[column.source[0]] == ("terminal_resistance",)
+    for key, value in (("torque_constant", KM), ("no_load_current", IDLE)):
+        assert result.constants[key].value[0] == pytest.approx(value, rel=1e-6)
 
 
 def test_an_idle_current_of_naught_is_none() -> None:
@@ -244,7 +247,7 @@ def test_intervals_are_of_95_per_cent() -> None:
 def test_a_constant_known_to_a_third(sd: float, given: bool) -> None:
     found = some_constants({"rotor_inertia": 0.01, "inertia": sd})["rotor_inertia"]
     assert math.isfinite(found.value[0]) == given
-    assert (found.basis[0] >= 0) == given
+    assert found.basis[0] == (CONSTANT_BASES.index("published") if given else -1)
     assert math.isfinite(found.low[0]) == math.isfinite(found.high[0]) == given
 
 

@@ -86,9 +86,11 @@ def test_a_suspect_motor_has_no_note_and_its_suspect_no_second_finding() -> None
 
 
 def test_the_severity_is_by_ratio_and_cause() -> None:
-    for ratio, cause, severity in ((1.12, "unexplained", "warning"), (1.2, "unexplained", "error"),
-                                   (1.12, "peak-vs-rms", "error")):  # fmt: skip
-        found = report(sheet_of(3), [suspicion(1, "stall_current", ratio, (cause,))])
+    for ratio, causes, severity in (
+        (1.12, ("unexplained", "peak-vs-rms"), "warning"), (1.2, ("unexplained",), "error"),
+        (1.12, ("peak-vs-rms", "power-of-ten"), "error"),
+    ):  # fmt: skip
+        found = report(sheet_of(3), [suspicion(1, "stall_current", ratio, causes)])
         assert found[0] == (1, "stall-current", severity)
 
 
