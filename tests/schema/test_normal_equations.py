@@ -380,3 +380,29 @@ def test_a_quiet_motor_keeps_its_first_matrix_and_one_that_moves_gets_its_own() 
     for m, other in ((0, after), (1, before)):
         gap = np.abs(found.covariance[m] / np.where(other[m] == 0, np.inf, other[m]) - 1)
         assert gap[other[m] != 0].max() > 1e-5
+
+
+@pytest.mark.parametrize(("scatter", "factor"), [(0.0, 1.0), (1.0, 1.0), (1.0, 1.15), (0.3, 10.0)])
+def test_three_steps_with_the_first_matrix_or_until_rest(scatter: float, factor: float) -> None:
+    """Then those further that aren't at rest, or began with a step over a fifth; by numpy."""
+    s = make(np.random.default_rng(4), 2, BRUSHED, FULL, scatter=scatter)
+    spoil(s.batch, "terminal_resistance", 1, factor)
+    p = observe(s.batch)
+    equations = Equations(p)
+    x, _ = adjust._loglinear(equations)
+    factors, right = equations.normal(x)
+    inverse = factors.inverse()
+    step = np.einsum("ijn,jn->in", inverse, right)
+    x[equations.active] += step
+    far = np.abs(step).max(axis=0) > 0.2
+    for _ in range(3):
+        step = np.einsum("ijn,jn->in", inverse, equations.gradient(x))
+        x[equations.active] += step
+        if np.abs(step).max() < 1e-4:
+            break
+    who = np.flatnonzero(far | (np.abs(step).max(axis=0) > 1e-4))
+    if who.size:
+        x[:, who], _ = stepped(p.take(who), x[:, who], 6)
+    found = fit(p)
+    assert found.x.T == pytest.approx(x, abs=1e-9)
+    assert found.chi2 == pytest.approx(Equations(p).chi2(x), rel=1e-7)

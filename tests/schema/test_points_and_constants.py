@@ -147,9 +147,9 @@ def test_resistances_of_large_and_small_motors() -> None:
         assert found.resistance == pytest.approx(ra, rel=1e-6)
 
 
-def test_points_become_constants() -> None:
+@pytest.mark.parametrize("some", [[at(1.0, 1.02), at(5.0), at(9.0, 1.01)], [at(5.0), at(7.0)]])
+def test_points_become_constants(some: list[dict[str, float]]) -> None:
     """Of a motor that publishes nothing else: two deviations either way, none below naught."""
-    some = [at(1.0, 1.02), at(5.0), at(9.0, 1.01)]
     batch = points(*some)
     result = reconcile(batch)
     found = fit_points(batch, 0)

@@ -222,3 +222,14 @@ def test_a_table_s_own_reading_and_scatter_reach_its_motors() -> None:
     assert found == []
     km = constants["torque_constant"]
     assert all("stall_torque" not in km.sources[i] for i in km.source)
+
+
+@pytest.mark.parametrize(
+    ("n", "series", "family"), [(3, "A", True), (3, None, False), (4, None, True), (2, "A", False)]
+)
+def test_three_rows_of_a_series_or_four_of_none_are_a_family(n, series, family) -> None:
+    """No series name makes fewer rows one size (common practice, no source)."""
+    s = make(np.random.default_rng(4), n, BRUSHED, FULL, scatter=0.1)
+    s.batch.series = [series] * n
+    _, _, found = run._portion(s.batch, run._Table(Readings(), 1.0, [], []))
+    assert found.tolist() == [family] * n

@@ -63,6 +63,9 @@ def test_what_the_others_print_nearly_alike() -> None:
     """From the least to the greatest, within 5 % of what is implied; others are passed over."""
     batch = table([0.72, 7.1, 7.3, 7.2, 12.0, 7.2 * 1.045, 7.2 * 1.06, 7.2 / 1.06])
     assert words(batch) == "four other windings of this size print 7.1 to 7.52 gcm2"
+    batch = table([0.72, 7.1, 7.3])
+    batch.figures["rotor_inertia"].value[1:] = [7.1234e-7, 7.3456e-7]
+    assert words(batch) == "two other windings of this size print 7.12 to 7.35 gcm2"
     assert words(table([0.72, 7.1, 7.3]), motor=1) == (
         "one other winding of this size prints 7.30 gcm2"
     )
