@@ -44,8 +44,7 @@ def transpositions(text: str) -> list[float]:
         digits = list(number)
         digits[a], digits[b] = digits[b], digits[a]
         other = float("".join(digits).replace(",", "."))
-        if other > 0.0:
-            out.append(math.log(printed / other))
+        out.append(math.log(printed / other))
     return out
 
 

@@ -261,7 +261,7 @@ def nonlinear_rows(
     # η_max = (1 − √(I0/I_s))²
     i = INDEX["maximum_efficiency"]
     if weight[:, i].any():
-        root = np.minimum(np.sqrt(brake), 0.95)
+        root = np.sqrt(brake)
         slope = -root / (1.0 - root)
         residual = y[:, i] - 2.0 * np.log1p(-root)
         yield residual, weight[:, i], [(I0, slope), (R, slope), (U, -slope)]

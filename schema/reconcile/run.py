@@ -204,7 +204,7 @@ def _report(
     for fault, motors in merged:
         for m in motors.tolist():
             doubted.setdefault(m, set()).add(FIGURES[fault.figure])
-    everyone = {m: fs | shared for m, fs in doubted.items()}
+    everyone = doubted
     if shared:
         everyone = {m: doubted.get(m, set()) | shared for m in range(len(out.batch))}
     for motor, finding in (

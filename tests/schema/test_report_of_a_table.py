@@ -22,7 +22,7 @@ from motorfolio.schema.reconcile.model import INDEX, Readings
 from motorfolio.schema.reconcile.observed import observe
 from motorfolio.schema.reconcile.suspects import Suspicion, doubtful
 
-from .simulated_sheets import FULL, make, put, single, spoil
+from .simulated_sheets import FULL, SERVO, make, put, single, spoil
 
 BRUSHED = Commutation.BRUSHED
 
@@ -107,6 +107,8 @@ def test_most_of_a_column_is_said_once_and_first() -> None:
 def test_a_whole_column_is_doubted_everywhere() -> None:
     batch = sheet_of(3)
     found = report(batch, [], [column("stall_current", 1.1)])
+    assert found == [(0, "stall-current", "warning")]
+    found = report(batch, [], [column("stall_current", 1.1, ("unexplained", "peak-vs-rms"))])
     assert found == [(0, "stall-current", "warning")]
     found = report(batch, [], [column("stall_current", 1.1, ("peak-vs-rms",))])
     assert found == [(0, "stall-current", "error")]
@@ -233,3 +235,17 @@ def test_three_rows_of_a_series_or_four_of_none_are_a_family(n, series, family) 
     s.batch.series = [series] * n
     _, _, found = run._portion(s.batch, run._Table(Readings(), 1.0, [], []))
     assert found.tolist() == [family] * n
+
+
+def test_a_note_on_conventions_stands_at_the_first_motor_of_its_kind() -> None:
+    """Back-EMF printed as a peak value, with no word of it: √2 of the rms that is customary."""
+    s = make(np.random.default_rng(4), 3, Commutation.SINUSOIDAL, SERVO, scatter=0.1)
+    for row in range(3):
+        spoil(s.batch, "back_emf_constant", row, math.sqrt(2))
+    for column_ in s.batch.figures.values():
+        column_.conventions = [c.with_(basis="assumed") for c in column_.conventions]
+    result = run.reconcile(s.batch)
+    first = result.findings[0]
+    assert (first.relation, first.severity) == ("convention", "note")
+    assert result.finding_motor[0] == 0
+    assert result.batch.figures["back_emf_constant"].conventions[0].voltage == "peak"

@@ -234,7 +234,6 @@ def test_an_idle_current_near_the_stall_current_is_held(values: dict[int, float]
     assert found["T_N"][0] == pytest.approx(math.log(0.03 * 5 * 0.1))
     assert found["n0"][2][R] == pytest.approx(0.9 / 0.1)
     assert found["T_N"][2] == pytest.approx({TN: 1, K: -1, IN: -10, I0: 9})
-    # √0.9 is just below the bound of the efficiency
     assert found["efficiency"][0] == pytest.approx(-2 * math.log(1 - math.sqrt(0.9)))
 
 

@@ -132,10 +132,10 @@ def test_the_cause_of_a_departing_convention(departs, cause) -> None:
 
 
 def test_points_of_no_one_motor() -> None:
-    found = Narrator(sheet(n=2)).points(1, 0.1234)
+    found = Narrator(sheet(n=2)).points(1, 0.9649)
     assert (found.part_number, found.severity, found.relation) == ("X1", "warning",
                                                                    "operating-points")  # fmt: skip
     assert found.message == (
         "The published operating points don't lie on the straight lines of one motor: the worst is "
-        "off by 12 %."
+        "off by 96 %."
     )
