@@ -351,6 +351,15 @@ def test_a_departure_beyond_custom_is_noted(key: str, half: float) -> None:
         assert checks.scatter(Narrator(batch), lambda m: False) == []
 
 
+def test_constants_that_agree_to_five_per_cent_are_not_noted() -> None:
+    """Though each is customarily known to 1 %: Kt = Ke."""
+    batch = sheet(4, torque_constant=0.03, back_emf_constant=0.03)
+    exact(batch, "torque_constant", [0.03] * 4)
+    exact(batch, "back_emf_constant", [0.03 * math.exp(gap) for gap in (0.047, 0.053, -0.047, 0)])
+    ((m, note),) = checks.scatter(Narrator(batch), lambda m: False)
+    assert (m, note.figures) == (1, ("torque_constant", "back_emf_constant"))
+
+
 def test_a_note_on_scatter_in_words() -> None:
     batch = law_sheet("stall_current", 22.0)
     ((m, note),) = checks.scatter(Narrator(batch), lambda m: False)

@@ -12,7 +12,7 @@ import numpy as np
 import pytest
 from scipy.stats import t as student
 
-from motorfolio.schema.batch import Point
+from motorfolio.schema.batch import Point, empty_figures
 from motorfolio.schema.convention import Commutation
 from motorfolio.schema.motor import CANONICAL, CONSTANT_BASES, ConstantColumn
 from motorfolio.schema.reconcile.adjust import Fit
@@ -241,6 +241,17 @@ def test_intervals_are_of_95_per_cent() -> None:
         assert found[key].high[0] == pytest.approx(value * math.exp(z * sd), rel=2e-3)
         assert found[key].low[0] == pytest.approx(value * math.exp(-z * sd), rel=2e-3)
     assert np.isnan(found["viscous_damping"].value[0])
+
+
+def test_damping_is_given_where_it_is_published() -> None:
+    batch = single()
+    batch.figures["viscous_damping"] = column = empty_figures(1)
+    column.value[:] = column.low[:] = column.high[:] = 2e-6
+    found = constants(batch, observe(batch), fitted(FIVE, {"viscous_damping": 0.2}))
+    damping = found["viscous_damping"]
+    assert damping.value[0] == pytest.approx(2e-6)
+    assert damping.high[0] == pytest.approx(2e-6 * math.exp(student.ppf(0.975, 30) * 0.2), rel=2e-3)
+    assert CONSTANT_BASES[damping.basis[0]] == "published"
 
 
 @pytest.mark.parametrize(("sd", "given"), [(0.34, True), (0.36, False)])
