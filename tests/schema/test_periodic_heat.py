@@ -230,11 +230,11 @@ def test_steady_temperatures_side_by_side() -> None:
         [25.0, 0.0, 0.0, 0.0, 0.004, -0.001], [40.0, 20.0, 3.0, 2.0, 0.004, -0.002],
         [30.0, np.nan, 0.0, 0.0, 0.004, 0.0], [30.0, 400.0, 0.0, 0.0, 0.004, 0.0],
         [30.0, 20.0, 0.0, 0.0, 0.004, np.nan], [20.0, 60.0, 0.0, 1.0, 0.0, -0.001],
-        [30.0, 90.0, 0.0, 0.0, 0.0039, -0.0011],
+        [30.0, 90.0, 0.0, 0.0, 0.0039, -0.0011], [25.0, 300.0, 150.0, 0.0, 0.004, 0.0],
     ])  # fmt: skip
     many, lost = steady_temperature(*columns.T)
-    assert np.isnan(many).tolist() == [False, False, True, True, True, False, True]
-    assert lost.tolist() == [False, False, False, True, False, False, True]
+    assert np.isnan(many).tolist() == [False, False, True, True, True, False, True, True]
+    assert np.flatnonzero(lost).tolist() == [3, 6, 7]
     for k, (ambient, h, r, fixed, alpha, beta) in enumerate(columns):
         one, runaway = steady_temperature(ambient, h, r, fixed, alpha, beta)
         assert float(one) == pytest.approx(many[k], rel=1e-12, nan_ok=True)
