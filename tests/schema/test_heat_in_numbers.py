@@ -227,7 +227,7 @@ def test_a_slow_rhythm_swings_and_a_fast_one_does_not() -> None:
     """4 A for half of the time. In hours the winding comes to the steady state of the load, in
     milliseconds it stays at that of the mean; without time constants nothing tells but the mean."""
 
-    def peak(period: float, **given) -> float:
+    def peak(period: float, periodic: bool = True, **given) -> float:
         columns = {
             "thermal_resistance_winding_housing": 1.0,
             "thermal_resistance_housing_ambient": 2.0,
@@ -236,12 +236,13 @@ def test_a_slow_rhythm_swings_and_a_fast_one_does_not() -> None:
         }
         on = Cycle.from_points([(4.0, 0.0, period / 2), (0.0, 0.0, period / 2)])
         m = Machines.of(torque_constant=1.0, armature_resistance=1.0, **{**columns, **given})
-        return float(judge(m, Demand(on)).winding_temperature[0, 0])
+        return float(judge(m, Demand(on), periodic=periodic).winding_temperature[0, 0])
 
     steady, mean = warm(48.0), warm(24.0)
     assert peak(1e5) == pytest.approx(steady, rel=1e-4)
     assert peak(1e-3) == pytest.approx(mean, rel=1e-9)
     assert mean * 1.0001 < peak(5.0) < steady
+    assert peak(1e5, periodic=False) == pytest.approx(mean, rel=1e-9)
     for name in ("winding", "housing"):
         assert peak(1e5, **{f"thermal_time_constant_{name}": NAN}) == pytest.approx(mean, rel=1e-9)
     only_total = {"thermal_resistance_winding_housing": NAN, "thermal_resistance": 3.0}

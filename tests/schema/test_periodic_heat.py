@@ -8,6 +8,7 @@ import numpy as np
 import pytest
 from scipy.linalg import expm
 
+from motorfolio.schema.operation import thermal
 from motorfolio.schema.operation.thermal import (
     COPPER_COEFFICIENT,
     TwoBody,
@@ -247,3 +248,15 @@ def test_steady_temperatures_side_by_side() -> None:
     # without loss even magnets that would be gone are no runaway before they are
     assert not steady_temperature(500.0, 0.0, 0.0, 0.0, 0.004, -0.001)[1]
     assert steady_temperature(1100.0, 0.0, 0.0, 0.0, 0.004, -0.001)[1]
+
+
+def test_temperatures_that_keep_climbing_are_runaway(monkeypatch: pytest.MonkeyPatch) -> None:
+    """A search that comes to no end has no peak to tell."""
+
+    def climbing(body, ambient, h, loss, ripple, rubbing, beta, nodes):
+        return nodes + 1.0, np.array([True] * len(nodes)), nodes.max(axis=1)
+
+    monkeypatch.setattr(thermal, "_one_period", climbing)
+    peak, lost = periodic_peak(*made(1.0, 0.0)[:1], AMBIENT, *made(1.0, 0.0)[1:], np.full(2, 60.0))
+    assert np.isnan(peak).all()
+    assert lost.all()

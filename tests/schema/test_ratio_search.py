@@ -180,3 +180,15 @@ def test_an_unknown_limit_leaves_no_ratio() -> None:
     assert (found.high[0], found.best[0]) == (50.0, 50.0)
     fixed = feasible_ratios(m, still, 4.0, 4.0)
     assert (fixed.motor.tolist(), fixed.best.tolist()[:1]) == ([0], [4.0])
+
+
+def test_the_peak_of_a_slow_rhythm_counts_unless_the_mean_is_asked_for() -> None:
+    """3 A for half of an hour heat as if they stayed, 27 K and more; on average half of that."""
+    m = Machines.of(
+        torque_constant=1.0, armature_resistance=1.0, thermal_resistance_winding_housing=1.0,
+        thermal_resistance_housing_ambient=2.0, thermal_time_constant_winding=5.0,
+        thermal_time_constant_housing=60.0, maximum_winding_temperature=45.0,
+    )  # fmt: skip
+    slow = Demand(Cycle.from_points([(3.0, 0.0, 1800.0), (0.0, 0.0, 1800.0)]))
+    assert feasible_ratios(m, slow, 1.0, 1.0).motor.size == 0
+    assert feasible_ratios(m, slow, 1.0, 1.0, periodic=False).motor.size == 1
