@@ -44,8 +44,9 @@ MIXED = NumberStyle(".", "both", (3,))
         # one side open
         ("max: 5 A", 5, NAN, 5, "at most", "A"), ("max = 5", 5, NAN, 5, "at most", ""),
         ("> 5 A", 5, 5, NAN, "at least", "A"), ("5 A (min)", 5, 5, NAN, "at least", "A"),
-        ("5未満", 5, NAN, 5, "at most", ""), ("5 以内", 5, NAN, 5, "at most", ""), ("max. 5 (max)", 5, NAN, 5, "at most",
-        ""), ("-5 max", -5, NAN, -5, "at most", ""), ("≥ -5", -5, -5, NAN, "at least", ""),
+        ("5未満", 5, NAN, 5, "at most", ""), ("5 以内", 5, NAN, 5, "at most", ""),
+        ("max. 5 (max)", 5, NAN, 5, "at most", ""), ("-5 max", -5, NAN, -5, "at most", ""),
+        ("≥ -5", -5, -5, NAN, "at least", ""), ("3000 min-1", 3000, 2995, 3005, None, "min-1"),
         ("5 A typ.", 5, 4.5, 5.5, "typical", "A"), ("approx 5", 5, 4.5, 5.5, "about", ""),
         ("5 A [approx.]", 5, 4.5, 5.5, "about", "A"),
         # what stands before the number
@@ -79,6 +80,7 @@ def test_cells(text, value, low, high, qualifier, unit) -> None:
 @pytest.mark.parametrize(
     ("text", "words", "guesses"),
     [
+        ("50 [+1,-2]", "a tolerance that is no number", ()), ("5 V2 - 8 V2", "more than one", ()),
         ("5 4", "more than one number", (5, 4)), ("5 A 7 -8", "more than one number", (5, 7, -8)),
         ("5-3 V", "not in order", (5, 3)), ("5-5 V", "not in order", (5, 5)), ("5 V - 7 A",
         "two units", (5,)), ("5 V ± 1 A", "two units", (5,)), ("5 (V", "no partner", (5,)),
@@ -238,6 +240,8 @@ def test_a_column_of_every_kind() -> None:
         "1 ± 0.00009e3"), ("2 - 1×10^3", "2 - 1×10^3"), ("3 to 5 10^-6", "3 10^-6 to 5 10^-6"),
         ("+3 - 5×10^4 V", "+3×10^4 - 5×10^4 V"), ("5 - 5e3", "5 - 5e3"), ("10 - 20e1", None),
         ("1,5 ~ 2,5e-3", "1,5e-3 ~ 2,5e-3"), ("1 ± 1e-3", None), ("1 ± 1e-5", "1e-5 ± 1e-5"),
+        ("50 - 1,234×10^-3", "50 - 1,234×10^-3"), ("1,234 - 2000×10^-3", "1,234 - 2000×10^-3"),
+        ("1 - 100×10^3", "1×10^3 - 100×10^3"), ("1 - 101×10^3", "1 - 101×10^3"),
     ],
 )  # fmt: skip
 def test_a_power_behind_two_numbers(text: str, shared: str | None) -> None:
@@ -260,6 +264,7 @@ def test_styles_and_readings_at_their_edges() -> None:
     tie = number_style(["1.5", "2.5", "3,5", "4,5"])
     assert (tie.decimal, tie.conflicts) == (None, (0, 1))
     assert number_style(["5", "1,234", "24 V"]).decimal is None
+    assert number_style(["24", "1,5"]).decimal == ","
     found = number_style(["1.5 - 2.5", "3,5"])
     assert (found.decimal, found.conflicts) == (None, (0,))
 
