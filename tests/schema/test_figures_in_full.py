@@ -221,6 +221,8 @@ def test_a_column_of_every_kind() -> None:
     assert column.doubtful == [3]
     assert list(column.failures) == [6]
     assert list(column.figures) == [7, 14]
+    tens = read_column(["9050", "10050", "90"], POINT)
+    assert (tens.high - tens.value).tolist() == [5, 5, 0.5]
     comma = read_column(["1,234", "0,5", "1.5"], COMMA)
     assert comma.value == pytest.approx([1.234, 0.5, NAN], nan_ok=True)
     assert comma.doubtful == [0]

@@ -298,3 +298,15 @@ def test_a_typed_number_and_its_unit() -> None:
     for text in ("5", "1,500 rpm", "2,5 rpm", "24 (28) rpm", "~5 rpm", "5 ±1 rpm", "n/a", ""):
         with pytest.raises(UnitError):
             quantity(text, ("rad/s",))
+
+
+def test_a_refusal_names_the_quantity_it_is_a_unit_of() -> None:
+    for text, accepts, words in (("rpm", ("V",), "it is a unit of rad/s; V would do"),
+                                 ("rad/s", ("V",), "a unit of another quantity; V would do"),
+                                 ("V/Hz", ("A", "V"), "another quantity; A or V would do"),
+                                 ("kg", ("currency",), "a currency such as EUR would do")):  # fmt: skip
+        with pytest.raises(UnitError, match=words):
+            read_unit(text, accepts)
+    with pytest.raises(UnitError) as found:
+        read_unit("meterr", ("m",))
+    assert len(found.value.guesses) == 3
