@@ -51,7 +51,9 @@ SINE, BLOCK = {"commutation": "sinusoidal"}, {"commutation": "block"}
         ("1000 mK", "°C", {}, -272.15), ("9 °F", "°F", {}, 9.0),
         # plain
         ("20 %", "1", {}, 0.2), ("0.2", "%", {}, 20.0), ("5 $", "USD", {}, 5.0),
-        ("6 kW", "W", {}, 6000.0), ("-3 N·m", "mN·m", {}, -3000.0),
+        ("6 kW", "W", {}, 6000.0),
+        ("5 W rms", "mW rms", {}, 5000.0), ("5 W rms", "mW", {}, 5000.0),
+        ("-3 N·m", "mN·m", {}, -3000.0),
     ],
 )  # fmt: skip
 def test_values(text: str, target: str, told: dict, value: float) -> None:

@@ -304,7 +304,8 @@ def test_a_refusal_names_the_quantity_it_is_a_unit_of() -> None:
     for text, accepts, words in (("rpm", ("V",), "it is a unit of rad/s; V would do"),
                                  ("rad/s", ("V",), "a unit of another quantity; V would do"),
                                  ("V/Hz", ("A", "V"), "another quantity; A or V would do"),
-                                 ("kg", ("currency",), "a currency such as EUR would do")):  # fmt: skip
+                                 ("kg", ("currency",), "a currency such as EUR would do"),
+                                 ):  # fmt: skip
         with pytest.raises(UnitError, match=words):
             read_unit(text, accepts)
     with pytest.raises(UnitError) as found:
