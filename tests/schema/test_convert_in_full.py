@@ -53,7 +53,7 @@ SINE, BLOCK = {"commutation": "sinusoidal"}, {"commutation": "block"}
         ("20 %", "1", {}, 0.2), ("0.2", "%", {}, 20.0), ("5 $", "USD", {}, 5.0),
         ("6 kW", "W", {}, 6000.0),
         ("5 W rms", "mW rms", {}, 5000.0), ("5 W rms", "mW", {}, 5000.0),
-        ("-3 N·m", "mN·m", {}, -3000.0),
+        ("4 rpm/V rms", "V/krpm rms", {}, 250.0), ("-3 N·m", "mN·m", {}, -3000.0),
     ],
 )  # fmt: skip
 def test_values(text: str, target: str, told: dict, value: float) -> None:
@@ -81,6 +81,7 @@ TAKEN = "taken as a temperature, not as a difference"
         ("2 V·s/rad rms lines", "N·m/A rms", {}, SINES), ("2 V·s/rad rms lines", "N·m/A rms", SINE,
         ""), ("2 N·m/A dc", "V·s/rad dc", {}, LINES), ("2 V·s/rad dc lines", "N·m/A dc", {}, ""),
         ("4 rpm/V", "N·m/A", {}, "the reciprocal: 1/(4 rpm/V)"), ("4 rpm/V", "rpm/V", {}, ""),
+        ("4 rpm/V rms", "V/krpm rms", {}, "the reciprocal: 1/(4 rpm/V rms)"),
         ("0.5 N·m/A", "rpm/V", {}, "the reciprocal: 1/(0.5 N·m/A)"), ("20 °C", "K", {}, TAKEN),
         ("300 K", "°C", {}, TAKEN), ("20 °F", "K", {}, TAKEN), ("20 °C", "°F", {}, ""),
         ("5 K", "mK", {}, ""), ("5 $", "USD", {}, "$ taken as US dollars"),

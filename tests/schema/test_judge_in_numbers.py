@@ -8,6 +8,8 @@ from dataclasses import FrozenInstanceError
 import numpy as np
 import pytest
 
+from motorfolio.schema.convention import Commutation
+from motorfolio.schema.operation import machines as columns
 from motorfolio.schema.operation.axis import Axis
 from motorfolio.schema.operation.cycle import Cycle
 from motorfolio.schema.operation.demand import Demand, Drive, Gearing, Supply, Surroundings
@@ -89,7 +91,7 @@ def test_ratios_in_any_shape() -> None:
     for wrong in (0.0, -1.0, [2.0, 0.0]):
         with pytest.raises(ValueError, match="above 0"):
             judge(m, demand, wrong)
-    for wrong in (np.ones((2, 3)), np.ones((1, 3))):
+    for wrong in (np.ones((2, 3)), np.ones((1, 3)), np.ones((4, 2))):
         with pytest.raises(ValueError, match="one row"):
             judge(m, demand, wrong)
     some = judge_cases(m, demand, np.array([2, 0]), np.array([3.0, 1.0]))
@@ -106,7 +108,7 @@ def test_voltage_of_a_servo_motor_without_its_inductance() -> None:
     """A lower bound: it may reject, not admit; at standstill it is all there is. A motor with dc
     currents needs no inductance."""
     for kind, speed, supply, use in ((2, 40.0, 60.0, NAN), (2, 40.0, 30.0, NAN), (2, 40.0, 20.0,
-                                      1.5), (2, 0.0, 60.0, 1 / 6), (1, 40.0, 60.0, 0.5),
+                                      1.5), (2, 0.0, 60.0, 1 / 6), (2, 0.5, 60.0, NAN), (1, 40.0, 60.0, 0.5),
                                      (0, 40.0, 60.0, 0.5)):  # fmt: skip
         for given in ({"pole_pairs": 4.0}, {"armature_inductance": 1e-3}, {}):
             m = machines(commutation=kind, **given)
@@ -219,3 +221,10 @@ def test_nothing_asked_is_the_plainest_demand() -> None:
     assert Supply(20.0).available == 20.0
     assert Supply(20.0, 0.9, 2.0).available == 16.0
     assert Supply().available is None
+
+
+def test_commutations_are_those_of_the_conventions() -> None:
+    """A column's code is the number that a motor's document is stored with."""
+    told = {kind.name: int(kind) for kind in Commutation}
+    assert {name: int(kind) for name, kind in columns.Commutation.__members__.items()} == told
+    assert sorted(told.values()) == [0, 1, 2]

@@ -101,6 +101,24 @@ def test_a_straight_part_that_hardly_changes(volts: float, tilt: float) -> None:
 
 
 @pytest.mark.parametrize("turned", [False, True])
+def test_a_straight_part_that_rises_a_little(turned: bool) -> None:
+    """From 0.5 to 0.6 V along the ramp, the crosswise part highest at 95 % of it: the larger end of
+    the straight part counts in what may be hidden inside."""
+    torque, speed = (3.0, 2.0), (1.1, 2.1)
+    drop, emf = np.linalg.solve(np.array([[3.0, 1.1], [2.0, 2.1]]), np.array([0.5, 0.6]))
+    if turned:
+        torque, speed = torque[::-1], speed[::-1]
+    t, w = line(torque), line(speed)
+    square = (t * drop + w * emf) ** 2 + (t * w) ** 2
+    ends, expected = max(square(0.0), square(1.0)), highest(square)
+    one = np.ones(1)
+    found = largest_square(np.array([ends + 0.99 * (expected - ends)]), piece(torque, speed),
+                           TORQUE_ONLY, drop * one, emf * one, one)  # fmt: skip
+    assert found[0] == pytest.approx(expected, rel=1e-12)
+    assert expected > ends + 0.01
+
+
+@pytest.mark.parametrize("turned", [False, True])
 def test_a_slope_that_would_peak_beyond_the_end(turned: bool) -> None:
     """The straight part falls, the crosswise part rises and would peak behind the ramp: what lies
     there is not asked for."""
