@@ -108,7 +108,8 @@ def test_voltage_of_a_servo_motor_without_its_inductance() -> None:
     """A lower bound: it may reject, not admit; at standstill it is all there is. A motor with dc
     currents needs no inductance."""
     for kind, speed, supply, use in ((2, 40.0, 60.0, NAN), (2, 40.0, 30.0, NAN), (2, 40.0, 20.0,
-                                      1.5), (2, 0.0, 60.0, 1 / 6), (2, 0.5, 60.0, NAN), (1, 40.0, 60.0, 0.5),
+                                      1.5), (2, 0.0, 60.0, 1 / 6), (2, 0.5, 60.0, NAN),
+                                     (1, 40.0, 60.0, 0.5),
                                      (0, 40.0, 60.0, 0.5)):  # fmt: skip
         for given in ({"pole_pairs": 4.0}, {"armature_inductance": 1e-3}, {}):
             m = machines(commutation=kind, **given)

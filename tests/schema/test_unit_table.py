@@ -226,6 +226,7 @@ def test_one_unit_put_for_another() -> None:
         ("lb·mm²", "4.5359237e-07", "[length]^2 [mass]^1"), ("%", "0.01", "1"),
         ("lb·cm", "0.0045359237", "[length]^1 [mass]^1"), ("‰", "0.001", "1"),
         ("W½", "1.0", "[length]^1 [mass]^0.5 [time]^-1.5"),
+        ("√N", "1.0", "[length]^0.5 [mass]^0.5 [time]^-1"), ("√(min^6)", "216000.0", "[time]^3"),
     ],
 )  # fmt: skip
 def test_powers_of_ten_stay_exact(text: str, factor: str, dimension: str) -> None:
