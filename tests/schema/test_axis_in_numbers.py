@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 
 from motorfolio.schema.operation.axis import GRAVITY, Axis
-from motorfolio.schema.operation.cycle import Cycle
+from motorfolio.schema.operation.cycle import Cycle, CycleError
 
 
 def rows(cycle: Cycle) -> list[tuple[float, ...]]:
@@ -83,3 +83,10 @@ def test_bends_of_one_stretch_stay_one_when_the_force_turns() -> None:
     # speed turns in the second segment of the stretch, and then it is another
     turning = Cycle([1, 2], [2, 1], [1, -1], [0, 0], [0, 0], np.array([4, 4]))
     assert Axis(friction=1.0).at_shaft(turning).stretches.tolist() == [0, 0, 1]
+
+
+def test_a_table_of_one_row_is_no_cycle() -> None:
+    for rows_given in ([], [0.0]):
+        with pytest.raises(CycleError, match="fewer than two rows"):
+            Cycle.from_rows(rows_given, rows_given, rows_given)
+    assert Cycle.from_rows([0, 2], [1, 1], [3, 5]).torque_end.tolist() == [5]

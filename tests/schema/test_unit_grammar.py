@@ -25,6 +25,8 @@ KE, KV, DAMPING = ("V·s/rad",), ("rad/(s·V)",), ("N·m·s/rad",)
         ("kgm2", {"kilogram": 1, "meter": 2}, 0), ("Ncm2", {"newton": 1, "meter": 2}, -4),
         ("Ncm-1", {"newton": -1, "meter": -1}, 2), ("mNm⁻¹", {"newton": -1, "meter": -1}, 3),
         ("mNm^-2", {"newton": -2, "meter": -2}, 6), ("mNm2", {"newton": 1, "meter": 2}, -3),
+        ("Nm^.5", {"newton": 1, "meter": HALF}, 0), ("mNm^-.5", {"newton": -HALF, "meter": -HALF},
+        3 * HALF),
         ("mm²", {"meter": 2}, -6), ("mm^-1", {"meter": -1}, 3), ("mm3", {"meter": 3}, -9),
         ("m^4", {"meter": 4}, 0), ("m4", {"meter": 4}, 0), ("m^(2)", {"meter": 2}, 0),
         ("m^{-2}", {"meter": -2}, 0), ("m^+2", {"meter": 2}, 0), ("m^1.5", {"meter": 3 * HALF}, 0),
