@@ -100,7 +100,7 @@ def test_a_column_without_a_relation_or_a_heading() -> None:
 
 
 def inferred(motors: int = 3, **more) -> Inferred:
-    given = {"words": ("A rms", "V peak"), "rivals": (), "departs": (), **more}
+    given = {"words": ("A rms", "V peak"), "rivals": (), "departs": (), "signature": "", **more}
     return Inferred(SINE, ("torque_constant", "back_emf_constant"), against=20.0, motors=motors,
                     entries=np.array([1, 2]), **given)  # fmt: skip
 
