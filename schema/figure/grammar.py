@@ -80,7 +80,7 @@ _UNEQUAL = re.compile(
     r"\s*-\s*(?P<down>[\d.,]+)\s*(?P<p2>%?)\s*(?(open)[)\]])"
 )
 _RANGE = re.compile(
-    r"\s*(?:\.{2,3}|~|÷)\s*|\s+(?:to|bis|à|a|al|do)\s+|\s+-\s+|(?<![\s^])-(?=[\d.,])|至|から"
+    r"\s*(?:\.{2,3}|~|÷)\s*|\s+(?:to|bis|à|a|al|do)\s+|\s+-\s+|(?<![\s^])-(?=[\d.,])|\s*(?:至|から)\s*"
 )
 _BRACKET = re.compile(r"\s*(?:\((?P<a>[^()]*)\)|\[(?P<b>[^\[\]]*)\]|\{(?P<c>[^{}]*)\})\s*")
 # "@ 10 V", "(at 3000 rpm)", "/60 s": another amount, in another unit, behind the figure. A bare

@@ -81,6 +81,7 @@ def split_marks(text: str) -> tuple[str, frozenset[str]]:
 _BARE = [
     (re.compile(pattern), by)
     for pattern, by in [
+        (r"(?<=[^\W\d_])\^?\(?-1/2\)?(?![\d/])", "^-0.5"),
         (r"½|\^?\(?1/2\)?(?![\d/])(?<=[^\s]1/2|1/2\))", "^0.5"),
         (r"°\s+(?=[CF]\b)", "°"),
         (r"(?i)\bdeg(?:ree)?s?\.?\s*(?=[CF](?:elsius|ahrenheit)?\b)", "°"),

@@ -326,3 +326,18 @@ def test_a_unit_that_is_unknown_is_named():
     s = sheet("Part no. | Rated torque [Nm] | Stall current [A wobble]\nA | 0.3 | 9.1")
     (listed,) = s.reading.unread
     assert "wobble" in listed.reason
+
+
+@pytest.mark.parametrize("heading", [
+    "Max. radial load, 5 mm from flange [N]", "Max. radiale Belastung, 5 mm ab Flansch N",
+    "Radial load (5 mm from mounting face) N", "Charge radiale à 5 mm de la face (N)",
+])  # fmt: skip
+def test_where_a_load_acts_is_its_condition(heading):
+    s = sheet(f"Type | Rated torque [Nm] | {heading}\nA | 0.3 | 15.4")
+    assert s.motors()["A"]["radial_load"] == 15.4
+
+
+def test_a_gears_output_is_no_figure_at_load():
+    s = sheet("Type | No-load speed [rpm] | Output no-load speed [rpm]\nA | 6000 | 98")
+    assert s.motors() == {"A": {"no_load_speed": pytest.approx(6000 * RPM)}}
+    assert "98" in s.unread

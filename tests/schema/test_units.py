@@ -551,3 +551,9 @@ def test_everyday_quantities_need_no_pint() -> None:
         [sys.executable, "-c", code], capture_output=True, text=True, check=True
     )
     assert result.stdout.strip() == "False"
+
+
+@pytest.mark.parametrize("text", ["N·m·W^-1/2", "Nm W^(-1/2)", "Nm/W^1/2", "N·m·W^-0.5"])
+def test_a_half_power_as_a_fraction(text):
+    unit = read_unit(text, ("N·m/√W",))
+    assert (unit.si, unit.factor) == ("N·m/√W", 1.0)

@@ -26,6 +26,11 @@ _CONDITION = re.compile(
     r"|(?:@|\b(?:at|bei|à|a)\b)\s*(?P<speed>\d[\d.,' ]*"
     r"(?:rpm|r/min|min-1|min\^-1|1/min|U/min|tr/min|giri/min))"
 )
+_LEVER = re.compile(
+    r"[,;]?\s*(?P<at>(?:at\s+|bei\s+|à\s+|a\s+)?\d+(?:[.,]\d+)?\s*mm\s+(?:from|off|ab|von|vom|vor|du|de"
+    r"|depuis|dal|dalla|da|desde|del)\b[^\[\]()]*?)(?=\s*[\[(]|\s+(?:k?N|lbf?|kgf)$|$)"
+)
+"""Where on the shaft a load acts: "5 mm from flange"."""
 _CONDITION_ONLY = re.compile(
     r"(?:(?:@|at|bei|à)\s+)?(?:[^\W\d]{1,6}\s*=\s*)?\d{1,3}(?:[.,]\d+)?\s*(?:V\s*(?:AC|DC)?|VAC|VDC|K|°C|℃)"
     r"|S[1-9](?:[\s-]*\d+\s*%)?"
@@ -117,6 +122,10 @@ def parse_label(text: str) -> Label:
     for m in reversed(inner):
         label = replace(label, marks=(*label.marks, m[1]))
         rest = rest[: m.start()] + rest[m.end() :]
+    lever = _LEVER.search(rest)
+    if lever and _balanced(rest, lever.start()) and lever.start() > 0:
+        label = replace(label, conditions=(*label.conditions, lever["at"]))
+        rest = rest[: lever.start()] + rest[lever.end() :]
     core, inside = bracketed_apart(rest)
     for content in inside:
         whole = match_phrase(f"{core} {content}") if not may_be_unit(content) else Phrase("")

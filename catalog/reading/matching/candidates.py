@@ -106,7 +106,11 @@ class Candidates:
                     offer(key, weight * hit.surety, f'symbol "{symbol}"')
         loaded = self._at_load(f)
         if loaded is not None:
-            offer(loaded, 0.9, f'"{f.label.other}" beside a figure at no load: the rated point')
+            offer(
+                loaded,
+                0.9,
+                f'"{f.label.names[0].text}" beside a figure at no load: the rated point',
+            )
         elif f.label.other and (
             len(f.label.names) > 1 or not any(s >= EXACT for s, _ in named.values())
         ):
@@ -124,7 +128,9 @@ class Candidates:
     def _at_load(self, f: Field) -> str | None:
         """The rated figure that "load speed" is where a no-load figure stands beside it and
         itself is not given; elsewhere it may be the load's, and None."""
-        generic = lexicon().at_load.get(squeeze(canonical(tokens(f.label.other or ""))))
+        at_load = lexicon().at_load
+        spelled = [squeeze(canonical(tokens(p.text))) for p in f.label.names[:1]]
+        generic = next((at_load[name] for name in spelled if name in at_load), None)
         keys = {k for g in self.fields for p in g.label.names for k in p.keys}
         if generic is None or not keys & {"no_load_speed", "no_load_current"}:
             return None
