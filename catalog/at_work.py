@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
+from ..schema.convention import Commutation
 from ..schema.errors import MotorfolioError
 from ..schema.operation.drive import (
     DriveError,
@@ -26,7 +27,7 @@ from ..schema.operation.drive import (
     time_at_voltage,
     torque_at_current,
 )
-from ..schema.operation.machines import Commutation, Machines
+from ..schema.operation.machines import Machines
 from ..schema.written import number, quantity
 from .documents import amount
 from .search.fleet import load_fleet

@@ -12,11 +12,12 @@ from dataclasses import dataclass, replace
 import numpy as np
 from numpy.typing import NDArray
 
+from ...schema.convention import Commutation
 from ...schema.operation.cycle import Cycle
 from ...schema.operation.demand import Demand
 from ...schema.operation.heating import Load, heating
 from ...schema.operation.judge import judge
-from ...schema.operation.machines import Commutation, Machines, armature_amperes
+from ...schema.operation.machines import Machines, armature_amperes
 from ...schema.operation.thermal import copper_factor, magnet_factor
 from .plain import number
 

@@ -7,10 +7,11 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
+from ...schema.convention import Commutation
 from ...schema.operation.cycle import Cycle
 from ...schema.operation.energy import draw
 from ...schema.operation.limits import Verdict
-from ...schema.operation.machines import Commutation, Machines
+from ...schema.operation.machines import Machines
 from ..documents import amount, number
 from ..requirement.read import Requirement
 from .choice import Judge, behind, true_drop

@@ -11,8 +11,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from ..convention import Commutation
 from ..errors import MotorfolioError
-from .machines import Commutation, Machines
+from .machines import Machines
 from .pwm import two_level_ripple
 from .thermal import copper_factor, magnet_factor
 

@@ -7,9 +7,10 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from ..convention import Commutation
 from .cycle import Pieces
 from .demand import Demand
-from .machines import Commutation, Machines
+from .machines import Machines
 from .pwm import space_vector_mean_square, two_level_ripple
 from .thermal import (
     COPPER_COEFFICIENT,

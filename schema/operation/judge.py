@@ -18,12 +18,13 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from ..convention import Commutation
 from .cycle import Cycle, Pieces
 from .demand import Demand, Drive, Gearing, Supply, Surroundings
 from .heating import Load, heating
 from .inner_peak import largest_square
 from .limits import LIMITS, Utilisations, Verdict
-from .machines import Commutation, Machines, armature_amperes, coulomb_torque
+from .machines import Machines, armature_amperes, coulomb_torque
 from .thermal import copper_factor, magnet_factor
 
 __all__ = [

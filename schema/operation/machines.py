@@ -4,22 +4,15 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, fields
-from enum import IntEnum
 from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from ..convention import Commutation
+
 Array = NDArray[np.float64]
 Index = NDArray[np.intp] | NDArray[np.bool_] | slice
-
-
-class Commutation(IntEnum):
-    """How the currents are switched, as stored in `Machines.commutation`."""
-
-    BRUSHED = 0
-    BLOCK = 1
-    SINUSOIDAL = 2
 
 
 @dataclass

@@ -8,8 +8,9 @@ import numpy as np
 import pytest
 from scipy.integrate import solve_ivp
 
+from motorfolio.schema.convention import Commutation
 from motorfolio.schema.operation import drive
-from motorfolio.schema.operation.machines import Commutation, Machines
+from motorfolio.schema.operation.machines import Machines
 
 # The made-up motor of the closed-form figures (V = 24 V, I0 = 0.12 A): derived from the circuit
 # equation and the torque balance, confirmed with python-control and solve_ivp.

@@ -8,12 +8,13 @@ from dataclasses import FrozenInstanceError
 import numpy as np
 import pytest
 
+from motorfolio.schema.convention import Commutation
 from motorfolio.schema.operation import drive
 from motorfolio.schema.operation.cycle import Cycle
 from motorfolio.schema.operation.demand import Demand, Gearing
 from motorfolio.schema.operation.drive import DriveError, Motor
 from motorfolio.schema.operation.energy import draw
-from motorfolio.schema.operation.machines import Commutation, Machines
+from motorfolio.schema.operation.machines import Machines
 
 WARM = np.array([25.0])
 
