@@ -1,10 +1,12 @@
 """A file's grids → batches: blocks, tables joined, headings matched once, figures read."""
 
+import re
 from collections.abc import Iterable
 from itertools import chain
 from pathlib import PurePath
 
 from ...schema.batch import Batch, Heading
+from ...schema.figure.signs import plain
 from ..tables.grid import Grid, TableFile
 from .account import unaccounted
 from .cells import TOLD
@@ -106,10 +108,18 @@ def _all_tables(
     return found, loose
 
 
+_OF_ALL = re.compile(
+    r"(?:all|alle|sämtliche|tou(?:s|tes)|tutt[ie]|tod[oa]s)\b|全て|すべて|所有|全部", re.IGNORECASE
+)
+"""Begins a note that holds for every table of its file."""
+
+
 def _share_notes(tables: list[Table], loose: list[str], everywhere: bool) -> None:
-    """Notes with a mark, and texts that belong to no table, hold for all tables of a file;
-    in a text of paragraphs every note does."""
-    shared = [n for t in tables for n in t.notes if everywhere or is_marked(n)]
+    """Notes with a mark or of "all", and texts that belong to no table, hold for all tables of a
+    file; in a text of paragraphs every note does."""
+    shared = [
+        n for t in tables for n in t.notes if everywhere or is_marked(n) or _OF_ALL.match(plain(n))
+    ]
     for table in tables:
         table.notes += [n for n in (*loose, *shared) if n and n not in table.notes]
 

@@ -1,5 +1,6 @@
 """Columns from positions: pieces of text on lines, told apart by where they stand."""
 
+import re
 from dataclasses import dataclass
 
 from .grid import Span
@@ -137,6 +138,10 @@ def lies_in(columns: list[Interval], other: list[Interval]) -> bool:
     return True
 
 
+_NOTED = re.compile(r"[(\[]\d{1,2}[)\]]\s*\S")
+"""A footnote behind its mark."""
+
+
 def join_split_labels(
     rows: list[list[str]], numbers: list[int], spans: list[Span]
 ) -> tuple[list[list[str]], list[int], list[Span]]:
@@ -159,7 +164,8 @@ def join_split_labels(
             lone = not any(above[1:]) or not any(row[1:])
             valued = any(above[1:]) or any(row[1:])
             hyphen = len(label) > 2 and label[-1] in "-\xad" and label[-2].isalpha()
-            starts_on = by_case and (rest[0].islower() or rest[0] in "([")
+            goes_on = rest[0].islower() or rest[0] in "(["
+            starts_on = by_case and goes_on and not _NOTED.match(rest)
             if lone and valued and ((hyphen and rest[0].islower()) or starts_on):
                 joined = label[:-1] + rest if hyphen else f"{label} {rest}"
                 values = row[1:] if any(row[1:]) else above[1:]

@@ -278,11 +278,14 @@ class _Block:
             table = arrange(pieces, find_columns(pieces))
             rows, spans = table.rows, table.spans
             if table.clashes > 0.1 * len(pieces):
-                rows, spans = by_order, []
+                rows, uneven = _in_order(by_order, numbers)
+                spans = []
                 remarks.append(
                     "columns do not stand in line: cells are told apart by their order, and an "
                     "empty cell would shift the cells after it unseen"
                 )
+                if uneven:
+                    remarks.append(f"lines with another number of cells are left whole: {uneven}")
         width = max(map(len, rows))
         rows = [row + [""] * (width - len(row)) for row in rows]
         rows, numbers, spans = join_split_labels(rows, numbers, spans)
@@ -311,6 +314,28 @@ class _Block:
         width = max(map(len, rows), default=1)
         rows = [row + [""] * (width - len(row)) for row in rows]
         return rows, ", ".join(map(str, uneven[:12]))
+
+
+def _in_order(rows: list[list[str]], numbers: list[int]) -> tuple[list[list[str]], str]:
+    """Rows whose cells are told apart by their order alone, and the lines that can't be.
+
+    All have as many cells as most, but for titles; heads of columns that have no unit lack the
+    second cell, where the others' unit stands.
+    """
+    usual = Counter(len(row) for row in rows if len(row) > 1).most_common(1)[0][0]
+    full = [row for row in rows if len(row) == usual]
+    units = usual > 2 and sum(_FIGURE.match(row[1]) is None for row in full) > 0.7 * len(full)
+    out: list[list[str]] = []
+    uneven: list[int] = []
+    for row, number in zip(rows, numbers, strict=True):
+        if len(row) < 2 or len(row) == usual:
+            out.append(row)
+        elif units and len(row) == usual - 1 and not any(map(_FIGURE.match, row)):
+            out.append([row[0], "", *row[1:]])
+        else:
+            out.append(["  ".join(row)])
+            uneven.append(number)
+    return out, ", ".join(map(str, uneven[:12]))
 
 
 def _tail(line: str) -> int:

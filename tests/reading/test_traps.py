@@ -341,3 +341,105 @@ def test_a_gears_output_is_no_figure_at_load():
     s = sheet("Type | No-load speed [rpm] | Output no-load speed [rpm]\nA | 6000 | 98")
     assert s.motors() == {"A": {"no_load_speed": pytest.approx(6000 * RPM)}}
     assert "98" in s.unread
+
+
+def test_the_output_of_a_gear_is_not_the_motors():
+    s = sheet("""
+        Model | Motor no-load speed (rpm) | Gear ratio | Rated output torque (Nm) | Output shaft diameter (mm)
+        G-1 | 9800 | 34:1 | 0.5 | 4
+    """)
+    assert s.motors() == {"G-1": {"no_load_speed": pytest.approx(9800 * RPM)}}
+    assert {"0.5", "4"} <= s.unread
+
+
+def test_a_row_of_figures_is_never_the_names():
+    s = sheet("""
+         | Units | A-24 | A-48
+        Supply voltage, nom. | VDC | 24 | 48
+        Ceiling torque | Nm | 1 | 2
+        Torque constant | Nm/A | 0.3 | 0.4
+    """)
+    assert set(s.motors()) == {"A-24", "A-48"}
+    assert s.motors()["A-48"]["nominal_voltage"] == 48
+
+
+@pytest.mark.parametrize(("heading", "key", "expected"), [
+    ("Friction torque, static [mNm]", "friction_torque", 0.0098),
+    ("Max. continuous torque, Me [mNm]", "nominal_torque", 0.0098),
+    ("Rotorträgheitsmoment J in gcm²", "rotor_inertia", 9.8e-7),
+    ("Drehzahlkonstante kn in min⁻¹/V", "speed_constant", 9.8 * RPM),
+    ("Thermische Zeitkonstante τw1 in s", "thermal_time_constant_winding", 9.8),
+    ("Thermal resistance Rth2 [K/W]", "thermal_resistance_housing_ambient", 9.8),
+    ("Thermal time constant motor τw1 [s]", "thermal_time_constant_housing", 9.8),
+    ("Continuous stall torque at 25 °C amb. [Nm]", "continuous_stall_torque", 9.8),
+    ("Idle current, typ. (with shaft ø 6 mm) [A]", "no_load_current", 9.8),
+    ("RU-V [Ω]", "terminal_resistance", 9.8), ("Pk curr. (A)", "peak_current", 9.8),
+    ("Torq. const. (Nm/A)", "torque_constant", 9.8), ("Ind. (L-L) (mH)", "terminal_inductance", 0.0098),
+])  # fmt: skip
+def test_names_as_sheets_put_them(heading, key, expected):
+    s = sheet(f"Type | Nominal voltage [V] | {heading}\nA | 24 | 9.8")
+    assert s.motors()["A"][key] == pytest.approx(expected)
+
+
+def test_line_resistance_is_that_between_lines():
+    s = sheet("Type | Rated torque [Nm] | Line resistance [Ω]\nA | 0.3 | 1.2")
+    assert s.convention("terminal_resistance").between == "lines"
+
+
+def test_windings_by_a_letter_bear_the_name_of_their_motor():
+    s = sheet("""
+        Motor | Winding | Nominal voltage (V) | Resistance (Ω)
+        RF-60 | A | 12 | 0.21
+         | B | 24 | 0.82
+    """)
+    assert set(s.motors()) == {"RF-60 A", "RF-60 B"}
+
+
+def test_variants_over_the_columns_of_one_motor():
+    s = sheet("""
+        Motor | IF-60 | IF-60
+        Motor | with heat sink | without heat sink
+        Continuous stall torque [Nm] | 1.2 | 0.95
+        Peak torque [Nm] | 4.1 | 4.1
+    """)
+    assert s.motors() == {"IF-60": {"continuous_stall_torque": 1.2, "peak_torque": 4.1}}
+    (condition,) = s.batch.conditions
+    assert condition.when == "without heat sink"
+
+
+def test_a_column_under_a_temperature_holds_for_it():
+    s = sheet("""
+        Model | T-150 |
+        Parameter | 25 °C | 125 °C
+        Resistance line-line (Ω) | 1.24 | 1.72
+        Peak torque (Nm) | 31 |
+    """)
+    assert s.convention("terminal_resistance").temperature == 25.0
+
+
+def test_two_halves_side_by_side_with_a_drawing_below():
+    s = sheet("""
+        AB-36 brushless motor | | | | |
+        Nominal voltage | V | 24 | Terminal resistance | Ω | 1.62
+        No-load speed | rpm | 7820 | Torque constant | mNm/A | 29.1
+        Stall torque | mNm | 428 | Weight | g | 175
+        40 ±0.3 | | | | |
+        Ø36 | | | | |
+    """)
+    (motor,) = s.motors().values()
+    assert motor["terminal_resistance"] == 1.62
+    assert motor["nominal_voltage"] == 24
+    assert set(s.motors()) == {"AB-36"}
+
+
+def test_figures_on_one_line_above_a_table():
+    s = sheet("""
+        Motor BM 45 | |
+        Nennspannung 24 V DC, Gewicht 0,33 kg | |
+        Merkmal | Einheit | Wert
+        Anlaufmoment | Ncm | 41
+        Anlaufstrom | A | 11,2
+    """)
+    assert set(s.motors()) == {"BM 45"}
+    assert s.motors()["BM 45"]["nominal_voltage"] == 24
+    assert s.motors()["BM 45"]["mass"] == pytest.approx(0.33)

@@ -189,3 +189,24 @@ def test_a_figure_glued_to_the_colon_of_a_long_name(tmp_path: Path) -> None:
     )
     grid = one(read(tmp_path / "a.txt", text))
     assert ["Nominal torque (maximum):", "120 mNm"] in grid.rows
+
+
+def test_a_head_without_a_cell_over_the_units_stands_over_its_columns(tmp_path: Path) -> None:
+    text = (
+        "Modello         MP/12  MP/24    MP/36\n"
+        "Tensione nominale     V     12,0     24,0     36,0\n"
+        "Corrente a vuoto      A  0,138     0,149    0,0518\n"
+        "Coppia nominale      Ncm  3,92    3,8\n"
+        "Peso  g      57   59     58\n"
+    )
+    grid = one(read(tmp_path / "a.txt", text))
+    assert grid.rows[0] == ["Modello", "", "MP/12", "MP/24", "MP/36"]
+    assert grid.rows[2] == ["Corrente a vuoto", "A", "0,138", "0,149", "0,0518"]
+    assert grid.rows[3][1:] == ["", "", "", ""]
+    assert any("left whole: 4" in remark for remark in grid.remarks)
+
+
+def test_a_footnote_is_no_broken_label(tmp_path: Path) -> None:
+    text = "Motor   Torque [Nm] (1)\nAR-1            5\nAR-2            6\n\n(1) peak\n(2) hot\n"
+    grid = one(read(tmp_path / "a.txt", text))
+    assert [row[0] for row in grid.rows] == ["Motor", "AR-1", "AR-2", "(1) peak", "(2) hot"]

@@ -17,7 +17,12 @@ from ..headings.label import parse_label
 from ..headings.lexicon import squeeze, tokens
 from ..layout.join import id_field, ids_of
 from ..matching.match import Match, Matcher
-from ..matching.purpose import beside_gears, is_of_gears, tells_of_a_motor
+from ..matching.purpose import (
+    beside_gears,
+    is_of_gears,
+    set_outputs_aside,
+    tells_of_a_motor,
+)
 from ..model import Field, ReadOptions, Table, Unread
 from .frame import share_frame, take_up_dittos
 from .identity import by_frame_and_winding, by_voltage, first_codes
@@ -72,11 +77,12 @@ class Decisions:
         self.style = self._style()
         self._styles: dict[int, NumberStyle] = {}
         self.matches = self._match()
+        set_outputs_aside(self.matches)
         by_voltage(table, self.matches, self.id_field, self.style)
         share_frame(table, self.matches, self.id_field, with_dittos)
         self._stated_voltage()
         if position is None:
-            self.matches += stated_figures(table, self.matches)
+            self.matches += stated_figures(table, self.matches, self.style)
         self.why_not: list[str] = []
         figures = [m for m in self.matches if tells_of_a_motor(m)]
         known = [m for m in self.matches if m.score >= 0.85 and m.guesses]

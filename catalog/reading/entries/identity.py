@@ -23,6 +23,10 @@ _APART = 1.1
 _CODE = re.compile(r"(?=.*\d)(?=.*[^\W\d_]).{2,40}")
 
 
+_LETTERED = re.compile(r"\d{3,}[A-Z]{1,3}\d*")
+"""2232S: a number with a letter that is no unit of what a first column could hold."""
+
+
 def first_codes(table: Table) -> Field | None:
     """The first column where its texts are unlike codes and no heading says "part number"."""
     if table.layout != "rows" or table.part_numbers or table.count < 2 or not table.fields:
@@ -33,7 +37,11 @@ def first_codes(table: Table) -> Field | None:
         return None
     if not _distinct(first.texts) or not all(first.texts):
         return None
-    codes = sum(1 for t in first.texts if _CODE.fullmatch(plain(t)) and not is_figure(t))
+    codes = sum(
+        1
+        for t in first.texts
+        if _CODE.fullmatch(plain(t)) and (_LETTERED.fullmatch(plain(t)) or not is_figure(t))
+    )
     if codes < 0.9 * table.count:
         return None
     table.remarks.append(
@@ -45,7 +53,10 @@ def first_codes(table: Table) -> Field | None:
 def by_frame_and_winding(table: Table, ids: Field) -> None:
     """Where a part number stands under several frames ("012" of two types), join both names."""
     mine = _filled_down(ids.texts)
-    if table.layout != "rows" or table.continuation is not None or _distinct(mine):
+    letters = all(len(t) <= 2 for t in mine) and len(mine) > 1  # windings A, B, C of one frame
+    if table.layout != "rows" or table.continuation is not None:
+        return
+    if _distinct(mine) and not letters:
         return
     for other in table.fields:
         keys = {k for p in other.label.names for k in p.keys}
@@ -54,7 +65,7 @@ def by_frame_and_winding(table: Table, ids: Field) -> None:
         frames = _filled_down(other.texts)
         pair = (frames, mine) if other.source < ids.source else (mine, frames)
         joined = [f"{a} {b}".strip() for a, b in zip(*pair, strict=True)]
-        if all(mine) and all(frames) and _distinct(joined):
+        if all(mine) and all(frames) and _distinct(joined) and joined != mine:
             ids.texts = joined
             table.remarks.append(
                 f'the part numbers are joined from "{plain(other.heading)}" and '

@@ -79,7 +79,7 @@ def _title_name(table: Table) -> str | None:
         if found:
             return found[1].strip()
     for title in table.titles:
-        found = _CODED.search(plain(title))
+        found = _CODED.search(plain(title)) or _CODE_FIRST.fullmatch(plain(title))
         if found and not _AMOUNT.fullmatch(found["code"]):
             return found["code"]
     return None
@@ -88,9 +88,15 @@ def _title_name(table: Table) -> str | None:
 _CODED = re.compile(
     r"(?:motor|moteur|motore|motori|specifications?|data ?sheet|datenblatt|fiche technique|"
     r"scheda tecnica|hoja de datos|ficha técnica|规格书|仕様書|データシート)s?\s*[:–-]?\s+"
-    r"(?P<code>(?=\S*\d)(?=\S*[A-Za-z])[\w./+-]{4,})$",
+    r"(?P<code>(?=\S*\d)(?=\S*[A-Za-z])[\w./+-]{4,}|(?!AC|DC|IP|IC|NO|NR)[A-Z]{1,5} \d[\w./-]+)$",
     re.IGNORECASE,
 )
 """A title that ends in a code: "Specification AX-12"."""
+_CODE_FIRST = re.compile(
+    r"(?P<code>(?=\S*\d)(?=\S*[A-Za-z])[\w./+-]{4,})\s+(?:[^\W\d]+[\s-]+){0,4}"
+    r"(?:motor|motore|moteur|servomotor|[a-zü]*motor)",
+    re.IGNORECASE,
+)
+"""One that begins with it: "AX-12 brushless motor"."""
 _AMOUNT = re.compile(r"\d+(?:[.,]\d+)?[A-Za-z]{1,4}|IP\d\d", re.IGNORECASE)
 """24VDC, 42mm: no code."""

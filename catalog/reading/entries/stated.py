@@ -8,33 +8,40 @@ from ....schema.figure.signs import plain
 from ....schema.units.read import UnitError, read_unit
 from ....schema.vocabulary import quantity
 from ..headings.label import parse_label
+from ..layout.columns import figure_behind
 from ..matching.match import Match
 from ..model import Field, Table
 
 _LINE = re.compile(r"(?P<heading>[^\d:=：][^:=：]{1,40}?)\s*[:=：]\s*(?P<figure>[<>≤≥~]?\s?\d.*)")
 
+_PIECES = re.compile(r"[,;]\s+(?=[^\W\d])")
+"""Where on one line the next of several figures begins: "Voltage 24 V, weight 0.3 kg"."""
 
-def stated_figures(table: Table, matches: Sequence[Match]) -> list[Match]:
+
+def stated_figures(table: Table, matches: Sequence[Match], style: NumberStyle) -> list[Match]:
     """The figures of title lines, of quantities that the table itself does not give."""
     known = {m.key for m in matches}
     found: list[Match] = []
-    for line in (line for title in table.titles for line in title.split("\n")):
-        at = _LINE.fullmatch(plain(line))
-        if at is None:
+    lines = (plain(line) for title in table.titles for line in title.split("\n"))
+    for piece in (piece for line in lines for piece in _PIECES.split(line)):
+        at = _LINE.fullmatch(piece)
+        pair = (at["heading"], at["figure"]) if at else figure_behind(piece)
+        if pair is None:
             continue
-        label = parse_label(at["heading"])
+        heading, text = pair
+        label = parse_label(heading)
         keys = {k for p in label.names if p.score >= 0.96 for k in p.keys}
         if len(keys) != 1 or label.other or keys & known or quantity(min(keys)).text:
             continue
         q = quantity(keys.pop())
         try:
-            figure = read_figure(at["figure"], NumberStyle(None))
+            figure = read_figure(text, style)
             own = figure.unit if figure is not None else ""
             unit = read_unit(own or (label.units[0] if label.units else ""), q.accepts)
         except (FigureError, UnitError):
             continue
         known.add(q.key)
-        field = Field(at["heading"], label, [at["figure"]] * table.count, 0, 0)
+        field = Field(heading, label, [text] * table.count, 0, 0)
         field.places, field.layout = [0] * table.count, "rows"
         reason = "a line above the table states it for all its motors"
         found.append(Match(field, "figure", q.key, 0.9, [unit], reason))

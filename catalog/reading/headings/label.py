@@ -19,6 +19,7 @@ _MARKS = re.compile(
 _TEMPERATURE = re.compile(
     r"(?:(?:@|at|bei|à|a|T(?:amb|ref|w|_?0)?\s*=|ϑ\s*=|θ\s*=|,)\s*)?"
     r"\(?(?P<t>[+-]?\d{1,3}(?:[.,]\d)?)\s*(?:°\s*C|℃|deg\.?\s*C|º\s*C|C\b)\)?(?:\s*時|\s*时)?"
+    r"(?:\s+amb(?:ient)?\b\.?|\s+(?:Umgebung(?:stemperatur)?|ambiante|ambiente)\b)?"
 )
 _TOLERANCE = re.compile(r"(?:±|\+/-|\+-)\s*(?P<tol>\d+(?:[.,]\d+)?)\s*%")
 _CONDITION = re.compile(
@@ -54,6 +55,10 @@ _INFERRED = re.compile(r", inferred(?=[,)])")
 _TWO_SCRIPTS = re.compile(
     r"([^A-Za-z]*[\u3040-\u30ff\u3400-\u9fff][^A-Za-z]*?)\s+([A-Za-z][A-Za-z].*)$", re.S
 )
+
+
+_AND_SIGN = re.compile(r"(?P<name>[^,]{6,})(?:,\s*|\s+)(?P<sign>[A-Za-zηωτΘΔ][A-Za-z0-9]{0,3})")
+"""A name with a maker's own sign behind it: "Max. continuous torque, Me"."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -217,6 +222,12 @@ def _bracket(label: Label, content: str) -> Label:
     return label
 
 
+_WITH_SOME = re.compile(
+    r"(?:with|mit|avec|con|bei)\s+(?:a\s+|an\s+)?(?:shaft|Welle|arbre|albero|eje)\b", re.IGNORECASE
+)
+"""Says how it was measured: "(with shaft ø 6 mm)"."""
+
+
 def _piece(label: Label, piece: str, alone: bool) -> Label:
     """One piece of a bracket or of a heading's end: unit, convention, condition, symbol or name."""
     if not piece:
@@ -247,7 +258,7 @@ def _piece(label: Label, piece: str, alone: bool) -> Label:
         label = replace(label, temperature=float(temperature["t"].replace(",", ".")))
     if tolerance:
         label = replace(label, tolerance=float(tolerance["tol"].replace(",", ".")) / 100)
-    if phrase.other and not loose:
+    if phrase.other and not loose and not _WITH_SOME.match(piece):
         label = replace(label, other=label.other or phrase.other)
     unit = re.match(r"(.+?)[\s,]+(?=\S+$)", piece)
     if loose and unit and may_be_unit(unit.group(1)):
@@ -277,7 +288,7 @@ def _core(label: Label, core: str) -> Label:
         return _with_convention(label, found)
     for pattern, name in ((_TEMPERATURE, "temperature"), (_TOLERANCE, "tolerance")):
         at = pattern.search(core)
-        if at and (name == "tolerance" or at.start() > 0):
+        if at and (name == "tolerance" or at.start() > 0 or at.end() == len(core)):
             number = float(
                 (at.groupdict().get("t") or at.groupdict().get("tol") or "0").replace(",", ".")
             )
@@ -290,6 +301,11 @@ def _core(label: Label, core: str) -> Label:
         core = (core[: at.start()] + " " + core[at.end() :]).strip(" ,;@")
     if re.search(r"\s/\s", core):  # the slash parts the languages, not the line break
         core = re.sub(r"\s*\n\s*", " ", core)
+    signed = _AND_SIGN.fullmatch(core)
+    if signed and not may_be_unit(signed["sign"]) and not find_symbol(signed["sign"]):
+        phrase = match_phrase(signed["name"])
+        if phrase.keys and phrase.score >= 0.96 and match_phrase(core).score < 0.9:
+            core = signed["name"]
     if "\n" in core:
         # A name broken over lines is one name; names in two languages on two lines are two.
         joined = _named(label, re.sub(r"\s*\n\s*", " ", core))

@@ -1,7 +1,7 @@
 """A phrase → the quantities that it names, words on conventions and sections set aside."""
 
 import re
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from functools import lru_cache
 
 from rapidfuzz import fuzz, process
@@ -224,6 +224,8 @@ def match_phrase(text: str) -> Phrase:
         k: v for k, v in conventions_of(text, whole=False).items() if k in ("between", "connection")
     }
     if keys or generic:
+        if form[0] == "line" and {"terminal_resistance", "terminal_inductance"} & {*keys}:
+            conventions["between"] = "lines"
         return Phrase(
             text, keys, score, generic,
             conventions=tuple(conventions.items()), how=f'"{text}" is a name of it',
@@ -233,7 +235,7 @@ def match_phrase(text: str) -> Phrase:
         return Phrase(text, (), 0.0, section=section)
     if squeeze(form) in lexicon().others:
         return Phrase(text, rest=form, other=text)  # "load torque" is no torque under load
-    stripped = _stripped(text, form)
+    stripped = _stripped(text, form) or _turned(text)
     if stripped is not None:
         return stripped
     other = _other(text, form)
@@ -244,6 +246,17 @@ def match_phrase(text: str) -> Phrase:
             how=f'"{text}" is spelled like a name of it',
         )  # fmt: skip
     return Phrase(text, (), 0.0, rest=form, other=other)
+
+
+def _turned(text: str) -> Phrase | None:
+    """The phrase of a name whose adjective stands behind it: "Friction torque, static"."""
+    name, comma, adjective = text.rpartition(",")
+    if not comma or not name.strip() or not adjective.strip():
+        return None
+    found = match_phrase(f"{adjective.strip()} {name.strip()}")
+    if not found.keys or found.score < SHORTENED or "," in name:
+        return None
+    return replace(found, text=text, score=0.97 * found.score, how=f'"{text}" is a name of it')
 
 
 def _stripped(text: str, form: tuple[str, ...]) -> Phrase | None:

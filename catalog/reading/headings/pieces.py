@@ -71,7 +71,9 @@ def ways_to_divide(core: str) -> list[tuple[str, str, str]]:
         if not head or not tail:
             continue
         units = [
-            t for t in (tail, tail.replace("_", "/"), tail.replace("_", " ")) if may_be_unit(t)
+            t
+            for t in (tail, tail.replace("_", "/"), tail.replace("_", " "))
+            if may_be_unit(t) and not re.search(r"\s(?:in|en)\s", tail)
         ]
         if units:
             found.append((head, "", units[0]))

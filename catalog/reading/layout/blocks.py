@@ -157,7 +157,7 @@ def _beside_labels(block: Block) -> list[Block]:
     for c, score in enumerate(column_scores(block)):
         texts = [row[c] for row in block.rows if row[c]]
         numbers = sum(map(is_figure, texts))
-        if score >= 1.9 and not numbers:
+        if score >= 1.9 and numbers < 0.35 * len(texts):
             if figures and _figures_right(block, c):
                 borders.append(c)
             labels, figures = True, False

@@ -136,6 +136,7 @@ def lay_out_columns(block: Block) -> Table:
     if id_row is not None:
         mark_other_parts(table, rows[id_row][label_column])
     if conditions is not None:
+        table.part_numbers = table.part_numbers or [None] * len(values)
         fold_conditions(table, conditions)
     return table
 

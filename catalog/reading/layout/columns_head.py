@@ -90,6 +90,9 @@ def header_rows(
         if all(is_role(t, "value") for t in texts):
             continue  # "Part, Value, Unit"
         if names_part(parse_label(row[label_column])):
+            if named and all(_is_condition(t) for t in texts):
+                conditions.append(i)  # below the names, whose label a merged cell repeats
+                continue
             if i > first and named:
                 continue
             named.append(i)
@@ -107,12 +110,21 @@ def header_rows(
             named, key=lambda i: (_distinct(rows[i], values), _id_rank(rows[i][label_column]), -i)
         )
     elif plain_rows:
-        best = max(plain_rows, key=lambda i: (_distinct(rows[i], values), i))
+        best = max(
+            plain_rows, key=lambda i: (_distinct(rows[i], values), _coded(rows[i], values), i)
+        )
     if best is None and _names_by_size(rows[first], label_column, values):
         return first, None
     if best is None and conditions:
-        return conditions[0], None
+        row = conditions[0]
+        one = all(variant_of(plain(rows[row][c])) for c in values if rows[row][c])
+        return (None, row) if one else (row, None)
     return best, conditions[0] if conditions else None
+
+
+def _coded(row: list[str], values: list[int]) -> bool:
+    """Whether names have letters, unlike figures."""
+    return any(re.search(r"[^\W\d_]", row[c]) for c in values)
 
 
 def _names_by_size(row: list[str], label_column: int, values: list[int]) -> bool:

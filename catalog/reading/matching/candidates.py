@@ -1,7 +1,7 @@
 """The quantities that each heading of a table may be, scored, each with its reason."""
 
 import re
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
 from dataclasses import field as made
 
@@ -98,7 +98,10 @@ class Candidates:
                 if composed:
                     offer(composed, 0.9, f'symbol "{symbol}" under "{f.captions[-1]}"')
             for key in hit.keys:
-                if key in named:
+                if key in named or _says_more(key, named, f.label.names):
+                    named.pop(_COARSE.get(key, ""), None)
+                    scored.pop(_COARSE.get(key, ""), None)
+                    named.setdefault(key, (0.95, f'"{f.label.names[0].text}"'))
                     score, reason = named[key]
                     offer(key, score + 0.04, f'{reason}, and so does the symbol "{symbol}"')
                 elif not named:
@@ -256,6 +259,24 @@ class Candidates:
         if self.family == "servo":
             return 0.02 if key in servo else -0.1
         return -0.1 if key in servo else 0.02
+
+
+_COARSE = {
+    "thermal_time_constant_winding": "thermal_time_constant_housing",
+    "thermal_resistance_winding_housing": "thermal_resistance",
+    "thermal_resistance_housing_ambient": "thermal_resistance",
+}
+"""What the bare name means of a figure that a motor has several of."""
+_PLACE = re.compile(
+    r"housing|case|motor|stator|body|frame|gehäuse|carcas|boîtier|corps|moteur|motore|壳|电机|ケース|ハウジング|モータ",
+    re.IGNORECASE,
+)
+
+
+def _says_more(key: str, named: Mapping[str, object], names: tuple[Phrase, ...]) -> bool:
+    """Whether a symbol tells which of several a bare name means: "Thermal time constant τ_w1"."""
+    bare = {*named} == {_COARSE.get(key, "")} and len(names) > 0
+    return bare and not any(_PLACE.search(p.text) for p in names)
 
 
 def _is_flywheel(f: Field) -> bool:

@@ -47,6 +47,22 @@ _OUTPUT = re.compile(
 )
 
 
+_OF_THE_OUTPUT = re.compile(
+    r"\boutput|abtrieb|ausgangs|\bsortie|\buscita|\bsalida|出力|输出|輸出", re.IGNORECASE
+)
+_TURNS = re.compile(r"speed|torque|_load$|shaft_diameter")
+
+
+def set_outputs_aside(matches: Sequence[Match]) -> None:
+    """Beside a gear ratio, speed and torque of the output are the gear's: they are not read."""
+    if not any(_RATIO.search(plain(m.field.heading)) for m in matches):
+        return
+    for m in matches:
+        if m.key and _TURNS.search(m.key) and _OF_THE_OUTPUT.search(plain(m.field.heading)):
+            m.role, m.key, m.guesses = "unread", None, ()
+            m.reason = "of the output, beside a gear ratio: the gear's, not the motor's"
+
+
 def beside_gears(matches: Sequence[Match], texts: Sequence[str]) -> bool:
     """Whether a table of motors has a column of gear ratios, or its titles speak of an output."""
     ratio = any(_RATIO.search(plain(m.field.heading)) and any(m.field.texts) for m in matches)
