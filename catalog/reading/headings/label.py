@@ -8,6 +8,16 @@ from ....schema.convention import Convention
 from ....schema.figure.signs import plain
 from ....schema.units.read import unit_of
 from ....schema.vocabulary import quantities
+from .conditions import (
+    A_SPEED,
+    CONDITION,
+    CONDITION_ONLY,
+    LEVER,
+    ONLY_VOLTS,
+    TEMPERATURE,
+    TOLERANCE,
+    WITH_SOME,
+)
 from .lexicon import find_symbol, lexicon, tokens
 from .phrase import Phrase, conventions_of, match_phrase, variant_of
 from .pieces import bracketed_apart, may_be_unit, unit_pair, ways_to_divide
@@ -15,26 +25,6 @@ from .pieces import bracketed_apart, may_be_unit, unit_pair, ways_to_divide
 _NUMBERING = re.compile(r"\(?\d{1,2}[.)]?\s+(?=[^\W\d_]{2})|\(\d{1,2}\)\s*")
 _MARKS = re.compile(
     r"(?:\s*(?:[*†‡§]+\)?|\^\(?(?:\d{1,2}|[a-z])\)|\^\(?[1456789a-z]\)?|注\s?\d|(?<=\w)\s+\d\)|(?<=[^\W\d])\d{1,2}\)))+$"
-)
-_TEMPERATURE = re.compile(
-    r"(?:(?:@|at|bei|à|a|T(?:amb|ref|w|_?0)?\s*=|ϑ\s*=|θ\s*=|,)\s*)?"
-    r"\(?(?P<t>[+-]?\d{1,3}(?:[.,]\d)?)\s*(?:°\s*C|℃|deg\.?\s*C|º\s*C|C\b)\)?(?:\s*時|\s*时)?"
-    r"(?:\s+amb(?:ient)?\b\.?|\s+(?:Umgebung(?:stemperatur)?|ambiante|ambiente)\b)?"
-)
-_TOLERANCE = re.compile(r"(?:±|\+/-|\+-)\s*(?P<tol>\d+(?:[.,]\d+)?)\s*%")
-_CONDITION = re.compile(
-    r"(?:(?:@|at|bei|à|a|con|sous)\s+)?(?P<c>\b\d{1,3}(?:[.,]\d+)?\s*(?:k?V\s*(?:AC|DC)?|VAC|VDC|K)\b|\bS[1-9](?:[\s-]*\d+\s*%)?)"
-    r"|(?:@|\b(?:at|bei|à|a)\b)\s*(?P<speed>\d[\d.,' ]*"
-    r"(?:rpm|r/min|min-1|min\^-1|1/min|U/min|tr/min|giri/min))"
-)
-_LEVER = re.compile(
-    r"[,;]?\s*(?P<at>(?:at\s+|bei\s+|à\s+|a\s+)?\d+(?:[.,]\d+)?\s*mm\s+(?:from|off|ab|von|vom|vor|du|de"
-    r"|depuis|dal|dalla|da|desde|del)\b[^\[\]()]*?)(?=\s*[\[(]|\s+(?:k?N|lbf?|kgf)$|$)"
-)
-"""Where on the shaft a load acts: "5 mm from flange"."""
-_CONDITION_ONLY = re.compile(
-    r"(?:(?:@|at|bei|à)\s+)?(?:[^\W\d]{1,6}\s*=\s*)?\d{1,3}(?:[.,]\d+)?\s*(?:V\s*(?:AC|DC)?|VAC|VDC|K|°C|℃)"
-    r"|S[1-9](?:[\s-]*\d+\s*%)?"
 )
 _QUALIFIERS = {
     "max": "at most",
@@ -127,7 +117,7 @@ def parse_label(text: str) -> Label:
     for m in reversed(inner):
         label = replace(label, marks=(*label.marks, m[1]))
         rest = rest[: m.start()] + rest[m.end() :]
-    lever = _LEVER.search(rest)
+    lever = LEVER.search(rest)
     if lever and _balanced(rest, lever.start()) and lever.start() > 0:
         label = replace(label, conditions=(*label.conditions, lever["at"]))
         rest = rest[: lever.start()] + rest[lever.end() :]
@@ -142,13 +132,9 @@ def parse_label(text: str) -> Label:
     return _at_speed(_in_order(_core(label, core), bracketed, core))
 
 
-_ONLY_VOLTS = re.compile(r"m?V\s?(?:AC|DC|_?rms|_?eff|_?pk|_?peak)?", re.IGNORECASE)
-_A_SPEED = re.compile(r"\d[\d.,' ]*(?=rpm|r/min|min|1/min|U/min|tr/min|giri/min)")
-
-
 def _at_speed(label: Label) -> Label:
     """A voltage at a speed is a back-EMF: "EMF at 1000 rpm [V]" is in V/1000 rpm."""
-    speed = next((c for c in label.conditions if _A_SPEED.match(c)), None)
+    speed = next((c for c in label.conditions if A_SPEED.match(c)), None)
     if speed is None:
         return label
     keys = {key for name in label.names for key in name.keys}
@@ -156,7 +142,7 @@ def _at_speed(label: Label) -> Label:
         return replace(label, names=(), other=label.other or speed)
     if "back_emf_constant" not in keys:
         return label
-    units = (f"{u}/{speed}" if _ONLY_VOLTS.fullmatch(u) else u for u in label.units)
+    units = (f"{u}/{speed}" if ONLY_VOLTS.fullmatch(u) else u for u in label.units)
     return replace(label, units=tuple(units))
 
 
@@ -200,7 +186,7 @@ def _bracket(label: Label, content: str) -> Label:
     if low in _QUALIFIERS:
         label = replace(label, qualifier=_QUALIFIERS[low])
         return replace(label, units=(*label.units, content)) if low == "min" else label
-    if _CONDITION_ONLY.fullmatch(content) and not _TEMPERATURE.fullmatch(content):
+    if CONDITION_ONLY.fullmatch(content) and not TEMPERATURE.fullmatch(content):
         return replace(label, conditions=(*label.conditions, content))
     if len(pair := unit_pair(content)) == 2 and _one_dimension(*pair):
         return replace(label, units=(*label.units, *pair))
@@ -209,7 +195,7 @@ def _bracket(label: Label, content: str) -> Label:
     whole = conventions_of(content, whole=True)
     if whole:
         return _with_convention(label, whole)
-    spread = _TOLERANCE.search(content)
+    spread = TOLERANCE.search(content)
     if spread and (of := content[: spread.start()].strip(" ,;")) and unit_of(of) is not None:
         label = replace(label, tolerance=float(spread["tol"].replace(",", ".")) / 100)
         return replace(label, units=(*label.units, of))
@@ -222,12 +208,6 @@ def _bracket(label: Label, content: str) -> Label:
     return label
 
 
-_WITH_SOME = re.compile(
-    r"(?:with|mit|avec|con|bei)\s+(?:a\s+|an\s+)?(?:shaft|Welle|arbre|albero|eje)\b", re.IGNORECASE
-)
-"""Says how it was measured: "(with shaft ø 6 mm)"."""
-
-
 def _piece(label: Label, piece: str, alone: bool) -> Label:
     """One piece of a bracket or of a heading's end: unit, convention, condition, symbol or name."""
     if not piece:
@@ -237,9 +217,9 @@ def _piece(label: Label, piece: str, alone: bool) -> Label:
         return _with_convention(label, found)
     if may_be_unit(piece):
         return replace(label, units=(*label.units, piece))
-    if (t := _TEMPERATURE.fullmatch(piece)) is not None:
+    if (t := TEMPERATURE.fullmatch(piece)) is not None:
         return replace(label, temperature=float(t["t"].replace(",", ".")))
-    if (t := _TOLERANCE.fullmatch(piece)) is not None:
+    if (t := TOLERANCE.fullmatch(piece)) is not None:
         return replace(label, tolerance=float(t["tol"].replace(",", ".")) / 100)
     if variant_of(piece):
         return replace(label, variant=variant_of(piece))
@@ -252,13 +232,13 @@ def _piece(label: Label, piece: str, alone: bool) -> Label:
     if phrase.section and not phrase.rest:
         return replace(label, names=(*label.names, replace(phrase, bracketed=True)))
     loose = conventions_of(piece, whole=False)
-    temperature = _TEMPERATURE.search(piece)
-    tolerance = _TOLERANCE.search(piece)
+    temperature = TEMPERATURE.search(piece)
+    tolerance = TOLERANCE.search(piece)
     if temperature:
         label = replace(label, temperature=float(temperature["t"].replace(",", ".")))
     if tolerance:
         label = replace(label, tolerance=float(tolerance["tol"].replace(",", ".")) / 100)
-    if phrase.other and not loose and not _WITH_SOME.match(piece):
+    if phrase.other and not loose and not WITH_SOME.match(piece):
         label = replace(label, other=label.other or phrase.other)
     unit = re.match(r"(.+?)[\s,]+(?=\S+$)", piece)
     if loose and unit and may_be_unit(unit.group(1)):
@@ -286,7 +266,7 @@ def _core(label: Label, core: str) -> Label:
         return replace(label, names=(whole, *label.names), other=label.other or whole.other)
     if (found := conventions_of(core, whole=True)) and label.forced:
         return _with_convention(label, found)
-    for pattern, name in ((_TEMPERATURE, "temperature"), (_TOLERANCE, "tolerance")):
+    for pattern, name in ((TEMPERATURE, "temperature"), (TOLERANCE, "tolerance")):
         at = pattern.search(core)
         if at and (name == "tolerance" or at.start() > 0 or at.end() == len(core)):
             number = float(
@@ -295,7 +275,7 @@ def _core(label: Label, core: str) -> Label:
             value = number if name == "temperature" else number / 100
             label = replace(label, **{name: value})
             core = (core[: at.start()] + " " + core[at.end() :]).strip(" ,;@")
-    at = _CONDITION.search(core)
+    at = CONDITION.search(core)
     if at and at.start() > 0 and not find_symbol(core):
         label = replace(label, conditions=(*label.conditions, at["c"] or at["speed"]))
         core = (core[: at.start()] + " " + core[at.end() :]).strip(" ,;@")
@@ -314,7 +294,7 @@ def _core(label: Label, core: str) -> Label:
     parts = [p.strip(" ,:=") for p in _JOINERS.split(core) if p.strip(" ,:=")]
     if len(parts) > 1 and match_phrase(core).score < 0.95:
         for part in parts:
-            if _CONDITION_ONLY.fullmatch(part):
+            if CONDITION_ONLY.fullmatch(part):
                 label = replace(label, conditions=(*label.conditions, part))
             elif may_be_unit(part) and not (part == parts[0] and find_symbol(part)):
                 label = replace(label, units=(*label.units, part))

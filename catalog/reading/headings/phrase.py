@@ -224,7 +224,7 @@ def match_phrase(text: str) -> Phrase:
         k: v for k, v in conventions_of(text, whole=False).items() if k in ("between", "connection")
     }
     if keys or generic:
-        if form[0] == "line" and {"terminal_resistance", "terminal_inductance"} & {*keys}:
+        if form[:1] == ("line",) and {"terminal_resistance", "terminal_inductance"} & {*keys}:
             conventions["between"] = "lines"
         return Phrase(
             text, keys, score, generic,
