@@ -129,6 +129,12 @@ _POWER = re.compile(
 _MOST_TENS, _MOST, _MOST_ROOT = 40, 20, 8
 
 
+def _products(some: list[Product], others: list[Product], power: int = 1) -> list[Product]:
+    """Each of some times each of the others, once: a text of many letters with two meanings each
+    has few products, though many ways to them."""
+    return list(dict.fromkeys(a.times(b, power) for a in some for b in others))
+
+
 @dataclass(slots=True)
 class _Parser:
     text: str
@@ -171,7 +177,7 @@ class _Parser:
         while self.sign() == "/":
             self.take()
             below = self.product(scale, below=True)
-            result = [a.times(b, -1) for a in result for b in below]
+            result = _products(result, below, -1)
         return [a.times(scale[0]) for a in result]
 
     def product(self, scale: list[Product], below: bool) -> list[Product]:
@@ -197,7 +203,7 @@ class _Parser:
                 scale[0] = scale[0].times(tens)
             else:
                 factor = self.factor(below)
-                result = [a.times(b) for a in result for b in factor]
+                result = _products(result, factor)
             first = False
         if first:
             raise NotAUnitError(self.text)

@@ -67,6 +67,7 @@ FOUND = [
     ("unit", "\nkilog"),
     ("unit", "10^999 N·m"),
     ("unit", "9" * 400),
+    ("unit", "'h" * 50),
     ("number", "k. A.0,25} \n"),
     ("number", "\n3-4"),
     ("number", "9" * 4000 + "≥"),
