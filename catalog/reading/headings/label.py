@@ -122,10 +122,12 @@ def parse_label(text: str) -> Label:
         label = replace(label, conditions=(*label.conditions, lever["at"]))
         rest = rest[: lever.start()] + rest[lever.end() :]
     core, inside = bracketed_apart(rest)
+    name, symbol, unit = _apart(core)
     for content in inside:
-        whole = match_phrase(f"{core} {content}") if not may_be_unit(content) else Phrase("")
-        if whole.keys and whole.score >= 0.96 and whole.keys != match_phrase(core).keys:
-            core = f"{core} {content}"
+        whole = match_phrase(f"{name} {content}") if not may_be_unit(content) else Phrase("")
+        if whole.keys and whole.score >= 0.96 and whole.keys != match_phrase(name).keys:
+            core = " ".join(filter(None, (f"{name} {content}", unit)))
+            label = replace(label, symbols=(*label.symbols, symbol)) if symbol else label
         else:
             label = _bracket(label, content)
     bracketed = len(label.units)
@@ -144,6 +146,18 @@ def _at_speed(label: Label) -> Label:
         return label
     units = (f"{u}/{speed}" if ONLY_VOLTS.fullmatch(u) else u for u in label.units)
     return replace(label, units=tuple(units))
+
+
+def _apart(core: str) -> tuple[str, str, str]:
+    """(name, symbol, unit) of a name with either or both behind it; else the text as it is."""
+    name, symbol, unit = core, "", ""
+    head, _, tail = core.rpartition(" ")
+    if may_be_unit(tail) and not match_phrase(core).keys:
+        name, unit = head, tail
+        head, _, tail = head.rpartition(" ")
+    if find_symbol(tail) and not match_phrase(name).keys:
+        name, symbol = head, tail
+    return (name, symbol, unit) if match_phrase(name).keys else (core, "", "")
 
 
 def _in_order(label: Label, bracketed: int, core: str) -> Label:
@@ -291,6 +305,9 @@ def _core(label: Label, core: str) -> Label:
         joined = _named(label, re.sub(r"\s*\n\s*", " ", core))
         if any(p.score >= 0.95 for p in joined.names[len(label.names) :]):
             return joined
+    named = _named(label, core)
+    if any(p.keys and p.score >= 0.95 and "/" in p.text for p in named.names[len(label.names) :]):
+        return named  # "Speed / torque gradient rpm/mNm"
     parts = [p.strip(" ,:=") for p in _JOINERS.split(core) if p.strip(" ,:=")]
     if len(parts) > 1 and match_phrase(core).score < 0.95:
         for part in parts:

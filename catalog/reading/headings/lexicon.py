@@ -14,7 +14,7 @@ from ....schema.figure.signs import plain
 from ....schema.vocabulary import quantities, words
 
 _TOKEN = re.compile(
-    r"[a-z]+|\d+|[α-ωϑΩω]+|[\u3040-\u30ff\u31f0-\u31ff\u3400-\u9fff\uf900-\ufaff々ー]+|[#%√Δ/]"
+    r"[a-z]+|\d+|[α-ωϑΩω]+|[\u3040-\u30ff\u31f0-\u31ff\u3400-\u9fff\uf900-\ufaff々ー]+|[#%√Δ/ø]"
 )
 _CJK = re.compile(r"[\u3040-\u30ff\u3400-\u9fff\uf900-\ufaff]")
 _UMLAUTS = str.maketrans({"ä": "ae", "ö": "oe", "ü": "ue", "Ä": "Ae", "Ö": "Oe", "Ü": "Ue"})

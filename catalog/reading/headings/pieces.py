@@ -64,9 +64,14 @@ def ways_to_divide(core: str) -> list[tuple[str, str, str]]:
             r"\s*[,/:]\s*|\s+(?:in|en)\s+|[\s_]+|(?<=[^\x00-\x7f])(?=[A-Za-z])", core
         )
     ]
+    blank = re.search(r"\s", core)
     for start, end in cuts:
         if start == 0 or end >= len(core):
             continue
+        if blank and core[start:end] == "_":
+            continue  # "U_N V" is a symbol and its unit
+        if core[start:end] == "/" and may_be_unit(_word_around(core, start)):
+            continue  # within "rpm/mNm"
         head, tail = core[:start].strip(), core[end:].strip()
         if not head or not tail:
             continue
@@ -83,6 +88,11 @@ def ways_to_divide(core: str) -> list[tuple[str, str, str]]:
                 found.append((name, symbol, units[0]))
     found += [(name, symbol, "") for name, symbol in _name_and_symbol(core)]
     return found
+
+
+def _word_around(text: str, at: int) -> str:
+    """The word between blanks that this place is in."""
+    return text[text.rfind(" ", 0, at) + 1 :].split(" ", 1)[0]
 
 
 def _name_and_symbol(text: str) -> list[tuple[str, str]]:

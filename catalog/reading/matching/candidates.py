@@ -86,6 +86,10 @@ class Candidates:
             offer(f.label.forced, EXACT, "the heading is the quantity's own name")
         for phrase in f.label.names:
             self._of_phrase(f, phrase, offer)
+        if any(p.bracketed and p.section in ("stall", "continuous_stall") for p in f.label.names):
+            for what in ("torque", "current"):  # "Continuous torque (stall)"
+                if f"nominal_{what}" in scored:
+                    scored[f"continuous_stall_{what}"] = scored.pop(f"nominal_{what}")
         if any(k.startswith("thermal_resistance_") for k in scored):
             scored.pop("thermal_resistance", None)  # one language was less exact than another
         named = dict(scored)
@@ -265,6 +269,7 @@ _COARSE = {
     "thermal_time_constant_winding": "thermal_time_constant_housing",
     "thermal_resistance_winding_housing": "thermal_resistance",
     "thermal_resistance_housing_ambient": "thermal_resistance",
+    "maximum_power": "rated_power",
 }
 """What the bare name means of a figure that a motor has several of."""
 _PLACE = re.compile(
