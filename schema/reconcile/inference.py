@@ -163,7 +163,7 @@ def _infer_kind(
     # rivals fit as well and are as common; those that the figures can't tell apart at all don't
     # count where nothing speaks against the default
     near = [i for i in np.argsort(total).tolist() if i != best and total[i] - total[best] < SURE]
-    figures = dict(batch.figures)
+    figures, repeats = dict(batch.figures), dict(batch.repeats)
     touched: list[str] = []
     words: list[str] = []
     departs: list[str] = []
@@ -179,13 +179,15 @@ def _infer_kind(
             departs.append(options[own].words)
         for key in keys:
             figures[key] = _inferred(figures[key], options[own], members)
+            if key in repeats:  # the same figure in other units means the same
+                repeats[key] = [_inferred(c, options[own], members) for c in repeats[key]]
     if not words:
         return batch, []
     rivals = tuple(_words(dimensions, combos[i], combos[best]) for i in near[:3])
     inferred = Inferred(kind, tuple(touched), tuple(words), rivals, tuple(departs),
                         float(cost[0] - cost[best]), int(chosen.size), members,
                         _signature(batch, chosen))  # fmt: skip
-    return replace(batch, figures=figures), [inferred]
+    return replace(batch, figures=figures, repeats=repeats), [inferred]
 
 
 def _words(

@@ -443,3 +443,62 @@ def test_figures_on_one_line_above_a_table():
     assert set(s.motors()) == {"BM 45"}
     assert s.motors()["BM 45"]["nominal_voltage"] == 24
     assert s.motors()["BM 45"]["mass"] == pytest.approx(0.33)
+
+
+def test_one_motor_in_two_systems_of_units():
+    s = sheet("""
+        Frameless motor RBX-1512 | | | |
+        Parameter | Metric | Unit | Imperial | Unit
+        Peak torque | 1.62 | Nm | 229 | oz-in
+        Terminal resistance | 0.81 | Ω | 0.81 | Ω
+        Weight | 0.37 | kg | 13.1 | oz
+    """)
+    assert s.motors() == {
+        "RBX-1512": {"peak_torque": 1.62, "terminal_resistance": 0.81, "mass": 0.37}
+    }
+    again = s.batch.repeats["peak_torque"][0].value[0]
+    assert again == pytest.approx(229 * 7.0615518e-3)  # NIST SP 811 (2008), App. B.8: ozf·in
+
+
+def test_letters_below_the_names_of_frames():
+    s = sheet("""
+         | L-5 | L-5 | L-7
+        Winding | A | B | A
+        Torque constant [Nm/A] | 1.65 | 0.85 | 2.1
+    """)
+    assert set(s.motors()) == {"L-5 A", "L-5 B", "L-7 A"}
+
+
+def test_a_caption_across_and_a_range_are_no_names():
+    s = sheet("""
+        Item | Unit | P-8 | P-21
+        Motor | Motor | Motor | Motor
+        Temperature range | °C | -30 ... +85 | -30 ... +125
+        Torque constant | Nm/A | 1.65 | 0.85
+    """)
+    assert set(s.motors()) == {"P-8", "P-21"}
+
+
+def test_a_figure_on_a_line_below_a_table():
+    s = sheet("""
+        Type | Rated torque [Nm] | Torque constant [Nm/A]
+        A | 0.3 | 0.1
+        B | 0.4 | 0.2
+
+        Weight: 0.98 kg | |
+    """)
+    assert s.motors()["B"]["mass"] == 0.98
+
+
+@pytest.mark.parametrize(("heading", "key", "expected"), [
+    ("U_N V", "nominal_voltage", 9.8), ("k_n rpm/V", "speed_constant", 9.8 * RPM),
+    ("Δn/ΔM rpm/mNm", "speed_torque_gradient", 9800 * RPM),
+    ("Speed / torque gradient rpm/mNm", "speed_torque_gradient", 9800 * RPM),
+    ("Thermische Zeitkonstante τw1 (Wicklung) s", "thermal_time_constant_winding", 9.8),
+    ("Abgabeleistung P2max. [W]", "maximum_power", 9.8),
+    ("Continuous torque (stall) at 100 °C rise [Nm]", "continuous_stall_torque", 9.8),
+    ("Term. resistance (Ohm)", "terminal_resistance", 9.8), ("Shaft Ø (mm)", "shaft_diameter", 0.0098),
+])  # fmt: skip
+def test_symbols_units_and_brackets_behind_names(heading, key, expected):
+    s = sheet(f"Type | Rated current [A] | {heading}\nA | 0.3 | 9.8")
+    assert s.motors()["A"][key] == pytest.approx(expected)

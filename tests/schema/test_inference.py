@@ -98,3 +98,21 @@ def test_a_stated_convention_is_never_changed_but_contradicted():
     assert (finding.scope, finding.suspect, finding.cause) == (
         "column", "back_emf_constant", "peak-vs-rms",
     )  # fmt: skip
+
+
+def test_a_figure_again_in_other_units_means_what_the_first_does():
+    """Nm/A and oz-in/A of one sheet: what the figures show of the one holds for the other."""
+    from motorfolio.catalog.reading import ReadOptions, read
+    from motorfolio.catalog.tables.grid import Grid, TableFile
+    from motorfolio.schema.reconcile.checks import GIVEN_TWICE
+    from motorfolio.schema.reconcile.run import reconcile
+
+    rows = [["Part number", "Peak torque [Nm]", "Torque constant [Nm/A]",
+             "Torque constant [oz-in/A]", "Back EMF constant [V/krpm]"],
+            ["A", "1.62", "0.0940", "13.31", "9.84"], ["B", "2.5", "0.1880", "26.62", "19.69"],
+            ["C", "3.5", "0.2820", "39.93", "29.53"]]  # fmt: skip
+    grid = Grid(rows, [1, 2, 3, 4], [1, 2, 3, 4, 5])
+    file = TableFile("a.csv", "0" * 64, "csv", [grid])
+    (batch,) = read(file, ReadOptions(commutation="sinusoidal")).batches
+    found = reconcile(batch)
+    assert GIVEN_TWICE not in {f.relation for f in found.findings}

@@ -11,6 +11,8 @@ _SENTENCE_END = re.compile(r"[;；。]|(?:(?<=[a-z]{4})|(?<=\)))\.\s+(?=\w)")
 """Where a name in a title line ends; "Co." and "Corp." end none."""
 
 
+_RAISED_MARK = re.compile(r"\s*\^\(?\d{1,2}\)$")
+"""A footnote's, behind a part number."""
 _SERIES = re.compile(
     r"(?:^|\s)(?:(?:(?i:series|baureihe|serie|série)|シリーズ名?|系列)\s+)+([A-Z][A-Z\d-]+)$"
     r"|^([A-Z][A-Z\d-]+)\s+(?:(?i:series|baureihe|serie|série)|シリーズ|系列)$"
@@ -29,7 +31,7 @@ def motor_names(
     """The part numbers of the motors at ``places``; one without gets a name from the file's
     (``stem``), which is listed, or remarked where the table has one motor only."""
     if all(ids):
-        return [plain(t) if not t.isascii() else t.strip() for t in ids if t]
+        return [_RAISED_MARK.sub("", plain(t) if not t.isascii() else t.strip()) for t in ids if t]
     if len(ids) == 1:
         title = _title_name(table)
         name = title or stem

@@ -19,13 +19,14 @@ _PIECES = re.compile(r"[,;]\s+(?=[^\W\d])")
 
 
 def stated_figures(table: Table, matches: Sequence[Match], style: NumberStyle) -> list[Match]:
-    """The figures of title lines, of quantities that the table itself does not give."""
+    """The figures of lines about the table, of quantities that the table itself does not give."""
     known = {m.key for m in matches}
     found: list[Match] = []
-    lines = (plain(line) for title in table.titles for line in title.split("\n"))
-    for piece in (piece for line in lines for piece in _PIECES.split(line)):
+    about = [(text, True) for text in table.titles] + [(text, False) for text in table.notes]
+    lines = ((plain(line), above) for text, above in about for line in text.split("\n"))
+    for piece, above in ((piece, above) for line, above in lines for piece in _PIECES.split(line)):
         at = _LINE.fullmatch(piece)
-        pair = (at["heading"], at["figure"]) if at else figure_behind(piece)
+        pair = (at["heading"], at["figure"]) if at else figure_behind(piece) if above else None
         if pair is None:
             continue
         heading, text = pair
@@ -43,6 +44,6 @@ def stated_figures(table: Table, matches: Sequence[Match], style: NumberStyle) -
         known.add(q.key)
         field = Field(heading, label, [text] * table.count, 0, 0)
         field.places, field.layout = [0] * table.count, "rows"
-        reason = "a line above the table states it for all its motors"
+        reason = "a line about the table states it for all its motors"
         found.append(Match(field, "figure", q.key, 0.9, [unit], reason))
     return found

@@ -13,6 +13,7 @@ from .columns_head import (
     header_rows,
     heads_quantity,
     joined_ids,
+    one_motor_in_two_systems,
     roles_of_columns,
     spread_conditions,
     usual_columns,
@@ -31,8 +32,8 @@ _BARE = re.compile(r"[\d.,\s]+")
 def lay_out_columns(block: Block) -> Table:
     """The table of a block whose headings stand in a column."""
     label_column = block.line
+    roles = one_motor_in_two_systems(block, roles_of_columns(block, label_column))
     rows = block.rows
-    roles = roles_of_columns(block, label_column)
     values = [c for c, role in enumerate(roles) if role == "value"]
     first = next((i for i, row in enumerate(rows) if heads_quantity(row, label_column, values)), 0)
     part = _part_above(rows[:first])

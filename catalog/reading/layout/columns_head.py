@@ -64,6 +64,36 @@ def _unit_share(texts: list[str]) -> float:
     return 0.0 if figures > 0.2 * len(filled) else share(filled, is_unit)
 
 
+_SYSTEMS = re.compile(
+    r"metric|SI|imperial|english|us|inch|metrisch|métrique|metrico", re.IGNORECASE
+)
+
+
+def one_motor_in_two_systems(block: Block, roles: list[str]) -> list[str]:
+    """The roles, where the figures of one motor stand in two systems of units, each with a column
+    of its units ("Metric, Unit, Imperial, Unit"): the second stands behind the first in brackets.
+    """
+    pairs = [c for c, role in enumerate(roles) if role in ("value", "unit")]
+    if [roles[c] for c in pairs] != ["value", "unit"] * 2:
+        return roles
+    first, one, second, two = pairs
+    heads = [row for row in block.rows if _SYSTEMS.fullmatch(plain(row[first]))]
+    if not heads or not any(_SYSTEMS.fullmatch(plain(row[second])) for row in heads):
+        return roles
+    rows = []
+    for row in block.rows:
+        copy = list(row)
+        if row in heads:
+            copy[first] = ""
+        elif row[second] and row[second] != row[first]:
+            copy[first] = f"{row[first]} {row[one]} ({row[second]} {row[two]})"
+            copy[one] = ""
+        copy[second] = copy[two] = ""
+        rows.append(copy)
+    block.rows = rows
+    return ["blank" if c in (second, two) else role for c, role in enumerate(roles)]
+
+
 def heads_quantity(row: list[str], label_column: int, values: list[int]) -> bool:
     """Whether a row gives figures of a quantity, as opposed to names of the motors."""
     label = parse_label(row[label_column])
@@ -87,8 +117,11 @@ def header_rows(
         texts = [row[c] for c in values if row[c]]
         if not texts:
             continue
-        if all(is_role(t, "value") for t in texts):
-            continue  # "Part, Value, Unit"
+        across = {*texts} == {row[label_column]} and not re.search(r"\d", texts[0])
+        if across or all(is_role(t, "value") for t in texts):
+            continue  # a caption; "Part, Value, Unit"
+        if any(re.search(r"\.{2,}|…", t) for t in texts):
+            continue  # a range is no name
         if names_part(parse_label(row[label_column])):
             if named and all(_is_condition(t) for t in texts):
                 conditions.append(i)  # below the names, whose label a merged cell repeats
@@ -166,7 +199,8 @@ def joined_ids(
         return None
     for i in range(max(first, id_row) + 1):
         keys = {k for p in parse_label(rows[i][label_column]).names for k in p.keys}
-        if i == id_row or not keys & {"part_number", "series"}:
+        over = i < id_row and not rows[i][label_column] and not any(map(is_figure, rows[i]))
+        if i == id_row or not (over or keys & {"part_number", "series"}):
             continue
         others: list[str] = []
         for c in values:
