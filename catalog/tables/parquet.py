@@ -70,7 +70,8 @@ def _pairs(names: list[str]) -> dict[int, int]:
     """Columns of numbers, each with the column of the texts that they were written from."""
     pairs = {}
     for i, name in enumerate(names[:-1]):
-        if names[i + 1] == name + AS_WRITTEN:
+        head, sign, tail = names[i + 1].rpartition(AS_WRITTEN)
+        if sign and not tail and head.rstrip() == name:  # blanks tell a repeated name apart
             pairs[i] = i + 1
     return pairs
 

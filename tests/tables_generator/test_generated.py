@@ -21,7 +21,7 @@ from .numbers import STYLES, is_ambiguous, tells_decimal_sign
 from .recipe import LAYOUTS, NOISES, Recipe, draw_recipe
 from .units import INERTIAS, SPEEDS, TORQUES
 
-CHUNKS, TABLES = 8, 40
+CHUNKS, TABLES = 8, 30
 CASES = [
     (entry["name"], Recipe.from_json(json.dumps(entry["recipe"])))
     for line in (Path(__file__).parent / "cases.jsonl").read_text(encoding="utf-8").splitlines()

@@ -197,9 +197,15 @@ def joined_ids(
     ids = [rows[id_row][c] for c in values]
     if len(set(ids)) == len(ids) or not all(ids):
         return None
+    letters = all(len(t) <= 2 for t in ids)
     for i in range(max(first, id_row) + 1):
         keys = {k for p in parse_label(rows[i][label_column]).names for k in p.keys}
-        over = i < id_row and not rows[i][label_column] and not any(map(is_figure, rows[i]))
+        over = (
+            letters
+            and i < id_row
+            and not rows[i][label_column]
+            and not any(map(is_figure, rows[i]))
+        )
         if i == id_row or not (over or keys & {"part_number", "series"}):
             continue
         others: list[str] = []
