@@ -24,4 +24,8 @@ def excerpt(text: str, most: int = _LONGEST_QUOTE) -> str:
         text = "".join(c if c.isprintable() else " " for c in text)
     if "  " in text:
         text = " ".join(text.split())
-    return text if len(text) <= most else f"{text[:head]} … {text[head + 3 - most :]}"
+    return (
+        text
+        if len(text) <= most
+        else f"{text[:head].rstrip()} … {text[head + 3 - most :].lstrip()}"
+    )

@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 import pytest
-from hypothesis import given
+from hypothesis import example, given
 from hypothesis import strategies as st
 
 from motorfolio.schema.errors import MotorfolioError, excerpt
 
 
+@example("00000000000000000 000", 20)  # cut beside a blank
 @given(st.text(max_size=400), st.integers(20, 120))
 def test_an_excerpt_is_one_printable_line(text: str, most: int) -> None:
     found = excerpt(text, most)
