@@ -24,6 +24,17 @@ def test_a_cells_temperature_is_its_figures_and_another_condition_is_told():
     assert '"24 V"' in told[1]
 
 
+def test_a_second_figure_before_a_condition_is_kept():
+    s = sheet(
+        "Type | Nominal voltage [V] | Torque constant\nA | 24 | 0.28 Nm/A (39.6 oz-in/A) @ 20 °C"
+    )
+    assert s.motors()["A"]["torque_constant"] == 0.28
+    assert s.convention("torque_constant").temperature == 20.0
+    (again,) = s.batch.repeats["torque_constant"]
+    # NIST SP 811 (2008), App. B.8: ozf·in
+    assert again.value[0] == pytest.approx(39.6 * 7.061552e-3, rel=1e-6)
+
+
 def test_two_amounts_of_one_kind_are_listed():
     s = sheet("Part no. | Nominal voltage | Torque constant [Nm/A]\nA | 12 V at 900 mV | 0.3")
     assert s.motors() == {"A": {"torque_constant": 0.3}}

@@ -273,7 +273,8 @@ def test_gear_motor_over_the_part_numbers_is_no_other_part():
 
 @pytest.mark.parametrize(("title", "name"), [
     ("Specification FT-20-06", "FT-20-06"), ("Brushed motor 24VDC", "plate"),
-    ("Servo motor IP65", "plate"), ("Technical data", "plate"),
+    ("Servo motor IP65", "plate"), ("Technical data", "plate"), ("Motor BM 45", "BM 45"),
+    ("Brushless motor size 42", "plate"), ("Datasheet rev 12", "plate"),
 ])  # fmt: skip
 def test_a_title_that_ends_in_a_code_names_the_motor(title, name):
     s = sheet(f"{title} | | \nItem | Unit | Value\nStall torque | mNm | 3\nStall current | A | 0.8")

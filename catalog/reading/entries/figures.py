@@ -201,11 +201,12 @@ def _cells_with_more(
         if figure.marks:
             out.marks[i] = figure.marks
         also = figure.also
-        condition = figure.condition or _of_another_kind(also, q)
-        if condition:
-            _put_condition(out, i, texts[i], q, condition)
-            continue
+        if figure.condition:
+            _put_condition(out, i, texts[i], q, figure.condition)
         if also is None:
+            continue
+        if condition := _of_another_kind(also, q):
+            _put_condition(out, i, texts[i], q, condition)
             continue
         other = units[1] if len(units) > 1 else None
         if also.unit:
@@ -251,10 +252,10 @@ _CONDITIONS = ("V", "s", "°C", "K", "rad/s")
 """Units of what a figure may hold under."""
 
 
-def _of_another_kind(also: Figure | None, q: Quantity) -> str:
+def _of_another_kind(also: Figure, q: Quantity) -> str:
     """The second amount of "0.42 A (24 V)" as the condition that it is."""
-    unit = unit_of(also.unit) if also is not None and also.unit else None
-    if also is None or unit is None or unit.si in q.accepts or unit.si not in _CONDITIONS:
+    unit = unit_of(also.unit) if also.unit else None
+    if unit is None or unit.si in q.accepts or unit.si not in _CONDITIONS:
         return ""
     return f"{also.value:.12g} {also.unit}"
 

@@ -88,10 +88,9 @@ def _title_name(table: Table) -> str | None:
 
 
 _CODED = re.compile(
-    r"(?:motor|moteur|motore|motori|specifications?|data ?sheet|datenblatt|fiche technique|"
+    r"(?i:motor|moteur|motore|motori|specifications?|data ?sheet|datenblatt|fiche technique|"
     r"scheda tecnica|hoja de datos|ficha técnica|规格书|仕様書|データシート)s?\s*[:–-]?\s+"
-    r"(?P<code>(?=\S*\d)(?=\S*[A-Za-z])[\w./+-]{4,}|(?!AC|DC|IP|IC|NO|NR)[A-Z]{1,5} \d[\w./-]+)$",
-    re.IGNORECASE,
+    r"(?P<code>(?=\S*\d)(?=\S*[A-Za-z])[\w./+-]{4,}|(?!AC|DC|IP|IC|NO|NR)[A-Z]{1,5} \d[\w./-]+)$"
 )
 """A title that ends in a code: "Specification AX-12"."""
 _CODE_FIRST = re.compile(
