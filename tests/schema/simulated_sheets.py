@@ -88,6 +88,18 @@ def single(kind: Commutation = Commutation.BRUSHED, n: int = 1) -> Batch:
     return batch
 
 
+def sheet(
+    n: int = 1, kind: Commutation = Commutation.BRUSHED, **figures: float | list[float]
+) -> Batch:
+    """A sheet of n motors, four digits a figure; NaN: not given."""
+    batch = single(kind, n)
+    for key, values in figures.items():
+        for row, value in enumerate(np.broadcast_to(values, n).tolist()):
+            if math.isfinite(value):
+                put(batch, key, row, value, 4)
+    return batch
+
+
 def restate(batch: Batch, key: str, **changes: str | float | None) -> None:
     """Change the convention that a column states."""
     column = batch.figures[key]

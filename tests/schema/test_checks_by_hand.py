@@ -17,18 +17,9 @@ from motorfolio.schema.motor import Amount, Cell
 from motorfolio.schema.reconcile import checks
 from motorfolio.schema.reconcile.explain import Narrator
 
-from .simulated_sheets import put, single
+from .simulated_sheets import put, sheet, single
 
 BRUSHED, SERVO = Commutation.BRUSHED, Commutation.SINUSOIDAL
-
-
-def sheet(n: int = 1, kind: Commutation = BRUSHED, **figures: float | list[float]) -> Batch:
-    batch = single(kind, n)
-    for key, values in figures.items():
-        for row, value in enumerate(np.broadcast_to(values, n).tolist()):
-            if math.isfinite(value):
-                put(batch, key, row, value, 4)
-    return batch
 
 
 def exact(batch: Batch, key: str, values: list[float], half: float = 0.0) -> None:

@@ -25,19 +25,9 @@ from motorfolio.schema.reconcile.model import INDEX
 from motorfolio.schema.reconcile.observed import observe, usable
 from motorfolio.schema.reconcile.run import reconcile
 
-from .simulated_sheets import RPM, put, restate, single
+from .simulated_sheets import RPM, restate, sheet, single
 
 BRUSHED, SERVO = Commutation.BRUSHED, Commutation.SINUSOIDAL
-
-
-def sheet(n: int = 1, kind: Commutation = BRUSHED, **figures: float | list[float]) -> Batch:
-    """A sheet of n motors, four digits a figure; NaN: not given."""
-    batch = single(kind, n)
-    for key, values in figures.items():
-        for row, value in enumerate(np.broadcast_to(values, n).tolist()):
-            if math.isfinite(value):
-                put(batch, key, row, value, 4)
-    return batch
 
 
 # ---- order of figures

@@ -23,18 +23,10 @@ from motorfolio.schema.reconcile.observed import observe
 from motorfolio.schema.reconcile.suspects import LeftOut
 from motorfolio.schema.vocabulary import quantity
 
-from .simulated_sheets import put, single
+from .simulated_sheets import put
+from .simulated_sheets import sheet as printed
 
 BRUSHED, SERVO = Commutation.BRUSHED, Commutation.SINUSOIDAL
-
-
-def printed(n: int = 1, kind: Commutation = BRUSHED, **figures: float | list[float]) -> Batch:
-    batch = single(kind, n)
-    for key, values in figures.items():
-        for row, value in enumerate(np.broadcast_to(values, n).tolist()):
-            if math.isfinite(value):
-                put(batch, key, row, value, 4)
-    return batch
 
 
 def evidence(batch: Batch, **unknowns: float) -> Evidence:

@@ -14,6 +14,7 @@ from motorfolio.schema.operation.pwm import space_vector_mean_square, two_level_
 from motorfolio.schema.operation.thermal import TwoBody, copper_factor, periodic_peak
 
 from .made_up_motors import motors
+from .runge_kutta import step
 
 AMBIENT = 30.0
 
@@ -46,11 +47,7 @@ def highest_by_steps(
         for p in range(P):
             h = duration[p] / steps
             for n in range(steps):
-                k1 = rates(T, p, n / steps)
-                k2 = rates(T + h / 2 * k1, p, (n + 0.5) / steps)
-                k3 = rates(T + h / 2 * k2, p, (n + 0.5) / steps)
-                k4 = rates(T + h * k3, p, (n + 1) / steps)
-                T = T + h / 6 * (k1 + 2 * k2 + 2 * k3 + k4)
+                T = step(rates, T, p, n / steps, 1 / steps, h)
                 if period == periods - 1:
                     highest = np.maximum(highest, T[0])
     return highest

@@ -18,6 +18,8 @@ from motorfolio.schema.operation.thermal import (
     steady_temperature,
 )
 
+from .runge_kutta import step
+
 AMBIENT = 30.0
 Rates = Callable[[np.ndarray, int, float], np.ndarray]
 
@@ -28,11 +30,7 @@ def over_a_period(rates: Rates, state: np.ndarray, duration, steps: int):
     for p, length in enumerate(duration):
         h = length / steps
         for n in range(steps):
-            k1 = rates(state, p, n / steps)
-            k2 = rates(state + h / 2 * k1, p, (n + 0.5) / steps)
-            k3 = rates(state + h / 2 * k2, p, (n + 0.5) / steps)
-            k4 = rates(state + h * k3, p, (n + 1) / steps)
-            state = state + h / 6 * (k1 + 2 * k2 + 2 * k3 + k4)
+            state = step(rates, state, p, n / steps, 1 / steps, h)
             highest = np.maximum(highest, state[0])
     return state, highest
 

@@ -18,7 +18,7 @@ from motorfolio.schema.reconcile.explain import Narrator
 from motorfolio.schema.reconcile.inference import Inferred
 from motorfolio.schema.reconcile.model import INDEX
 
-from .simulated_sheets import put, single
+from .simulated_sheets import sheet as printed
 
 BRUSHED, SINE = Commutation.BRUSHED, Commutation.SINUSOIDAL
 SHEET = {"nominal_voltage": 24.0, "terminal_resistance": 1.2, "torque_constant": 0.03,
@@ -28,11 +28,7 @@ STALL = "Is = U/Ra: 24.00 V/(1.200 Ω) gives 20 A, printed is 40.00 A"
 
 
 def sheet(kind: Commutation = BRUSHED, n: int = 1, **figures: float) -> Batch:
-    batch = single(kind, n)
-    for key, value in (figures or SHEET).items():
-        for row in range(n):
-            put(batch, key, row, value, 4)
-    return batch
+    return printed(n, kind, **(figures or SHEET))
 
 
 # ---- a column

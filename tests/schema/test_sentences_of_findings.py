@@ -17,7 +17,8 @@ from motorfolio.schema.reconcile.model import INDEX
 from motorfolio.schema.reconcile.relations import RELATIONS
 from motorfolio.schema.reconcile.suspects import Suspicion
 
-from .simulated_sheets import put, restate, single
+from .simulated_sheets import restate
+from .simulated_sheets import sheet as printed
 
 BRUSHED, SINE = Commutation.BRUSHED, Commutation.SINUSOIDAL
 SHEET = {"nominal_voltage": 24.0, "terminal_resistance": 1.2, "torque_constant": 0.03,
@@ -27,11 +28,7 @@ STALL = "Is = U/Ra: 24.00 V/(1.200 Ω) gives 20 A, printed is 40.00 A"
 
 
 def sheet(kind: Commutation = BRUSHED, n: int = 1, **figures: float) -> Batch:
-    batch = single(kind, n)
-    for key, value in (figures or SHEET).items():
-        for row in range(n):
-            put(batch, key, row, value, 4)
-    return batch
+    return printed(n, kind, **(figures or SHEET))
 
 
 def suspicion(key: str, ratio: float, causes=("unexplained",), motor: int = 0, **more) -> Suspicion:
