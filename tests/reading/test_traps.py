@@ -351,6 +351,11 @@ def test_the_output_of_a_gear_is_not_the_motors():
     """)
     assert s.motors() == {"G-1": {"no_load_speed": pytest.approx(9800 * RPM)}}
     assert {"0.5", "4"} <= s.unread
+    told = sheet(
+        "Model | Motor voltage [V] | Gear ratio | Rated output torque [Nm]\nG-1 | 24 | 34:1 | 0.5",
+        overrides={"Rated output torque": "nominal_torque"},
+    )
+    assert told.motors()["G-1"]["nominal_torque"] == 0.5
 
 
 def test_a_row_of_figures_is_never_the_names():
@@ -503,3 +508,11 @@ def test_a_figure_on_a_line_below_a_table():
 def test_symbols_units_and_brackets_behind_names(heading, key, expected):
     s = sheet(f"Type | Rated current [A] | {heading}\nA | 0.3 | 9.8")
     assert s.motors()["A"][key] == pytest.approx(expected)
+
+
+@pytest.mark.parametrize("heading", ["Rated current, fan [A]", "Rated current Fan [A]",
+                                     "Nominal voltage brk [V]"])  # fmt: skip
+def test_a_word_behind_a_name_is_no_sign_of_it(heading):
+    s = sheet(f"Type | Rated torque [Nm] | {heading}\nA | 0.3 | 9.8")
+    assert s.motors() == {"A": {"nominal_torque": 0.3}}
+    assert "9.8" in s.unread

@@ -77,7 +77,6 @@ class Decisions:
         self.style = self._style()
         self._styles: dict[int, NumberStyle] = {}
         self.matches = self._match()
-        set_outputs_aside(self.matches)
         by_voltage(table, self.matches, self.id_field, self.style)
         share_frame(table, self.matches, self.id_field, with_dittos)
         self._stated_voltage()
@@ -186,6 +185,7 @@ class Decisions:
         matches = [
             overridden[i] if i in overridden else next(found) for i in range(len(plain_fields))
         ]
+        set_outputs_aside([m for i, m in enumerate(matches) if i not in overridden], plain_fields)
         if self.id_field is not None:
             told = self._override(self.id_field)
             reason = told.reason if told is not None else "the part numbers"

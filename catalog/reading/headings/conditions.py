@@ -18,6 +18,11 @@ LEVER = re.compile(
     r"|depuis|dal|dalla|da|desde|del)\b[^\[\]()]*?)(?=\s*[\[(]|\s+(?:k?N|lbf?|kgf)$|$)"
 )
 """Where on the shaft a load acts: "5 mm from flange"."""
+RISE = re.compile(
+    r"[,;]?\s*(?P<at>(?:(?:at|bei|à|a)\s+|@\s*)?\d{1,3}\s*(?:°\s*C|K)\s+(?:temperature\s+)?rise\b)",
+    re.IGNORECASE,
+)
+"""How far the winding may warm: "at 100 °C rise" is no temperature."""
 CONDITION_ONLY = re.compile(
     r"(?:(?:@|at|bei|à)\s+)?(?:[^\W\d]{1,6}\s*=\s*)?\d{1,3}(?:[.,]\d+)?\s*(?:V\s*(?:AC|DC)?|VAC|VDC|K|°C|℃)"
     r"|S[1-9](?:[\s-]*\d+\s*%)?"

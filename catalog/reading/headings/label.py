@@ -14,6 +14,7 @@ from .conditions import (
     CONDITION_ONLY,
     LEVER,
     ONLY_VOLTS,
+    RISE,
     TEMPERATURE,
     TOLERANCE,
     WITH_SOME,
@@ -47,7 +48,9 @@ _TWO_SCRIPTS = re.compile(
 )
 
 
-_AND_SIGN = re.compile(r"(?P<name>[^,]{6,})(?:,\s*|\s+)(?P<sign>[A-Za-zηωτΘΔ][A-Za-z0-9]{0,3})")
+_AND_SIGN = re.compile(
+    r"(?P<name>[^,]{6,})(?:,\s*|\s+)(?P<sign>[A-ZηωτΘΔ][A-Za-z0-9]{0,3}|[a-z][A-Z0-9]?)"
+)
 """A name with a maker's own sign behind it: "Max. continuous torque, Me"."""
 
 
@@ -117,10 +120,11 @@ def parse_label(text: str) -> Label:
     for m in reversed(inner):
         label = replace(label, marks=(*label.marks, m[1]))
         rest = rest[: m.start()] + rest[m.end() :]
-    lever = LEVER.search(rest)
-    if lever and _balanced(rest, lever.start()) and lever.start() > 0:
-        label = replace(label, conditions=(*label.conditions, lever["at"]))
-        rest = rest[: lever.start()] + rest[lever.end() :]
+    for pattern in (LEVER, RISE):
+        found = pattern.search(rest)
+        if found and _balanced(rest, found.start()) and found.start() > 0:
+            label = replace(label, conditions=(*label.conditions, found["at"]))
+            rest = rest[: found.start()] + rest[found.end() :]
     core, inside = bracketed_apart(rest)
     name, symbol, unit = _apart(core)
     for content in inside:
@@ -298,7 +302,8 @@ def _core(label: Label, core: str) -> Label:
     signed = _AND_SIGN.fullmatch(core)
     if signed and not may_be_unit(signed["sign"]) and not find_symbol(signed["sign"]):
         phrase = match_phrase(signed["name"])
-        if phrase.keys and phrase.score >= 0.96 and match_phrase(core).score < 0.9:
+        whole = match_phrase(core)
+        if phrase.keys and phrase.score >= 0.96 and whole.score < 0.9 and not whole.other:
             core = signed["name"]
     if "\n" in core:
         # A name broken over lines is one name; names in two languages on two lines are two.

@@ -4,6 +4,7 @@ import re
 from collections.abc import Sequence
 
 from ....schema.figure.signs import plain
+from ..model import Field
 from .match import Match
 
 _BODY = re.compile(
@@ -53,9 +54,10 @@ _OF_THE_OUTPUT = re.compile(
 _TURNS = re.compile(r"speed|torque|_load$|shaft_diameter")
 
 
-def set_outputs_aside(matches: Sequence[Match]) -> None:
-    """Beside a gear ratio, speed and torque of the output are the gear's: they are not read."""
-    if not any(_RATIO.search(plain(m.field.heading)) for m in matches):
+def set_outputs_aside(matches: Sequence[Match], fields: Sequence[Field]) -> None:
+    """Beside a gear ratio among the table's fields, speed and torque of the output are the
+    gear's: they are not read."""
+    if not any(_RATIO.search(plain(f.heading)) for f in fields):
         return
     for m in matches:
         if m.key and _TURNS.search(m.key) and _OF_THE_OUTPUT.search(plain(m.field.heading)):
